@@ -1,0 +1,1 @@
+//! Diodes, the series stack, its curve and its maximum power point.

@@ -1,0 +1,7 @@
+//! The `bandloom` command.
+
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    bandloom::cli::run(std::env::args_os())
+}

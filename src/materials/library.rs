@@ -1,0 +1,1 @@
+//! The library: stack files and index tables, embedded.

@@ -1,0 +1,1 @@
+//! Roots, interpolation, quadrature: knows no solar word.

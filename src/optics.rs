@@ -1,0 +1,1 @@
+//! Where light is absorbed.

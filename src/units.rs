@@ -1,0 +1,1 @@
+//! Dimensions, quantities, and the table of units.

@@ -1,0 +1,1 @@
+//! Build, then again at every save.

@@ -1,0 +1,1 @@
+//! Files in memory, for tests and for standard input.
