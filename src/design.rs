@@ -303,9 +303,11 @@ pub struct Layer {
 }
 
 impl Layer {
-    /// Whether photons absorbed here count as current.
+    /// Whether photons absorbed here count as current: by duty, by `collecting`, or because it
+    /// is the wafer that a junction is made in.
     pub fn collects(&self) -> bool {
-        matches!(self.place, Place::Junction(_)) && (self.duty.collects() || self.collecting)
+        matches!(self.place, Place::Junction(_))
+            && (self.duty.collects() || self.duty == Duty::Wafer || self.collecting)
     }
 }
 
