@@ -17,6 +17,7 @@ pub mod cli;
 pub mod design;
 pub mod evaluate;
 pub mod finding;
+pub mod growth;
 pub mod light;
 pub mod materials;
 pub mod numerics;
