@@ -14,6 +14,7 @@
 pub mod check;
 pub mod circuit;
 pub mod cli;
+pub mod compile;
 pub mod design;
 pub mod evaluate;
 pub mod finding;

@@ -1,0 +1,1 @@
+//! What DEVELOPERS.md promises about the code, read from the code.
