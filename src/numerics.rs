@@ -1,1 +1,4 @@
-//! Roots, interpolation, quadrature: knows no solar word.
+//! Constants, interpolation, quadrature, roots, maxima: knows no solar word.
+
+pub mod constants;
+pub mod quadrature;
