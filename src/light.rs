@@ -12,6 +12,10 @@ pub use builtin::{BUILTIN, builtin};
 use crate::numerics::constants::{CHARGE, HC};
 use crate::numerics::quadrature::{integral, integral_between, linear_at};
 
+/// Where material data and the terrestrial tables start, m. The part of AM0 beyond it drives no
+/// current, but efficiency is over the whole.
+pub const DATA_START_M: f64 = 280e-9;
+
 /// A spectrum as given: irradiance against wavelength, ascending.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Spectrum {
@@ -24,6 +28,9 @@ pub struct Spectrum {
     /// Whole irradiance that efficiency divides by, W/m2; may be more than the table's part that
     /// drives currents (AM0).
     pub total_w_per_m2: f64,
+    /// Shorter wavelengths drive no current and are a line of their own in the ledger, m:
+    /// [`DATA_START_M`] for tables, 0 where the light is a law.
+    pub drives_from_m: f64,
     /// The source.
     pub cite: String,
 }
@@ -37,7 +44,8 @@ impl Spectrum {
         cite: impl Into<String>,
     ) -> Self {
         let total_w_per_m2 = integral(&wavelength_m, &irradiance);
-        Self { name: name.into(), wavelength_m, irradiance, total_w_per_m2, cite: cite.into() }
+        let drives_from_m = DATA_START_M;
+        Self { name: name.into(), wavelength_m, irradiance, total_w_per_m2, drives_from_m, cite: cite.into() }
     }
 
     /// First and last wavelength, m; `None` without points.

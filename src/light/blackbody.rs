@@ -51,6 +51,7 @@ pub fn blackbody(temperature_k: f64, dilution: f64) -> Spectrum {
         wavelength_m,
         irradiance,
         total_w_per_m2,
+        drives_from_m: 0.0,
         cite: "Planck's law".to_owned(),
     }
 }
