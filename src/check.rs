@@ -1,10 +1,132 @@
 //! The rules: facts about a design that would ruin it, each with a way out.
+//!
+//! One rule is one file `check/<rule>.rs` and one page `why/<code>.md`; it is switched on by its
+//! line in [`RULES`]. Rules never see the text: they judge a [`Design`] and, where they need
+//! figures, its [`Results`]. They are silent about what could not be resolved.
 
 use crate::design::Design;
-use crate::finding::Findings;
+use crate::finding::{Finding, Findings, Severity};
+use crate::growth::{self, LayerGrowth};
 use crate::results::Results;
 
-/// Runs every rule. Rules that need evaluated figures are silent without `results`.
-pub fn check(_design: &Design, _results: Option<&Results>) -> Findings {
-    Findings::new()
+mod accept;
+mod junctions;
+mod limits;
+mod show;
+
+use junctions::JunctionFacts;
+
+/// Every rule, in the order they run.
+pub static RULES: &[&Rule] = &[];
+
+/// One rule.
+pub struct Rule {
+    /// Its code, `gap.order`.
+    pub code: &'static str,
+    /// The gravest severity it reports.
+    pub severity: Severity,
+    /// What it is about, in a few words.
+    pub title: &'static str,
+    /// The threshold `limit CODE value` sets, if it has one.
+    pub threshold: Option<Threshold>,
+    /// Whether it needs evaluated figures; such a rule is not run without them.
+    pub needs_results: bool,
+    /// Looks, and reports what it sees.
+    pub run: fn(&Context, &mut Report),
+}
+
+/// A number a rule judges by.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Threshold {
+    /// SI, fractions plain.
+    pub default: f64,
+    /// A unit of its dimension, as written after a number: `%`, `nm`, `eV`.
+    pub unit: &'static str,
+    /// What is compared with it.
+    pub meaning: &'static str,
+}
+
+/// What a rule may look at.
+pub struct Context<'a> {
+    /// The design.
+    pub design: &'a Design,
+    /// Its figures, where it was evaluated.
+    pub results: Option<&'a Results>,
+    /// Facts about each of [`Design::junctions`], same order.
+    pub(crate) junctions: Vec<JunctionFacts<'a>>,
+    /// Lattice state of each of [`Design::layers`], same order.
+    pub lattice: Vec<Option<LayerGrowth>>,
+}
+
+impl<'a> Context<'a> {
+    fn new(design: &'a Design, results: Option<&'a Results>) -> Self {
+        let junctions = (0..design.junctions.len()).map(|index| JunctionFacts::new(design, index)).collect();
+        Self { design, results, junctions, lattice: growth::lattice_states(design) }
+    }
+
+    /// The threshold in force for `rule`, SI: the one set by `limit`, else its default.
+    pub fn threshold(&self, rule: &Rule) -> f64 {
+        let default = rule.threshold.map_or(0.0, |threshold| threshold.default);
+        self.design.limit(rule.code).map_or(default, |limit| limit.value)
+    }
+}
+
+/// Findings with the paths of what they are about, so that `accept … on path` finds them.
+#[derive(Default)]
+pub struct Report {
+    found: Vec<Found>,
+}
+
+struct Found {
+    finding: Finding,
+    about: Vec<String>,
+}
+
+impl Report {
+    /// Adds a finding about what lies at `about`: paths of layers, names of junctions,
+    /// interconnects or conditions, paths of free values, metrics.
+    pub fn push<S: Into<String>>(&mut self, about: impl IntoIterator<Item = S>, finding: Finding) {
+        self.found.push(Found { finding, about: about.into_iter().map(Into::into).collect() });
+    }
+}
+
+/// A finding the designer accepts, with the reason given.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Accepted {
+    /// What was found.
+    pub finding: Finding,
+    /// `because "…"`; empty where none was given (already reported).
+    pub because: String,
+}
+
+/// What the rules have to say.
+#[derive(Clone, Debug, Default, PartialEq, Eq)]
+pub struct Checked {
+    /// What stands.
+    pub findings: Findings,
+    /// What the designer accepts, for the sheet.
+    pub accepted: Vec<Accepted>,
+}
+
+/// Runs every rule on `design`; rules that need figures are left out without `results`.
+///
+/// `evaluated` are the findings of evaluation about the same design: they come back among the
+/// others, and `accept` reaches them too.
+pub fn check(design: &Design, results: Option<&Results>, evaluated: Findings) -> Checked {
+    let context = Context::new(design, results);
+    let mut report = Report::default();
+    for finding in evaluated.0 {
+        report.push(Vec::<String>::new(), finding);
+    }
+    for rule in RULES.iter().filter(|rule| results.is_some() || !rule.needs_results) {
+        (rule.run)(&context, &mut report);
+    }
+    let mut checked = accept::sort_out(&context, report);
+    checked.findings.extend(limits::check(design));
+    checked
+}
+
+/// The rule of that code.
+pub fn rule(code: &str) -> Option<&'static Rule> {
+    RULES.iter().copied().find(|rule| rule.code == code)
 }

@@ -1,0 +1,101 @@
+//! `limit CODE value`: whether the code has a threshold and the value can be one.
+
+use super::{RULES, rule};
+use crate::design::Design;
+use crate::finding::{Finding, Findings};
+use crate::source::Spanned;
+use crate::why;
+
+/// Reports limits that set nothing.
+pub(super) fn check(design: &Design) -> Findings {
+    let mut findings = Findings::new();
+    for limit in &design.limits {
+        let code = &limit.code.value;
+        let Some(rule) = rule(code) else {
+            findings.push(if is_known(code) {
+                without_threshold(&limit.code)
+            } else {
+                unknown_code(&limit.code)
+            });
+            continue;
+        };
+        let Some(threshold) = rule.threshold else {
+            findings.push(without_threshold(&limit.code));
+            continue;
+        };
+        if !limit.value.is_finite() || limit.value < 0.0 {
+            findings.push(
+                Finding::error(
+                    "value.range",
+                    format!(
+                        "limit of `{code}` is `{}`; {} cannot be negative",
+                        limit.text, threshold.meaning
+                    ),
+                )
+                .at(limit.span, "less than nothing")
+                .help(format!("write a value above 0 {}", threshold.unit)),
+            );
+        }
+    }
+    findings
+}
+
+/// Whether any pass can report this code.
+pub(super) fn is_known(code: &str) -> bool {
+    rule(code).is_some() || why::page(code).is_some()
+}
+
+/// A code nobody reports.
+pub(super) fn unknown_code(code: &Spanned<String>) -> Finding {
+    let finding = Finding::error("name.unknown", format!("`{}` is no code of a finding", code.value))
+        .at(code.span, "unknown code");
+    let nearest = RULES
+        .iter()
+        .map(|rule| rule.code)
+        .chain(why::PAGES.iter().map(|(code, _)| *code))
+        .map(|known| (edits(known, &code.value), known))
+        .min();
+    match nearest {
+        Some((distance, known)) if distance <= known.len() / 3 => {
+            finding.help(format!("write `{known}`")).fix(code.span, known, false)
+        }
+        _ => finding.help("`bandloom why` lists every code"),
+    }
+}
+
+fn without_threshold(code: &Spanned<String>) -> Finding {
+    let adjustable: Vec<String> =
+        RULES.iter().filter(|rule| rule.threshold.is_some()).map(|rule| format!("`{}`", rule.code)).collect();
+    Finding::error("name.unknown", format!("`{}` has no threshold to set", code.value))
+        .at(code.span, "judges by no number")
+        .help(format!("thresholds can be set for {}", adjustable.join(", ")))
+}
+
+/// Levenshtein distance in characters.
+fn edits(a: &str, b: &str) -> usize {
+    let b: Vec<char> = b.chars().collect();
+    let mut row: Vec<usize> = (0..=b.len()).collect();
+    for (i, ca) in a.chars().enumerate() {
+        let mut diagonal = row[0];
+        row[0] = i + 1;
+        for (j, cb) in b.iter().enumerate() {
+            let kept = diagonal + usize::from(ca != *cb);
+            diagonal = row[j + 1];
+            row[j + 1] = kept.min(row[j] + 1).min(diagonal + 1);
+        }
+    }
+    row[b.len()]
+}
+
+#[cfg(test)]
+mod tests {
+    use super::edits;
+
+    #[test]
+    fn counts_edits() {
+        // Standard example of the Levenshtein distance.
+        assert_eq!(edits("kitten", "sitting"), 3);
+        assert_eq!(edits("", "abc"), 3);
+        assert_eq!(edits("gap.order", "gap.order"), 0);
+    }
+}
