@@ -40,7 +40,7 @@ pub struct Rule {
 pub struct Threshold {
     /// SI, fractions plain.
     pub default: f64,
-    /// A unit of its dimension, as written after a number: `%`, `nm`, `eV`.
+    /// A unit of its dimension, as written after a number: `%`, `um`, `meV`.
     pub unit: &'static str,
     /// What is compared with it.
     pub meaning: &'static str,
@@ -95,7 +95,7 @@ impl Report {
 pub struct Accepted {
     /// What was found.
     pub finding: Finding,
-    /// `because "…"`; empty where none was given (already reported).
+    /// `because "…"`.
     pub because: String,
 }
 

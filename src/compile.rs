@@ -5,10 +5,10 @@
 
 use std::path::{Path, PathBuf};
 
-use crate::check;
-use crate::design::{Accept, Design};
+use crate::check::{self, Accepted};
+use crate::design::Design;
 use crate::evaluate;
-use crate::finding::{Finding, Findings, Severity};
+use crate::finding::{Findings, Severity};
 use crate::resolve::{self, Overrides};
 use crate::results::Results;
 use crate::source::{Sources, Span};
@@ -34,15 +34,6 @@ pub struct Stack {
     pub findings: Findings,
     /// What was found and accepted, with the reason.
     pub accepted: Vec<Accepted>,
-}
-
-/// A finding that an `accept` silenced.
-#[derive(Clone, Debug, PartialEq)]
-pub struct Accepted {
-    /// The finding.
-    pub finding: Finding,
-    /// The reason given.
-    pub because: String,
 }
 
 /// Everything that came of one file.
@@ -106,36 +97,22 @@ pub fn shown(path: &Path) -> String {
 
 /// Checks, evaluates where nothing stands against it, checks again with figures, and accepts.
 fn finish(design: Design, early: Findings, source: &str, no_evaluation: bool) -> Stack {
-    let mut used = Use::new(&design);
     // An error of an earlier pass left a hole in the design: it cannot be accepted away.
     let (errors, milder): (Vec<_>, Vec<_>) =
         early.0.into_iter().partition(|finding| finding.severity == Severity::Error);
     let mut findings = Findings(errors);
-    findings.extend(used.accept(&design, Findings(milder)));
+    let mut milder = Findings(milder);
 
-    let checked = used.accept(&design, check::check(&design, None));
+    let mut checked = check::check(&design, None, milder.clone());
     let mut results = None;
-    if no_evaluation || findings.has_errors() || checked.has_errors() {
-        findings.extend(checked);
-    } else {
+    if !(no_evaluation || findings.has_errors() || checked.findings.has_errors()) {
         let evaluated = evaluate::evaluate(&design, source);
         results = evaluated.value;
-        findings.extend(used.accept(&design, evaluated.findings));
-        match &results {
-            Some(results) => {
-                findings.extend(used.accept(&design, check::check(&design, Some(results))));
-            }
-            None => findings.extend(checked),
-        }
+        milder.extend(evaluated.findings);
+        checked = check::check(&design, results.as_ref(), milder);
     }
-    let mut accepted = used.accepted;
-    let mut kept = Vec::new();
-    for one in accepted.drain(..) {
-        if !kept.contains(&one) {
-            kept.push(one);
-        }
-    }
-    Stack { design, results, findings: findings.sorted(), accepted: kept }
+    findings.extend(checked.findings);
+    Stack { design, results, findings: findings.sorted(), accepted: checked.accepted }
 }
 
 /// Sorts findings of the shared passes to the stack whose text they lie in; the rest is shared.
@@ -155,53 +132,4 @@ fn by_stack(designs: &[Design], findings: Findings) -> (Vec<Findings>, Findings)
 
 fn inside(inner: Span, outer: Span) -> bool {
     inner.source == outer.source && outer.start <= inner.start && inner.end <= outer.end
-}
-
-/// The `accept`s of one stack at work.
-struct Use {
-    accepts: Vec<Accept>,
-    accepted: Vec<Accepted>,
-}
-
-impl Use {
-    fn new(design: &Design) -> Self {
-        // Without a reason it silences nothing; that has been reported.
-        let accepts = design.accepts.iter().filter(|accept| accept.because.is_some()).cloned().collect();
-        Self { accepts, accepted: Vec::new() }
-    }
-
-    /// Takes out what is accepted.
-    fn accept(&mut self, design: &Design, findings: Findings) -> Findings {
-        let mut kept = Findings::new();
-        for finding in findings.0 {
-            let by = self.accepts.iter().find(|accept| covers(design, accept, &finding));
-            match by.and_then(|accept| accept.because.as_ref()) {
-                Some(because) => {
-                    self.accepted.push(Accepted { finding, because: because.value.clone() });
-                }
-                None => kept.push(finding),
-            }
-        }
-        kept
-    }
-}
-
-/// Whether `accept` speaks of `finding`: the same code and, where a path is given, a place in it.
-fn covers(design: &Design, accept: &Accept, finding: &Finding) -> bool {
-    if accept.code.value != finding.code {
-        return false;
-    }
-    let Some(on) = &accept.on else {
-        return true;
-    };
-    let Some(primary) = &finding.primary else {
-        return false;
-    };
-    let path = on.value.as_str();
-    let under =
-        |name: &str| name == path || name.strip_prefix(path).is_some_and(|rest| rest.starts_with('.'));
-    let layers = design.layers.iter().filter(|layer| under(&layer.path)).map(|layer| layer.spans.statement);
-    let junctions = design.junctions.iter().filter(|j| under(&j.name.value)).map(|j| j.span);
-    let interconnects = design.interconnects.iter().filter(|i| under(&i.name.value)).map(|i| i.span);
-    layers.chain(junctions).chain(interconnects).any(|span| inside(primary.span, span))
 }

@@ -17,9 +17,10 @@ pub(super) fn sort_out(context: &Context, report: Report) -> Checked {
             Some(at) => {
                 used[at] = true;
                 let because = design.accepts[at].because.as_ref().map(|text| text.value.clone());
-                checked
-                    .accepted
-                    .push(Accepted { finding: found.finding, because: because.unwrap_or_default() });
+                let accepted = Accepted { finding: found.finding, because: because.unwrap_or_default() };
+                if !checked.accepted.contains(&accepted) {
+                    checked.accepted.push(accepted);
+                }
             }
             None => checked.findings.push(found.finding),
         }
@@ -31,7 +32,8 @@ pub(super) fn sort_out(context: &Context, report: Report) -> Checked {
 /// Whether `accept` speaks of this finding: same code, and the path given is what the finding is
 /// about, or holds it (`top` holds `top.base`).
 fn covers(design: &Design, accept: &Accept, found: &Found) -> bool {
-    if accept.code.value != found.finding.code {
+    // Without a reason it silences nothing; that has been reported.
+    if accept.because.is_none() || accept.code.value != found.finding.code {
         return false;
     }
     let Some(on) = &accept.on else { return true };
@@ -67,7 +69,9 @@ fn place_of(design: &Design, path: &str) -> Option<Span> {
 fn unused(context: &Context, used: &[bool]) -> Findings {
     let design = context.design;
     let mut findings = Findings::new();
-    for (accept, _) in design.accepts.iter().zip(used).filter(|(_, used)| !**used) {
+    for (accept, _) in
+        design.accepts.iter().zip(used).filter(|(accept, used)| !**used && accept.because.is_some())
+    {
         let code = &accept.code.value;
         if !super::limits::is_known(code) {
             findings.push(super::limits::unknown_code(&accept.code));
