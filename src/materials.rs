@@ -7,10 +7,17 @@
 
 use std::sync::Arc;
 
+pub mod constants;
+pub mod elements;
+pub mod formula;
 pub mod library;
 pub mod optics;
 
+use constants::Constants;
 use optics::Optics;
+
+/// The temperature handbook values hold at, K. A gap asked for in a stack file is the gap here.
+pub const ROOM_TEMPERATURE_K: f64 = 300.0;
 
 /// A temperature law `E(T) = at_zero − alpha·T²/(T + beta)` (Varshni, Physica 34, 149 (1967)).
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -27,10 +34,45 @@ impl Varshni {
     /// The gap in eV at `temperature_k`.
     pub fn at(self, temperature_k: f64) -> f64 {
         let t = temperature_k;
-        if self.alpha_ev_per_k == 0.0 {
+        // Also keeps 0/0 out where beta is 0 K, as for the X valley of InP.
+        if self.alpha_ev_per_k == 0.0 || t <= 0.0 {
             return self.at_zero_ev;
         }
         self.at_zero_ev - self.alpha_ev_per_k * t * t / (t + self.beta_k)
+    }
+}
+
+/// How one gap of one compound moves with temperature.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum GapLaw {
+    /// Varshni's form; a gap without a known law has `alpha` 0.
+    Varshni(Varshni),
+    /// `E(T) = at_zero + amplitude·(1 − coth(theta/T))`, phonon occupation at one temperature.
+    Phonon {
+        /// eV.
+        at_zero_ev: f64,
+        /// eV.
+        amplitude_ev: f64,
+        /// K.
+        theta_k: f64,
+    },
+}
+
+impl GapLaw {
+    /// A gap that stays put.
+    pub fn constant(ev: f64) -> Self {
+        Self::Varshni(Varshni { at_zero_ev: ev, alpha_ev_per_k: 0.0, beta_k: 0.0 })
+    }
+
+    /// The gap in eV at `temperature_k`.
+    pub fn at(self, temperature_k: f64) -> f64 {
+        match self {
+            Self::Varshni(law) => law.at(temperature_k),
+            Self::Phonon { at_zero_ev, .. } if temperature_k <= 0.0 => at_zero_ev,
+            Self::Phonon { at_zero_ev, amplitude_ev, theta_k } => {
+                at_zero_ev + amplitude_ev * (1.0 - 1.0 / (theta_k / temperature_k).tanh())
+            }
+        }
     }
 }
 
@@ -39,12 +81,17 @@ impl Varshni {
 #[derive(Clone, Debug, PartialEq, Default)]
 pub struct Valley {
     /// End members: weight and law. The weights sum to 1.
-    pub members: Vec<(f64, Varshni)>,
+    pub members: Vec<(f64, GapLaw)>,
     /// eV.
     pub offset_ev: f64,
 }
 
 impl Valley {
+    /// The valley of a compound.
+    pub fn of(law: GapLaw) -> Self {
+        Self { members: vec![(1.0, law)], offset_ev: 0.0 }
+    }
+
     /// The gap of this valley in eV at `temperature_k`.
     pub fn at(&self, temperature_k: f64) -> f64 {
         self.members.iter().map(|(w, law)| w * law.at(temperature_k)).sum::<f64>() + self.offset_ev
@@ -224,6 +271,8 @@ pub struct Material {
     pub elastic: Option<Elastic>,
     /// Density, g/cm3, where known.
     pub density_g_per_cm3: Option<f64>,
+    /// Masses, split-off energy, deformation potentials, permittivity, … as far as stated.
+    pub constants: Constants,
     /// Refractive index, and what is absorbed.
     pub optics: Optics,
     /// Where its numbers come from, one entry a group.
@@ -233,6 +282,45 @@ pub struct Material {
 }
 
 impl Material {
+    /// A material of which nothing is known yet.
+    pub fn bare(name: &str, class: MaterialClass) -> Self {
+        Self {
+            label: name.to_owned(),
+            name: name.to_owned(),
+            class,
+            composition: Vec::new(),
+            lattice: None,
+            bands: None,
+            elastic: None,
+            density_g_per_cm3: None,
+            constants: Constants::default(),
+            optics: Optics::None,
+            origins: Vec::new(),
+            cautions: Vec::new(),
+        }
+    }
+
+    /// A limit-study material: nothing absorbed below `gap_ev`, the share `absorbs` above it. The
+    /// gap stays put with temperature and there is no refractive index.
+    pub fn ideal(gap_ev: f64, absorbs: f64) -> Self {
+        Self {
+            label: format!("ideal {} eV", trim(gap_ev)),
+            bands: Some(Bands { gamma: Some(Valley::of(GapLaw::constant(gap_ev))), ..Bands::default() }),
+            optics: Optics::Ideal(optics::IdealEdge { gap_ev, absorbs }),
+            ..Self::bare("ideal", MaterialClass::GapModel)
+        }
+    }
+
+    /// A direct edge without a chemistry. The gap stays put with temperature.
+    pub fn direct(edge: optics::DirectEdge) -> Self {
+        Self {
+            label: format!("direct {} eV", trim(edge.gap_ev)),
+            bands: Some(Bands { gamma: Some(Valley::of(GapLaw::constant(edge.gap_ev))), ..Bands::default() }),
+            optics: Optics::Direct(edge),
+            ..Self::bare("direct", MaterialClass::GapModel)
+        }
+    }
+
     /// The lowest gap at `temperature_k`, if it has bands.
     pub fn gap(&self, temperature_k: f64) -> Option<Gap> {
         self.bands.as_ref().and_then(|bands| bands.gap(temperature_k))
@@ -244,7 +332,10 @@ impl Material {
     }
 
     /// Absorption coefficient in 1/m at a vacuum wavelength in m; 0 where there is no optical
-    /// data. `ideal` materials have none either: ask [`Optics`] for their share.
+    /// data. `ideal` materials have none either: ask [`Optics::share_absorbed`].
+    ///
+    /// For many wavelengths at one temperature take [`Material::edge_shift_ev`] once and ask
+    /// [`Material::optics`] directly.
     pub fn absorption(&self, wavelength_m: f64, temperature_k: f64) -> f64 {
         self.optics.absorption(wavelength_m, self.edge_shift_ev(temperature_k))
     }
@@ -254,27 +345,26 @@ impl Material {
         self.optics.index(wavelength_m, self.edge_shift_ev(temperature_k))
     }
 
-    /// How far the table's edge has to move, eV: the gap in force now less the table's own.
+    /// How far the optical edge has to move, eV: the gap in force now less the table's own.
+    ///
+    /// 0 for tables without an edge and for the gap models, whose gap stays put.
     pub fn edge_shift_ev(&self, temperature_k: f64) -> f64 {
-        match (&self.optics, self.gap(temperature_k)) {
-            (Optics::Table(table), Some(gap)) => {
-                // The direct edge is what a table shows, also where the lowest valley is indirect
-                // by a little: the whole table moves with the valley it was measured at.
-                table.gap_ev.map_or(0.0, |own| self.optical_edge(temperature_k).unwrap_or(gap.ev) - own)
-            }
-            (Optics::Direct(direct), Some(gap)) => gap.ev - direct.gap_ev,
-            (Optics::Ideal(ideal), Some(gap)) => gap.ev - ideal.gap_ev,
-            _ => 0.0,
-        }
+        let (Optics::Table(table), Some(bands)) = (&self.optics, &self.bands) else { return 0.0 };
+        let Some(own) = table.gap_ev else { return 0.0 };
+        // The direct edge is what a table shows, also where the lowest valley is indirect by a
+        // little: the whole table moves with the valley it was measured at.
+        let direct = bands.gamma.as_ref().filter(|_| table.edge_is_direct);
+        let now = direct
+            .map(|gamma| gamma.at(temperature_k))
+            .or_else(|| bands.gap(temperature_k).map(|gap| gap.ev));
+        now.map_or(0.0, |now| now - own)
     }
+}
 
-    fn optical_edge(&self, temperature_k: f64) -> Option<f64> {
-        let bands = self.bands.as_ref()?;
-        match (&self.optics, &bands.gamma) {
-            (Optics::Table(table), Some(gamma)) if table.edge_is_direct => Some(gamma.at(temperature_k)),
-            _ => bands.gap(temperature_k).map(|gap| gap.ev),
-        }
-    }
+/// A number for a label: at most three decimals, no trailing zeros.
+pub(crate) fn trim(value: f64) -> String {
+    let text = format!("{value:.3}");
+    text.trim_end_matches('0').trim_end_matches('.').to_owned()
 }
 
 /// Materials are shared between the layers that use them.
