@@ -5,6 +5,10 @@
 
 use crate::source::Span;
 
+mod excerpt;
+pub mod json;
+pub mod render;
+
 /// How much a finding weighs.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord)]
 pub enum Severity {
