@@ -105,7 +105,9 @@ fn finish(design: Design, early: Findings, source: &str, no_evaluation: bool) ->
 
     let mut checked = check::check(&design, None, milder.clone());
     let mut results = None;
-    if !(no_evaluation || findings.has_errors() || checked.findings.has_errors()) {
+    // A stack made like another may inherit a layer whose fault was reported over there.
+    let hole = design.layers.iter().any(|layer| layer.material.is_none());
+    if !(no_evaluation || hole || findings.has_errors() || checked.findings.has_errors()) {
         let evaluated = evaluate::evaluate(&design, source);
         results = evaluated.value;
         milder.extend(evaluated.findings);

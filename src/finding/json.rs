@@ -6,7 +6,8 @@
 
 use serde::Serialize;
 
-use crate::compile::{Accepted, Compiled, shown};
+use crate::check::Accepted;
+use crate::compile::{Compiled, shown};
 use crate::finding::{Finding, Severity};
 use crate::source::{Sources, Span};
 
