@@ -2,6 +2,11 @@
 
 use std::path::Path;
 
+pub mod files;
+pub mod materials;
+pub mod names;
+pub mod quantities;
+
 use crate::design::Design;
 use crate::finding::Outcome;
 use crate::source::Sources;

@@ -66,43 +66,48 @@ pub fn trade(si: f64, dimension: Dimension) -> String {
 
 /// The unit people write for a dimension, where there is one.
 pub fn usual(dimension: Dimension) -> Option<&'static str> {
-    USUAL.iter().find(|(known, _)| *known == dimension).map(|(_, unit)| *unit)
+    usual_list(dimension).first().copied()
 }
 
-const USUAL: &[(Dimension, &str)] = &[
-    (Dimension::LENGTH, "nm"),
-    (Dimension::MASS, "mg"),
-    (Dimension::TIME, "s"),
-    (Dimension::CURRENT, "mA"),
-    (Dimension::TEMPERATURE, "K"),
-    (Dimension::ANGLE, "deg"),
-    (Dimension::AREA, "cm2"),
-    (Dimension::ENERGY, "eV"),
-    (Dimension::POWER, "W"),
-    (Dimension::VOLTAGE, "V"),
-    (Dimension::RESISTANCE, "ohm"),
-    (Dimension::RESISTANCE_AREA, "ohm cm2"),
-    (Dimension::RESISTIVITY, "ohm cm"),
-    (Dimension::CURRENT_DENSITY, "mA/cm2"),
-    (Dimension::IRRADIANCE, "W/m2"),
-    (Dimension::SPECTRAL_IRRADIANCE, "W/m2/nm"),
-    (Dimension::PER_VOLUME, "/cm3"),
-    (Dimension::PER_AREA, "/cm2"),
-    (Dimension::PER_LENGTH, "/cm"),
-    (Dimension::PER_TEMPERATURE, "/K"),
-    (Dimension::VELOCITY, "cm/s"),
-    (Dimension::MOBILITY, "cm2/V/s"),
-    (Dimension::DIFFUSIVITY, "cm2/s"),
-    (Dimension::VOLUME_RATE, "cm3/s"),
-    (Dimension::VOLUME_SQUARED_RATE, "cm6/s"),
-    (Dimension::PRESSURE, "GPa"),
-    (Dimension::DENSITY, "g/cm3"),
-    (Dimension::AREAL_MASS, "mg/cm2"),
-    (Dimension::SPECIFIC_POWER, "W/kg"),
-    (Dimension::ENERGY_PER_TEMPERATURE, "meV/K"),
-    (Dimension::VOLTAGE_PER_TEMPERATURE, "mV/K"),
-    (Dimension::LENGTH_PER_TEMPERATURE, "Å/K"),
-    (Dimension::EDGE_COEFFICIENT, "/cm/eV^0.5"),
+/// The same as a list of at most one.
+pub fn usual_list(dimension: Dimension) -> &'static [&'static str] {
+    USUAL.iter().find(|(known, _)| *known == dimension).map_or(&[], |(_, unit)| unit)
+}
+
+const USUAL: &[(Dimension, [&str; 1])] = &[
+    (Dimension::LENGTH, ["nm"]),
+    (Dimension::MASS, ["mg"]),
+    (Dimension::TIME, ["s"]),
+    (Dimension::CURRENT, ["mA"]),
+    (Dimension::TEMPERATURE, ["K"]),
+    (Dimension::ANGLE, ["deg"]),
+    (Dimension::AREA, ["cm2"]),
+    (Dimension::ENERGY, ["eV"]),
+    (Dimension::POWER, ["W"]),
+    (Dimension::VOLTAGE, ["V"]),
+    (Dimension::RESISTANCE, ["ohm"]),
+    (Dimension::RESISTANCE_AREA, ["ohm cm2"]),
+    (Dimension::RESISTIVITY, ["ohm cm"]),
+    (Dimension::CURRENT_DENSITY, ["mA/cm2"]),
+    (Dimension::IRRADIANCE, ["W/m2"]),
+    (Dimension::SPECTRAL_IRRADIANCE, ["W/m2/nm"]),
+    (Dimension::PER_VOLUME, ["/cm3"]),
+    (Dimension::PER_AREA, ["/cm2"]),
+    (Dimension::PER_LENGTH, ["/cm"]),
+    (Dimension::PER_TEMPERATURE, ["/K"]),
+    (Dimension::VELOCITY, ["cm/s"]),
+    (Dimension::MOBILITY, ["cm2/V/s"]),
+    (Dimension::DIFFUSIVITY, ["cm2/s"]),
+    (Dimension::VOLUME_RATE, ["cm3/s"]),
+    (Dimension::VOLUME_SQUARED_RATE, ["cm6/s"]),
+    (Dimension::PRESSURE, ["GPa"]),
+    (Dimension::DENSITY, ["g/cm3"]),
+    (Dimension::AREAL_MASS, ["mg/cm2"]),
+    (Dimension::SPECIFIC_POWER, ["W/kg"]),
+    (Dimension::ENERGY_PER_TEMPERATURE, ["meV/K"]),
+    (Dimension::VOLTAGE_PER_TEMPERATURE, ["mV/K"]),
+    (Dimension::LENGTH_PER_TEMPERATURE, ["Å/K"]),
+    (Dimension::EDGE_COEFFICIENT, ["/cm/eV^0.5"]),
 ];
 
 #[cfg(test)]

@@ -1,0 +1,357 @@
+//! Whether a value suits its slot: dimension, range, and magnitude.
+
+use crate::finding::Finding;
+use crate::resolve::quantities::{Evaluated, Expected, Role, Scope};
+use crate::source::Span;
+use crate::syntax::{Expression, Number};
+use crate::units::{Dimension, electronvolt_nanometre, in_unit, number, parse, trade};
+
+impl Scope {
+    /// The SI value, or a finding that says what the slot takes.
+    pub(super) fn fit(
+        &mut self,
+        evaluated: Evaluated,
+        expression: &Expression,
+        expected: Expected<'_>,
+    ) -> Option<f64> {
+        let (si, span) = (evaluated.quantity.si, expression.span());
+        let given = evaluated.quantity.dimension;
+        if evaluated.bare && (!expected.dimension.is_none() || expected.role.needs_word()) {
+            let (place, literal) = self.origin(expression);
+            let finding = bare(si, place, literal, expected);
+            let finding = if place == span { finding } else { finding.beside(span, "used here") };
+            self.report(finding);
+            return None;
+        }
+        if given != expected.dimension {
+            let finding = mismatch(si, given, expression, expected);
+            self.report(finding);
+            return None;
+        }
+        // A Celsius reading where a difference is due counts its degrees only.
+        let si = if evaluated.celsius && expected.role == Role::Difference {
+            si - crate::units::table::ZERO_CELSIUS
+        } else {
+            si
+        };
+        if !expected.role.possible(si) {
+            let finding = out_of_range(si, span, expression, expected);
+            self.report(finding);
+            return None;
+        }
+        if expected.role == Role::Count && si.fract() != 0.0 {
+            self.report(
+                Finding::error(
+                    "value.range",
+                    format!("`{}` takes a whole number, not {}", expected.slot, number(si)),
+                )
+                .at(span, "not a whole number")
+                .help(format!("write `{}`", number(si.round().max(1.0)))),
+            );
+            return None;
+        }
+        if expected.role.likely().is_some_and(|(low, high)| !(low..=high).contains(&si)) {
+            let finding = unlikely(si, span, expression, expected);
+            self.report(finding);
+        }
+        Some(si)
+    }
+
+    /// Where a bare number was written: through names, to the literal behind them.
+    fn origin<'e>(&self, expression: &'e Expression) -> (Span, Option<Number>) {
+        let mut at: std::borrow::Cow<'e, Expression> = std::borrow::Cow::Borrowed(expression);
+        for _ in 0..64 {
+            let next = match &*at {
+                Expression::Number(number) => return (number.span, Some(number.clone())),
+                Expression::Name(name) => {
+                    self.binding(&name.value).and_then(|binding| binding.value.expression.clone())
+                }
+                _ => None,
+            };
+            match next {
+                Some(next) => at = std::borrow::Cow::Owned(next),
+                None => break,
+            }
+        }
+        (expression.span(), None)
+    }
+}
+
+/// A number whose unit is missing, or a share or multiple that does not say so.
+fn bare(value: f64, span: Span, literal: Option<Number>, expected: Expected<'_>) -> Finding {
+    let digits = literal.map_or_else(|| number(value), |it| it.text.value.replace(',', "."));
+    let slot = expected.slot;
+    match expected.role {
+        Role::Share | Role::PositiveShare if value > 0.0 && value <= 1.0 => {
+            let percent = number(value * 100.0);
+            Finding::error(
+                "unit.unlikely",
+                format!("`{slot} {digits}` does not say whether it is {percent} % or {digits} %"),
+            )
+            .at(span, "a share without `%`")
+            .help(format!("write `{percent} %`, or `{digits} %` if that is meant"))
+            .fix(span, format!("{percent} %"), false)
+        }
+        Role::Concentration => {
+            let kilowatts = number(value);
+            Finding::error(
+                "unit.unlikely",
+                format!("`{slot} {digits}` does not say whether it is {digits} times the light or {kilowatts} kW/m2"),
+            )
+            .at(span, "times, or kW/m2?")
+            .help(format!("write `{digits} times`, or `irradiance {digits} kW/m2` instead"))
+            .fix(span, format!("{digits} times"), false)
+        }
+        Role::Gap if (200.0..=20_000.0).contains(&value) => {
+            let ev = in_unit(electronvolt_nanometre(value) * crate::units::ELEMENTARY_CHARGE, "eV");
+            Finding::error("unit.missing", format!("`{slot}` has no unit: `{digits}`"))
+                .at(span, "a bare number")
+                .help(format!("write `{ev}` if {digits} nm was meant"))
+                .fix(span, ev, false)
+        }
+        role => {
+            let finding = Finding::error("unit.missing", format!("`{slot}` has no unit: `{digits}`"))
+                .at(span, "a bare number");
+            match role.unit_for(value, expected.dimension) {
+                Some(unit) => finding.help(format!("write `{digits} {unit}`")).fix(
+                    span,
+                    format!("{digits} {unit}"),
+                    false,
+                ),
+                None => finding.help(format!(
+                    "give {}, in `{}`",
+                    expected.dimension.name(),
+                    expected.dimension.si_unit()
+                )),
+            }
+        }
+    }
+}
+
+/// A value of another dimension; the missing factor is worked out where there is one.
+fn mismatch(si: f64, given: Dimension, expression: &Expression, expected: Expected<'_>) -> Finding {
+    let (span, wanted, slot) = (expression.span(), expected.dimension, expected.slot);
+    let written = written(si, given, expression);
+    let finding = Finding::error(
+        "unit.dimension",
+        format!("`{slot}` takes {}, and `{written}` is {}", wanted.name(), given.name()),
+    )
+    .at(span, given.name());
+    let photon = |finding: Finding, text: String| {
+        finding.help(format!("write `{text}`, the photon energy at that wavelength")).fix(span, text, false)
+    };
+    if wanted == Dimension::ENERGY && given == Dimension::LENGTH && si > 0.0 {
+        let energy = electronvolt_nanometre(si * 1e9) * crate::units::ELEMENTARY_CHARGE;
+        return photon(finding, in_unit(energy, "eV"));
+    }
+    if wanted == Dimension::LENGTH && given == Dimension::ENERGY && si > 0.0 {
+        let nanometres = electronvolt_nanometre(si / crate::units::ELEMENTARY_CHARGE);
+        let text = in_unit(nanometres * 1e-9, "nm");
+        return finding.help(format!("write `{text}`, the wavelength at that photon energy"));
+    }
+    let replacement = match expression {
+        Expression::Number(literal) => mended(literal, given, expected),
+        _ => None,
+    };
+    if let Some(text) = replacement {
+        return finding.help(format!("write `{text}`")).fix(span, text, false);
+    }
+    match expected.role.units(wanted).first() {
+        Some(unit) => {
+            finding.help(format!("give {} in `{unit}`, such as `{}`", wanted.name(), example(expected)))
+        }
+        None => finding.help(format!("give {}", wanted.name())),
+    }
+}
+
+/// The literal with the factor it lacks, or with the unit that was meant.
+fn mended(literal: &Number, given: Dimension, expected: Expected<'_>) -> Option<String> {
+    let (wanted, digits) = (expected.dimension, literal.text.value.replace(',', "."));
+    let unit = literal.unit.as_ref()?.value.trim().to_owned();
+    let lengths =
+        [Dimension::LENGTH, Dimension::AREA, Dimension::VOLUME].map(|it| [it, it.inverse()]).concat();
+    // Between /cm2 and /cm3 one unit was mistaken for the other; nothing is missing.
+    if lengths.contains(&wanted) && lengths.contains(&given) {
+        let unit = expected.role.unit_for(literal.value, wanted)?;
+        return expected.role.plausible(literal.value, unit).then(|| format!("{digits} {unit}"));
+    }
+    if (wanted == Dimension::ENERGY && given == Dimension::VOLTAGE)
+        || (wanted == Dimension::VOLTAGE && given == Dimension::ENERGY)
+    {
+        let other =
+            if wanted == Dimension::ENERGY { unit.replace('V', "eV") } else { unit.replace("eV", "V") };
+        return parse(&other).is_ok_and(|it| it.dimension == wanted).then(|| format!("{digits} {other}"));
+    }
+    let factor = match wanted / given {
+        Dimension::AREA => " cm2",
+        Dimension::PER_AREA => "/cm2",
+        Dimension::LENGTH => " cm",
+        Dimension::PER_LENGTH => "/cm",
+        Dimension::PER_VOLUME => "/cm3",
+        Dimension::PER_TEMPERATURE => "/K",
+        ratio if ratio == Dimension::TIME.inverse() => "/s",
+        _ => return None,
+    };
+    (!given.is_none()).then(|| format!("{digits} {unit}{factor}"))
+}
+
+fn out_of_range(si: f64, span: Span, expression: &Expression, expected: Expected<'_>) -> Finding {
+    let (slot, text) = (expected.slot, written(si, expected.dimension, expression));
+    let error = |message: String, label: &str, help: String| {
+        Finding::error("value.range", message).at(span, label).help(help)
+    };
+    match expected.role {
+        Role::CellTemperature | Role::GrowthTemperature | Role::SourceTemperature => error(
+            format!("`{slot} {text}` is not above absolute zero"),
+            "absolute zero is -273.15 degC",
+            format!("write {}", nearest_temperature(expression, expected)),
+        ),
+        Role::Share | Role::PositiveShare | Role::Fraction => {
+            let percent = |share: f64| format!("{} %", number(share * 100.0));
+            let (given, most) = match expected.role {
+                Role::Fraction => (number(si), "1".to_owned()),
+                _ => (percent(si), "100 %".to_owned()),
+            };
+            let side = if si > 1.0 {
+                format!("over {most}")
+            } else if si < 0.0 {
+                "negative".to_owned()
+            } else {
+                "zero".to_owned()
+            };
+            error(
+                format!("`{slot}` is {given}, {side}"),
+                &side,
+                format!("write a value from 0 to {most}, such as `{}`", example(expected)),
+            )
+        }
+        Role::Count => error(
+            format!("`{slot}` is {text}, and it takes a whole number from 1 to 10000"),
+            "not from 1 to 10000",
+            "write `1` or more".to_owned(),
+        ),
+        Role::Incidence => error(
+            format!("`{slot} {text}` is not between 0 and 90 deg"),
+            "light would not reach the face",
+            "write an angle from the normal, such as `30 deg`".to_owned(),
+        ),
+        _ => {
+            let side = if si < 0.0 { "negative" } else { "zero" };
+            error(
+                format!("`{slot}` is {side}: `{text}`"),
+                side,
+                format!("write a value above zero, such as `{}`", example(expected)),
+            )
+        }
+    }
+}
+
+fn nearest_temperature(expression: &Expression, expected: Expected<'_>) -> String {
+    let value = match expression {
+        Expression::Number(number) => number.value,
+        Expression::Negate(inner, _) => match &**inner {
+            Expression::Number(number) => number.value,
+            _ => f64::NAN,
+        },
+        _ => f64::NAN,
+    };
+    if value > 0.0 && expected.role.plausible(value, "K") {
+        return format!("`{} K`", number(value));
+    }
+    format!("a temperature such as `{}`", example(expected))
+}
+
+fn unlikely(si: f64, span: Span, expression: &Expression, expected: Expected<'_>) -> Finding {
+    let (slot, text) = (expected.slot, written(si, expected.dimension, expression));
+    let size = match expected.role.likely() {
+        Some((_, high)) if si > high => "larger",
+        _ => "smaller",
+    };
+    let finding = Finding::warning(
+        "unit.unlikely",
+        format!("`{slot}` of {text} is far {size} than is met in practice"),
+    );
+    let literal = match expression {
+        Expression::Number(number) => Some(number),
+        _ => None,
+    };
+    let other = literal.and_then(|literal| {
+        expected
+            .role
+            .units(expected.dimension)
+            .iter()
+            .find(|unit| expected.role.plausible(literal.value, unit))
+            .map(|unit| format!("{} {unit}", literal.text.value.replace(',', ".")))
+    });
+    match other {
+        Some(other) => finding
+            .at(span, format!("did you mean `{other}`?"))
+            .help(format!("write `{other}`"))
+            .fix(span, other, false),
+        None => {
+            let (low, high) = expected.role.likely().unwrap_or((0.0, 0.0));
+            let (low, high) = (trade(low, expected.dimension), trade(high, expected.dimension));
+            finding
+                .at(span, format!("usual are {low} to {high}"))
+                .help(format!("write a value such as `{}`", example(expected)))
+        }
+    }
+}
+
+/// The value as the user wrote it, or in trade units where it was worked out.
+fn written(si: f64, dimension: Dimension, expression: &Expression) -> String {
+    match expression {
+        Expression::Number(number) => literal_text(number),
+        Expression::Negate(inner, _) => match &**inner {
+            Expression::Number(number) => format!("-{}", literal_text(number)),
+            _ => trade(si, dimension),
+        },
+        _ => trade(si, dimension),
+    }
+}
+
+fn literal_text(number: &Number) -> String {
+    match &number.unit {
+        Some(unit) => format!("{} {}", number.text.value, unit.value),
+        None => number.text.value.clone(),
+    }
+}
+
+/// A value nobody would stumble over in such a slot.
+fn example(expected: Expected<'_>) -> &'static str {
+    match (expected.role, expected.dimension) {
+        (Role::ThinLayer, _) => "50 nm",
+        (Role::ThickLayer, _) => "3.5 um",
+        (Role::Coat, _) => "95 nm",
+        (Role::Wafer, _) => "350 um",
+        (Role::Doping, _) => "1e17 /cm3",
+        (Role::Gap, _) => "1.42 eV",
+        (Role::CellTemperature, _) => "25 degC",
+        (Role::GrowthTemperature, _) => "650 degC",
+        (Role::SourceTemperature, _) => "5800 K",
+        (Role::Share | Role::PositiveShare, _) => "3 %",
+        (Role::Fraction, _) => "0.49",
+        (Role::Concentration, _) => "500 times",
+        (Role::Count, _) => "8",
+        (Role::Incidence, _) => "30 deg",
+        (Role::Irradiance, _) | (_, Dimension::IRRADIANCE) => "1000 W/m2",
+        (_, Dimension::LENGTH) => "20 um",
+        (_, Dimension::TIME) => "10 ns",
+        (_, Dimension::VELOCITY) => "1e3 cm/s",
+        (_, Dimension::MOBILITY) => "3000 cm2/V/s",
+        (_, Dimension::RESISTANCE_AREA) => "20 mohm cm2",
+        (_, Dimension::RESISTANCE) => "50 ohm/sq",
+        (_, Dimension::CURRENT_DENSITY) => "14 mA/cm2",
+        (_, Dimension::VOLTAGE) => "2.3 V",
+        (_, Dimension::ENERGY) => "1.42 eV",
+        (_, Dimension::AREA) => "1 cm2",
+        (_, Dimension::PER_AREA) => "1e15 /cm2",
+        (_, Dimension::PER_VOLUME) => "1e17 /cm3",
+        (_, Dimension::TEMPERATURE) => "25 degC",
+        (_, Dimension::ANGLE) => "6 deg",
+        (_, Dimension::PRESSURE) => "100 GPa",
+        (_, Dimension::DENSITY) => "5.3 g/cm3",
+        (_, Dimension::NONE) => "28 %",
+        _ => "1",
+    }
+}
