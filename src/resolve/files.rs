@@ -1,26 +1,23 @@
 //! Files a stack names: always relative to the file that names them, never outside the project.
 
-use std::path::{Component, Path, PathBuf};
+use std::path::Path;
 
 use crate::finding::Finding;
 use crate::resolve::quantities::Scope;
 use crate::source::{SourceId, Sources, Spanned};
-use crate::world::{ReadError, World};
+use crate::world::{ReadError, World, plain};
 
-/// The way to other files, and where they may lie.
+/// The way to other files.
 pub struct Files<'a> {
     world: &'a dyn World,
     /// Every text read so far.
     pub sources: &'a mut Sources,
-    /// The folder of the first file.
-    root: PathBuf,
 }
 
 impl<'a> Files<'a> {
-    /// Files named from `first` and from the files it uses.
-    pub fn new(world: &'a dyn World, sources: &'a mut Sources, first: &Path) -> Self {
-        let root = first.parent().map(normal).unwrap_or_default();
-        Self { world, sources, root }
+    /// Files as `world` gives them.
+    pub fn new(world: &'a dyn World, sources: &'a mut Sources) -> Self {
+        Self { world, sources }
     }
 
     /// The text named by `path` in the file `from`; read once however often it is named.
@@ -44,8 +41,8 @@ impl<'a> Files<'a> {
             return None;
         }
         let folder = self.sources.get(from).path.parent().map(Path::to_path_buf).unwrap_or_default();
-        let joined = normal(&folder.join(written.replace('\\', "/")));
-        if Path::new(written).is_absolute() || written.starts_with(['/', '\\']) || !self.inside(&joined) {
+        let joined = plain(&folder.join(written.replace('\\', "/")));
+        if Path::new(written).is_absolute() || written.starts_with(['/', '\\']) {
             scope.report(outside(path, what));
             return None;
         }
@@ -64,30 +61,6 @@ impl<'a> Files<'a> {
             }
         }
     }
-
-    fn inside(&self, path: &Path) -> bool {
-        let climbs = path.components().next() == Some(Component::ParentDir);
-        if self.root.as_os_str().is_empty() { !climbs } else { path.starts_with(&self.root) }
-    }
-}
-
-/// Without `.` and with `..` taken back where there is something to take back. Only the text of
-/// the path is looked at, so that the answer is the same on every machine.
-fn normal(path: &Path) -> PathBuf {
-    let mut plain = PathBuf::new();
-    for part in path.components() {
-        match part {
-            Component::CurDir => {}
-            Component::ParentDir => match plain.components().next_back() {
-                Some(Component::Normal(_)) => {
-                    plain.pop();
-                }
-                _ => plain.push(".."),
-            },
-            _ => plain.push(part),
-        }
-    }
-    plain
 }
 
 fn outside(path: &Spanned<String>, what: &str) -> Finding {
