@@ -6,7 +6,10 @@ use crate::materials::SharedMaterial;
 use crate::resolve::files::Files;
 use crate::resolve::quantities::Scope;
 use crate::source::Span;
-use crate::syntax::{Argument, MaterialPhrase, Named};
+use crate::syntax::{Argument, Block, MaterialPhrase, Named};
+
+/// Statements of a layer's block that belong to its material: `ideal` and `direct` take them.
+pub const MODEL_PROPERTIES: &[&str] = &["coefficient", "urbach", "index"];
 
 /// Library and user materials, by name.
 #[derive(Debug, Default)]
@@ -43,6 +46,9 @@ pub struct Phrase<'a> {
     pub phrase: &'a MaterialPhrase,
     /// `absorbs all_above_gap`, `absorbs 95 %`, where stated on the line.
     pub absorbs: Option<&'a Argument>,
+    /// The layer's block, for what the models without a chemistry need (see
+    /// [`MODEL_PROPERTIES`]); its other statements are the layer's own business.
+    pub block: Option<&'a Block>,
     /// The relaxed lattice beneath in growth order; `None` where there is none, or where it could
     /// not be resolved (see `beneath_unknown`).
     pub beneath: Option<&'a Reference>,
