@@ -1,10 +1,51 @@
 //! Text to [`syntax::File`]: the only room that sees pest.
+//!
+//! The grammar recovers by itself: what cannot be read becomes a junk rule up to the next end of a
+//! statement, so that every independent mistake is reported, each once.
 
-use crate::finding::Outcome;
+use crate::finding::{Findings, Outcome};
 use crate::source::Source;
 use crate::syntax;
 
+mod build;
+mod expected;
+mod grammar;
+mod recover;
+
+/// The largest text that is read, in bytes.
+pub const SIZE_LIMIT: usize = 10_000_000;
+/// How deep brackets of any kind may nest.
+pub const NESTING_LIMIT: usize = 64;
+/// How many arithmetic signs one expression may hold, those in its brackets included.
+pub const OPERATOR_LIMIT: usize = 512;
+
 /// Parses a whole file. Every independent mistake is reported, each once.
-pub fn parse(_source: &Source) -> Outcome<syntax::File> {
-    Outcome::of(syntax::File::default())
+///
+/// There is no value where the text is too large or nested too deeply; everywhere else what could
+/// not be read stands in the tree as `Invalid` and is already reported.
+pub fn parse(source: &Source) -> Outcome<syntax::File> {
+    let mut findings = Findings::new();
+    if let Some(finding) = recover::too_large(source) {
+        findings.push(finding);
+        return Outcome::nothing(findings);
+    }
+    let scan = recover::scan(source);
+    if let Some(finding) = scan.too_deep {
+        findings.push(finding);
+        return Outcome::nothing(findings);
+    }
+    match grammar::read(&source.text) {
+        Ok(pairs) => {
+            let mut file = build::file(source, pairs, &scan, &mut findings);
+            file.comments = scan.comments;
+            Outcome::with(file, findings)
+        }
+        Err(error) => {
+            findings.push(recover::gave_up(source, &error));
+            Outcome::nothing(findings)
+        }
+    }
 }
+
+#[cfg(test)]
+mod tests;
