@@ -6,6 +6,7 @@
 use crate::source::Span;
 
 mod excerpt;
+pub mod github;
 pub mod json;
 pub mod render;
 

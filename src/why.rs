@@ -10,3 +10,27 @@ pub const PAGES: &[(&str, &str)] = &[];
 pub fn page(code: &str) -> Option<&'static str> {
     PAGES.iter().find(|(name, _)| *name == code).map(|(_, text)| *text)
 }
+
+/// The first sentence of a page's *What it reports*.
+pub fn summary(page: &str) -> String {
+    let body = page.split_once("## What it reports").map_or("", |(_, rest)| rest).trim_start();
+    let paragraph = body.split("\n\n").next().unwrap_or_default().replace('\n', " ");
+    let end = paragraph.find(". ").unwrap_or(paragraph.len());
+    paragraph[..end].trim_end_matches('.').to_owned()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn pages_stand_in_alphabetical_order() {
+        assert!(PAGES.is_sorted_by(|a, b| a.0 < b.0));
+    }
+
+    #[test]
+    fn a_summary_is_one_sentence() {
+        let page = "# a.b\n\n## What it reports\n\nA gap that\nis 1.4 eV. And more.\n\n## Why";
+        assert_eq!(summary(page), "A gap that is 1.4 eV");
+    }
+}

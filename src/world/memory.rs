@@ -10,7 +10,7 @@ use crate::world::{Asked, ReadError, World, plain};
 /// Files in memory, and where one is missing there, perhaps another world beneath.
 #[derive(Default)]
 pub struct Memory {
-    files: BTreeMap<PathBuf, Arc<str>>,
+    files: BTreeMap<PathBuf, Result<Arc<str>, ReadError>>,
     beneath: Option<Box<dyn World>>,
     asked: RefCell<Asked>,
 }
@@ -29,7 +29,14 @@ impl Memory {
     /// Adds a file.
     #[must_use]
     pub fn with(mut self, path: impl AsRef<Path>, text: impl Into<Arc<str>>) -> Self {
-        self.files.insert(plain(path.as_ref()), text.into());
+        self.files.insert(plain(path.as_ref()), Ok(text.into()));
+        self
+    }
+
+    /// Adds what a path answers, trouble included.
+    #[must_use]
+    pub fn with_answer(mut self, path: impl AsRef<Path>, answer: Result<Arc<str>, ReadError>) -> Self {
+        self.files.insert(plain(path.as_ref()), answer);
         self
     }
 }
@@ -38,8 +45,8 @@ impl World for Memory {
     fn text(&self, path: &Path) -> Result<Arc<str>, ReadError> {
         let path = plain(path);
         self.asked.borrow_mut().note(&path);
-        if let Some(text) = self.files.get(&path) {
-            return Ok(text.clone());
+        if let Some(answer) = self.files.get(&path) {
+            return answer.clone();
         }
         if let Some(beneath) = &self.beneath {
             return beneath.text(&path);

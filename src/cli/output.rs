@@ -1,0 +1,147 @@
+//! Files written: whole or not at all, and only where something changed.
+
+use std::collections::BTreeSet;
+use std::fs;
+use std::io::{ErrorKind, Write};
+use std::path::{Path, PathBuf};
+
+/// What became of a file.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(crate) enum Wrote {
+    /// It has new bytes.
+    New,
+    /// It had these bytes already and was not touched.
+    Same,
+}
+
+/// A file or folder that could not be written.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub(crate) struct WriteError {
+    pub(crate) path: PathBuf,
+    pub(crate) message: String,
+}
+
+impl WriteError {
+    fn new(path: &Path, why: &std::io::Error) -> Self {
+        let message = match why.kind() {
+            ErrorKind::PermissionDenied => "permission denied".to_owned(),
+            ErrorKind::NotADirectory | ErrorKind::AlreadyExists => "a file is in the way".to_owned(),
+            ErrorKind::IsADirectory => "a folder is in the way".to_owned(),
+            ErrorKind::StorageFull => "the disk is full".to_owned(),
+            ErrorKind::ReadOnlyFilesystem => "the disk is read-only".to_owned(),
+            _ => why.to_string(),
+        };
+        Self { path: path.to_path_buf(), message }
+    }
+}
+
+/// Writes `bytes` to `path` under a temporary name beside it, then renames: a reader sees the
+/// old file or the new one, and an interrupted run leaves the old one.
+///
+/// # Errors
+/// With the path that could not be written and why.
+pub(crate) fn write(path: &Path, bytes: &[u8]) -> Result<Wrote, WriteError> {
+    #[expect(clippy::disallowed_methods, reason = "compares an output file, which no World knows")]
+    if fs::read(path).is_ok_and(|old| old == bytes) {
+        return Ok(Wrote::Same);
+    }
+    let folder = path.parent().filter(|folder| !folder.as_os_str().is_empty());
+    if let Some(folder) = folder {
+        fs::create_dir_all(folder).map_err(|why| WriteError::new(folder, &why))?;
+    }
+    let name = path.file_name().map(|name| name.to_string_lossy().into_owned()).unwrap_or_default();
+    let temporary = path.with_file_name(format!(".{name}.{}.part", std::process::id()));
+    let written = fs::File::create(&temporary)
+        .and_then(|mut file| file.write_all(bytes))
+        .and_then(|()| fs::rename(&temporary, path));
+    written.map(|()| Wrote::New).map_err(|why| {
+        // The first fault is the one to tell.
+        let _ = fs::remove_file(&temporary);
+        WriteError::new(path, &why)
+    })
+}
+
+/// A folder name for a stack's name: small letters and digits of any script, everything else
+/// one `-`; at most 60 characters; never empty, hidden, or a name that some system reserves.
+pub fn slug(name: &str) -> String {
+    const RESERVED: [&str; 6] = ["con", "prn", "aux", "nul", "com", "lpt"];
+    let mut slug = String::new();
+    for c in name.chars().flat_map(char::to_lowercase) {
+        if c.is_alphanumeric() {
+            slug.push(c);
+        } else if !slug.is_empty() && !slug.ends_with('-') {
+            slug.push('-');
+        }
+    }
+    let slug: String = slug.chars().take(60).collect();
+    let slug = slug.trim_end_matches('-');
+    let stem = slug.trim_end_matches(|c: char| c.is_ascii_digit());
+    match slug {
+        "" => "stack".to_owned(),
+        _ if RESERVED.contains(&stem) => format!("stack-{slug}"),
+        _ => slug.to_owned(),
+    }
+}
+
+/// Folder names of one run, each given once.
+#[derive(Default)]
+pub(crate) struct Slugs(BTreeSet<String>);
+
+impl Slugs {
+    /// [`slug`], with a number behind it where the name is taken.
+    pub(crate) fn take(&mut self, name: &str) -> String {
+        let first = slug(name);
+        let numbered = (2..).map(|number| format!("{first}-{number}"));
+        let free = std::iter::once(first.clone()).chain(numbered).find(|slug| !self.0.contains(slug));
+        let free = free.unwrap_or(first);
+        self.0.insert(free.clone());
+        free
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn names_become_folders() {
+        let rows = [
+            ("Sandpiper 2J", "sandpiper-2j"),
+            ("../../etc/passwd", "etc-passwd"),
+            ("  .hidden. ", "hidden"),
+            ("Größe µ", "größe-μ"),
+            ("", "stack"),
+            ("///", "stack"),
+            ("CON", "stack-con"),
+            ("com1", "stack-com1"),
+            ("concrete", "concrete"),
+            ("a\0b\n<script>", "a-b-script"),
+        ];
+        for (name, expected) in rows {
+            // The micro sign is a letter of its own in Unicode and stays one.
+            let expected = expected.replace('μ', "µ");
+            assert_eq!(slug(name), expected, "{name:?}");
+        }
+        assert!(slug(&"long ".repeat(90)).chars().count() <= 60);
+    }
+
+    #[test]
+    fn equal_names_get_folders_of_their_own() {
+        let mut slugs = Slugs::default();
+        let taken: Vec<_> = ["A b", "a-B", "a b 2", "a.b"].map(|name| slugs.take(name)).into();
+        assert_eq!(taken, ["a-b", "a-b-2", "a-b-2-2", "a-b-3"]);
+    }
+
+    #[test]
+    fn a_file_is_replaced_whole_and_only_when_it_changed() {
+        let folder = tempfile::tempdir().expect("temporary folder");
+        let path = folder.path().join("deep/er/a.txt");
+        assert_eq!(write(&path, b"one"), Ok(Wrote::New));
+        assert_eq!(write(&path, b"one"), Ok(Wrote::Same));
+        assert_eq!(write(&path, b"two"), Ok(Wrote::New));
+        let left: Vec<_> = fs::read_dir(folder.path().join("deep/er")).expect("listing").collect();
+        assert_eq!(left.len(), 1, "no temporary file stays");
+        let blocked = write(&path.join("below.txt"), b"x");
+        assert_eq!(blocked.map_err(|error| error.message), Err("a file is in the way".to_owned()));
+    }
+}

@@ -1,0 +1,55 @@
+//! `bandloom why`: the page of a finding.
+
+use clap::Args;
+
+use crate::cli::Exit;
+use crate::cli::console::Console;
+use crate::resolve::names::near;
+use crate::why::{PAGES, page, summary};
+
+const EXAMPLES: &str = "\
+Examples:
+  bandloom why                    every code, a line each
+  bandloom why gap.order          one page
+  bandloom why gap                every code of a family";
+
+/// Show the page of a finding: what it reports, why it matters, an example, its cure
+#[derive(Args, Clone, Debug)]
+#[command(before_help = EXAMPLES, help_template = super::TEMPLATE)]
+pub(crate) struct Why {
+    /// The code, as in `error: gap.order`; a family; nothing for all
+    code: Option<String>,
+}
+
+/// Runs the command: the page on standard output.
+pub(crate) fn run(command: &Why, console: &Console) -> Exit {
+    let Some(asked) = &command.code else {
+        return console.result(&list(|_| true));
+    };
+    // What a report shows may be pasted whole.
+    let code = asked
+        .trim()
+        .trim_start_matches("error:")
+        .trim_start_matches("warning:")
+        .trim_start_matches("advice:");
+    let code = code.trim().trim_matches('`').to_lowercase();
+    if let Some(page) = page(&code) {
+        return console.result(page);
+    }
+    let family = format!("{}.", code.trim_end_matches('.'));
+    let members = list(|known| known.starts_with(&family));
+    if !members.is_empty() {
+        return console.result(&members);
+    }
+    let help = match near(&code, PAGES.iter().map(|(known, _)| *known)) {
+        Some(known) => format!("`bandloom why {known}` is the nearest"),
+        None => "`bandloom why` lists every code".to_owned(),
+    };
+    console.trouble(&format!("`{asked}` is no code of a finding"), &[&help])
+}
+
+fn list(keep: impl Fn(&str) -> bool) -> String {
+    let width = PAGES.iter().map(|(code, _)| code.len()).max().unwrap_or(0);
+    let kept = PAGES.iter().filter(|(code, _)| keep(code));
+    kept.map(|(code, page)| format!("{code:width$}  {}\n", summary(page))).collect()
+}
