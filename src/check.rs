@@ -10,14 +10,55 @@ use crate::growth::{self, LayerGrowth};
 use crate::results::Results;
 
 mod accept;
+mod current_mismatch;
+mod doping_missing;
+mod free_values;
+mod gap_bsf_low;
+mod gap_equal;
+mod gap_indirect_absorber;
+mod gap_order;
+mod gap_window_absorbs;
 mod junctions;
+mod lattice_mismatch;
+mod light_range;
 mod limits;
+mod polarity_flipped;
+mod polarity_same;
+mod require_failed;
 mod show;
+mod structure_no_absorber;
+mod structure_no_wafer;
+mod structure_order;
+mod tunnel_missing;
+mod tunnel_peak;
+mod tunnel_polarity;
 
 use junctions::JunctionFacts;
 
 /// Every rule, in the order they run.
-pub static RULES: &[&Rule] = &[];
+pub static RULES: &[&Rule] = &[
+    &structure_no_absorber::RULE,
+    &structure_order::RULE,
+    &structure_no_wafer::RULE,
+    &gap_order::RULE,
+    &gap_equal::RULE,
+    &gap_indirect_absorber::RULE,
+    &gap_bsf_low::RULE,
+    &gap_window_absorbs::RULE,
+    &lattice_mismatch::RULE,
+    &polarity_same::RULE,
+    &polarity_flipped::RULE,
+    &doping_missing::RULE,
+    &tunnel_missing::RULE,
+    &tunnel_polarity::RULE,
+    &tunnel_peak::RULE,
+    &light_range::RULE,
+    &current_mismatch::RULE,
+    &free_values::UNSETTLED,
+    &free_values::OUTSIDE,
+    &free_values::ON_BOUND,
+    &require_failed::RULE,
+];
 
 /// One rule.
 pub struct Rule {

@@ -4,7 +4,30 @@
 //! which must give exactly that code, and its *Instead*, which must give none.
 
 /// Every code with its page, in alphabetical order.
-pub const PAGES: &[(&str, &str)] = &[];
+pub const PAGES: &[(&str, &str)] = &[
+    ("accept.unused", include_str!("why/accept.unused.md")),
+    ("current.mismatch", include_str!("why/current.mismatch.md")),
+    ("doping.missing", include_str!("why/doping.missing.md")),
+    ("free.on-bound", include_str!("why/free.on-bound.md")),
+    ("free.outside", include_str!("why/free.outside.md")),
+    ("free.unsettled", include_str!("why/free.unsettled.md")),
+    ("gap.bsf-low", include_str!("why/gap.bsf-low.md")),
+    ("gap.equal", include_str!("why/gap.equal.md")),
+    ("gap.indirect-absorber", include_str!("why/gap.indirect-absorber.md")),
+    ("gap.order", include_str!("why/gap.order.md")),
+    ("gap.window-absorbs", include_str!("why/gap.window-absorbs.md")),
+    ("lattice.mismatch", include_str!("why/lattice.mismatch.md")),
+    ("light.range", include_str!("why/light.range.md")),
+    ("polarity.flipped", include_str!("why/polarity.flipped.md")),
+    ("polarity.same", include_str!("why/polarity.same.md")),
+    ("require.failed", include_str!("why/require.failed.md")),
+    ("structure.no-absorber", include_str!("why/structure.no-absorber.md")),
+    ("structure.no-wafer", include_str!("why/structure.no-wafer.md")),
+    ("structure.order", include_str!("why/structure.order.md")),
+    ("tunnel.missing", include_str!("why/tunnel.missing.md")),
+    ("tunnel.peak", include_str!("why/tunnel.peak.md")),
+    ("tunnel.polarity", include_str!("why/tunnel.polarity.md")),
+];
 
 /// The page of `code`.
 pub fn page(code: &str) -> Option<&'static str> {

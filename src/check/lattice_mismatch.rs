@@ -1,0 +1,158 @@
+//! `lattice.mismatch`: a layer too thick to stay coherent on the lattice it is grown on.
+//!
+//! Criterion: neighbours in growth order that are off by the same amount count as one slab. A
+//! slab is reported when its relaxed mismatch at growth temperature is beyond the threshold and it
+//! is thicker than Matthews and Blakeslee's critical thickness of an uncovered layer (every layer
+//! is uncovered while it grows): a warning, since growth often overshoots it; an error beyond
+//! People and Bean's estimate.
+
+use super::junctions::describe;
+use super::show::{celsius, count, length, percent, significant};
+use super::{Context, Report, Rule, Threshold};
+use crate::design::{Layer, Strain};
+use crate::finding::{Finding, Severity};
+use crate::growth::critical::{Cover, matthews_blakeslee, people_bean};
+use crate::growth::{LayerGrowth, order, poisson_ratio};
+use crate::materials::Material;
+
+pub(super) static RULE: Rule = Rule {
+    code: "lattice.mismatch",
+    severity: Severity::Error,
+    title: "a layer does not fit the lattice beneath",
+    threshold: Some(Threshold { default: 1e-3, unit: "%", meaning: "the relaxed mismatch" }),
+    needs_results: false,
+    run,
+};
+
+/// Poisson ratio of a (001) film whose elastic constants nobody gave: that of most cubic
+/// semiconductors lies between 0.27 (Si, Ge) and 0.36 (InP, InAs).
+const USUAL_POISSON: f64 = 1.0 / 3.0;
+
+/// Layers that follow each other in growth and are off by the same amount.
+struct Slab {
+    layers: Vec<usize>,
+    beneath: usize,
+    mismatch: f64,
+}
+
+/// How thick a slab may be, m; `None` where no thickness is safe.
+struct Critical {
+    safe_m: Option<f64>,
+    hopeless_m: Option<f64>,
+}
+
+fn run(context: &Context, report: &mut Report) {
+    for slab in slabs(context) {
+        let layers: Vec<&Layer> = slab.layers.iter().map(|index| &context.design.layers[*index]).collect();
+        let known: Vec<f64> = layers.iter().filter_map(|layer| layer.thickness_m).collect();
+        let thickness: f64 = known.iter().sum();
+        let Some(critical) = critical(context, &slab) else { continue };
+        if thickness <= critical.safe_m.unwrap_or(0.0) {
+            continue;
+        }
+        let severity = if critical.hopeless_m.is_none_or(|most| thickness > most) {
+            Severity::Error
+        } else {
+            Severity::Warning
+        };
+        if let Some(finding) = finding(context, &slab, severity, (thickness, critical.safe_m)) {
+            report.push(layers.iter().map(|layer| layer.path.as_str()), finding);
+        }
+    }
+}
+
+/// The coherent slabs beyond the threshold, in growth order.
+fn slabs(context: &Context) -> Vec<Slab> {
+    let limit = context.threshold(&RULE);
+    let mut slabs: Vec<Slab> = Vec::new();
+    let mut open = false;
+    for index in order(context.design) {
+        let Some(state) = &context.lattice[index] else { continue };
+        let LayerGrowth { beneath: Some(beneath), mismatch_at_growth: mismatch, .. } = *state else {
+            continue;
+        };
+        if context.design.layers[index].strain == Strain::Relaxed || mismatch.abs() <= limit {
+            open = false;
+            continue;
+        }
+        match slabs.last_mut() {
+            Some(slab) if open && slab.beneath == beneath && (slab.mismatch - mismatch).abs() <= limit => {
+                slab.layers.push(index);
+            }
+            _ => slabs.push(Slab { layers: vec![index], beneath, mismatch }),
+        }
+        open = true;
+    }
+    slabs
+}
+
+fn critical(context: &Context, slab: &Slab) -> Option<Critical> {
+    let layer = &context.design.layers[*slab.layers.first()?];
+    let material = layer.material.as_ref()?;
+    let temperature_k = context.lattice[*slab.layers.first()?]?.growth_temperature_k;
+    let ground = context.design.layers[slab.beneath].material.as_ref()?;
+    let burgers = ground.lattice_constant(temperature_k)? / std::f64::consts::SQRT_2;
+    let poisson = material.elastic.map_or(USUAL_POISSON, poisson_ratio);
+    let metres = |angstrom: f64| angstrom * 1e-10;
+    Some(Critical {
+        safe_m: matthews_blakeslee(slab.mismatch, poisson, burgers, Cover::Free).map(metres),
+        hopeless_m: people_bean(slab.mismatch, poisson, burgers, material.lattice_constant(temperature_k)?)
+            .map(metres),
+    })
+}
+
+fn finding(
+    context: &Context,
+    slab: &Slab,
+    severity: Severity,
+    (thickness, safe): (f64, Option<f64>),
+) -> Option<Finding> {
+    let design = context.design;
+    let first = *slab.layers.first()?;
+    let (layer, ground) = (&design.layers[first], &design.layers[slab.beneath]);
+    let (material, beneath) = (layer.material.as_ref()?, ground.material.as_ref()?);
+    let temperature_k = context.lattice[first]?.growth_temperature_k;
+    let constant = |of: &Material| of.lattice_constant(temperature_k).map(|a| format!("{a:.4} Å"));
+    let with = match slab.layers.len() - 1 {
+        0 => String::new(),
+        more => format!(" with {} above it", count(more, "layer")),
+    };
+    let stays = match safe {
+        Some(safe) => format!("only {} stay coherent", length(safe)),
+        None => "no thickness stays coherent".to_string(),
+    };
+    let mut finding = Finding::new(
+        severity,
+        RULE.code,
+        format!(
+            "{} is {} {} than {} at {}: {}{with} relax into dislocations, {stays}",
+            describe(design, layer),
+            percent(slab.mismatch.abs()),
+            if slab.mismatch > 0.0 { "larger" } else { "smaller" },
+            describe(design, ground),
+            celsius(temperature_k),
+            length(thickness),
+        ),
+    )
+    .at(layer.spans.material, format!("lattice constant {}", constant(material)?))
+    .beside(ground.spans.material, format!("the lattice beneath, {}", constant(beneath)?));
+    for more in &slab.layers[1..] {
+        finding = finding.beside(design.layers[*more].spans.material, "off by the same amount");
+    }
+    Some(match (matched(material, beneath, temperature_k), safe) {
+        (Some(label), _) => finding
+            .help(format!("`{label}` matches; write `{} matched`", material.name))
+            .fix(layer.spans.material, format!("{} matched", material.name), false),
+        (None, Some(safe)) if safe >= 1e-9 => finding.help(format!(
+            "keep it below {} nm, or grow it on a relaxed buffer of its own lattice constant",
+            significant((safe * 1e9).floor(), 3)
+        )),
+        _ => finding
+            .help(format!("grow it on a relaxed buffer with a lattice constant of {}", constant(material)?)),
+    })
+}
+
+/// The composition of the layer's own family that matches the lattice beneath.
+fn matched(_material: &Material, _beneath: &Material, _temperature_k: f64) -> Option<String> {
+    None
+}

@@ -1,0 +1,102 @@
+//! `require.failed`: what the designer asked for does not hold.
+
+use super::show::significant;
+use super::{Context, Report, Rule};
+use crate::design::Requirement;
+use crate::finding::{Finding, Severity};
+use crate::results::{ConditionResult, RequirementResult};
+
+pub(super) static RULE: Rule = Rule {
+    code: "require.failed",
+    severity: Severity::Error,
+    title: "a requirement does not hold",
+    threshold: None,
+    needs_results: true,
+    run,
+};
+
+fn run(context: &Context, report: &mut Report) {
+    let Some(results) = context.results else { return };
+    for requirement in &context.design.requirements {
+        let mut failed: Vec<&RequirementResult> = results
+            .requirements
+            .iter()
+            .filter(|result| !result.met && result.text == requirement.text)
+            .collect();
+        failed.sort_by(|a, b| a.margin.total_cmp(&b.margin));
+        let Some((worst, others)) = failed.split_first() else { continue };
+        let mut finding = Finding::error(RULE.code, message(requirement, worst, others))
+            .at(requirement.span, format!("short by {}", in_unit(worst.margin.abs(), requirement, worst)));
+        let condition = worst
+            .condition
+            .as_ref()
+            .and_then(|name| results.conditions.iter().find(|condition| condition.name == *name));
+        finding = match condition.and_then(|condition| largest_loss(requirement, condition)) {
+            Some(help) => finding.help(help),
+            None => {
+                finding.help(format!("the bound that holds is {}", in_unit(worst.value, requirement, worst)))
+            }
+        };
+        report.push([requirement.metric.value.as_str()], finding);
+    }
+}
+
+fn message(requirement: &Requirement, worst: &RequirementResult, others: &[&RequirementResult]) -> String {
+    let under = |result: &RequirementResult| {
+        result.condition.as_ref().map_or_else(String::new, |name| format!(" under `{name}`"))
+    };
+    let others: Vec<String> = others
+        .iter()
+        .map(|other| format!("{}{}", in_unit(other.value, requirement, other), under(other)))
+        .collect();
+    let others = if others.is_empty() { String::new() } else { format!(", and {}", others.join(", ")) };
+    format!(
+        "`{}` is {}{}, not {} {}{others}",
+        requirement.metric.value,
+        in_unit(worst.value, requirement, worst),
+        under(worst),
+        requirement.comparison.sign(),
+        requirement.bound_text,
+    )
+}
+
+/// A value of a requirement in the unit people read it in.
+fn in_unit(value: f64, requirement: &Requirement, result: &RequirementResult) -> String {
+    match result.unit.as_str() {
+        "1" if requirement.bound_text.contains('%') => format!("{} %", significant(value * 100.0, 4)),
+        "1" | "" => significant(value, 4),
+        unit => format!("{} {unit}", significant(value, 4)),
+    }
+}
+
+/// Ledger lines that a design can act on; heat and what passes belong to the gaps.
+const AVOIDABLE: &[(&str, &str)] = &[
+    ("fingers", "shading by the fingers"),
+    ("reflected", "reflection"),
+    ("absorbed", "absorption"),
+    ("not_collected", "light not collected"),
+    ("mismatch", "current mismatch"),
+    ("tunnel", "tunnel junction resistance"),
+    ("series", "series resistance"),
+];
+
+/// For power and efficiency: the largest loss that a design can act on.
+fn largest_loss(requirement: &Requirement, condition: &ConditionResult) -> Option<String> {
+    if !matches!(requirement.metric.value.as_str(), "efficiency" | "power") {
+        return None;
+    }
+    let avoidable = condition.ledger_w_per_m2.iter().filter_map(|line| {
+        AVOIDABLE.iter().find(|(name, _)| *name == line.line).map(|(_, words)| (line, *words))
+    });
+    let (line, words) =
+        avoidable.reduce(|most, next| if next.0.value > most.0.value { next } else { most })?;
+    let place = line.layer.as_ref().or(line.junction.as_ref());
+    let place = place.map_or_else(String::new, |path| format!(" in `{path}`"));
+    (line.value > 0.0).then(|| {
+        format!(
+            "start with {words}{place}: {} W/m2, {} points",
+            significant(line.value, 3),
+            significant(line.value / condition.incident_w_per_m2 * 100.0, 2)
+        )
+    })
+}
