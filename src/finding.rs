@@ -9,6 +9,7 @@ mod excerpt;
 pub mod github;
 pub mod json;
 pub mod render;
+pub mod suggest;
 
 /// How much a finding weighs.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord)]

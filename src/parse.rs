@@ -36,12 +36,11 @@ pub fn parse(source: &Source) -> Outcome<syntax::File> {
     }
     match grammar::read(&source.text) {
         Ok(pairs) => {
-            let mut file = build::file(source, pairs, &scan, &mut findings);
-            file.comments = scan.comments;
-            Outcome::with(file, findings)
+            let items = build::items(source, pairs, &scan, &mut findings);
+            Outcome::with(syntax::File { items, comments: scan.comments }, findings)
         }
-        Err(error) => {
-            findings.push(recover::gave_up(source, &error));
+        Err(_) => {
+            findings.push(recover::gave_up(source));
             Outcome::nothing(findings)
         }
     }

@@ -6,10 +6,11 @@
 use pest::iterators::{Pair, Pairs};
 
 use crate::finding::Findings;
+use crate::parse::expected;
 use crate::parse::grammar::{Node, Rule};
 use crate::parse::recover::{self, Scan};
 use crate::source::{Source, Span, Spanned};
-use crate::syntax::{Block, File, Item, Let, Named, Part, Stack, Statement, Use};
+use crate::syntax::{Block, Item, Let, Named, Part, Stack, Statement, Use};
 
 mod groups;
 mod layers;
@@ -30,7 +31,12 @@ pub(super) struct Builder<'a> {
 }
 
 /// Builds the whole file; what the grammar could not place is reported here.
-pub(super) fn file(source: &Source, pairs: Pairs<'_, Rule>, scan: &Scan, findings: &mut Findings) -> File {
+pub(super) fn items(
+    source: &Source,
+    pairs: Pairs<'_, Rule>,
+    scan: &Scan,
+    findings: &mut Findings,
+) -> Vec<Item> {
     let mut builder = Builder { source, scan, findings, operators: 0, broken: false, unclosed: false };
     let mut items = Vec::new();
     // Where the last item with a body ended: a `}` too many closes it early, and what follows up
@@ -41,7 +47,7 @@ pub(super) fn file(source: &Source, pairs: Pairs<'_, Rule>, scan: &Scan, finding
             Rule::EOI => {}
             Rule::stray_close => {
                 let span = builder.span(&node);
-                builder.findings.push(recover::stray_close(source, span, scan));
+                builder.findings.push(recover::stray_close(span, scan));
                 for item in items.iter_mut().skip(after_body) {
                     if let Item::Stray(statement) = item {
                         *item = Item::Invalid(statement.span());
@@ -58,7 +64,7 @@ pub(super) fn file(source: &Source, pairs: Pairs<'_, Rule>, scan: &Scan, finding
             }
         }
     }
-    File { items, comments: Vec::new() }
+    items
 }
 
 impl<'a> Builder<'a> {
@@ -177,7 +183,7 @@ impl<'a> Builder<'a> {
                 Rule::open => span.start = self.span(&part).start,
                 Rule::unclosed => {
                     self.unclosed = true;
-                    self.findings.extend(recover::unclosed(self.source, span.start as usize, self.scan));
+                    self.findings.push(recover::unclosed(self.source, span.start as usize, self.scan));
                 }
                 _ => statements.push(self.statement(part)),
             }
@@ -216,7 +222,7 @@ impl<'a> Builder<'a> {
                 None
             }
             _ => {
-                self.findings.push(recover::bad_statement(self.source, span));
+                self.findings.push(expected::explain(self.source, span));
                 None
             }
         };
@@ -229,7 +235,7 @@ impl<'a> Builder<'a> {
         if let Some(block) = node.into_inner().find(|part| part.as_rule() == Rule::block) {
             let open = block.clone().into_inner().next().map_or(start, |open| self.span(&open));
             let head = Span { end: open.end, ..start };
-            self.findings.push(recover::bad_head(self.source, head));
+            self.findings.push(expected::explain(self.source, head));
             self.block(block);
         }
     }

@@ -4,7 +4,7 @@ use std::num::NonZeroUsize;
 use std::sync::Mutex;
 
 use pest::Parser as _;
-use pest::error::Error;
+use pest::error::{Error, ErrorVariant, InputLocation};
 use pest::iterators::{Pair, Pairs};
 
 /// One rule's match.
@@ -25,9 +25,30 @@ pub(crate) fn read(text: &str) -> Result<Pairs<'_, Rule>, Box<Error<Rule>>> {
     Grammar::parse(Rule::file, text).map_err(Box::new)
 }
 
-/// Reads one statement alone, to learn where it stops making sense.
-pub(crate) fn explain(text: &str) -> Result<Pairs<'_, Rule>, Box<Error<Rule>>> {
-    Grammar::parse(Rule::explain, text).map_err(Box::new)
+/// Where a text alone stops making sense.
+pub(crate) struct Refusal {
+    /// Offset in the text.
+    pub(crate) at: usize,
+    /// What would have fitted there.
+    pub(crate) rules: Vec<Rule>,
+}
+
+/// Reads one statement, or the head of a block with its `{`, alone.
+pub(crate) fn explain(text: &str) -> Result<(), Refusal> {
+    allow_steps(text.len());
+    match Grammar::parse(Rule::explain, text) {
+        Ok(_) => Ok(()),
+        Err(error) => {
+            let at = match error.location {
+                InputLocation::Pos(at) | InputLocation::Span((at, _)) => at,
+            };
+            let rules = match error.variant {
+                ErrorVariant::ParsingError { positives, .. } => positives,
+                ErrorVariant::CustomError { .. } => Vec::new(),
+            };
+            Err(Refusal { at, rules })
+        }
+    }
 }
 
 /// pest keeps one limit for the whole process and takes it when a parse starts, so it only ever
