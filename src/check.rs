@@ -12,13 +12,17 @@ use crate::results::Results;
 mod accept;
 mod current_mismatch;
 mod doping_missing;
-mod free_values;
+mod free;
+mod free_on_bound;
+mod free_outside;
+mod free_unsettled;
 mod gap_bsf_low;
 mod gap_equal;
 mod gap_indirect_absorber;
 mod gap_order;
 mod gap_window_absorbs;
 mod junctions;
+mod lattice_critical_thickness;
 mod lattice_mismatch;
 mod light_range;
 mod limits;
@@ -29,6 +33,7 @@ mod show;
 mod structure_no_absorber;
 mod structure_no_wafer;
 mod structure_order;
+mod tunnel_absorbs;
 mod tunnel_missing;
 mod tunnel_peak;
 mod tunnel_polarity;
@@ -46,17 +51,19 @@ pub static RULES: &[&Rule] = &[
     &gap_bsf_low::RULE,
     &gap_window_absorbs::RULE,
     &lattice_mismatch::RULE,
+    &lattice_critical_thickness::RULE,
     &polarity_same::RULE,
     &polarity_flipped::RULE,
     &doping_missing::RULE,
     &tunnel_missing::RULE,
     &tunnel_polarity::RULE,
     &tunnel_peak::RULE,
+    &tunnel_absorbs::RULE,
     &light_range::RULE,
     &current_mismatch::RULE,
-    &free_values::UNSETTLED,
-    &free_values::OUTSIDE,
-    &free_values::ON_BOUND,
+    &free_unsettled::RULE,
+    &free_outside::RULE,
+    &free_on_bound::RULE,
     &require_failed::RULE,
 ];
 

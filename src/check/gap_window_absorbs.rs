@@ -22,10 +22,13 @@ pub(super) static RULE: Rule = Rule {
 };
 
 /// What one layer loses under one condition, mA/cm2.
-struct Loss<'a> {
-    condition: &'a str,
-    lost: f64,
-    photocurrent: f64,
+pub(super) struct Loss<'a> {
+    /// The condition's name.
+    pub(super) condition: &'a str,
+    /// Absorbed and not collected, of photons above the smallest gap.
+    pub(super) lost: f64,
+    /// Of the junction it is compared with.
+    pub(super) photocurrent: f64,
 }
 
 fn run(context: &Context, report: &mut Report) {
@@ -67,8 +70,8 @@ fn is_barrier(duty: Duty) -> bool {
     matches!(duty, Duty::Window | Duty::Bsf)
 }
 
-/// The condition under which `layer` loses the largest share of its junction's photocurrent.
-fn worst<'a>(context: &Context<'a>, junction: &str, layer: &str) -> Option<Loss<'a>> {
+/// The condition under which `layer` loses the largest share of the photocurrent of `junction`.
+pub(super) fn worst<'a>(context: &Context<'a>, junction: &str, layer: &str) -> Option<Loss<'a>> {
     let losses = context.results?.conditions.iter().filter_map(|condition| {
         let light = condition.layers.iter().find(|light| light.name == layer)?;
         let photocurrent = condition.junctions.iter().find(|it| it.name == junction)?.photocurrent_ma_per_cm2;
@@ -98,7 +101,7 @@ fn usable(condition: &ConditionResult, layer: &str) -> Option<f64> {
 /// Thickness in whole nanometres at which the layer keeps within `allowed`, taking the light it
 /// absorbs as proportional to thickness (cautious: absorption saturates, so less is needed off).
 /// `None` below a thickness that still closes a surface.
-fn thinner(thickness_m: f64, share: f64, allowed: f64) -> Option<f64> {
+pub(super) fn thinner(thickness_m: f64, share: f64, allowed: f64) -> Option<f64> {
     let nanometres = (thickness_m * 1e9 * allowed / share).floor();
     (nanometres >= 5.0).then_some(nanometres * 1e-9)
 }

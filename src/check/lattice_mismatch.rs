@@ -35,19 +35,26 @@ struct Slab {
     mismatch: f64,
 }
 
-/// How thick a slab may be, m; `None` where no thickness is safe.
+/// How thick a slab may be, m; `None` where no thickness keeps it coherent.
 struct Critical {
     safe_m: Option<f64>,
     hopeless_m: Option<f64>,
+    step_m: f64,
 }
 
 fn run(context: &Context, report: &mut Report) {
-    for slab in slabs(context) {
+    judge(context, report, RULE.code, |strain| strain == Strain::Unstated);
+}
+
+/// Reports the slabs of layers whose strain is said as `speaks` wants it.
+pub(super) fn judge(context: &Context, report: &mut Report, code: &'static str, speaks: fn(Strain) -> bool) {
+    for slab in slabs(context, speaks) {
         let layers: Vec<&Layer> = slab.layers.iter().map(|index| &context.design.layers[*index]).collect();
         let known: Vec<f64> = layers.iter().filter_map(|layer| layer.thickness_m).collect();
         let thickness: f64 = known.iter().sum();
         let Some(critical) = critical(context, &slab) else { continue };
-        if thickness <= critical.safe_m.unwrap_or(0.0) {
+        // Less than a step of the lattice is no layer yet: dots and wetting layers start so.
+        if thickness <= critical.safe_m.unwrap_or(0.0).max(critical.step_m) {
             continue;
         }
         let severity = if critical.hopeless_m.is_none_or(|most| thickness > most) {
@@ -55,14 +62,14 @@ fn run(context: &Context, report: &mut Report) {
         } else {
             Severity::Warning
         };
-        if let Some(finding) = finding(context, &slab, severity, (thickness, critical.safe_m)) {
+        if let Some(finding) = finding(context, &slab, (code, severity), (thickness, critical.safe_m)) {
             report.push(layers.iter().map(|layer| layer.path.as_str()), finding);
         }
     }
 }
 
 /// The coherent slabs beyond the threshold, in growth order.
-fn slabs(context: &Context) -> Vec<Slab> {
+fn slabs(context: &Context, speaks: fn(Strain) -> bool) -> Vec<Slab> {
     let limit = context.threshold(&RULE);
     let mut slabs: Vec<Slab> = Vec::new();
     let mut open = false;
@@ -71,7 +78,7 @@ fn slabs(context: &Context) -> Vec<Slab> {
         let LayerGrowth { beneath: Some(beneath), mismatch_at_growth: mismatch, .. } = *state else {
             continue;
         };
-        if context.design.layers[index].strain == Strain::Relaxed || mismatch.abs() <= limit {
+        if !speaks(context.design.layers[index].strain) || mismatch.abs() <= limit {
             open = false;
             continue;
         }
@@ -98,13 +105,14 @@ fn critical(context: &Context, slab: &Slab) -> Option<Critical> {
         safe_m: matthews_blakeslee(slab.mismatch, poisson, burgers, Cover::Free).map(metres),
         hopeless_m: people_bean(slab.mismatch, poisson, burgers, material.lattice_constant(temperature_k)?)
             .map(metres),
+        step_m: metres(burgers),
     })
 }
 
 fn finding(
     context: &Context,
     slab: &Slab,
-    severity: Severity,
+    (code, severity): (&'static str, Severity),
     (thickness, safe): (f64, Option<f64>),
 ) -> Option<Finding> {
     let design = context.design;
@@ -123,7 +131,7 @@ fn finding(
     };
     let mut finding = Finding::new(
         severity,
-        RULE.code,
+        code,
         format!(
             "{} is {} {} than {} at {}: {}{with} relax into dislocations, {stays}",
             describe(design, layer),
