@@ -2,3 +2,4 @@
 
 pub mod constants;
 pub mod quadrature;
+pub mod roots;

@@ -1,1 +1,4 @@
 //! Where light is absorbed.
+
+pub mod grid;
+pub mod one_pass;

@@ -1,0 +1,297 @@
+//! One pass down through the layers, sunward first, by Beer–Lambert.
+//!
+//! What is reflected at the front is stated; coats and other non-absorbing layers do nothing;
+//! nothing returns from the rear unless a `mirror` is stated, which sends the light back once.
+
+use crate::design::{Design, Duty, OpticsModel, Place};
+use crate::materials::optics::Optics;
+use crate::materials::{MaterialClass, SharedMaterial};
+use crate::numerics::constants::HC_EV;
+
+/// The lit layers of a design at one temperature, ready to be asked at any wavelength.
+#[derive(Clone, Debug)]
+pub struct OnePass {
+    /// Share of the light that is reflected at the front, at every wavelength.
+    pub front_reflectance: f64,
+    media: Vec<Medium>,
+    slabs: Vec<Slab>,
+    mirror: Option<Mirror>,
+}
+
+/// A material with its edge where the temperature puts it.
+#[derive(Clone, Debug)]
+struct Medium {
+    material: SharedMaterial,
+    edge_shift_ev: f64,
+}
+
+/// One layer that may absorb.
+#[derive(Clone, Debug)]
+pub struct Slab {
+    /// Index in [`Design::layers`].
+    pub layer: usize,
+    /// The junction that collects what is absorbed here; `None` where nothing is collected.
+    pub junction: Option<usize>,
+    law: Law,
+}
+
+#[derive(Clone, Copy, Debug)]
+enum Law {
+    /// Absorbs `share` of what reaches it up to `edge_m`, nothing beyond.
+    Share { edge_m: f64, share: f64 },
+    /// Beer–Lambert in the medium of that index.
+    Bulk { medium: usize, thickness_m: f64 },
+}
+
+#[derive(Clone, Debug)]
+struct Mirror {
+    layer: usize,
+    /// Media of the last layer above and of the mirror itself; without both indices everything
+    /// is sent back.
+    face: Option<(usize, usize)>,
+}
+
+/// Shares of the light that enters at the front, by wavelength.
+#[derive(Clone, Debug, Default)]
+pub struct Shares {
+    /// Absorbed, `[slab][wavelength]`, slabs as [`OnePass::slabs`]; the mirror's own absorption
+    /// comes last where there is one.
+    pub absorbed: Vec<Vec<f64>>,
+    /// Leaves unabsorbed: out of the rear, or back out of the front after a mirror.
+    pub passing: Vec<f64>,
+}
+
+impl OnePass {
+    /// The lit layers of `design` at `temperature_k`. Layers without material or thickness do
+    /// nothing here; whether they should have had one is decided before.
+    pub fn new(design: &Design, temperature_k: f64) -> Self {
+        let front_reflectance = match design.optics {
+            OpticsModel::OnePass { front_reflectance, .. } => front_reflectance,
+            OpticsModel::Interference { .. } => 0.0,
+        };
+        let mut model = Self { front_reflectance, media: Vec::new(), slabs: Vec::new(), mirror: None };
+        for (index, layer) in design.lit_layers() {
+            let Some(material) = &layer.material else { continue };
+            if layer.duty == Duty::Mirror {
+                model.set_mirror(index, material, temperature_k);
+                break;
+            }
+            if layer.duty == Duty::Coat {
+                continue;
+            }
+            let junction = match layer.place {
+                Place::Junction(junction) if layer.collects() => Some(junction),
+                _ => None,
+            };
+            let law = match (&material.optics, layer.thickness_m) {
+                (Optics::Ideal(ideal), _) => Law::Share {
+                    edge_m: HC_EV / (ideal.gap_ev + material.edge_shift_ev(temperature_k)),
+                    share: ideal.absorbs,
+                },
+                (Optics::None, _) | (_, None) => continue,
+                (_, Some(thickness_m)) => {
+                    Law::Bulk { medium: model.medium(material, temperature_k), thickness_m }
+                }
+            };
+            model.slabs.push(Slab { layer: index, junction, law });
+        }
+        model
+    }
+
+    fn set_mirror(&mut self, layer: usize, material: &SharedMaterial, temperature_k: f64) {
+        let above = self.slabs.last().and_then(|slab| match slab.law {
+            Law::Bulk { medium, .. } => Some(medium),
+            Law::Share { .. } => None,
+        });
+        let own = self.medium(material, temperature_k);
+        let metal = material.class == MaterialClass::Metal && material.optics != Optics::None;
+        self.mirror = Some(Mirror { layer, face: above.filter(|_| metal).map(|above| (above, own)) });
+    }
+
+    fn medium(&mut self, material: &SharedMaterial, temperature_k: f64) -> usize {
+        let known = self.media.iter().position(|medium| {
+            std::sync::Arc::ptr_eq(&medium.material, material) || medium.material == *material
+        });
+        known.unwrap_or_else(|| {
+            self.media.push(Medium {
+                material: material.clone(),
+                edge_shift_ev: material.edge_shift_ev(temperature_k),
+            });
+            self.media.len() - 1
+        })
+    }
+
+    /// Layer and junction of each row of [`Shares::absorbed`].
+    pub fn rows(&self) -> Vec<(usize, Option<usize>)> {
+        let slabs = self.slabs.iter().map(|slab| (slab.layer, slab.junction));
+        slabs.chain(self.mirror.iter().map(|mirror| (mirror.layer, None))).collect()
+    }
+
+    /// Wavelengths at which absorption jumps, m, in the order of the layers.
+    pub fn jumps_m(&self) -> Vec<f64> {
+        self.slabs
+            .iter()
+            .filter_map(|slab| match slab.law {
+                Law::Share { edge_m, .. } => Some(edge_m),
+                Law::Bulk { .. } => None,
+            })
+            .collect()
+    }
+
+    /// Wavelengths at which the slope of a table changes, m, edges shifted; unsorted.
+    pub fn knots_m(&self) -> Vec<f64> {
+        let mut knots = Vec::new();
+        for medium in &self.media {
+            match &medium.material.optics {
+                Optics::Table(table) => knots.extend_from_slice(&table.wavelength_m),
+                Optics::Direct(direct) => {
+                    let gap = direct.gap_ev + medium.edge_shift_ev;
+                    knots.push(HC_EV / (gap + 0.5 * direct.urbach_ev));
+                }
+                Optics::None | Optics::Ideal(_) => {}
+            }
+        }
+        knots
+    }
+
+    /// First and last wavelength of each table that can absorb, with the index of a layer made
+    /// of it, m.
+    pub fn table_ranges_m(&self) -> Vec<(usize, f64, f64)> {
+        self.slabs
+            .iter()
+            .filter_map(|slab| match slab.law {
+                Law::Bulk { medium, .. } => match &self.media[medium].material.optics {
+                    Optics::Table(table) => {
+                        let (first, last) = (table.wavelength_m.first()?, table.wavelength_m.last()?);
+                        Some((slab.layer, *first, *last))
+                    }
+                    _ => None,
+                },
+                Law::Share { .. } => None,
+            })
+            .collect()
+    }
+
+    /// Whether `junction` absorbs nothing below its edge: every layer that collects is `ideal`.
+    pub fn is_sharp(&self, junction: usize) -> bool {
+        let mut own = self.slabs.iter().filter(|slab| slab.junction == Some(junction)).peekable();
+        own.peek().is_some() && own.all(|slab| matches!(slab.law, Law::Share { .. }))
+    }
+
+    /// Whether every layer of `junction` that collects is a model without a chemistry.
+    pub fn is_model(&self, junction: usize) -> bool {
+        let mut own = self.slabs.iter().filter(|slab| slab.junction == Some(junction)).peekable();
+        own.peek().is_some()
+            && own.all(|slab| match slab.law {
+                Law::Share { .. } => true,
+                Law::Bulk { medium, .. } => {
+                    matches!(self.media[medium].material.optics, Optics::Direct(_))
+                }
+            })
+    }
+
+    /// Shares of the light that enters at the front, at vacuum wavelengths in m.
+    ///
+    /// For each layer in turn `a = t (1 − exp(−α d))` of what is left, `t` (Beer–Lambert); an
+    /// ideal layer takes its share. At every wavelength absorbed and passing sum to 1.
+    pub fn shares(&self, wavelength_m: &[f64]) -> Shares {
+        let taken = self.taken(wavelength_m, self.slabs.len());
+        let mut left = vec![1.0; wavelength_m.len()];
+        let mut absorbed: Vec<Vec<f64>> = taken.iter().map(|taken| absorb(&mut left, taken)).collect();
+        if let Some(mirror) = &self.mirror {
+            let kept = self.mirror_absorbs(mirror, wavelength_m);
+            let own = absorb(&mut left, &kept);
+            for (row, taken) in absorbed.iter_mut().zip(&taken).rev() {
+                for (sum, back) in row.iter_mut().zip(absorb(&mut left, taken)) {
+                    *sum += back;
+                }
+            }
+            absorbed.push(own);
+        }
+        Shares { absorbed, passing: left }
+    }
+
+    /// Share of the light entering at the front that `junction` collects, at wavelengths in m.
+    pub fn junction_share(&self, junction: usize, wavelength_m: &[f64]) -> Vec<f64> {
+        let mut sum = vec![0.0; wavelength_m.len()];
+        let mut add = |row: &[f64]| sum.iter_mut().zip(row).for_each(|(sum, part)| *sum += part);
+        if self.mirror.is_some() {
+            let shares = self.shares(wavelength_m);
+            for (slab, row) in self.slabs.iter().zip(&shares.absorbed) {
+                if slab.junction == Some(junction) {
+                    add(row);
+                }
+            }
+            return sum;
+        }
+        // Without a mirror nothing below the junction matters.
+        let last = self.slabs.iter().rposition(|slab| slab.junction == Some(junction));
+        let mut left = vec![1.0; wavelength_m.len()];
+        let taken = self.taken(wavelength_m, last.map_or(0, |last| last + 1));
+        for (slab, taken) in self.slabs.iter().zip(&taken) {
+            let row = absorb(&mut left, taken);
+            if slab.junction == Some(junction) {
+                add(&row);
+            }
+        }
+        sum
+    }
+
+    /// Share each of the first `count` slabs takes of what reaches it, `[slab][wavelength]`.
+    fn taken(&self, wavelength_m: &[f64], count: usize) -> Vec<Vec<f64>> {
+        let mut absorption: Vec<Option<Vec<f64>>> = vec![None; self.media.len()];
+        self.slabs[..count]
+            .iter()
+            .map(|slab| match slab.law {
+                Law::Share { edge_m, share } => wavelength_m
+                    .iter()
+                    .map(|&wavelength| if wavelength <= edge_m { share } else { 0.0 })
+                    .collect(),
+                Law::Bulk { medium, thickness_m } => {
+                    let medium_absorption = absorption[medium].get_or_insert_with(|| {
+                        let Medium { material, edge_shift_ev } = &self.media[medium];
+                        let at = |&wavelength| material.optics.absorption(wavelength, *edge_shift_ev);
+                        wavelength_m.iter().map(at).collect()
+                    });
+                    medium_absorption.iter().map(|&alpha| taken_by(alpha * thickness_m)).collect()
+                }
+            })
+            .collect()
+    }
+
+    /// `1 − |(N₁ − N₂)/(N₁ + N₂)|²` at the face of a metal mirror (Fresnel, normal incidence).
+    fn mirror_absorbs(&self, mirror: &Mirror, wavelength_m: &[f64]) -> Vec<f64> {
+        let Some((above, own)) = mirror.face else { return vec![0.0; wavelength_m.len()] };
+        let index = |medium: usize, wavelength: f64| {
+            let Medium { material, edge_shift_ev } = &self.media[medium];
+            material.optics.index(wavelength, *edge_shift_ev)
+        };
+        wavelength_m
+            .iter()
+            .map(|&wavelength| match (index(above, wavelength), index(own, wavelength)) {
+                (Some((n1, k1)), Some((n2, k2))) => {
+                    let reflected = (n1 - n2).powi(2) + (k1 - k2).powi(2);
+                    1.0 - reflected / ((n1 + n2).powi(2) + (k1 + k2).powi(2))
+                }
+                _ => 0.0,
+            })
+            .collect()
+    }
+}
+
+/// `1 − exp(−x)`; most of a spectrum lies beyond a layer's edge, where nothing is to be done.
+fn taken_by(depth: f64) -> f64 {
+    if depth == 0.0 { 0.0 } else { -(-depth).exp_m1() }
+}
+
+/// Takes the shares `taken` from `left` and returns what was absorbed.
+fn absorb(left: &mut [f64], taken: &[f64]) -> Vec<f64> {
+    left.iter_mut()
+        .zip(taken)
+        .map(|(left, taken)| {
+            let absorbed = *left * taken;
+            *left -= absorbed;
+            absorbed
+        })
+        .collect()
+}
