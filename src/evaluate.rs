@@ -1,16 +1,120 @@
 //! [`Design`] → [`Results`]: the physics rooms, called in order for each condition.
 
-use crate::design::Design;
+mod condition;
+mod findings;
+mod finite;
+mod hash;
+mod junctions;
+mod layers;
+mod ledger;
+mod lit;
+pub mod metrics;
+mod models;
+mod spectral;
+
+use rayon::prelude::*;
+
+use crate::design::{Condition, Design};
+use crate::evaluate::lit::Lit;
 use crate::finding::Outcome;
-use crate::results::Results;
+use crate::results::{ConditionResult, FreeValueResult, RequirementResult, Results, SCHEMA_VERSION};
+
+pub use hash::design_hash;
 
 /// Evaluates every condition of a design. `source` is the path shown in the numbers file.
-pub fn evaluate(_design: &Design, _source: &str) -> Outcome<Results> {
-    Outcome { value: None, findings: Default::default() }
+///
+/// There is no value where the design is not whole: a material that could not be resolved
+/// (reported where it was read), a free value without a number (`free.unsettled`), no junction or
+/// one without an absorber (`structure.no-absorber`), an absorber without a thickness
+/// (`structure.no-thickness`, reported here), or light without photons. Requirements are checked
+/// for unknown metrics in any case.
+pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
+    let mut findings = metrics::check(design);
+    findings.extend(findings::before(design));
+    if !is_whole(design) || findings.iter().any(|finding| finding.code == findings::NO_THICKNESS) {
+        return Outcome::nothing(findings);
+    }
+    let Some(lit) = lit_by_condition(design) else {
+        return Outcome::nothing(findings);
+    };
+    let conditions: Vec<ConditionResult> = design
+        .conditions
+        .par_iter()
+        .zip(lit.par_iter())
+        .map(|(condition, lit)| condition::condition_result(design, condition, lit))
+        .collect();
+    let mut results = Results {
+        schema_version: SCHEMA_VERSION,
+        tool: concat!("bandloom ", env!("CARGO_PKG_VERSION")).to_owned(),
+        stack: design.name.value.clone(),
+        design_hash: design_hash(design),
+        source: source.to_owned(),
+        conditions,
+        layers: layers::layer_results(design),
+        requirements: Vec::new(),
+        free_values: free_values(design),
+        sensitivities: Vec::new(),
+        models: models::model_notes(design),
+    };
+    if let Some(finding) = finite::first_not_finite(design, &results) {
+        findings.push(finding);
+        return Outcome::nothing(findings);
+    }
+    findings.extend(findings::after(design, &results, &lit));
+    let (judged, unjudged) = metrics::judge(design, &results);
+    findings.extend(unjudged);
+    results.requirements = judged.iter().map(|judged| requirement(design, judged)).collect();
+    Outcome::with(results, findings)
 }
 
-/// SHA-256 of the resolved design, hexadecimal: the same for the same design whatever the layout
-/// or names of the file.
-pub fn design_hash(_design: &Design) -> String {
-    String::new()
+fn is_whole(design: &Design) -> bool {
+    let resolved = design.layers.iter().all(|layer| layer.material.is_some());
+    let settled = design.free_values.iter().all(|free| free.value.is_some());
+    resolved && settled && !design.junctions.is_empty() && !design.conditions.is_empty()
+}
+
+/// One [`Lit`] per condition; conditions that share light and temperature share the work.
+fn lit_by_condition(design: &Design) -> Option<Vec<std::sync::Arc<Lit>>> {
+    let first_of = |condition: &Condition| {
+        design.conditions.iter().position(|other| lit::same_light(other, condition)).unwrap_or(0)
+    };
+    let firsts: Vec<usize> = design.conditions.iter().map(first_of).collect();
+    let made: Vec<Option<std::sync::Arc<Lit>>> = design
+        .conditions
+        .par_iter()
+        .enumerate()
+        .map(|(index, condition)| {
+            (firsts[index] == index)
+                .then(|| Lit::new(design, &condition.light, condition.temperature_k))
+                .flatten()
+                .map(std::sync::Arc::new)
+        })
+        .collect();
+    firsts.iter().map(|&first| made[first].clone()).collect()
+}
+
+fn requirement(design: &Design, judged: &metrics::Judged) -> RequirementResult {
+    let requirement = &design.requirements[judged.requirement];
+    RequirementResult {
+        text: requirement.text.clone(),
+        condition: judged.condition.map(|at| design.conditions[at].name.clone()),
+        value: judged.value,
+        bound: judged.bound,
+        unit: judged.unit.to_owned(),
+        met: judged.met(requirement.comparison),
+        margin: judged.margin(requirement.comparison),
+    }
+}
+
+fn free_values(design: &Design) -> Vec<FreeValueResult> {
+    design
+        .free_values
+        .iter()
+        .map(|free| FreeValueResult {
+            path: free.path.clone(),
+            range: [free.range.0, free.range.1],
+            value: free.value,
+            settled: free.value.is_some(),
+        })
+        .collect()
 }

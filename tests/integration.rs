@@ -2,5 +2,7 @@
 //! sources, the sheet, and the rules of the house.
 
 mod integration {
+    mod designs;
     mod house_rules;
+    mod physics;
 }

@@ -138,38 +138,23 @@ impl OnePass {
             .collect()
     }
 
-    /// Wavelengths at which the slope of a table changes, m, edges shifted; unsorted.
+    /// Wavelengths at which a slope may change, m, edges shifted; unsorted.
     pub fn knots_m(&self) -> Vec<f64> {
-        let mut knots = Vec::new();
-        for medium in &self.media {
-            match &medium.material.optics {
-                Optics::Table(table) => knots.extend_from_slice(&table.wavelength_m),
-                Optics::Direct(direct) => {
-                    let gap = direct.gap_ev + medium.edge_shift_ev;
-                    knots.push(HC_EV / (gap + 0.5 * direct.urbach_ev));
-                }
-                Optics::None | Optics::Ideal(_) => {}
-            }
-        }
-        knots
+        let knots = |medium: &Medium| medium.material.optics.wavelengths(medium.edge_shift_ev);
+        self.media.iter().flat_map(knots).collect()
     }
 
-    /// First and last wavelength of each table that can absorb, with the index of a layer made
-    /// of it, m.
+    /// First and last wavelength of each table that can absorb, edges shifted, with the row of
+    /// [`Shares::absorbed`] that uses it, m.
     pub fn table_ranges_m(&self) -> Vec<(usize, f64, f64)> {
-        self.slabs
-            .iter()
-            .filter_map(|slab| match slab.law {
-                Law::Bulk { medium, .. } => match &self.media[medium].material.optics {
-                    Optics::Table(table) => {
-                        let (first, last) = (table.wavelength_m.first()?, table.wavelength_m.last()?);
-                        Some((slab.layer, *first, *last))
-                    }
-                    _ => None,
-                },
-                Law::Share { .. } => None,
-            })
-            .collect()
+        let range = |(row, slab): (usize, &Slab)| match slab.law {
+            Law::Bulk { medium, .. } => {
+                let Medium { material, edge_shift_ev } = &self.media[medium];
+                material.optics.range(*edge_shift_ev).map(|(first, last)| (row, first, last))
+            }
+            Law::Share { .. } => None,
+        };
+        self.slabs.iter().enumerate().filter_map(range).collect()
     }
 
     /// Whether `junction` absorbs nothing below its edge: every layer that collects is `ideal`.

@@ -1,0 +1,192 @@
+//! What evaluation itself has to say.
+
+use std::sync::Arc;
+
+use crate::design::{Condition, Design, Junction, Terminals, VoltageModel};
+use crate::evaluate::junctions::{fit_at, inner_interconnects, strings};
+use crate::evaluate::lit::{Lit, junction_gap};
+use crate::finding::{Finding, Findings};
+use crate::materials::optics::Optics;
+use crate::results::{ConditionResult, Results};
+use crate::source::Span;
+use crate::units::{Dimension, number, trade};
+
+/// An absorber that can be absorbed in nowhere.
+pub(super) const NO_THICKNESS: &str = "structure.no-thickness";
+
+/// Share of a current from which held end values are worth a warning.
+const HELD_SHARE: f64 = 1e-3;
+
+/// What can be said without any figure.
+pub(super) fn before(design: &Design) -> Findings {
+    let mut findings = Findings::new();
+    for (_, layer) in design.lit_layers() {
+        let needs =
+            layer.material.as_ref().is_some_and(|material| !matches!(material.optics, Optics::Ideal(_)));
+        let free = format!("{}.thickness", layer.path);
+        let is_free = design.free_values.iter().any(|value| value.path == free);
+        if layer.collects() && needs && layer.thickness_m.is_none() && !is_free {
+            findings.push(
+                Finding::error(NO_THICKNESS, format!("`{}` has no thickness to absorb in", layer.path))
+                    .at(layer.spans.statement, "an absorber without thickness")
+                    .help("add its thickness after the material, such as `1 um`"),
+            );
+        }
+    }
+    for junction in &design.junctions {
+        if junction.voltage == VoltageModel::Layers {
+            findings.push(stand_in(junction));
+        }
+    }
+    if design.terminals == Terminals::Three {
+        findings.push(
+            Finding::warning(
+                "feature.pending",
+                "three terminals are not evaluated yet: the stack is taken as a series string",
+            )
+            .at(design.name.span, "`terminals three` in this stack")
+            .help("write `terminals two` or `terminals four`"),
+        );
+    }
+    findings
+}
+
+fn stand_in(junction: &Junction) -> Finding {
+    let name = &junction.name;
+    let message = format!(
+        "the voltage of `{}` from its layers is not evaluated yet: its radiative limit stands in, an upper bound",
+        name.value
+    );
+    let (span, text) = match junction.voltage_span {
+        Some(span) => (span, "asked for here"),
+        None => (name.span, "emitter and base are given, so this is the default"),
+    };
+    Finding::warning("feature.pending", message)
+        .at(span, text)
+        .help("state what is known of its quality, such as `voltage from ere 1 %`")
+}
+
+/// What the figures show.
+pub(super) fn after(design: &Design, results: &Results, lit: &[Arc<Lit>]) -> Findings {
+    let mut findings = Findings::new();
+    findings.extend(held_ends(design, results, lit));
+    findings.extend(fits_below_the_limit(design, lit));
+    for (condition, result) in design.conditions.iter().zip(&results.conditions) {
+        findings.extend(tunnel_peaks(design, condition, result));
+    }
+    findings
+}
+
+/// Current absorbed where a table's end value is held, worst condition of each layer.
+fn held_ends(design: &Design, results: &Results, lit: &[Arc<Lit>]) -> Findings {
+    let mut worst: Vec<Option<(f64, String)>> = vec![None; design.layers.len()];
+    for (result, lit) in results.conditions.iter().zip(lit) {
+        let useful: f64 = (0..lit.gap_ev.len()).map(|junction| lit.photocurrent(junction)).sum();
+        for (row, first, last) in lit.optics.table_ranges_m() {
+            let (layer, junction) = lit.rows[row];
+            let whole = junction.map_or(useful, |junction| lit.photocurrent(junction));
+            let held: f64 = (0..lit.wavelength_m.len())
+                .filter(|&at| lit.wavelength_m[at] < first || lit.wavelength_m[at] > last)
+                .map(|at| lit.shares.absorbed[row][at] * lit.current_weight[at])
+                .sum();
+            let share = if whole > 0.0 { held / whole } else { 0.0 };
+            if share >= HELD_SHARE && worst[layer].as_ref().is_none_or(|(most, _)| share > *most) {
+                worst[layer] = Some((share, result.name.clone()));
+            }
+        }
+    }
+    let mut findings = Findings::new();
+    for (layer, worst) in design.layers.iter().zip(worst) {
+        let (Some((share, condition)), Some(material)) = (worst, &layer.material) else { continue };
+        let Some((first, last)) = material.optics.range(0.0) else { continue };
+        let range = format!("{} to {} nm", number(first * 1e9), number(last * 1e9));
+        findings.push(
+            Finding::warning(
+                "optics.data-range",
+                format!(
+                    "{} % of the current is absorbed in `{}` outside its optical data ({range}) under `{condition}`",
+                    number(100.0 * share),
+                    layer.path
+                ),
+            )
+            .at(layer.spans.material, format!("`{}` has data over {range}", material.label))
+            .help(format!(
+                "give a material with data beyond that, or write `accept optics.data-range on {} because \"…\"`",
+                layer.path
+            )),
+        );
+    }
+    findings
+}
+
+/// Fits whose dark current is less than their own junction must emit.
+fn fits_below_the_limit(design: &Design, lit: &[Arc<Lit>]) -> Findings {
+    let mut findings = Findings::new();
+    for (index, junction) in design.junctions.iter().enumerate() {
+        let VoltageModel::Fit(fit) = &junction.voltage else { continue };
+        let below = design.conditions.iter().zip(lit).find_map(|(condition, lit)| {
+            let gap_then = junction_gap(design, index, fit.at_k)?;
+            let (j01, _) = fit_at(fit, gap_then, (condition, lit.gap_ev[index]));
+            let limit = lit.emission[index].dark_a_per_m2();
+            (j01 < limit).then_some((j01, limit, condition))
+        });
+        let Some((j01, limit, condition)) = below else { continue };
+        let per_cm2 = |current: f64| number(1e-4 * current);
+        let stated = fit.j01_a_per_m2 * limit / j01.max(f64::MIN_POSITIVE);
+        findings.push(
+            Finding::warning(
+                "fit.below-radiative",
+                format!(
+                    "`j01` of `{}` is {} A/cm2 under `{}`, below the {} A/cm2 it must emit: the radiative limit is used",
+                    junction.name.value,
+                    per_cm2(j01),
+                    condition.name,
+                    per_cm2(limit)
+                ),
+            )
+            .at(junction.voltage_span.unwrap_or(junction.span), "no junction recombines less than it radiates")
+            .help(if fit.j01_a_per_m2 > 0.0 && stated.is_finite() {
+                format!("write `j01 {} A/cm2` or more", per_cm2(stated * 1.001))
+            } else {
+                format!("write `j01 {} A/cm2` or more", per_cm2(limit * 1.001))
+            }),
+        );
+    }
+    findings
+}
+
+fn tunnel_peaks(design: &Design, condition: &Condition, result: &ConditionResult) -> Findings {
+    let mut findings = Findings::new();
+    let operating = result.jmp_ma_per_cm2.map(|current| 10.0 * current);
+    for string in strings(design) {
+        for index in inner_interconnects(design, &string.junctions) {
+            let interconnect = &design.interconnects[index];
+            let (Some(peak), Some(current)) = (interconnect.peak_a_per_m2, operating) else { continue };
+            if current > peak {
+                findings.push(tunnel_peak(
+                    interconnect.name.value.as_str(),
+                    interconnect.span,
+                    condition,
+                    (current, peak),
+                ));
+            }
+        }
+    }
+    findings
+}
+
+fn tunnel_peak(name: &str, span: Span, condition: &Condition, (current, peak): (f64, f64)) -> Finding {
+    let show = |current: f64| trade(current, Dimension::CURRENT_DENSITY);
+    Finding::error(
+        "tunnel.peak",
+        format!(
+            "`{name}` carries {} at the maximum power point under `{}`, above its peak of {}",
+            show(current),
+            condition.name,
+            show(peak)
+        ),
+    )
+    .at(span, format!("peak {}", show(peak)))
+    .beside(condition.span, format!("{} times the light", number(condition.concentration)))
+    .help(format!("dope it for a peak of {} or more, or lower the concentration", show(1.5 * current)))
+}

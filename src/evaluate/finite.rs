@@ -1,0 +1,73 @@
+//! Nothing that is not a number leaves.
+
+use crate::design::Design;
+use crate::finding::Finding;
+use crate::results::{ConditionResult, Results};
+
+/// A finding for the first figure that is not finite. Only inputs beyond all measure lead there
+/// (a concentration of 1e300), so the condition is blamed.
+pub(super) fn first_not_finite(design: &Design, results: &Results) -> Option<Finding> {
+    results.conditions.iter().zip(&design.conditions).find_map(|(result, condition)| {
+        let (figure, _) = figures(result).find(|(_, value)| !value.is_finite())?;
+        let message = format!("`{figure}` under `{}` is beyond what can be computed", condition.name);
+        Some(
+            Finding::error("value.range", message)
+                .at(condition.span, format!("{:e} times the light at {} K", condition.concentration, condition.temperature_k))
+                .help("bring concentration, temperature and fitted currents to what a cell can meet, such as `concentration 500 times`"),
+        )
+    })
+}
+
+fn figures(result: &ConditionResult) -> impl Iterator<Item = (&'static str, f64)> {
+    let plain = [
+        ("incident power", Some(result.incident_w_per_m2)),
+        ("efficiency", Some(result.efficiency)),
+        ("power", Some(result.power_w_per_m2)),
+        ("voc", result.voc_v),
+        ("jsc", result.jsc_ma_per_cm2),
+        ("fill_factor", result.fill_factor),
+        ("vmp", result.vmp_v),
+        ("jmp", result.jmp_ma_per_cm2),
+        ("current_mismatch", result.current_mismatch),
+        ("reflected_current", Some(result.reflected_ma_per_cm2)),
+    ];
+    let junctions = result.junctions.iter().flat_map(|junction| {
+        [
+            ("gap", junction.gap_ev),
+            ("photocurrent", junction.photocurrent_ma_per_cm2),
+            ("jsc", junction.jsc_ma_per_cm2),
+            ("voc", junction.voc_v),
+            ("fill_factor", junction.fill_factor),
+            ("power", junction.power_w_per_m2),
+            ("voltage at the maximum power point", junction.voltage_at_mpp_v),
+            ("dark current", junction.dark_current_radiative_a_per_cm2),
+        ]
+    });
+    let layers = result
+        .layers
+        .iter()
+        .flat_map(|layer| [layer.absorbed_ma_per_cm2, layer.collected_ma_per_cm2])
+        .map(|value| ("absorbed current", value));
+    let ledger = result.ledger_w_per_m2.iter().map(|line| ("ledger", line.value));
+    let spectral = [&result.spectral.wavelength_nm, &result.spectral.photon_current_ma_per_cm2_per_nm]
+        .into_iter()
+        .chain(result.spectral.eqe.values())
+        .chain(result.spectral.absorptance.values())
+        .chain([&result.spectral.reflectance])
+        .flatten()
+        .map(|value| ("spectral response", *value));
+    let curves = [&result.curve.voltage_v, &result.curve.current_ma_per_cm2]
+        .into_iter()
+        .chain(result.curve.junction_voltage_v.values())
+        .chain(result.junction_curves.iter().flat_map(|curve| [&curve.voltage_v, &curve.current_ma_per_cm2]))
+        .flatten()
+        .map(|value| ("current-voltage curve", *value));
+    plain
+        .into_iter()
+        .filter_map(|(name, value)| Some((name, value?)))
+        .chain(junctions)
+        .chain(layers)
+        .chain(ledger)
+        .chain(spectral)
+        .chain(curves)
+}

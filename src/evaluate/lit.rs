@@ -1,0 +1,209 @@
+//! What one light at one temperature does to a stack, before it is multiplied by anything.
+
+use crate::circuit::radiative::{Radiative, Statistics};
+use crate::design::{Condition, Design, Place};
+use crate::light::{DATA_START_M, Spectrum};
+use crate::numerics::constants::{CHARGE, HC_EV};
+use crate::numerics::quadrature::{integral_between, linear_at};
+use crate::optics::grid::{Features, spectral_grid};
+use crate::optics::one_pass::{OnePass, Shares};
+
+/// How far material data are asked for where no edge lies further out, m: the end of the
+/// terrestrial tables.
+const DATA_END_M: f64 = 4000e-9;
+
+/// Absorption, photon currents and powers at one times, normal incidence, without fingers.
+///
+/// Integrals over wavelength are weighted sums over [`Lit::wavelength_m`]: the weights hold the
+/// exact integral of a share that is linear between points against a photon flux (or an
+/// irradiance) that is linear between them.
+#[derive(Clone, Debug)]
+pub(super) struct Lit {
+    pub(super) optics: OnePass,
+    /// Layer and junction of each row of `shares.absorbed`.
+    pub(super) rows: Vec<(usize, Option<usize>)>,
+    /// Ascending, m.
+    pub(super) wavelength_m: Vec<f64>,
+    /// Of the light that enters at the front.
+    pub(super) shares: Shares,
+    /// A/m2 per unit share.
+    pub(super) current_weight: Vec<f64>,
+    /// W/m2 per unit share.
+    pub(super) power_weight: Vec<f64>,
+    /// Of each junction at this temperature, eV.
+    pub(super) gap_ev: Vec<f64>,
+    /// Of each junction.
+    pub(super) emission: Vec<Radiative>,
+    /// Part of the spectrum's total that drives nothing: outside [`Lit::wavelength_m`], W/m2.
+    pub(super) beyond_w_per_m2: f64,
+}
+
+impl Lit {
+    /// `None` where a junction has no layer with a gap that collects.
+    pub(super) fn new(design: &Design, light: &Spectrum, temperature_k: f64) -> Option<Self> {
+        let gap_ev = junction_gaps(design, temperature_k)?;
+        let optics = OnePass::new(design, temperature_k);
+        let rows = optics.rows();
+        let features = features(light, &optics, &gap_ev)?;
+        let wavelength_m = spectral_grid(light, &features, |wavelengths| {
+            let shares = optics.shares(wavelengths);
+            by_junction(&rows, &shares, gap_ev.len())
+        });
+        let shares = optics.shares(&wavelength_m);
+        let flux = light.photon_flux();
+        let at = |values: &[f64]| -> Vec<f64> {
+            wavelength_m.iter().map(|&point| linear_at(&light.wavelength_m, values, point)).collect()
+        };
+        let mut current_weight = weights(&wavelength_m, &at(&flux));
+        current_weight.iter_mut().for_each(|weight| *weight *= CHARGE);
+        let power_weight = weights(&wavelength_m, &at(&light.irradiance));
+        let inside: f64 = power_weight.iter().sum();
+        let emission = emission(&optics, &gap_ev, temperature_k);
+        Some(Self {
+            rows,
+            wavelength_m,
+            shares,
+            current_weight,
+            power_weight,
+            gap_ev,
+            emission,
+            beyond_w_per_m2: light.total_w_per_m2 - inside,
+            optics,
+        })
+    }
+
+    /// Photon current of one row, A/m2, of the light that enters.
+    pub(super) fn row_current(&self, row: usize) -> f64 {
+        dot(&self.shares.absorbed[row], &self.current_weight)
+    }
+
+    /// Absorbed power of one row, W/m2, of the light that enters.
+    pub(super) fn row_power(&self, row: usize) -> f64 {
+        dot(&self.shares.absorbed[row], &self.power_weight)
+    }
+
+    /// Rows that `junction` collects.
+    pub(super) fn collected(&self, junction: usize) -> impl Iterator<Item = usize> {
+        self.rows.iter().enumerate().filter(move |(_, row)| row.1 == Some(junction)).map(|(index, _)| index)
+    }
+
+    /// Photocurrent of `junction`, A/m2, of the light that enters: every photon absorbed where it
+    /// is collected gives one electron.
+    pub(super) fn photocurrent(&self, junction: usize) -> f64 {
+        self.collected(junction).map(|row| self.row_current(row)).sum()
+    }
+
+    /// Share `junction` collects of the light that enters, by wavelength.
+    pub(super) fn collected_share(&self, junction: usize) -> Vec<f64> {
+        let mut sum = vec![0.0; self.wavelength_m.len()];
+        for row in self.collected(junction) {
+            sum.iter_mut().zip(&self.shares.absorbed[row]).for_each(|(sum, part)| *sum += part);
+        }
+        sum
+    }
+
+    /// Of what `junction` collects: current and power above its gap, then below it (its tail).
+    pub(super) fn split_at_gap(&self, junction: usize) -> [(f64, f64); 2] {
+        let edge_m = HC_EV / self.gap_ev[junction];
+        let cut = self.wavelength_m.partition_point(|&wavelength| wavelength <= edge_m);
+        let mut parts = [(0.0, 0.0); 2];
+        for row in self.collected(junction) {
+            let share = &self.shares.absorbed[row];
+            for (part, range) in parts.iter_mut().zip([0..cut, cut..share.len()]) {
+                part.0 += dot(&share[range.clone()], &self.current_weight[range.clone()]);
+                part.1 += dot(&share[range.clone()], &self.power_weight[range]);
+            }
+        }
+        parts
+    }
+
+    /// Photon current of the light up to `edge_m`, A/m2.
+    pub(super) fn photons_to(&self, light: &Spectrum, edge_m: f64) -> f64 {
+        let Some(&first) = self.wavelength_m.first() else { return 0.0 };
+        CHARGE * integral_between(&light.wavelength_m, &light.photon_flux(), first, edge_m)
+    }
+}
+
+/// Conditions that share light and temperature share a [`Lit`].
+pub(super) fn same_light(a: &Condition, b: &Condition) -> bool {
+    a.temperature_k == b.temperature_k && (std::sync::Arc::ptr_eq(&a.light, &b.light) || a.light == b.light)
+}
+
+fn junction_gaps(design: &Design, temperature_k: f64) -> Option<Vec<f64>> {
+    (0..design.junctions.len()).map(|junction| junction_gap(design, junction, temperature_k)).collect()
+}
+
+/// The lowest gap of the layers a junction collects from, eV.
+pub(super) fn junction_gap(design: &Design, junction: usize, temperature_k: f64) -> Option<f64> {
+    design
+        .lit_layers()
+        .filter(|(_, layer)| layer.place == Place::Junction(junction) && layer.collects())
+        .filter_map(|(_, layer)| layer.material.as_ref()?.gap(temperature_k))
+        .map(|gap| gap.ev)
+        .min_by(f64::total_cmp)
+        .filter(|gap| *gap > 0.0)
+}
+
+fn features(light: &Spectrum, optics: &OnePass, gap_ev: &[f64]) -> Option<Features> {
+    let (first, last) = light.range_m()?;
+    let edges: Vec<f64> = gap_ev.iter().map(|gap| HC_EV / gap).collect();
+    let longest = edges.iter().copied().fold(0.0, f64::max);
+    let tables = !optics.table_ranges_m().is_empty();
+    let from = if tables { light.drives_from_m.max(DATA_START_M) } else { light.drives_from_m };
+    let bounded = tables || light.drives_from_m > 0.0;
+    let to = if bounded { DATA_END_M.max(1.2 * longest) } else { f64::INFINITY };
+    let range_m = (first.max(from), last.min(to));
+    let jumps_m = optics.jumps_m().into_iter().chain(edges).collect();
+    (range_m.0 < range_m.1).then(|| Features { range_m, jumps_m, knots_m: optics.knots_m() })
+}
+
+fn by_junction(rows: &[(usize, Option<usize>)], shares: &Shares, junctions: usize) -> Vec<Vec<f64>> {
+    let mut sums = vec![vec![0.0; shares.passing.len()]; junctions];
+    for ((_, junction), share) in rows.iter().zip(&shares.absorbed) {
+        if let Some(junction) = junction {
+            sums[*junction].iter_mut().zip(share).for_each(|(sum, part)| *sum += part);
+        }
+    }
+    sums
+}
+
+fn emission(optics: &OnePass, gap_ev: &[f64], temperature_k: f64) -> Vec<Radiative> {
+    let jumps: Vec<f64> = optics.jumps_m().iter().map(|edge| HC_EV / edge).collect();
+    let lowest = |junction: usize| {
+        let rows = optics.rows();
+        optics
+            .table_ranges_m()
+            .iter()
+            .filter(|(row, ..)| rows[*row].1 == Some(junction))
+            .map(|(_, _, last)| HC_EV / last)
+            .fold(0.0, f64::max)
+    };
+    gap_ev
+        .iter()
+        .enumerate()
+        .map(|(junction, &gap)| {
+            let statistics =
+                if optics.is_model(junction) { Statistics::BoseEinstein } else { Statistics::Diode };
+            let lowest = if optics.is_sharp(junction) { gap } else { lowest(junction) };
+            Radiative::new(gap, temperature_k, statistics, (&jumps, lowest), |energy| {
+                let wavelength: Vec<f64> = energy.iter().map(|energy| HC_EV / energy).collect();
+                optics.junction_share(junction, &wavelength)
+            })
+        })
+        .collect()
+}
+
+/// `w` with `Σ w_i s_i = ∫ s f dx` for `s` and `f` linear between the points.
+fn weights(x: &[f64], f: &[f64]) -> Vec<f64> {
+    let mut weights = vec![0.0; x.len()];
+    for i in 1..x.len() {
+        let sixth = (x[i] - x[i - 1]) / 6.0;
+        weights[i - 1] += sixth * (2.0 * f[i - 1] + f[i]);
+        weights[i] += sixth * (f[i - 1] + 2.0 * f[i]);
+    }
+    weights
+}
+
+fn dot(a: &[f64], b: &[f64]) -> f64 {
+    a.iter().zip(b).map(|(a, b)| a * b).sum()
+}

@@ -1,0 +1,165 @@
+//! Which models were used, and what they do not see.
+
+use crate::design::{Design, Duty, OpticsModel, VoltageModel};
+use crate::evaluate::junctions::strings;
+use crate::materials::optics::Optics;
+use crate::results::ModelNote;
+
+/// The models behind the numbers of `design`, in the order of the calculation.
+pub(super) fn model_notes(design: &Design) -> Vec<ModelNote> {
+    let mut notes = vec![light()];
+    if design.conditions.iter().any(|condition| condition.light.name == "AM0") {
+        notes.push(note(
+            "light AM0",
+            "Efficiency is over the whole 1366.09 W/m2; currents start at 280 nm, where material data start.",
+            "The 0.6 % of the power at shorter wavelengths, which is a line of its own in the ledger.",
+            "ASTM E490-00a",
+        ));
+    }
+    if design.conditions.iter().any(|condition| condition.incidence_rad > 0.0) {
+        notes.push(note(
+            "oblique light",
+            "The cell receives cos θ of the irradiance across the beam, and efficiency is over what it receives.",
+            "The change of reflectance and of the path inside with the angle.",
+            "Lambert's cosine law",
+        ));
+    }
+    notes.push(optics(design));
+    if has(design, |optics| matches!(optics, Optics::Table(_))) {
+        notes.push(note(
+            "optical tables",
+            "k is linear in wavelength above the gap and ln k linear in photon energy below it; the table moves \
+             with the gap from its own temperature to the condition's; outside a table its end value is held.",
+            "Changes of the shape of the spectrum with temperature, doping and order.",
+            "Sources of each table stand in the layer table",
+        ));
+    }
+    notes.push(note(
+        "collection ideal",
+        "Every photon absorbed in emitter, base, intrinsic, absorber or a wafer inside a junction gives one electron.",
+        "Diffusion lengths, interface velocities, depletion: real currents are lower.",
+        "Shockley and Queisser, J. Appl. Phys. 32, 510 (1961)",
+    ));
+    notes.extend(voltage(design));
+    let strings = strings(design);
+    if strings.iter().any(|string| string.junctions.len() > 1) {
+        notes.push(note(
+            "series string",
+            "At each current the junction voltages are summed, negative ones included, less the drop over lumped \
+             resistances of fingers and tunnels; the voltage of a saturated junction is what the others leave.",
+            "Lateral current, luminescent coupling between junctions, reverse breakdown, the valley of a tunnel junction.",
+            "Kirchhoff's laws; fill factor over the string's own short-circuit current",
+        ));
+    }
+    if strings.len() > 1 {
+        notes.push(note(
+            "separate terminals",
+            "Each string works at its own maximum power point and the powers add; the grid's resistance lies in the first string.",
+            "The cost of the wiring and of the further power conversion.",
+            "Kirchhoff's laws",
+        ));
+    }
+    if design.fingers.is_some() {
+        notes.push(note(
+            "fingers",
+            "Their shading scales all light that enters; their series resistance is one lumped resistor.",
+            "Light that the metal sends back into the cell, and current crowding under it.",
+            "As stated in the file",
+        ));
+    }
+    notes
+}
+
+fn light() -> ModelNote {
+    note(
+        "light",
+        "Photon flux is linear between the points of the spectrum and the optical data, cut exactly at every gap, on \
+         a grid whose halving moves no current by more than 0.01 %; efficiency is over the spectrum's own integral \
+         times concentration.",
+        "Spectral change over the day, angle of the diffuse part, clouds.",
+        "The spectrum's source; CODATA 2018 constants",
+    )
+}
+
+fn optics(design: &Design) -> ModelNote {
+    let front = match design.optics {
+        OpticsModel::OnePass { front_reflectance, stated: true } => {
+            format!("{} % of the light is reflected at the front, as stated", percent(front_reflectance))
+        }
+        _ => "no reflectance is stated, so none is taken".to_owned(),
+    };
+    let mirror = design.lit_layers().any(|(_, layer)| layer.duty == Duty::Mirror);
+    let rear = if mirror {
+        "the mirror sends it back once, with its Fresnel reflectance where it is a metal with an index, else wholly"
+    } else {
+        "nothing returns from the rear"
+    };
+    ModelNote {
+        name: "optics one_pass".to_owned(),
+        does: format!(
+            "Beer–Lambert straight down through the lit layers in order; {front}; coats and other layers without \
+             absorption do nothing; {rear}."
+        ),
+        blind_to: "Interference, reflection between layers, the colour of the coat, scattering.".to_owned(),
+        cite: "Bouguer–Lambert–Beer law".to_owned(),
+    }
+}
+
+fn percent(share: f64) -> String {
+    crate::units::number(100.0 * share)
+}
+
+fn voltage(design: &Design) -> Vec<ModelNote> {
+    let uses = |wanted: fn(&VoltageModel) -> bool| design.junctions.iter().any(|j| wanted(&j.voltage));
+    let mut notes = Vec::new();
+    if uses(|model| !matches!(model, VoltageModel::Fit(_))) {
+        notes.push(note(
+            "voltage from radiative_limit",
+            "Each junction emits through the front hemisphere only, index 1, with the share it absorbs of light entering \
+             the front; ideal and direct edges with exact Bose–Einstein statistics at the junction's voltage, tables \
+             and tails in the diode form.",
+            "Emission into the layers below, re-absorption, and all recombination without light: an upper bound.",
+            "Shockley and Queisser, J. Appl. Phys. 32, 510 (1961); Rau, Phys. Rev. B 76, 085303 (2007)",
+        ));
+    }
+    if uses(|model| matches!(model, VoltageModel::Ere(_))) {
+        notes.push(note(
+            "voltage from ere",
+            "The radiative dark current divided by the stated external radiative efficiency, at every voltage and \
+             temperature.",
+            "A second slope of the curve, and the change of the efficiency with current and temperature.",
+            "Rau, Phys. Rev. B 76, 085303 (2007)",
+        ));
+    }
+    if uses(|model| matches!(model, VoltageModel::Fit(_))) {
+        notes.push(note(
+            "voltage from fit",
+            "Two diodes as measured; J01 follows T³ exp(−E_g/kT) and J02 T^1.5 exp(−E_g/2kT) from the temperature of \
+             the fit; a shunt stays as it is.",
+            "What the fit does not hold: light-dependent recombination, breakdown, edges of another size.",
+            "Sze and Ng, Physics of Semiconductor Devices (2007), chapter 2",
+        ));
+    }
+    if uses(|model| matches!(model, VoltageModel::Layers)) {
+        notes.push(note(
+            "voltage from layers: not evaluated yet",
+            "The radiative limit stands in for it.",
+            "Every loss in the layers: the voltage shown is an upper bound.",
+            "Shockley and Queisser, J. Appl. Phys. 32, 510 (1961)",
+        ));
+    }
+    notes
+}
+
+fn has(design: &Design, wanted: fn(&Optics) -> bool) -> bool {
+    design.lit_layers().any(|(_, layer)| layer.material.as_ref().is_some_and(|m| wanted(&m.optics)))
+}
+
+fn note(name: &str, does: &str, blind_to: &str, cite: &str) -> ModelNote {
+    ModelNote {
+        name: name.to_owned(),
+        does: does.to_owned(),
+        blind_to: blind_to.to_owned(),
+        cite: cite.to_owned(),
+    }
+}
