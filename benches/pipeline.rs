@@ -1,1 +1,231 @@
-fn main() {}
+//! What a user waits for, each beside its target: `cargo bench`.
+//!
+//! Plain clocks, medians of repeated runs, whole processes where the user starts one. Times hold
+//! for the machine they were taken on; the table says how many cores it has.
+
+#![expect(
+    clippy::print_stdout,
+    clippy::disallowed_methods,
+    clippy::unwrap_used,
+    reason = "a bench prints, prepares its own files, and may stop at the first surprise"
+)]
+
+use std::io::{BufRead, BufReader};
+use std::path::{Path, PathBuf};
+use std::process::{Child, Command, Stdio};
+use std::time::{Duration, Instant};
+
+use bandloom::parse::parse;
+use bandloom::source::{Source, SourceId};
+
+const TOOL: &str = env!("CARGO_BIN_EXE_bandloom");
+const DEMO: &str = concat!(env!("CARGO_MANIFEST_DIR"), "/stacks/kittiwake.stack");
+const RUNS: usize = 15;
+
+fn main() {
+    // `cargo test --benches` only asks whether it runs.
+    if std::env::args().any(|argument| argument == "--test") {
+        return;
+    }
+    let folder = tempfile::tempdir().unwrap();
+    let long = long_file();
+    let path = folder.path().join("long.stack");
+    std::fs::write(&path, &long).unwrap();
+
+    let mut table = Table::default();
+    let source = Source::new(SourceId(0), "long.stack", &long);
+    let parsed = median(RUNS, || {
+        let outcome = parse(&source);
+        assert!(outcome.findings.is_empty(), "{:?}", outcome.findings.iter().next());
+    });
+    table.time("parse 10,000 lines, in process", parsed, Some(22));
+    let static_check = median(RUNS, || run(&["check", "--static"], &path, folder.path()));
+    table.time("check --static 10,000 lines, whole process", static_check, Some(80));
+    let check = median(3, || run(&["check"], &path, folder.path()));
+    let stacks = long.matches("stack \"").count();
+    table.time(&format!("check 10,000 lines, {stacks} stacks evaluated"), check, None);
+
+    let demo = Path::new(DEMO);
+    table.time(
+        "check of the three-junction demo",
+        median(RUNS, || run(&["check"], demo, folder.path())),
+        None,
+    );
+    let mut into = 0;
+    let build = median(RUNS, || {
+        into += 1;
+        run(&["build", "--into", &format!("out{into}")], demo, folder.path());
+    });
+    table.time("build of the three-junction demo, to files", build, Some(40));
+
+    let (latency, memory) = watching(folder.path());
+    table.time("watch, save to finished sheet", latency, Some(80));
+    table.memory("watch of the three-junction demo, peak", memory, 60);
+    table.memory("build of the three-junction demo, peak", peak(&["build"], demo, folder.path()), 60);
+    table.memory(
+        "check --static of 10,000 lines, peak",
+        peak(&["check", "--static"], &path, folder.path()),
+        60,
+    );
+
+    let size = std::fs::metadata(TOOL).unwrap().len();
+    table.row("binary", &format!("{:.2} MB", size as f64 / 1e6), Some(("8 MB", size < 8_000_000)));
+    table.print();
+}
+
+/// Stacks of about thirty lines, all different, until there are 10,000 lines.
+fn long_file() -> String {
+    let mut text = String::from("// Many small designs over one wafer.\n\nlet coat = 95 nm\n\n");
+    let mut number = 0;
+    while text.lines().count() < 10_000 {
+        number += 1;
+        text.push_str(&one(number));
+    }
+    text
+}
+
+fn one(number: usize) -> String {
+    let base = 400 + number;
+    format!(
+        "stack \"Design {number}\" {{
+    note        \"Base of {base} nm; one of many.\"
+    growth      upright
+    light       AM1.5G
+    temperature 25 degC
+    optics      one_pass
+
+    fingers     {{ shading 3 %; series_resistance 20 mohm cm2 }}
+    coat        MgF2  coat
+    coat        ZnS   48 nm
+
+    junction top {{
+        window   AlInP matched   20 nm   n 2e18 /cm3 Si
+        emitter  GaInP matched   70 nm   n 2e18 /cm3 Si
+        base     GaInP matched   {base} nm   p 1e17 /cm3 Zn
+        bsf      AlGaInP matched of gap 2.1 eV   50 nm   p 1e18 /cm3 Zn
+        voltage  from ere 2 %
+    }}
+    tunnel {{
+        layer    Al0.3Ga0.7As   15 nm   p 8e19 /cm3 C
+        layer    GaInP matched  15 nm   n 2e19 /cm3 Te
+    }}
+    junction bottom {{
+        window   GaInP matched   50 nm    n 2e18 /cm3 Si
+        emitter  GaAs            100 nm   n 2e18 /cm3 Si
+        base     GaAs            3.5 um   p 1e17 /cm3 Zn
+        bsf      GaInP matched   60 nm    p 1e18 /cm3 Zn
+        voltage  from ere 2 %
+    }}
+    wafer    GaAs   350 um   p 1e18 /cm3 Zn
+}}
+
+"
+    )
+}
+
+fn median(runs: usize, mut work: impl FnMut()) -> Duration {
+    work();
+    let mut times: Vec<Duration> = (0..runs)
+        .map(|_| {
+            let start = Instant::now();
+            work();
+            start.elapsed()
+        })
+        .collect();
+    times.sort();
+    times[runs / 2]
+}
+
+fn command(arguments: &[&str], file: &Path, here: &Path) -> Command {
+    let mut command = Command::new(TOOL);
+    command.args(arguments).arg(file).current_dir(here);
+    command.stdin(Stdio::null()).stdout(Stdio::null()).stderr(Stdio::null());
+    command
+}
+
+/// Findings do not matter here, trouble does.
+fn run(arguments: &[&str], file: &Path, here: &Path) {
+    let status = command(arguments, file, here).status().unwrap();
+    assert!(matches!(status.code(), Some(0 | 1)), "{arguments:?}: {status}");
+}
+
+/// The most memory a process had, bytes; 0 where the system does not say.
+fn high_water(child: &Child) -> u64 {
+    let status = std::fs::read_to_string(format!("/proc/{}/status", child.id())).unwrap_or_default();
+    let line = status.lines().find_map(|line| line.strip_prefix("VmHWM:")).unwrap_or_default();
+    line.trim().trim_end_matches(" kB").parse::<u64>().map_or(0, |kilobytes| kilobytes * 1024)
+}
+
+/// Asked over and over while it runs: the mark only rises.
+fn peak(arguments: &[&str], file: &Path, here: &Path) -> u64 {
+    let mut child = command(arguments, file, here).spawn().unwrap();
+    let mut most = 0;
+    while child.try_wait().unwrap().is_none() {
+        most = most.max(high_water(&child));
+        std::thread::sleep(Duration::from_micros(200));
+    }
+    most
+}
+
+/// Saves the demo again and again under `watch`; the time from before the save to the status
+/// line, which is written after the files, and the memory the process ended with.
+fn watching(here: &Path) -> (Duration, u64) {
+    let file: PathBuf = here.join("demo.stack");
+    let text = std::fs::read_to_string(DEMO).unwrap();
+    std::fs::write(&file, &text).unwrap();
+    let mut child =
+        command(&["watch", "--into", "live"], &file, here).stderr(Stdio::piped()).spawn().unwrap();
+    let mut lines = BufReader::new(child.stderr.take().unwrap()).lines();
+    let mut next = || while !lines.next().unwrap().unwrap().starts_with('[') {};
+    next();
+    let mut number = 0;
+    let latency = median(RUNS, || {
+        number += 1;
+        std::fs::write(&file, format!("{text}\n// {number}\n")).unwrap();
+        next();
+    });
+    let memory = high_water(&child);
+    child.kill().unwrap();
+    child.wait().unwrap();
+    (latency, memory)
+}
+
+#[derive(Default)]
+struct Table {
+    rows: Vec<[String; 4]>,
+}
+
+impl Table {
+    fn row(&mut self, what: &str, value: &str, target: Option<(&str, bool)>) {
+        let (target, verdict) =
+            target.map_or(("", ""), |(target, met)| (target, if met { "met" } else { "MISSED" }));
+        self.rows.push([what, value, target, verdict].map(str::to_owned));
+    }
+
+    fn time(&mut self, what: &str, time: Duration, target: Option<u64>) {
+        let value = format!("{:.1} ms", time.as_secs_f64() * 1e3);
+        match target {
+            Some(target) => {
+                let met = time < Duration::from_millis(target);
+                self.row(what, &value, Some((&format!("{target} ms"), met)));
+            }
+            None => self.row(what, &value, None),
+        }
+    }
+
+    fn memory(&mut self, what: &str, bytes: u64, target: u64) {
+        let value = if bytes == 0 { "unknown".to_owned() } else { format!("{:.1} MB", bytes as f64 / 1e6) };
+        self.row(what, &value, Some((&format!("{target} MB"), bytes < target * 1_000_000)));
+    }
+
+    fn print(&self) {
+        let cores = std::thread::available_parallelism().map_or(0, usize::from);
+        println!("\nmedian of {RUNS} runs, {cores} cores\n");
+        for [what, value, target, verdict] in &self.rows {
+            println!(
+                "{what:<48}{value:>12}   under {target:>6}  {verdict}",
+                target = if target.is_empty() { "-" } else { target }
+            );
+        }
+    }
+}

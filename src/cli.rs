@@ -62,7 +62,14 @@ const TEMPLATE: &str = "{about-with-newline}\n{before-help}{usage-heading} {usag
 )]
 struct Arguments {
     /// Colour: always, never, or as the terminal and the environment say
-    #[arg(long, global = true, value_enum, default_value_t, value_name = "WHEN")]
+    #[arg(
+        long,
+        global = true,
+        value_enum,
+        default_value_t,
+        value_name = "auto|always|never",
+        hide_possible_values = true
+    )]
     color: ColorWish,
     #[command(subcommand)]
     command: Command,

@@ -5,13 +5,15 @@
 
 use std::path::{Path, PathBuf};
 
+use rayon::prelude::*;
+
 use crate::check::{self, Accepted};
 use crate::design::Design;
 use crate::evaluate;
 use crate::finding::{Findings, Severity};
 use crate::resolve::{self, Overrides};
 use crate::results::Results;
-use crate::source::{Sources, Span};
+use crate::source::{Sources, Span, shown};
 use crate::world::{ReadError, World};
 
 /// What a run may be told.
@@ -49,9 +51,18 @@ pub struct Compiled {
     pub findings: Findings,
     /// Why the file itself could not be read; then there is nothing else.
     pub unreadable: Option<ReadError>,
+    /// Whether evaluation was asked for.
+    pub evaluated: bool,
 }
 
 impl Compiled {
+    /// Whether something was to be evaluated, was not, and nothing says why: a fault of the
+    /// program, which must not pass for success.
+    pub fn unexplained(&self) -> bool {
+        let missing = self.stacks.is_empty() || self.stacks.iter().any(|stack| stack.results.is_none());
+        self.evaluated && self.unreadable.is_none() && missing && self.findings.is_empty()
+    }
+
     /// Whether the run counts as failed: an error was found, or a warning under `strict`.
     pub fn failed(&self, strict: bool) -> bool {
         self.findings.has_errors() || (strict && self.findings.count(Severity::Warning) > 0)
@@ -69,6 +80,7 @@ pub fn compile(world: &dyn World, path: &Path, options: &Options) -> Compiled {
         stacks: Vec::new(),
         findings: Findings::new(),
         unreadable: None,
+        evaluated: !options.no_evaluation,
     };
     if let Err(why) = world.text(path) {
         compiled.unreadable = Some(why);
@@ -76,23 +88,21 @@ pub fn compile(world: &dyn World, path: &Path, options: &Options) -> Compiled {
     }
     let resolved = resolve::resolve(world, &mut compiled.sources, path, &options.overrides);
     let designs = resolved.value.unwrap_or_default();
-    let (mut own, shared) = by_stack(&designs, resolved.findings);
+    let (own, shared) = by_stack(&designs, resolved.findings);
     let blocked = shared.has_errors();
     compiled.findings.extend(shared);
 
     let source = shown(path);
-    for (design, early) in designs.into_iter().zip(own.drain(..)) {
-        let stack = finish(design, early, &source, blocked || options.no_evaluation);
+    let no_evaluation = blocked || options.no_evaluation;
+    // Collected in the order of the file, whatever the number of threads.
+    let work: Vec<(Design, Findings)> = designs.into_iter().zip(own).collect();
+    compiled.stacks =
+        work.into_par_iter().map(|(design, early)| finish(design, early, &source, no_evaluation)).collect();
+    for stack in &compiled.stacks {
         compiled.findings.extend(stack.findings.clone());
-        compiled.stacks.push(stack);
     }
     compiled.findings = compiled.findings.sorted();
     compiled
-}
-
-/// A path as shown to people and written to files: as given, with forward slashes.
-pub fn shown(path: &Path) -> String {
-    path.to_string_lossy().replace('\\', "/")
 }
 
 /// Checks, evaluates where nothing stands against it, checks again with figures, and accepts.

@@ -144,6 +144,11 @@ impl Source {
     }
 }
 
+/// A path as shown to people and written to files: as given, with forward slashes.
+pub fn shown(path: &Path) -> String {
+    path.to_string_lossy().replace('\\', "/")
+}
+
 /// Every source read in one run, so that a span can be shown whichever file it lies in.
 #[derive(Clone, Debug, Default)]
 pub struct Sources {

@@ -11,6 +11,7 @@ mod bell;
 mod seen;
 
 use bell::Bell;
+pub(crate) use seen::stacks_in;
 pub use seen::{Mark, Seen};
 
 /// How to watch.

@@ -2,7 +2,12 @@
 //! sources, the sheet, and the rules of the house.
 
 mod integration {
+    mod cli;
     mod designs;
+    mod docs;
     mod house_rules;
     mod physics;
+    mod robustness;
+    mod tool;
+    mod watching;
 }

@@ -6,7 +6,8 @@ use crate::cli::Exit;
 use crate::cli::console::{Console, Stream};
 use crate::cli::findings::{Format, Telling, counted};
 use crate::cli::input::Input;
-use crate::compile::{Compiled, Options, shown};
+use crate::compile::{Compiled, Options};
+use crate::source::shown;
 
 const EXAMPLES: &str = "\
 Examples:
@@ -38,7 +39,7 @@ pub(crate) fn run(command: &Check, console: &Console) -> Exit {
             text.push_str(&closing(compiled, command.no_evaluation));
         }
     }
-    let exit = command.telling.exit(&all);
+    let exit = command.telling.exit(&all, console);
     exit.max(console.result(&text))
 }
 

@@ -4,17 +4,18 @@ use clap::{Args, ValueEnum};
 
 use crate::cli::Exit;
 use crate::cli::console::{Console, Stream};
-use crate::compile::{Compiled, shown};
-use crate::finding::json::Document;
+use crate::compile::Compiled;
+use crate::finding::json::{AcceptedEntry, Document, Entry, Unreadable};
 use crate::finding::render::render;
 use crate::finding::{Severity, github};
+use crate::source::shown;
 use crate::world::ReadError;
 
 /// How findings are told.
 #[derive(Args, Clone, Debug)]
 pub(crate) struct Telling {
-    /// How findings are written
-    #[arg(long, value_enum, default_value_t, value_name = "FORMAT")]
+    /// How findings are written: framed for people, one JSON document, annotations on a pull request
+    #[arg(long, value_enum, default_value_t, value_name = "human|json|github", hide_possible_values = true)]
     pub(crate) format: Format,
     /// Warnings fail the run too
     #[arg(long)]
@@ -48,10 +49,16 @@ impl Telling {
     }
 
     /// What `all` mean for the exit code.
-    pub(crate) fn exit(&self, all: &[Compiled]) -> Exit {
+    pub(crate) fn exit(&self, all: &[Compiled], console: &Console) -> Exit {
         let each = all.iter().map(|compiled| {
             if compiled.unreadable.is_some() {
                 Exit::Trouble
+            } else if compiled.unexplained() {
+                let path = shown(&compiled.path);
+                console.trouble(
+                    &format!("`{path}` was not evaluated, and no finding says why"),
+                    &["this is a fault of bandloom; please report it with the file"],
+                )
             } else if compiled.failed(self.strict) {
                 Exit::Found
             } else {
@@ -102,12 +109,27 @@ impl Telling {
     fn json(&self, all: &[Compiled]) -> String {
         let mut document = Document::new();
         for compiled in all {
-            document.add(compiled, self.limit());
+            add(&mut document, compiled, self.limit());
         }
         // Strings and whole numbers only: this cannot fail.
         let mut text = serde_json::to_string_pretty(&document).unwrap_or_default();
         text.push('\n');
         text
+    }
+}
+
+/// Adds what came of one file; at most `limit` findings stand in the document in all.
+fn add(document: &mut Document, compiled: &Compiled, limit: Option<usize>) {
+    if let Some(why) = &compiled.unreadable {
+        document.unreadable.push(Unreadable { file: shown(&compiled.path), message: why.worded() });
+    }
+    let entry = |finding| Entry::of(finding, &compiled.sources);
+    let room = limit.map_or(usize::MAX, |limit| limit.saturating_sub(document.findings.len()));
+    document.findings.extend(compiled.findings.iter().take(room).map(entry));
+    document.left_out += compiled.findings.0.len().saturating_sub(room);
+    for accepted in compiled.stacks.iter().flat_map(|stack| &stack.accepted) {
+        let because = accepted.because.clone();
+        document.accepted.push(AcceptedEntry { finding: entry(&accepted.finding), because });
     }
 }
 

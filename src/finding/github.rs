@@ -1,8 +1,7 @@
 //! Findings as workflow commands, which GitHub shows beside the lines of a pull request.
 
-use crate::compile::shown;
 use crate::finding::{Finding, Severity};
-use crate::source::Sources;
+use crate::source::{Sources, shown};
 
 /// One finding as one line, ended by a line break.
 ///

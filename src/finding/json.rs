@@ -6,10 +6,8 @@
 
 use serde::Serialize;
 
-use crate::check::Accepted;
-use crate::compile::{Compiled, shown};
-use crate::finding::{Finding, Severity};
-use crate::source::{Sources, Span};
+use crate::finding::Finding;
+use crate::source::{Sources, Span, shown};
 
 /// Version of the findings document.
 pub const SCHEMA_VERSION: u32 = 1;
@@ -155,27 +153,6 @@ impl Document {
             unreadable: Vec::new(),
             left_out: 0,
         }
-    }
-
-    /// Adds what came of one file; at most `limit` findings stand in the document in all.
-    pub fn add(&mut self, compiled: &Compiled, limit: Option<usize>) {
-        if let Some(why) = &compiled.unreadable {
-            let file = shown(&compiled.path);
-            self.unreadable.push(Unreadable { file, message: why.worded() });
-        }
-        let room = limit.map_or(usize::MAX, |limit| limit.saturating_sub(self.findings.len()));
-        let entries = compiled.findings.iter().map(|finding| Entry::of(finding, &compiled.sources));
-        self.findings.extend(entries.take(room));
-        self.left_out += compiled.findings.0.len().saturating_sub(room);
-        for Accepted { finding, because } in compiled.stacks.iter().flat_map(|stack| &stack.accepted) {
-            let finding = Entry::of(finding, &compiled.sources);
-            self.accepted.push(AcceptedEntry { finding, because: because.clone() });
-        }
-    }
-
-    /// How many findings of one severity stand in the document.
-    pub fn count(&self, severity: Severity) -> usize {
-        self.findings.iter().filter(|entry| entry.severity == severity.word()).count()
     }
 }
 

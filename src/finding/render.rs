@@ -11,10 +11,9 @@ use miette::{
     SourceCode, SourceSpan, SpanContents, ThemeCharacters, ThemeStyles,
 };
 
-use crate::compile::shown;
 use crate::finding::excerpt::{Excerpt, visible};
 use crate::finding::{Finding, Label, Severity};
-use crate::source::Sources;
+use crate::source::{Sources, shown};
 
 /// How the terminal wants it.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]

@@ -2,13 +2,14 @@
 
 use std::path::Path;
 
-use bandloom::compile::{Options, compile, shown};
+use bandloom::compile::{Options, compile};
 use bandloom::design::Design;
 use bandloom::finding::Findings;
 use bandloom::parse::parse;
 use bandloom::resolve::{Overrides, resolve};
 use bandloom::results::Results;
 use bandloom::source::Sources;
+use bandloom::source::shown;
 use bandloom::world::World;
 
 /// How far a fixture goes.
