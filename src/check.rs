@@ -8,6 +8,7 @@ use crate::design::Design;
 use crate::finding::{Finding, Findings, Severity};
 use crate::growth::{self, LayerGrowth};
 use crate::results::Results;
+use crate::units::{self, Dimension};
 
 mod accept;
 mod current_mismatch;
@@ -177,4 +178,34 @@ pub fn check(design: &Design, results: Option<&Results>, evaluated: Findings) ->
 /// The rule of that code.
 pub fn rule(code: &str) -> Option<&'static Rule> {
     RULES.iter().copied().find(|rule| rule.code == code)
+}
+
+/// What `limit CODE value` measures; `None` where the code has no threshold. Shares are plain
+/// numbers.
+pub fn limit_dimension(code: &str) -> Option<Dimension> {
+    let threshold = rule(code)?.threshold?;
+    units::parse(threshold.unit).ok().map(|unit| unit.dimension)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn codes_are_told_apart_and_have_pages() {
+        for (index, rule) in RULES.iter().enumerate() {
+            assert!(RULES[..index].iter().all(|other| other.code != rule.code), "{} twice", rule.code);
+            assert!(crate::why::page(rule.code).is_some(), "{} has no page", rule.code);
+        }
+    }
+
+    #[test]
+    fn every_threshold_has_a_dimension() {
+        for rule in RULES.iter().filter(|rule| rule.threshold.is_some()) {
+            assert!(limit_dimension(rule.code).is_some(), "unit of {} cannot be read", rule.code);
+        }
+        assert_eq!(limit_dimension("lattice.mismatch"), Some(Dimension::NONE));
+        assert_eq!(limit_dimension("gap.indirect-absorber"), Some(Dimension::LENGTH));
+        assert_eq!(limit_dimension("gap.order"), None);
+    }
 }
