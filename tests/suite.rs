@@ -7,6 +7,8 @@
 mod expect;
 #[path = "suite/files.rs"]
 mod files;
+#[path = "suite/harness.rs"]
+mod harness;
 #[path = "suite/numbers.rs"]
 mod numbers;
 #[path = "suite/pages.rs"]
@@ -18,5 +20,6 @@ fn main() -> std::process::ExitCode {
     let arguments = libtest_mimic::Arguments::from_args();
     let mut trials = files::trials();
     trials.extend(pages::trials());
+    trials.extend(harness::trials());
     libtest_mimic::run(&arguments, trials).exit_code()
 }
