@@ -2,10 +2,9 @@
 
 use super::junctions::{describe, letter, opposite, sign};
 use super::{Context, Report, Rule};
-use crate::design::{Duty, Extent, InterconnectKind, Layer, VoltageModel};
+use crate::design::{Duty, Extent, InterconnectKind, Layer, Polarity, VoltageModel};
 use crate::finding::{Finding, Severity};
 use crate::materials::MaterialClass;
-use crate::syntax::Polarity;
 
 pub(super) static RULE: Rule = Rule {
     code: "doping.missing",

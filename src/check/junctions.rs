@@ -1,9 +1,8 @@
 //! Facts about a junction that several rules share: what absorbs, its gap, which side is which.
 
-use crate::design::{Design, Duty, Extent, Junction, Layer, Place};
+use crate::design::{Design, Duty, Extent, Junction, Layer, Place, Polarity};
 use crate::growth::ROOM_K;
 use crate::materials::{Gap, MaterialClass};
-use crate::syntax::Polarity;
 
 /// One junction with its layers in the finished cell.
 pub(crate) struct JunctionFacts<'a> {

@@ -3,10 +3,9 @@
 use super::junctions::{JunctionFacts, describe, letter, opposite, sign, stays};
 use super::polarity_same::shared_sign;
 use super::{Context, Report, Rule};
-use crate::design::{Duty, Growth, Layer, Place, Terminals};
+use crate::design::{Duty, Growth, Layer, Place, Polarity, Terminals};
 use crate::finding::{Finding, Severity};
 use crate::source::Span;
-use crate::syntax::Polarity;
 use crate::units::{Dimension, trade};
 
 pub(super) static RULE: Rule = Rule {

@@ -2,9 +2,8 @@
 
 use super::junctions::{JunctionFacts, letter, opposite, sign};
 use super::{Context, Report, Rule};
-use crate::design::{Doping, Duty, Layer};
+use crate::design::{Doping, Duty, Layer, Polarity};
 use crate::finding::{Finding, Severity};
-use crate::syntax::Polarity;
 use crate::units::Dimension;
 use crate::units::trade;
 

@@ -2,9 +2,8 @@
 
 use super::junctions::{JunctionFacts, letter, opposite};
 use super::{Context, Report, Rule};
-use crate::design::Terminals;
+use crate::design::{Polarity, Terminals};
 use crate::finding::{Finding, Severity};
-use crate::syntax::Polarity;
 
 pub(super) static RULE: Rule = Rule {
     code: "tunnel.missing",

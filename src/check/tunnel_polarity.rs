@@ -2,9 +2,8 @@
 
 use super::junctions::{letter, opposite, sign};
 use super::{Context, Report, Rule};
-use crate::design::{Interconnect, Layer};
+use crate::design::{Interconnect, Layer, Polarity};
 use crate::finding::{Finding, Severity};
-use crate::syntax::Polarity;
 use crate::units::{Dimension, trade};
 
 pub(super) static RULE: Rule = Rule {
