@@ -7,11 +7,13 @@
 
 use std::sync::Arc;
 
+pub mod alloy;
 pub mod constants;
 pub mod elements;
 pub mod formula;
 pub mod library;
 pub mod optics;
+pub mod table;
 
 use constants::Constants;
 use optics::Optics;

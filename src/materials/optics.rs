@@ -108,6 +108,18 @@ impl IndexTable {
         (n, k0 + share * (k1 - k0))
     }
 
+    /// Drops the points outside `low..=high` m, unless none would be left.
+    pub fn clip(&mut self, low: f64, high: f64) {
+        let inside = |wavelength: &f64| (low * (1.0 - 1e-9)..=high * (1.0 + 1e-9)).contains(wavelength);
+        let from = self.wavelength_m.iter().position(inside);
+        let to = self.wavelength_m.iter().rposition(inside);
+        let (Some(from), Some(to)) = (from, to) else { return };
+        for column in [&mut self.wavelength_m, &mut self.n, &mut self.k] {
+            column.truncate(to + 1);
+            column.drain(..from);
+        }
+    }
+
     /// The wavelength in the table that answers for `wavelength_m` with the edge moved.
     fn own_wavelength(&self, wavelength_m: f64, shift_ev: f64) -> f64 {
         if shift_ev == 0.0 {

@@ -1,92 +1,193 @@
-//! Material phrases: names, formulas, families whose composition is to be worked out.
+//! `material` and `alloy` items, and the material phrases of layers, to worked-out materials.
+//!
+//! The built-in library goes through the same door as a user's file. Every definition is read the
+//! first time it is asked for, and not before.
 
 use std::collections::BTreeMap;
+use std::sync::Arc;
 
-use crate::materials::SharedMaterial;
+use crate::materials::alloy::{Compound, Family};
+use crate::materials::{formula, library};
+use crate::parse::parse;
 use crate::resolve::files::Files;
+use crate::resolve::materials::blocks::{Reader, Texts};
 use crate::resolve::quantities::Scope;
-use crate::source::Span;
-use crate::syntax::{Argument, Block, MaterialPhrase, Named};
+use crate::source::{Source, SourceId};
+use crate::syntax::{Argument, Item, Named, Statement};
 
-/// Statements of a layer's block that belong to its material: `ideal` and `direct` take them.
-pub const MODEL_PROPERTIES: &[&str] = &["coefficient", "urbach", "index"];
+mod alloys;
+mod blocks;
+mod formulas;
+mod index;
+mod listing;
+mod models;
+mod phrases;
+mod unsolved;
+mod values;
 
-/// Library and user materials, by name.
+pub use listing::{Entry, entries, look_up, with_gap};
+pub use models::MODEL_PROPERTIES;
+pub use phrases::{FreePart, Phrase, Reference, Resolved, materials_of};
+
+/// What a name stands for.
+#[derive(Clone, Debug)]
+pub enum Definition {
+    /// One composition.
+    Compound(Arc<Compound>),
+    /// A family between end members.
+    Family(Arc<Family>),
+}
+
+/// Which keyword opened an item.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+enum ItemKind {
+    Material,
+    Alloy,
+}
+
+/// A user's item and the files it names.
+#[derive(Clone, Debug)]
+struct UserItem {
+    kind: ItemKind,
+    item: Named,
+    texts: BTreeMap<String, (SourceId, Arc<str>)>,
+}
+
+/// Every material and family in sight: the user's items before the built-in ones.
 #[derive(Debug, Default)]
-pub struct Library {}
+pub struct Library {
+    user: BTreeMap<String, UserItem>,
+    /// `None` while it is being read, or where it could not be.
+    read: BTreeMap<String, Option<Definition>>,
+}
 
 impl Library {
-    /// The built-in library.
+    /// The built-in library alone.
     pub fn new() -> Self {
         Self::default()
     }
 
-    /// Adds a user's `material` item.
-    pub fn add_material(&mut self, _scope: &mut Scope, _files: &mut Files<'_>, _item: &Named) {}
+    /// Adds a user's `material` item. It is read when it is first asked for, or by
+    /// [`Library::finish`]; items may use each other in any order.
+    pub fn add_material(&mut self, scope: &mut Scope, files: &mut Files<'_>, item: &Named) {
+        self.add(ItemKind::Material, scope, files, item);
+    }
 
-    /// Adds a user's `alloy` item.
-    pub fn add_alloy(&mut self, _scope: &mut Scope, _files: &mut Files<'_>, _item: &Named) {}
+    /// Adds a user's `alloy` item, as [`Library::add_material`].
+    pub fn add_alloy(&mut self, scope: &mut Scope, files: &mut Files<'_>, item: &Named) {
+        self.add(ItemKind::Alloy, scope, files, item);
+    }
+
+    /// Reads every user's item that nothing has asked for, so that its mistakes are reported too.
+    pub fn finish(&mut self, scope: &mut Scope) {
+        let names: Vec<String> = self.user.keys().cloned().collect();
+        for name in names {
+            self.named(&name, scope);
+        }
+    }
+
+    fn add(&mut self, kind: ItemKind, scope: &mut Scope, files: &mut Files<'_>, item: &Named) {
+        let mut texts = BTreeMap::new();
+        read_tables(&item.block.statements, scope, files, &mut texts);
+        let own = UserItem { kind, item: item.clone(), texts };
+        self.user.entry(item.name.value.clone()).or_insert(own);
+    }
+
+    /// What `name` stands for. A family may be written with its elements in another order
+    /// (`InGaAs` for `GaInAs`).
+    pub fn find(&mut self, name: &str, scope: &mut Scope) -> Option<Definition> {
+        if let Some(found) = self.named(name, scope) {
+            return Some(found);
+        }
+        if name.contains(|c: char| c.is_ascii_digit()) {
+            return None;
+        }
+        self.of_elements(&formula::elements(name)?, scope)
+    }
+
+    /// Whether a name is defined, be it rightly or wrongly.
+    fn is_defined(&self, name: &str) -> bool {
+        self.user.contains_key(name) || library::FILES.iter().any(|(known, _)| *known == name)
+    }
+
+    /// The family or compound of exactly these elements, in any order.
+    fn of_elements(&mut self, elements: &[String], scope: &mut Scope) -> Option<Definition> {
+        let sorted = |mut elements: Vec<String>| {
+            elements.sort_unstable();
+            elements
+        };
+        let wanted = sorted(elements.to_vec());
+        let same = |name: &&str| formula::elements(name).is_some_and(|own| sorted(own) == wanted);
+        let found = self.names().into_iter().find(same)?.to_owned();
+        self.named(&found, scope)
+    }
+
+    fn named(&mut self, name: &str, scope: &mut Scope) -> Option<Definition> {
+        if let Some(known) = self.read.get(name) {
+            return known.clone();
+        }
+        let user = self.user.get(name).cloned();
+        let built_in = library::FILES.iter().find(|(known, _)| *known == name);
+        // An item that names itself, directly or in a circle, finds nothing here.
+        self.read.insert(name.to_owned(), None);
+        let definition = match (user, built_in) {
+            (Some(own), _) => Reader::new(self, scope, Texts::User(&own.texts)).item(own.kind, &own.item),
+            (None, Some((name, text))) => self.read_built_in(name, text, &mut Scope::new()),
+            (None, None) => {
+                self.read.remove(name);
+                return None;
+            }
+        };
+        self.read.insert(name.to_owned(), definition.clone());
+        definition
+    }
+
+    /// Reads one file of the library; what it has to say goes to `scope`. The tests keep that
+    /// empty, so its spans, which no [`crate::source::Sources`] knows, are never shown.
+    fn read_built_in(&mut self, name: &str, text: &str, scope: &mut Scope) -> Option<Definition> {
+        let source = Source::new(SourceId(u32::MAX), format!("{name}.stack"), text);
+        let parsed = parse(&source);
+        for finding in parsed.findings.0 {
+            scope.report(finding);
+        }
+        let items = parsed.value?.items;
+        let (kind, item) = items.iter().find_map(|item| match item {
+            Item::Material(item) => Some((ItemKind::Material, item)),
+            Item::Alloy(item) => Some((ItemKind::Alloy, item)),
+            _ => None,
+        })?;
+        Reader::new(self, scope, Texts::BuiltIn).item(kind, item)
+    }
+
+    /// Every name, the user's first, then the library's in its own order.
+    pub fn names(&self) -> Vec<&str> {
+        let user = self.user.keys().map(String::as_str);
+        user.chain(library::FILES.iter().map(|(name, _)| *name)).collect()
+    }
 }
 
-/// A layer that another is matched to.
-#[derive(Clone, Debug)]
-pub struct Reference {
-    /// Path of the layer, for wording: `wafer`.
-    pub path: String,
-    /// What it is made of.
-    pub material: SharedMaterial,
-    /// Where it was written.
-    pub span: Span,
+/// Reads every index table an item names.
+fn read_tables(
+    statements: &[Statement],
+    scope: &mut Scope,
+    files: &mut Files<'_>,
+    texts: &mut BTreeMap<String, (SourceId, Arc<str>)>,
+) {
+    for statement in statements {
+        let Statement::Property(property) = statement else { continue };
+        if ["table", "sample", "parent"].contains(&property.name.value.as_str()) {
+            for argument in &property.arguments {
+                let Argument::Text(path) = argument else { continue };
+                if let Some(id) = files.read(scope, path.span.source, path, "index table") {
+                    texts.insert(path.value.clone(), (id, files.sources.get(id).text.clone()));
+                }
+            }
+        }
+        if let Some(block) = &property.block {
+            read_tables(&block.statements, scope, files, texts);
+        }
+    }
 }
 
-/// A phrase and what surrounds it.
-#[derive(Clone, Copy, Debug)]
-pub struct Phrase<'a> {
-    /// As written.
-    pub phrase: &'a MaterialPhrase,
-    /// `absorbs all_above_gap`, `absorbs 95 %`, where stated on the line.
-    pub absorbs: Option<&'a Argument>,
-    /// The layer's block, for what the models without a chemistry need (see
-    /// [`MODEL_PROPERTIES`]); its other statements are the layer's own business.
-    pub block: Option<&'a Block>,
-    /// The relaxed lattice beneath in growth order; `None` where there is none, or where it could
-    /// not be resolved (see `beneath_unknown`).
-    pub beneath: Option<&'a Reference>,
-    /// Whether a layer beneath is wrong and was reported: then nothing is said of a missing
-    /// lattice, and a phrase that needs one gives `None` in silence.
-    pub beneath_unknown: bool,
-    /// Layers grown before this one, by path, duty word and alias, for `matched to buffer`.
-    pub named: &'a BTreeMap<String, Reference>,
-    /// Growth temperature where stated, else 298.15 K.
-    pub temperature_k: f64,
-    /// Into how many steps a graded phrase is cut, sunward first; 1 elsewhere.
-    pub steps: usize,
-}
-
-/// A quantity of a phrase that is left free.
-#[derive(Clone, Debug)]
-pub struct FreePart {
-    /// `gap`, `composition.In`: appended to the layer's path.
-    pub what: String,
-    /// SI bounds.
-    pub range: (f64, f64),
-    /// SI value in force; `None` while not settled.
-    pub value: Option<f64>,
-    /// From the number or `free` on.
-    pub span: Span,
-}
-
-/// What a phrase stands for.
-#[derive(Clone, Debug, Default)]
-pub struct Resolved {
-    /// One material, or one a step where graded, in the order of the phrase's bounds. Empty where
-    /// a free value is not settled.
-    pub materials: Vec<SharedMaterial>,
-    /// What it leaves free.
-    pub free: Vec<FreePart>,
-}
-
-/// Resolves a phrase. `None` where it is wrong, which is reported in `scope`.
-pub fn materials_of(_library: &mut Library, _scope: &mut Scope, _phrase: &Phrase<'_>) -> Option<Resolved> {
-    None
-}
+#[cfg(test)]
+mod tests;

@@ -1,0 +1,410 @@
+//! Alloy families: end members, bowing, ordering, and the material at one composition.
+//!
+//! A family mixes elements on one or both sublattices of zinc blende. Lattice and elastic
+//! constants follow Vegard's rule; gaps and the constants that bow follow
+//! `P = Σ w·P_member − bowing`, at each temperature, so that the laws of the end members stay
+//! laws. Quaternaries take the bowing of the ternaries around them by the surface interpolation
+//! of Glisson et al., J. Electron. Mater. 7, 1 (1978) and Williams et al., J. Electron. Mater. 7,
+//! 639 (1978), written for both kinds in one formula.
+
+use std::collections::BTreeMap;
+use std::sync::Arc;
+
+use crate::materials::constants::Constants;
+use crate::materials::elements::atomic_weight;
+use crate::materials::optics::Optics;
+use crate::materials::{
+    Bands, Elastic, GapKind, GapLaw, Lattice, Material, MaterialClass, Origin, OriginKind,
+    ROOM_TEMPERATURE_K, SharedMaterial, Valley, trim,
+};
+
+pub mod blend;
+pub mod solve;
+
+/// Avogadro constant, 1/mol (exact, SI 2019).
+const AVOGADRO: f64 = 6.022_140_76e23;
+
+/// A compound with a fixed composition and what only alloys of it need.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Compound {
+    /// One line for lists.
+    pub about: String,
+    /// Everything of the material itself.
+    pub material: SharedMaterial,
+    /// Photon energies of the critical points E1 and E2 at 300 K, eV.
+    pub critical_ev: Option<(f64, f64)>,
+}
+
+/// The law of one valley of a compound.
+fn law(material: &Material, kind: GapKind) -> Option<GapLaw> {
+    let bands = material.bands.as_ref()?;
+    let valley = match kind {
+        GapKind::Direct => &bands.gamma,
+        GapKind::IndirectX => &bands.x,
+        GapKind::IndirectL => &bands.l,
+    };
+    valley.as_ref()?.members.first().map(|(_, law)| *law)
+}
+
+/// Fractions of the elements of the group III and the group V sublattice, each summing to 1.
+pub type Composition = [Vec<f64>; 2];
+
+/// A bowing parameter `constant + slope·x`, `x` the fraction of the pair's first element.
+#[derive(Clone, Copy, Debug, PartialEq, Default)]
+pub struct BowingLaw {
+    /// At `x` = 0.
+    pub constant: f64,
+    /// Per unit of `x`.
+    pub slope: f64,
+}
+
+/// The bowing of one ternary: two elements mixed on one sublattice, one element on the other.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Bowing {
+    /// The mixed elements; the first is the one a slope counts.
+    pub pair: [String; 2],
+    /// The element of the other sublattice.
+    pub with: String,
+    /// By quantity: `direct`, `x`, `l`, or a name of
+    /// [`constants::NAMES`](crate::materials::constants::NAMES).
+    pub laws: BTreeMap<&'static str, BowingLaw>,
+}
+
+/// Spontaneous ordering lowers the direct gap of a family below that of the random alloy.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Ordering {
+    /// The element whose fraction marks the reference composition.
+    pub element: String,
+    /// That fraction.
+    pub fraction: f64,
+    /// The direct gap there at 300 K by default, eV.
+    pub gap_ev: f64,
+    /// Lowest and highest gap met there, eV.
+    pub span_ev: (f64, f64),
+}
+
+/// How a family answers to light.
+#[derive(Clone, Debug, PartialEq)]
+pub enum FamilyIndex {
+    /// No data, no model.
+    None,
+    /// Tables at some compositions, interpolated along critical-point energies.
+    Blend(blend::Blend),
+    /// One table of another material, moved and scaled.
+    Shifted(blend::Shifted),
+}
+
+/// A family between end members.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Family {
+    /// `AlGaInP`
+    pub name: String,
+    /// One line for lists.
+    pub about: String,
+    /// Elements of the group III and the group V sublattice, in the order of the label.
+    pub sites: [Vec<String>; 2],
+    /// End members, `[group III][group V]`.
+    pub members: Vec<Vec<Arc<Compound>>>,
+    /// Bowing of every ternary around it.
+    pub bowings: Vec<Bowing>,
+    /// Ordering, where the family shows it.
+    pub ordering: Option<Ordering>,
+    /// Index and absorption.
+    pub index: FamilyIndex,
+    /// Where its own numbers come from.
+    pub origins: Vec<Origin>,
+    /// Caution classes.
+    pub cautions: Vec<String>,
+}
+
+impl Family {
+    /// How many fractions have to be said before the composition is known.
+    pub fn freedom(&self) -> usize {
+        self.sites.iter().map(|site| site.len().saturating_sub(1)).sum()
+    }
+
+    /// Sublattice and place of an element.
+    pub fn position(&self, element: &str) -> Option<(usize, usize)> {
+        self.sites.iter().enumerate().find_map(|(site, elements)| {
+            elements.iter().position(|known| known == element).map(|at| (site, at))
+        })
+    }
+
+    /// Weight and end member, in a fixed order; the weights sum to 1.
+    fn weighted(&self, composition: &Composition) -> Vec<(f64, &Material)> {
+        let mut all = Vec::new();
+        for (row, three) in self.members.iter().zip(&composition[0]) {
+            for (member, five) in row.iter().zip(&composition[1]) {
+                all.push((three * five, &*member.material));
+            }
+        }
+        all
+    }
+
+    /// Relaxed lattice constant in Å by Vegard's rule at `temperature_k`.
+    ///
+    /// `None` where an end member has no lattice.
+    pub fn lattice_constant(&self, composition: &Composition, temperature_k: f64) -> Option<f64> {
+        self.lattice(composition).map(|lattice| lattice.at(temperature_k))
+    }
+
+    fn lattice(&self, composition: &Composition) -> Option<Lattice> {
+        let mut sum = Lattice { a300_angstrom: 0.0, slope_angstrom_per_k: 0.0 };
+        for (weight, member) in self.weighted(composition) {
+            let own = member.lattice?;
+            sum.a300_angstrom += weight * own.a300_angstrom;
+            sum.slope_angstrom_per_k += weight * own.slope_angstrom_per_k;
+        }
+        Some(sum)
+    }
+
+    /// What bowing takes off a quantity:
+    /// `Σ p_ab y_c u(1−u) C_abc(u) / Σ p_ab` over pairs `ab` of either sublattice and elements
+    /// `c` of the other, with `p_ab = x_a x_b` and `u = (1 + x_a − x_b)/2`.
+    fn bowing(&self, composition: &Composition, quantity: &str) -> f64 {
+        let (mut sum, mut weights) = (0.0, 0.0);
+        for site in 0..2 {
+            let (elements, fractions) = (&self.sites[site], &composition[site]);
+            for first in 0..elements.len() {
+                for second in first + 1..elements.len() {
+                    let pair = fractions[first] * fractions[second];
+                    if pair <= 0.0 {
+                        continue;
+                    }
+                    weights += pair;
+                    let share = (1.0 + fractions[first] - fractions[second]) / 2.0;
+                    let others = self.sites[1 - site].iter().zip(&composition[1 - site]);
+                    for (other, fraction) in others {
+                        let names = [&elements[first], &elements[second]];
+                        let law = self.bowing_law(names, other, quantity, share);
+                        sum += pair * fraction * share * (1.0 - share) * law;
+                    }
+                }
+            }
+        }
+        if weights > 0.0 { sum / weights } else { 0.0 }
+    }
+
+    fn bowing_law(&self, pair: [&String; 2], with: &str, quantity: &str, share: f64) -> f64 {
+        for bowing in self.bowings.iter().filter(|bowing| bowing.with == with) {
+            let of_first = if [&bowing.pair[0], &bowing.pair[1]] == pair {
+                share
+            } else if [&bowing.pair[1], &bowing.pair[0]] == pair {
+                1.0 - share
+            } else {
+                continue;
+            };
+            let law = bowing.laws.get(quantity).copied().unwrap_or_default();
+            return law.constant + law.slope * of_first;
+        }
+        0.0
+    }
+
+    /// The valleys at a composition with the default ordering.
+    pub fn bands(&self, composition: &Composition) -> Bands {
+        let mut bands = self.random_bands(composition);
+        if let (Some(gamma), shift) = (&mut bands.gamma, self.ordering_shift(composition)) {
+            gamma.offset_ev += shift;
+        }
+        bands
+    }
+
+    fn random_bands(&self, composition: &Composition) -> Bands {
+        let valley = |kind: GapKind, quantity: &str| -> Option<Valley> {
+            let mut members = Vec::new();
+            for (weight, member) in self.weighted(composition) {
+                members.push((weight, law(member, kind)?));
+            }
+            Some(Valley { members, offset_ev: -self.bowing(composition, quantity) })
+        };
+        Bands {
+            gamma: valley(GapKind::Direct, "direct"),
+            x: valley(GapKind::IndirectX, "x"),
+            l: valley(GapKind::IndirectL, "l"),
+        }
+    }
+
+    /// What ordering adds to the direct gap, eV, ≤ 0 by default: proportional to the product of
+    /// the two fractions, as the bowing is, and such that the gap at the reference composition is
+    /// the stated one.
+    fn ordering_shift(&self, composition: &Composition) -> f64 {
+        let Some(ordering) = &self.ordering else { return 0.0 };
+        let Some((site, at)) = self.position(&ordering.element) else { return 0.0 };
+        if self.freedom() != 1 {
+            return 0.0;
+        }
+        let mut reference = self.corner();
+        reference[site] = vec![1.0 - ordering.fraction; 2];
+        reference[site][at] = ordering.fraction;
+        let Some(random) = self.random_bands(&reference).gamma else { return 0.0 };
+        let product = |composition: &Composition| composition[site].iter().product::<f64>();
+        let share = product(composition) / product(&reference);
+        (ordering.gap_ev - random.at(ROOM_TEMPERATURE_K)) * share
+    }
+
+    /// The direct gap of the random alloy at 300 K, eV.
+    pub fn random_gap_ev(&self, composition: &Composition) -> Option<f64> {
+        self.random_bands(composition).gamma.map(|gamma| gamma.at(ROOM_TEMPERATURE_K))
+    }
+
+    /// The composition of the first end member.
+    pub fn corner(&self) -> Composition {
+        let first = |site: &Vec<String>| {
+            let mut fractions = vec![0.0; site.len()];
+            if let Some(slot) = fractions.first_mut() {
+                *slot = 1.0;
+            }
+            fractions
+        };
+        [first(&self.sites[0]), first(&self.sites[1])]
+    }
+
+    /// The material at `composition`. `ordered_to_ev` sets the direct gap at 300 K instead of the
+    /// default ordering.
+    pub fn at(&self, composition: &Composition, ordered_to_ev: Option<f64>) -> Material {
+        let mut material = Material::bare(&self.name, MaterialClass::Semiconductor);
+        material.label = self.label(composition);
+        let sites = self.sites.iter().zip(composition);
+        material.composition = sites
+            .flat_map(|(elements, fractions)| elements.iter().cloned().zip(fractions.iter().copied()))
+            .collect();
+        material.lattice = self.lattice(composition);
+        let mut bands = self.bands(composition);
+        if let (Some(gamma), Some(ordered)) = (&mut bands.gamma, ordered_to_ev) {
+            gamma.offset_ev += ordered - gamma.at(ROOM_TEMPERATURE_K);
+        }
+        material.elastic = self.elastic(composition);
+        material.constants = self.constants(composition);
+        material.density_g_per_cm3 = self.density(composition);
+        material.optics = match &self.index {
+            FamilyIndex::None => Optics::None,
+            FamilyIndex::Blend(blend) => blend.at(self, composition, &bands),
+            FamilyIndex::Shifted(shifted) => shifted.at(self, composition, &bands),
+        };
+        material.bands = Some(bands);
+        material.origins = self.origins_at(composition, ordered_to_ev);
+        material.cautions = self.cautions.clone();
+        material
+    }
+
+    fn elastic(&self, composition: &Composition) -> Option<Elastic> {
+        let mut sum = Elastic { c11_gpa: 0.0, c12_gpa: 0.0, c44_gpa: 0.0 };
+        for (weight, member) in self.weighted(composition) {
+            let own = member.elastic?;
+            sum.c11_gpa += weight * own.c11_gpa;
+            sum.c12_gpa += weight * own.c12_gpa;
+            sum.c44_gpa += weight * own.c44_gpa;
+        }
+        Some(sum)
+    }
+
+    /// Constants that every end member has.
+    fn constants(&self, composition: &Composition) -> Constants {
+        let weighted = self.weighted(composition);
+        let mut constants = Constants::default();
+        let Some((_, first)) = weighted.first() else { return constants };
+        for name in first.constants.0.keys().copied() {
+            let sum: Option<f64> = weighted
+                .iter()
+                .map(|(weight, member)| member.constants.get(name).map(|value| weight * value))
+                .sum();
+            if let Some(sum) = sum {
+                constants.0.insert(name, sum - self.bowing(composition, name));
+            }
+        }
+        constants
+    }
+
+    /// Four formula units in the cubic cell: `4 M / (N_A a³)`, g/cm3.
+    fn density(&self, composition: &Composition) -> Option<f64> {
+        let mut mass = 0.0;
+        for (elements, fractions) in self.sites.iter().zip(composition) {
+            for (element, fraction) in elements.iter().zip(fractions) {
+                mass += fraction * atomic_weight(element)?;
+            }
+        }
+        zinc_blende_density(mass, self.lattice(composition)?.a300_angstrom)
+    }
+
+    fn origins_at(&self, composition: &Composition, ordered_to_ev: Option<f64>) -> Vec<Origin> {
+        let mut origins: Vec<Origin> = Vec::new();
+        let mut add = |origin: Origin| {
+            if !origins.contains(&origin) {
+                origins.push(origin);
+            }
+        };
+        for (weight, member) in self.weighted(composition) {
+            let of_bands = |origin: &&Origin| origin.what != "index" && origin.what != "critical points";
+            for origin in member.origins.iter().filter(of_bands).filter(|_| weight > 0.0) {
+                add(origin.clone());
+            }
+        }
+        for origin in &self.origins {
+            if origin.what == "ordering" && (ordered_to_ev.is_some() || self.freedom() != 1) {
+                continue;
+            }
+            add(origin.clone());
+        }
+        if let Some(ordered) = ordered_to_ev {
+            let random = self.random_gap_ev(composition).unwrap_or(ordered);
+            add(Origin {
+                what: "ordering".to_owned(),
+                kind: OriginKind::Stated,
+                cite: format!(
+                    "gap stated as {} eV at 300 K by ordering; the random alloy has {random:.3} eV",
+                    trim(ordered)
+                ),
+            });
+        }
+        origins
+    }
+
+    /// `Ga0.516In0.484P`, `(Al0.3Ga0.7)0.516In0.484P`; an element that is not there is left out.
+    pub fn label(&self, composition: &Composition) -> String {
+        let [three, five] = [self.site_label(0, composition), self.site_label(1, composition)];
+        three + &five
+    }
+
+    fn site_label(&self, site: usize, composition: &Composition) -> String {
+        let present: Vec<(&String, f64)> = self.sites[site]
+            .iter()
+            .zip(composition[site].iter().copied())
+            .filter(|(_, fraction)| *fraction >= 5e-5)
+            .collect();
+        if let [(only, _)] = present[..] {
+            return only.clone();
+        }
+        if let [(first, a), (second, b), (third, c)] = present[..] {
+            // Aluminium and gallium share a bracket: the fraction of aluminium in it is what the
+            // trade calls the composition.
+            let inner = round3(a / (a + b));
+            return format!(
+                "({first}{}{second}{}){}{third}{}",
+                trim(inner),
+                trim(1.0 - inner),
+                trim(1.0 - round3(c)),
+                trim(round3(c))
+            );
+        }
+        // The last fraction is what the rounded others leave, so that a label always sums to 1.
+        let mut left = 1.0;
+        let count = present.len();
+        let parts = present.into_iter().enumerate().map(|(at, (element, fraction))| {
+            let shown = if at + 1 == count { left } else { round3(fraction) };
+            left -= shown;
+            format!("{element}{}", trim(shown))
+        });
+        parts.collect()
+    }
+}
+
+fn round3(fraction: f64) -> f64 {
+    (fraction * 1000.0).round() / 1000.0
+}
+
+/// Density in g/cm3 of a cubic cell of edge `a_angstrom` with four formula units of `mass` g/mol;
+/// a diamond crystal counts two atoms as a unit.
+pub fn zinc_blende_density(mass: f64, a_angstrom: f64) -> Option<f64> {
+    let volume_cm3 = (a_angstrom * 1e-8).powi(3);
+    Some(4.0 * mass / AVOGADRO / volume_cm3).filter(|density| density.is_finite())
+}

@@ -1,0 +1,473 @@
+//! `alloy` blocks: end members, bowing, ordering, and how the index is made.
+
+use std::collections::BTreeMap;
+use std::sync::Arc;
+
+use crate::finding::Finding;
+use crate::materials::alloy::blend::{Blend, Sample, Shifted, Tail};
+use crate::materials::alloy::{Bowing, BowingLaw, Composition, Compound, Family, FamilyIndex, Ordering};
+use crate::materials::elements::{Site, site};
+use crate::materials::formula;
+use crate::materials::optics::{IndexTable, Optics};
+use crate::resolve::materials::Definition;
+use crate::resolve::materials::blocks::{Reader, constant};
+use crate::resolve::materials::values::{Arguments, Kind, properties, quantity, single};
+use crate::resolve::names;
+use crate::source::Spanned;
+use crate::syntax::{Named, Property};
+use crate::units::{Dimension, ELEMENTARY_CHARGE};
+
+/// The words an `alloy` block knows.
+const GROUPS: &[&str] =
+    &["about", "bowing", "caution", "cite", "index", "members", "ordering", "source", "ternaries"];
+
+/// `C` in `α = C (E − E_X)²`, kept in 1/m/eV².
+fn indirect_kind() -> Kind {
+    let per_square_energy = Dimension::PER_LENGTH / (Dimension::ENERGY * Dimension::ENERGY);
+    Kind::of(per_square_energy, 1.0 / (ELEMENTARY_CHARGE * ELEMENTARY_CHARGE), "2e4 /cm/eV2")
+}
+
+impl Reader<'_> {
+    pub(super) fn family(&mut self, item: &Named) -> Option<Family> {
+        let statements = properties(&item.block, self.scope);
+        self.read_sources(&statements);
+        let find = |word: &str| statements.iter().copied().find(|property| property.name.value == word);
+        for property in &statements {
+            let word = property.name.value.as_str();
+            if !GROUPS.contains(&word) {
+                let otherwise = "an alloy takes `members` or `ternaries`, `bowing`, `ordering`, `index`";
+                self.scope.report(names::unknown(
+                    "group of an alloy",
+                    &property.name,
+                    GROUPS.iter().copied(),
+                    otherwise,
+                ));
+            }
+        }
+        let (members, mut bowings) = match (find("members"), find("ternaries")) {
+            (Some(members), _) => (self.members(members)?, Vec::new()),
+            (None, Some(ternaries)) => self.ternaries(ternaries)?,
+            (None, None) => {
+                self.scope.report(
+                    Finding::error(
+                        "material.incomplete",
+                        format!("`{}` has no end members", item.name.value),
+                    )
+                    .at(item.name.span, "`members` or `ternaries` is due")
+                    .help("write `members GaP, InP`, or `ternaries AlGaP, AlInP, GaInP`"),
+                );
+                return None;
+            }
+        };
+        let (sites, members) = self.grid(item, members)?;
+        if let Some(group) = find("bowing") {
+            let pair: Vec<&Vec<String>> = sites.iter().filter(|site| site.len() == 2).collect();
+            let with: Vec<&Vec<String>> = sites.iter().filter(|site| site.len() == 1).collect();
+            if let ([pair], [with]) = (&pair[..], &with[..]) {
+                let laws = self.bowing(group, pair);
+                let pair = [pair[0].clone(), pair[1].clone()];
+                bowings.push(Bowing { pair, with: with[0].clone(), laws });
+            } else {
+                self.scope.report(
+                    Finding::error("material.statement", "`bowing` belongs to a ternary")
+                        .at(group.name.span, "this family mixes more than two elements")
+                        .help("define its ternaries and name them: `ternaries AlGaP, AlInP, GaInP`"),
+                );
+            }
+        }
+        let mut family = Family {
+            name: item.name.value.clone(),
+            about: find("about").map(|property| self.about(property)).unwrap_or_default(),
+            sites,
+            members,
+            bowings,
+            ordering: None,
+            index: FamilyIndex::None,
+            origins: Vec::new(),
+            cautions: Vec::new(),
+        };
+        family.ordering = find("ordering").and_then(|group| self.ordering(group, &family));
+        if let Some(group) = find("index") {
+            family.index = self.family_index(group, &family);
+        }
+        family.cautions = match find("caution") {
+            Some(property) => self.words(property),
+            None => cautions(&family),
+        };
+        family.origins = std::mem::take(&mut self.origins);
+        Some(family)
+    }
+
+    /// `members GaP, InP`
+    fn members(&mut self, property: &Property) -> Option<Vec<Arc<Compound>>> {
+        let mut arguments = Arguments::of(property);
+        let mut members = Vec::new();
+        while let Some(name) = arguments.word() {
+            members.push(self.member(name)?);
+        }
+        arguments.end(self.scope);
+        Some(members)
+    }
+
+    fn member(&mut self, name: &Spanned<String>) -> Option<Arc<Compound>> {
+        match self.library.find(&name.value, self.scope) {
+            Some(Definition::Compound(compound)) => Some(compound),
+            Some(Definition::Family(_)) => {
+                self.scope.report(
+                    Finding::error("material.statement", format!("`{}` is itself a family", name.value))
+                        .at(name.span, "an end member is one compound")
+                        .help("name compounds such as `GaP`; families go after `ternaries`"),
+                );
+                None
+            }
+            None => {
+                self.unknown_material(name, "material");
+                None
+            }
+        }
+    }
+
+    fn unknown_material(&mut self, name: &Spanned<String>, what: &str) {
+        // A user's item that is wrong was reported where it stands.
+        if self.library.is_defined(&name.value) {
+            return;
+        }
+        let known: Vec<String> = self.library.names().into_iter().map(str::to_owned).collect();
+        let otherwise = format!("define it: `{what} {} {{ … }}`", name.value);
+        self.scope.report(names::unknown(what, name, known.iter().map(String::as_str), &otherwise));
+    }
+
+    /// `ternaries AlGaP, AlInP, GaInP`: their end members and their bowings.
+    fn ternaries(&mut self, property: &Property) -> Option<(Vec<Arc<Compound>>, Vec<Bowing>)> {
+        let mut arguments = Arguments::of(property);
+        let (mut members, mut bowings): (Vec<Arc<Compound>>, Vec<Bowing>) = (Vec::new(), Vec::new());
+        while let Some(name) = arguments.word() {
+            let Some(Definition::Family(ternary)) = self.library.find(&name.value, self.scope) else {
+                self.unknown_material(name, "alloy");
+                return None;
+            };
+            for member in ternary.members.iter().flatten() {
+                if !members.iter().any(|known| known.material.name == member.material.name) {
+                    members.push(member.clone());
+                }
+            }
+            bowings.extend(ternary.bowings.iter().cloned());
+            for origin in ternary.origins.iter().filter(|origin| origin.what == "bowing") {
+                if !self.origins.contains(origin) {
+                    self.origins.push(origin.clone());
+                }
+            }
+        }
+        arguments.end(self.scope);
+        Some((members, bowings))
+    }
+
+    /// Sorts end members into the grid of their sublattices, elements in the order of the name.
+    #[expect(clippy::type_complexity, reason = "the two fields of a family, taken apart at once")]
+    fn grid(
+        &mut self,
+        item: &Named,
+        members: Vec<Arc<Compound>>,
+    ) -> Option<([Vec<String>; 2], Vec<Vec<Arc<Compound>>>)> {
+        let mut sites = [Vec::new(), Vec::new()];
+        let of_members = members.iter().filter_map(|member| formula::elements(&member.material.name));
+        let of_name = formula::elements(&item.name.value).unwrap_or_default();
+        let of_members: Vec<String> = of_members.flatten().collect();
+        let in_members = |element: &&String| of_members.contains(element);
+        for element in of_name.iter().filter(in_members).chain(&of_members) {
+            let place = match site(element) {
+                Some(Site::Three) => 0,
+                Some(Site::Five) => 1,
+                _ => continue,
+            };
+            if !sites[place].contains(element) {
+                sites[place].push(element.clone());
+            }
+        }
+        let find = |three: &String, five: &String| {
+            members.iter().find(|member| {
+                let own = formula::elements(&member.material.name).unwrap_or_default();
+                own.len() == 2 && own.contains(three) && own.contains(five)
+            })
+        };
+        let rows: Option<Vec<Vec<Arc<Compound>>>> = sites[0]
+            .iter()
+            .map(|three| sites[1].iter().map(|five| find(three, five).cloned()).collect())
+            .collect();
+        let freedom = sites[0].len() + sites[1].len();
+        if let (Some(rows), 3 | 4) = (rows, freedom) {
+            return Some((sites, rows));
+        }
+        self.scope.report(
+            Finding::error(
+                "material.incomplete",
+                format!("the end members of `{}` do not span a family", item.name.value),
+            )
+            .at(item.name.span, "two or four III-V compounds, or three on one sublattice, are due")
+            .help("name every corner, such as `members GaP, InP` for `GaInP`"),
+        );
+        None
+    }
+
+    /// `bowing { direct 0.65 eV; x 0.20 eV; l 1.03 eV; electron 0.051; cite "…" }`, a value that
+    /// depends on composition as `direct -0.127 eV per Al 1.310 eV`.
+    fn bowing(&mut self, group: &Property, pair: &[String]) -> BTreeMap<&'static str, BowingLaw> {
+        let mut laws = BTreeMap::new();
+        for property in self.inside(group) {
+            let word = property.name.value.as_str();
+            let (name, kind) = match word {
+                "direct" => ("direct", Kind::ENERGY),
+                "x" => ("x", Kind::ENERGY),
+                "l" => ("l", Kind::ENERGY),
+                "split_off" => ("split_off", Kind::ENERGY),
+                "electron" => ("mass.electron", Kind::PLAIN),
+                "cite" => continue,
+                _ => {
+                    self.unknown_in("bowing", property, &["direct", "x", "l", "split_off", "electron"]);
+                    continue;
+                }
+            };
+            debug_assert!(
+                ["direct", "x", "l"].contains(&name) || constant("gap", word).is_some() || word == "electron"
+            );
+            if let Some(law) = self.bowing_law(property, kind, pair) {
+                laws.insert(name, law);
+            }
+        }
+        self.origin(group, "bowing");
+        laws
+    }
+
+    fn bowing_law(&mut self, property: &Property, kind: Kind, pair: &[String]) -> Option<BowingLaw> {
+        let mut arguments = Arguments::of(property);
+        let constant = quantity(&mut arguments, &property.name.value, kind, self.scope)?;
+        let mut law = BowingLaw { constant, slope: 0.0 };
+        if arguments.keyword("per") {
+            let element = arguments.word();
+            let slope = quantity(&mut arguments, "per", kind, self.scope)?;
+            match element.and_then(|element| pair.iter().position(|known| *known == element.value)) {
+                Some(0) => law.slope = slope,
+                // C = a + b (1 − x)
+                Some(_) => law = BowingLaw { constant: constant + slope, slope: -slope },
+                None => {
+                    let (first, second) = (&pair[0], &pair[1]);
+                    self.scope.report(
+                        Finding::error("material.statement", "`per` names no element of this alloy")
+                            .at(property.span, format!("`{first}` or `{second}` is due after `per`"))
+                            .help(format!("write `per {first}` and the value for each unit of its fraction")),
+                    );
+                    return None;
+                }
+            }
+        }
+        arguments.end(self.scope);
+        Some(law)
+    }
+
+    /// `ordering { gap 1.88 eV at Ga 0.5163; span 1.80 .. 1.93 eV; cite "…" }`
+    fn ordering(&mut self, group: &Property, family: &Family) -> Option<Ordering> {
+        let (mut reference, mut span_ev) = (None, None);
+        for property in self.inside(group) {
+            let mut arguments = Arguments::of(property);
+            match property.name.value.as_str() {
+                "gap" => {
+                    let gap_ev = quantity(&mut arguments, "gap", Kind::GAP, self.scope)?;
+                    arguments.keyword("at");
+                    let element =
+                        arguments.word().filter(|element| family.position(&element.value).is_some());
+                    let fraction = quantity(&mut arguments, "at", Kind::FRACTION, self.scope)?;
+                    reference = element.map(|element| (gap_ev, element.value.clone(), fraction));
+                    arguments.end(self.scope);
+                }
+                "span" => {
+                    let value = arguments.value()?;
+                    let slot = self.scope.slot(&value, Kind::GAP.expected("span"));
+                    let ev = |si: f64| si / ELEMENTARY_CHARGE;
+                    span_ev = slot.value.zip(slot.up_to).map(|(low, high)| (ev(low), ev(high)));
+                }
+                "cite" => {}
+                _ => self.unknown_in("ordering", property, &["gap", "span"]),
+            }
+        }
+        self.origin(group, "ordering");
+        if let (Some((gap_ev, element, fraction)), Some(span_ev), true) =
+            (reference, span_ev, family.freedom() == 1)
+        {
+            return Some(Ordering { element, fraction, gap_ev, span_ev });
+        }
+        self.scope.report(
+            Finding::error(
+                "material.incomplete",
+                "`ordering` needs a reference gap and its span, in a ternary",
+            )
+            .at(group.name.span, "not both can be read")
+            .help("write `gap 1.88 eV at Ga 0.5163; span 1.80 .. 1.93 eV`"),
+        );
+        None
+    }
+
+    fn family_index(&mut self, group: &Property, family: &Family) -> FamilyIndex {
+        let (mut samples, mut parent) = (Vec::new(), None);
+        let mut tail = Tail { urbach_ev: 0.01, indirect_per_m_ev2: 0.0 };
+        let (mut along, mut moves_ev, mut scale) = (None, [(0.0, 0.0); 2], (0.0, 0.0));
+        for property in self.inside(group) {
+            match property.name.value.as_str() {
+                "sample" => samples.extend(self.sample(property, family)),
+                "samples" => samples.extend(self.member_samples(property, family)),
+                "parent" => parent = self.parent(property),
+                "along" => along = self.along(property),
+                "move_e1" => moves_ev[0] = self.pair(property, Kind::ENERGY).unwrap_or_default(),
+                "move_e2" => moves_ev[1] = self.pair(property, Kind::ENERGY).unwrap_or_default(),
+                "scale" => scale = self.pair(property, Kind::PLAIN).unwrap_or_default(),
+                "urbach" => tail.urbach_ev = single(property, Kind::GAP, self.scope).unwrap_or(0.01),
+                "indirect" => {
+                    tail.indirect_per_m_ev2 = single(property, indirect_kind(), self.scope).unwrap_or(0.0);
+                }
+                "cite" => {}
+                _ => {
+                    let known = [
+                        "sample", "samples", "parent", "along", "move_e1", "move_e2", "scale", "urbach",
+                        "indirect",
+                    ];
+                    self.unknown_in("index", property, &known);
+                }
+            }
+        }
+        self.origin(group, "index");
+        if let (Some((table, parent_ev)), Some(along)) = (parent, along) {
+            return FamilyIndex::Shifted(Shifted { table, parent_ev, along, moves_ev, scale, tail });
+        }
+        if samples.is_empty() {
+            return FamilyIndex::None;
+        }
+        if family.freedom() == 1 {
+            let site = usize::from(family.sites[0].len() == 1);
+            samples.sort_by(|a, b| a.composition[site][0].total_cmp(&b.composition[site][0]));
+        }
+        FamilyIndex::Blend(Blend { samples, tail })
+    }
+
+    /// `sample Al 0.198 "AlGaAs_198.csv" { gap 1.7 eV; e1 3.1 eV; e2 4.7 eV }`, or
+    /// `sample Ga 1 GaP` for a material with a table and critical points of its own.
+    fn sample(&mut self, property: &Property, family: &Family) -> Option<Sample> {
+        let mut arguments = Arguments::of(property);
+        let element = arguments.word()?;
+        let fraction = quantity(&mut arguments, "sample", Kind::FRACTION, self.scope)?;
+        let Some((site, at)) = family.position(&element.value).filter(|_| family.freedom() == 1) else {
+            self.scope.report(
+                Finding::error(
+                    "material.statement",
+                    format!("`{}` is not mixed in this alloy", element.value),
+                )
+                .at(element.span, "one of the two mixed elements is due")
+                .help(format!("name an element of `{}`", family.name)),
+            );
+            return None;
+        };
+        let mut composition = family.corner();
+        composition[site] = vec![1.0 - fraction; 2];
+        composition[site][at] = fraction;
+        if let Some(name) = arguments.word() {
+            let member = self.member(name)?;
+            return self.sample_of(&member, composition);
+        }
+        let file = arguments.text()?;
+        let table = Arc::new(self.table(file)?);
+        let (e0_ev, critical_ev) = self.points(property)?;
+        Some(Sample { composition, table, e0_ev, critical_ev })
+    }
+
+    /// `samples members`: the tables of all end members.
+    fn member_samples(&mut self, property: &Property, family: &Family) -> Vec<Sample> {
+        let mut arguments = Arguments::of(property);
+        arguments.keyword("members");
+        arguments.end(self.scope);
+        let corner = |len: usize, at: usize| {
+            let mut fractions = vec![0.0; len];
+            fractions[at] = 1.0;
+            fractions
+        };
+        let mut samples = Vec::new();
+        for (row, members) in family.members.iter().enumerate() {
+            for (column, member) in members.iter().enumerate() {
+                let composition = [corner(family.sites[0].len(), row), corner(family.sites[1].len(), column)];
+                samples.extend(self.sample_of(member, composition));
+            }
+        }
+        samples
+    }
+
+    fn sample_of(&mut self, member: &Compound, composition: Composition) -> Option<Sample> {
+        let material = &member.material;
+        if let (Optics::Table(table), Some(critical_ev)) = (&material.optics, member.critical_ev) {
+            let e0_ev = table.gap_ev;
+            return Some(Sample { composition, table: table.clone(), e0_ev, critical_ev });
+        }
+        self.scope.report(Finding::error(
+            "material.incomplete",
+            format!("`{}` has no index table with critical points to blend", material.name),
+        ));
+        None
+    }
+
+    /// `parent "GaInP.csv" { gap 1.88 eV; e1 3.40 eV; e2 4.80 eV }`
+    fn parent(&mut self, property: &Property) -> Option<(Arc<IndexTable>, [f64; 3])> {
+        let file = Arguments::of(property).text()?;
+        let table = Arc::new(self.table(file)?);
+        let (e0, (e1, e2)) = self.points(property)?;
+        Some((table, [e0?, e1, e2]))
+    }
+
+    /// The critical points of a sample: its gap where stated, E1 and E2.
+    fn points(&mut self, property: &Property) -> Option<(Option<f64>, (f64, f64))> {
+        let mut points = [None; 3];
+        let words = ["gap", "e1", "e2"];
+        for inner in self.inside(property) {
+            match words.iter().position(|word| *word == inner.name.value) {
+                Some(at) => points[at] = single(inner, Kind::GAP, self.scope),
+                None => self.unknown_in("sample", inner, &words),
+            }
+        }
+        let [gap, e1, e2] = points;
+        if let (Some(e1), Some(e2)) = (e1, e2) {
+            return Some((gap, (e1, e2)));
+        }
+        self.scope.report(
+            Finding::error("material.incomplete", "a sample needs its critical points `e1` and `e2`")
+                .at(property.span, "not both can be read")
+                .help("add them, such as `{ e1 3.40 eV; e2 4.80 eV }`"),
+        );
+        None
+    }
+
+    /// `along Al of Ga`: aluminium as a share of aluminium and gallium.
+    fn along(&mut self, property: &Property) -> Option<[String; 2]> {
+        let mut arguments = Arguments::of(property);
+        let first = arguments.word()?.value.clone();
+        arguments.keyword("of");
+        let second = arguments.word()?.value.clone();
+        arguments.end(self.scope);
+        Some([first, second])
+    }
+
+    /// A linear and a quadratic coefficient.
+    fn pair(&mut self, property: &Property, kind: Kind) -> Option<(f64, f64)> {
+        let mut arguments = Arguments::of(property);
+        let linear = quantity(&mut arguments, &property.name.value, kind, self.scope)?;
+        let mut quadratic = 0.0;
+        if arguments.has_more() {
+            quadratic = quantity(&mut arguments, &property.name.value, kind, self.scope)?;
+        }
+        arguments.end(self.scope);
+        Some((linear, quadratic))
+    }
+}
+
+/// A family is as dangerous as its end members.
+fn cautions(family: &Family) -> Vec<String> {
+    let mut all: Vec<String> =
+        family.members.iter().flatten().flat_map(|member| member.material.cautions.clone()).collect();
+    all.sort_unstable();
+    all.dedup();
+    all
+}

@@ -1,0 +1,263 @@
+//! Formulas with fractions: `Ga0.51In0.49P` to a family and its composition.
+
+use std::sync::Arc;
+
+use crate::finding::Finding;
+use crate::materials::alloy::{Composition, Family};
+use crate::materials::elements::site;
+use crate::materials::formula::{self, FormulaError, Part, Share};
+use crate::resolve::materials::{Definition, Library};
+use crate::resolve::quantities::Scope;
+use crate::source::{Span, Spanned};
+use crate::units::number;
+
+/// How far a sum of fractions may be from 1.
+const TOLERANCE: f64 = 0.001;
+
+/// The family of a formula and the composition it states. `None` where it is wrong, which is
+/// reported.
+pub(super) fn composition_of(
+    library: &mut Library,
+    scope: &mut Scope,
+    name: &Spanned<String>,
+) -> Option<(Arc<Family>, Composition)> {
+    let parts = match formula::split(&name.value) {
+        Ok(parts) => parts,
+        Err(error) => {
+            scope.report(unreadable(name, &error, library));
+            return None;
+        }
+    };
+    let elements: Vec<String> = parts.iter().flat_map(shares).map(|share| share.element.clone()).collect();
+    let Some(Definition::Family(family)) = library.of_elements(&elements, scope) else {
+        scope.report(no_family(name, &elements, library));
+        return None;
+    };
+    let flat = flatten(scope, name, &parts)?;
+    let mut composition = [Vec::new(), Vec::new()];
+    for (at, elements) in family.sites.iter().enumerate() {
+        let own: Vec<&Share> = flat.iter().filter(|share| elements.contains(&share.element)).collect();
+        let fractions = complete(scope, name, &own)?;
+        composition[at] = elements
+            .iter()
+            .map(|element| own.iter().zip(&fractions).find(|(share, _)| share.element == *element))
+            .map(|found| found.map_or(0.0, |(_, fraction)| *fraction))
+            .collect();
+    }
+    Some((family, composition))
+}
+
+fn shares(part: &Part) -> &[Share] {
+    match part {
+        Part::Element(share) => std::slice::from_ref(share),
+        Part::Bracket { shares, .. } => shares,
+    }
+}
+
+/// Opens brackets: fractions inside sum to 1 and are multiplied by what stands after them. A
+/// bracket without a number is completed from the rest of its sublattice.
+fn flatten(scope: &mut Scope, name: &Spanned<String>, parts: &[Part]) -> Option<Vec<Share>> {
+    let mut flat = Vec::new();
+    for part in parts {
+        match part {
+            Part::Element(share) => flat.push(share.clone()),
+            Part::Bracket { shares, fraction } => {
+                let all: Vec<&Share> = shares.iter().collect();
+                let inner = complete(scope, name, &all)?;
+                let outer = match fraction {
+                    Some(fraction) => *fraction,
+                    None => left_for(parts, shares)?,
+                };
+                let opened = shares.iter().zip(inner).map(|(share, inner)| Share {
+                    element: share.element.clone(),
+                    fraction: Some(inner * outer),
+                });
+                flat.extend(opened);
+            }
+        }
+    }
+    Some(flat)
+}
+
+/// What the other elements of the same sublattice leave for a bracket.
+fn left_for(parts: &[Part], bracket: &[Share]) -> Option<f64> {
+    let own = site(&bracket.first()?.element);
+    let others = parts.iter().filter_map(|part| match part {
+        Part::Element(share) if site(&share.element) == own => share.fraction,
+        _ => None,
+    });
+    Some((1.0 - others.sum::<f64>()).clamp(0.0, 1.0))
+}
+
+/// The fractions of one sublattice or bracket, one of which may be left out.
+fn complete(scope: &mut Scope, name: &Spanned<String>, shares: &[&Share]) -> Option<Vec<f64>> {
+    let text = &name.value;
+    for share in shares {
+        let Some(fraction) = share.fraction else { continue };
+        if !(0.0..=1.0).contains(&fraction) {
+            scope.report(
+                Finding::error(
+                    "formula.composition",
+                    format!("the fraction of {} in `{text}` is {}", share.element, number(fraction)),
+                )
+                .at(part_span(name, &share.element), "outside 0 to 1")
+                .help(outside_help(text, share, shares)),
+            );
+            return None;
+        }
+    }
+    let open = shares.iter().filter(|share| share.fraction.is_none()).count();
+    let sum: f64 = shares.iter().filter_map(|share| share.fraction).sum();
+    if open > 1 {
+        let names: Vec<&str> = shares
+            .iter()
+            .filter(|share| share.fraction.is_none())
+            .map(|share| share.element.as_str())
+            .collect();
+        scope.report(
+            Finding::error(
+                "formula.composition",
+                format!("`{text}` leaves the fractions of {} open", names.join(" and ")),
+            )
+            .at(name.span, "only one of them may be left out")
+            .help(format!("write the fraction of {} as well", names[0])),
+        );
+        return None;
+    }
+    let over = sum > 1.0 + TOLERANCE;
+    if over || (open == 0 && sum < 1.0 - TOLERANCE) {
+        scope.report(wrong_sum(name, shares, sum));
+        return None;
+    }
+    let left = (1.0 - sum).max(0.0);
+    // A rounded sum within the tolerance is brought to 1 exactly.
+    let scale = if open == 0 && sum > 0.0 { 1.0 / sum } else { 1.0 };
+    Some(shares.iter().map(|share| share.fraction.map_or(left, |fraction| fraction * scale)).collect())
+}
+
+fn outside_help(text: &str, share: &Share, shares: &[&Share]) -> String {
+    let fraction = share.fraction.unwrap_or(0.0);
+    if fraction > 1.0 && fraction <= 100.0 {
+        let meant = number(fraction / 100.0);
+        return format!("write `{}{meant}` if {} % was meant", share.element, number(fraction));
+    }
+    let element = &shares[0].element;
+    format!("write the fraction of {element} in `{text}` as a number from 0 to 1")
+}
+
+/// Fractions that do not sum to 1: the last one gives way.
+fn wrong_sum(name: &Spanned<String>, shares: &[&Share], sum: f64) -> Finding {
+    let text = &name.value;
+    let list: Vec<&str> = shares.iter().map(|share| share.element.as_str()).collect();
+    let finding = Finding::error(
+        "formula.sum",
+        format!("the fractions of {} in `{text}` sum to {}, not 1", list.join(", "), number(rounded(sum))),
+    );
+    let written = |share: &Share| format!("{}{}", share.element, number(share.fraction.unwrap_or(0.0)));
+    let finding = finding.at(name.span, format!("{} = {}", sum_text(shares), number(rounded(sum))));
+    let Some(last) = shares.iter().rev().find(|share| share.fraction.is_some()) else { return finding };
+    let others = sum - last.fraction.unwrap_or(0.0);
+    if !(0.0..=1.0).contains(&others) || others == 0.0 {
+        return finding.help(format!("write fractions of {} that sum to 1", list.join(", ")));
+    }
+    let mended = format!("{}{}", last.element, number(rounded(1.0 - others)));
+    match find(text, &written(last)) {
+        Some(at) => {
+            let whole = format!("{}{mended}{}", &text[..at], &text[at + written(last).len()..]);
+            finding.help(format!("write `{whole}`")).fix(name.span, whole, false)
+        }
+        None => finding.help(format!("write `{mended}`")),
+    }
+}
+
+fn sum_text(shares: &[&Share]) -> String {
+    let parts: Vec<String> = shares.iter().filter_map(|share| share.fraction).map(number).collect();
+    parts.join(" + ")
+}
+
+/// Digits of a sum of decimals without the noise of binary fractions.
+fn rounded(value: f64) -> f64 {
+    (value * 1e6).round() / 1e6
+}
+
+fn find(text: &str, part: &str) -> Option<usize> {
+    text.find(part)
+}
+
+/// Where an element stands in a formula.
+fn part_span(name: &Spanned<String>, element: &str) -> Span {
+    match name.value.find(element) {
+        Some(at) => {
+            let start = name.span.start as usize + at;
+            let digits = name.value[at + element.len()..]
+                .bytes()
+                .take_while(|byte| byte.is_ascii_digit() || *byte == b'.')
+                .count();
+            Span::new(name.span.source, start, start + element.len() + digits)
+        }
+        None => name.span,
+    }
+}
+
+fn unreadable(name: &Spanned<String>, error: &FormulaError, library: &Library) -> Finding {
+    let text = &name.value;
+    match error {
+        FormulaError::UnknownElement(at, symbol) => {
+            let start = name.span.start as usize + at;
+            let span = Span::new(name.span.source, start, start + symbol.len());
+            let finding =
+                Finding::error("formula.unknown-element", format!("`{symbol}` in `{text}` is no element"))
+                    .at(span, "no chemical symbol");
+            match look_alike(text, symbol, *at, library) {
+                Some(meant) => finding.help(format!("write `{meant}`")).fix(name.span, meant, false),
+                None => finding.help("write chemical symbols such as `Al`, `Ga`, `In`, `As`, `P`"),
+            }
+        }
+        FormulaError::Unreadable(at) => {
+            let start = name.span.start as usize + at;
+            let length = text[(*at).min(text.len())..].chars().next().map_or(0, char::len_utf8);
+            Finding::error("formula.unknown-element", format!("`{text}` cannot be read as a formula"))
+                .at(Span::new(name.span.source, start, start + length), "neither a symbol nor a fraction")
+                .help("write symbols and fractions, such as `Ga0.51In0.49P`")
+        }
+    }
+}
+
+/// The formula with the stray symbol replaced by the element that makes it a known family.
+fn look_alike(text: &str, symbol: &str, at: usize, library: &Library) -> Option<String> {
+    const MOST: &[&str] = &["Al", "Ga", "In", "As", "P", "Sb", "Si", "Ge"];
+    let known = |formula: &str| {
+        let mut own = formula::elements(formula)?;
+        own.sort_unstable();
+        library.names().into_iter().find(|name| {
+            formula::elements(name).is_some_and(|mut other| {
+                other.sort_unstable();
+                other == own
+            })
+        })
+    };
+    let similar = |element: &&&str| {
+        let (a, b) = (element.to_lowercase(), symbol.to_lowercase());
+        a.len() == b.len() && a.bytes().zip(b.bytes()).filter(|(x, y)| x != y).count() <= 1
+    };
+    MOST.iter().filter(similar).find_map(|element| {
+        let mended = format!("{}{element}{}", &text[..at], &text[at + symbol.len()..]);
+        known(&mended).map(|_| mended.clone())
+    })
+}
+
+fn no_family(name: &Spanned<String>, elements: &[String], library: &Library) -> Finding {
+    let mut list: Vec<&str> = elements.iter().map(String::as_str).collect();
+    list.dedup();
+    let families: Vec<&str> = library
+        .names()
+        .into_iter()
+        .filter(|known| formula::elements(known).is_some_and(|own| own.len() > 2))
+        .collect();
+    Finding::error(
+        "name.unknown",
+        format!("no alloy of {} is known, so `{}` has no data", list.join(", "), name.value),
+    )
+    .at(name.span, "no family of these elements")
+    .help(format!("define it with `alloy`, or use one of {}", families.join(", ")))
+}

@@ -1,0 +1,173 @@
+//! `index` groups of materials: a table, a constant or a published law.
+
+use std::sync::Arc;
+
+use crate::finding::Finding;
+use crate::materials::library;
+use crate::materials::optics::{IndexTable, Optics};
+use crate::materials::table::{self, TableError};
+use crate::materials::{Bands, ROOM_TEMPERATURE_K};
+use crate::resolve::materials::blocks::{Reader, Texts};
+use crate::resolve::materials::values::{Arguments, Kind, quantity, single};
+use crate::source::{Span, Spanned};
+use crate::syntax::Property;
+
+const WORDS: &[&str] = &["table", "constant", "sellmeier", "cauchy", "range", "edge", "at"];
+
+impl Reader<'_> {
+    /// The optics of a material with these bands.
+    ///
+    /// The edge of a table moves with the gap: from the gap the law gives at the temperature the
+    /// table holds at (`at 300 K` unless stated), or from a stated `edge 1.88 eV`.
+    pub(super) fn index(&mut self, group: &Property, bands: Option<&Bands>) -> Optics {
+        let (mut table, mut edge, mut at_k, mut range) = (None, None, ROOM_TEMPERATURE_K, None);
+        for property in self.inside(group) {
+            match property.name.value.as_str() {
+                "table" => {
+                    let mut arguments = Arguments::of(property);
+                    match arguments.text() {
+                        Some(file) => table = self.table(file),
+                        None => self.no_file(property.span),
+                    }
+                    arguments.end(self.scope);
+                }
+                "constant" => table = self.constant_index(property),
+                "sellmeier" => table = self.sellmeier(property),
+                "cauchy" => table = self.cauchy(property),
+                "range" => range = self.range(property),
+                "edge" => edge = single(property, Kind::GAP, self.scope),
+                "at" => at_k = single(property, Kind::KELVIN, self.scope).unwrap_or(at_k),
+                "cite" => {}
+                _ => self.unknown_in("index", property, WORDS),
+            }
+        }
+        self.origin(group, "index");
+        let Some(mut table) = table else {
+            self.nothing_said(group);
+            return Optics::None;
+        };
+        if let Some((low, high)) = range {
+            table.clip(low, high);
+        }
+        table.edge_is_direct = edge.is_some() || bands.is_some_and(|bands| bands.gamma.is_some());
+        table.gap_ev = edge.or_else(|| {
+            let bands = bands?;
+            let gamma = bands.gamma.as_ref().map(|gamma| gamma.at(at_k));
+            gamma.or_else(|| bands.gap(at_k).map(|gap| gap.ev))
+        });
+        Optics::Table(Arc::new(table))
+    }
+
+    /// `range 310 .. 5504 nm`: where a law was fitted, m.
+    fn range(&mut self, property: &Property) -> Option<(f64, f64)> {
+        let value = Arguments::of(property).value()?;
+        let slot = self.scope.slot(&value, Kind::METRE.expected("range"));
+        slot.value.zip(slot.up_to)
+    }
+
+    fn nothing_said(&mut self, group: &Property) {
+        if group.block.is_some() && self.scope.finding_count() == 0 {
+            self.scope.report(
+                Finding::error("material.incomplete", "`index` states no index")
+                    .at(group.name.span, "no table, constant or law")
+                    .help("state one, such as `constant 1.9` or `table \"film.csv\"`"),
+            );
+        }
+    }
+
+    fn no_file(&mut self, place: Span) {
+        self.scope.report(
+            Finding::error("material.incomplete", "`table` names no file")
+                .at(place, "a file name in quotes is due")
+                .help("write `table \"film.csv\"`, with columns `nm,n,k`"),
+        );
+    }
+
+    /// Reads an n,k table.
+    pub(super) fn table(&mut self, file: &Spanned<String>) -> Option<IndexTable> {
+        let name = file.value.as_str();
+        match self.texts {
+            Texts::BuiltIn => {
+                let found = library::table(name).map(table::read);
+                if !matches!(found, Some(Ok(_))) {
+                    // Kept out of a release by the test that reads the whole library.
+                    let message = format!("the library has no sound table `{name}`");
+                    self.scope.report(Finding::error("material.table", message).at(file.span, "named here"));
+                }
+                found?.ok()
+            }
+            // A file that is not there was reported when the item was added.
+            Texts::User(texts) => {
+                let (source, text) = texts.get(name)?;
+                match table::read(text) {
+                    Ok(table) => Some(table),
+                    Err(error) => {
+                        let TableError { start, end, message, help } = error;
+                        self.scope.report(
+                            Finding::error("material.table", format!("`{name}`: {message}"))
+                                .at(Span::new(*source, start, end), "here")
+                                .beside(file.span, "the table is named here")
+                                .help(help),
+                        );
+                        None
+                    }
+                }
+            }
+        }
+    }
+
+    /// `constant 1.9`, `constant 1.9 0.001`: n and k at every wavelength.
+    fn constant_index(&mut self, property: &Property) -> Option<IndexTable> {
+        let mut arguments = Arguments::of(property);
+        let n = quantity(&mut arguments, "constant", Kind::NOT_NEGATIVE, self.scope)?;
+        let k = if arguments.has_more() {
+            quantity(&mut arguments, "constant", Kind::NOT_NEGATIVE, self.scope)?
+        } else {
+            0.0
+        };
+        arguments.end(self.scope);
+        Some(table::of_law(|_| (n, k), &[550.0]))
+    }
+
+    /// `sellmeier 0.4876 0.0434 um  0.3988 0.0946 um …`: `n² = 1 + Σ B λ²/(λ² − λ0²)`.
+    fn sellmeier(&mut self, property: &Property) -> Option<IndexTable> {
+        let mut arguments = Arguments::of(property);
+        let mut terms = Vec::new();
+        while arguments.has_more() {
+            let strength = quantity(&mut arguments, "sellmeier", Kind::PLAIN, self.scope)?;
+            let resonance = quantity(&mut arguments, "sellmeier", Kind::METRE, self.scope)?;
+            terms.push((strength, resonance * 1e9));
+        }
+        let law = |nm: f64| {
+            let squared = 1.0 + terms.iter().map(|(b, at)| b * nm * nm / (nm * nm - at * at)).sum::<f64>();
+            (squared.sqrt(), 0.0)
+        };
+        self.law(property, law)
+    }
+
+    /// `cauchy 1.38 0.0032 um2`: `n = A + B/λ²`, and `C/λ⁴` where a third is given.
+    fn cauchy(&mut self, property: &Property) -> Option<IndexTable> {
+        let mut arguments = Arguments::of(property);
+        let constant = quantity(&mut arguments, "cauchy", Kind::PLAIN, self.scope)?;
+        let mut second = 0.0;
+        if arguments.has_more() {
+            second = quantity(&mut arguments, "cauchy", Kind::SQUARE_METRE, self.scope)? * 1e18;
+        }
+        arguments.end(self.scope);
+        self.law(property, |nm| (constant + second / (nm * nm), 0.0))
+    }
+
+    fn law(&mut self, property: &Property, law: impl Fn(f64) -> (f64, f64)) -> Option<IndexTable> {
+        let table = table::of_law(law, &table::law_grid());
+        if table.n.iter().all(|n| n.is_finite() && *n > 0.0) {
+            return Some(table);
+        }
+        let name = &property.name.value;
+        self.scope.report(
+            Finding::error("material.table", format!("`{name}` gives no index between 250 and 2500 nm"))
+                .at(property.span, "a resonance lies inside, or n² falls below 0")
+                .help("check the coefficients, or state a table"),
+        );
+        None
+    }
+}

@@ -1,0 +1,153 @@
+//! The library as a list, for people who look for a material.
+
+use crate::finding::Outcome;
+use crate::materials::alloy::solve::{Wanted, gap_reach, solve};
+use crate::materials::{Material, ROOM_TEMPERATURE_K, SharedMaterial};
+use crate::resolve::materials::phrases::{Phrase, Reference, materials_of};
+use crate::resolve::materials::{Definition, Library};
+use crate::resolve::quantities::Scope;
+use crate::source::{Source, Span};
+use crate::syntax::{Item, MaterialPhrase, Statement};
+
+/// One line of the list.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Entry {
+    /// The name to write in a stack.
+    pub name: String,
+    /// What it is.
+    pub about: String,
+    /// Whether its composition has to be said.
+    pub is_family: bool,
+    /// Smallest and largest gap at 300 K, eV; equal for a compound, `None` without bands.
+    pub gap_ev: Option<(f64, f64)>,
+    /// Whether it has an index.
+    pub has_index: bool,
+}
+
+/// Every built-in material, in the library's own order.
+pub fn entries() -> Vec<Entry> {
+    let mut library = Library::new();
+    let mut scope = Scope::new();
+    let names: Vec<String> = library.names().into_iter().map(str::to_owned).collect();
+    names.iter().filter_map(|name| library.find(name, &mut scope).map(|found| entry(name, &found))).collect()
+}
+
+fn entry(name: &str, found: &Definition) -> Entry {
+    match found {
+        Definition::Compound(compound) => {
+            let gap = compound.material.gap(ROOM_TEMPERATURE_K).map(|gap| gap.ev);
+            Entry {
+                name: name.to_owned(),
+                about: compound.about.clone(),
+                is_family: false,
+                gap_ev: gap.map(|ev| (ev, ev)),
+                has_index: compound.material.optics != crate::materials::optics::Optics::None,
+            }
+        }
+        Definition::Family(family) => Entry {
+            name: name.to_owned(),
+            about: family.about.clone(),
+            is_family: true,
+            gap_ev: gap_reach(family, None).map(|reach| (reach.low.0.ev, reach.high.0.ev)),
+            has_index: family.index != crate::materials::alloy::FamilyIndex::None,
+        },
+    }
+}
+
+/// The material of a phrase as it would stand in a layer (`GaAs`, `Ga0.51In0.49P`,
+/// `GaInP matched`, `AlGaInP matched of gap 2.1 eV`) on a substrate given the same way.
+///
+/// Findings point into the sources given back: the phrase first, then the substrate.
+pub fn look_up(phrase: &str, substrate: Option<&str>) -> (Outcome<SharedMaterial>, [Source; 2]) {
+    let wrap = |at: u32, text: &str| {
+        Source::new(crate::source::SourceId(at), "material", &format!("part it {{ layer {text} }}"))
+    };
+    let sources = [wrap(0, phrase), wrap(1, substrate.unwrap_or("GaAs"))];
+    let mut library = Library::new();
+    let mut scope = Scope::new();
+    let ground = substrate.and_then(|_| read(&mut library, &mut scope, &sources[1], None));
+    let beneath = ground.map(|(material, span)| Reference { path: "substrate".to_owned(), material, span });
+    let wrong_ground = substrate.is_some() && beneath.is_none();
+    let found =
+        if wrong_ground { None } else { read(&mut library, &mut scope, &sources[0], beneath.as_ref()) };
+    let outcome = Outcome { value: found.map(|(material, _)| material), findings: scope.take_findings() };
+    (outcome, sources)
+}
+
+fn read(
+    library: &mut Library,
+    scope: &mut Scope,
+    source: &Source,
+    beneath: Option<&Reference>,
+) -> Option<(SharedMaterial, Span)> {
+    let parsed = crate::parse::parse(source);
+    for finding in parsed.findings.0 {
+        scope.report(finding);
+    }
+    let phrase = phrase_of(&parsed.value?.items)?;
+    let named = std::collections::BTreeMap::new();
+    let request = Phrase {
+        phrase: &phrase,
+        absorbs: None,
+        block: None,
+        beneath,
+        beneath_unknown: false,
+        named: &named,
+        temperature_k: ROOM_TEMPERATURE_K,
+        steps: 1,
+    };
+    let resolved = materials_of(library, scope, &request)?;
+    resolved.materials.first().map(|material| (material.clone(), phrase.span))
+}
+
+fn phrase_of(items: &[Item]) -> Option<MaterialPhrase> {
+    items.iter().find_map(|item| match item {
+        Item::Part(part) => part.block.statements.iter().find_map(|statement| match statement {
+            Statement::Layer(layer) => layer.material.clone(),
+            _ => None,
+        }),
+        _ => None,
+    })
+}
+
+/// Materials with a gap at 300 K within `tolerance_ev` of `gap_ev`: compounds, and compositions of
+/// families, those matched to `substrate` where one is given.
+pub fn with_gap(gap_ev: f64, tolerance_ev: f64, substrate: Option<&Material>) -> Vec<Material> {
+    let mut library = Library::new();
+    let mut scope = Scope::new();
+    let names: Vec<String> = library.names().into_iter().map(str::to_owned).collect();
+    let lattice = substrate.and_then(|material| material.lattice_constant(ROOM_TEMPERATURE_K));
+    let mut found = Vec::new();
+    for name in names {
+        match library.find(&name, &mut scope) {
+            Some(Definition::Compound(compound)) => {
+                let material = &compound.material;
+                let near = material
+                    .gap(ROOM_TEMPERATURE_K)
+                    .is_some_and(|gap| (gap.ev - gap_ev).abs() <= tolerance_ev);
+                let own = material.lattice_constant(ROOM_TEMPERATURE_K);
+                // 0.1 % is what the trade calls matched.
+                let fits = lattice.is_none_or(|a| own.is_some_and(|own| (own / a - 1.0).abs() <= 1e-3));
+                if near && fits {
+                    found.push((**material).clone());
+                }
+            }
+            Some(Definition::Family(family)) => {
+                let matched =
+                    lattice.map(|angstrom| Wanted::Lattice { angstrom, temperature_k: ROOM_TEMPERATURE_K });
+                let wanted: Vec<Wanted> = match family.freedom() {
+                    1 => vec![matched.unwrap_or(Wanted::Gap(gap_ev))],
+                    _ => matched.into_iter().chain([Wanted::Gap(gap_ev)]).collect(),
+                };
+                let Ok(composition) = solve(&family, &wanted) else { continue };
+                let material = family.at(&composition, None);
+                if material.gap(ROOM_TEMPERATURE_K).is_some_and(|gap| (gap.ev - gap_ev).abs() <= tolerance_ev)
+                {
+                    found.push(material);
+                }
+            }
+            None => {}
+        }
+    }
+    found
+}

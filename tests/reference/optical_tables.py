@@ -1,0 +1,215 @@
+"""Makes the compact n,k tables of src/materials/library/tables from published ones.
+
+    python3 optical_tables.py DATA DATABASE OUT
+
+DATA      folder with the thinned tables `optical/*.csv` (nm,n,k) and the joins `joined_*.csv`
+DATABASE  the `data` folder of the public-domain (CC0) refractive-index database, as unpacked from
+          the Python package `refractiveindex` 1.3.1
+OUT       folder of the tables
+
+Every join is stated in the `cite` of the material that uses the table. Needs PyYAML (6.0) only.
+"""
+
+import csv
+import math
+import pathlib
+import sys
+
+import yaml
+
+DATA, DATABASE, OUT = (pathlib.Path(path) for path in sys.argv[1:4])
+HC = 1239.841984  # eV nm
+PER_K = 4 * math.pi * 1e7  # alpha in 1/cm is this times k over nm
+
+
+def write(name, rows):
+    rows = sorted(rows)
+    lines = ["nm,n,k"]
+    for nm, n, k in rows:
+        lines.append(f"{nm:.6g},{n:.5g},{0 if k < 1e-12 else float(f'{k:.4g}'):g}")
+    (OUT / f"{name}.csv").write_text("\n".join(lines) + "\n")
+
+
+def thinned(name):
+    with open(DATA / "optical" / f"{name}.csv") as file:
+        lines = [line for line in file if not line.startswith("#")]
+    return [tuple(float(cell) for cell in row[:3]) for row in list(csv.reader(lines))[1:]]
+
+
+def tabulated(path):
+    """Rows in nm of the first table of a database file."""
+    data = yaml.safe_load((DATABASE / path).read_text())["DATA"]
+    block = next(entry for entry in data if entry["type"].startswith("tabulated"))
+    rows = [[float(cell) for cell in line.split()] for line in block["data"].splitlines() if line.strip()]
+    return [(row[0] * 1e3, *row[1:]) for row in rows]
+
+
+def interpolate(rows, nm, column):
+    for left, right in zip(rows, rows[1:]):
+        if left[0] <= nm <= right[0]:
+            share = (nm - left[0]) / (right[0] - left[0])
+            return left[column] + share * (right[column] - left[column])
+    raise ValueError(nm)
+
+
+def alpha(nm, k):
+    return PER_K * k / nm
+
+
+def k_of(nm, per_cm):
+    return per_cm * nm / PER_K
+
+
+# Gaps at 300 K from Vurgaftman, Meyer, Ram-Mohan, J. Appl. Phys. 89, 5815 (2001).
+def varshni(zero, a, b, t=300.0):
+    return zero - a * t * t / (t + b)
+
+
+GAAS_E0, ALAS_E0 = varshni(1.519, 5.405e-4, 204), varshni(3.099, 8.85e-4, 530)
+GAAS_X, ALAS_X = varshni(1.981, 4.6e-4, 204), varshni(2.24, 7.0e-4, 530)
+
+
+def algaas(x):
+    mixed = x * (1 - x)
+    direct = x * ALAS_E0 + (1 - x) * GAAS_E0 - mixed * (-0.127 + 1.310 * x)
+    return direct, x * ALAS_X + (1 - x) * GAAS_X - 0.055 * mixed
+
+
+def adachi(energy, e0, split_off, a, b):
+    """n below the gap, Adachi, J. Appl. Phys. 61, 4869 (1987)."""
+
+    def f(chi):
+        return (2 - math.sqrt(1 + chi) - math.sqrt(1 - chi)) / chi**2
+
+    upper = e0 + split_off
+    return math.sqrt(a * (f(energy / e0) + 0.5 * (e0 / upper) ** 1.5 * f(energy / upper)) + b)
+
+
+def algaas_table(percent):
+    """Aspnes et al. 1986 above E0 + 0.1 eV; the edge form below, met there; n below 1.5 eV from
+    Adachi's formula scaled to meet the table."""
+    x = percent / 100
+    measured = thinned(f"AlGaAs_{percent}")
+    e0, ex = algaas(x)
+    rows = [row for row in measured if HC / row[0] > e0 + 0.10]
+    first = rows[-1]
+    a0, at_first, over = 8e3 * (1 + x), alpha(first[0], first[2]), HC / first[0] - e0
+    start = min(a0, at_first)
+    indirect = (lambda e: 1.4e4 * max(e - ex, 0) ** 2) if ex < e0 else (lambda e: 0.0)
+    for step in (0.08, 0.05, 0.02, 0.01, 0.0):
+        if step < over:
+            nm = HC / (e0 + step)
+            per_cm = start + (at_first - start) * step / over
+            rows.append((nm, interpolate(measured, nm, 1), k_of(nm, per_cm)))
+    direct = max(start - indirect(e0), 0.0)
+    grid = [e0 - d for d in (0.01, 0.02, 0.03, 0.05, 0.08, 0.12)]
+    grid += [ex + d for d in (0.0, 0.03, 0.06, 0.1, 0.15, 0.2, 0.3, 0.4) if ex + d < e0 - 0.12]
+    grid += [HC / row[0] for row in measured if HC / row[0] < e0 - 0.12]
+    for energy in sorted(set(grid)):
+        nm = HC / energy
+        if nm <= measured[-1][0]:
+            per_cm = direct * math.exp((energy - e0) / 0.009) + indirect(energy)
+            rows.append((nm, interpolate(measured, nm, 1), k_of(nm, per_cm) if per_cm >= 1e-3 else 0.0))
+    a, b = 6.30 + 19.0 * x, 9.40 - 10.2 * x
+    split = 0.341 - 0.061 * x
+    end = measured[-1]
+    scale = end[1] / adachi(HC / end[0], e0, split, a, b)
+    for nm in (870, 920, 1000, 1100, 1250, 1450, 1700, 2000):
+        rows.append((nm, scale * adachi(HC / nm, e0, split, a, b), 0.0))
+    unique = {round(row[0], 3): row for row in rows}
+    write(f"AlGaAs_{round(percent * 10):03d}", unique.values())
+
+
+def gap_table():
+    """GaP: Aspnes & Studna 1983, k = 0 below 2.20 eV; above 650 nm Bond 1965 plus 0.011."""
+    rows = [(nm, n, k if HC / nm >= 2.20 else 0.0) for nm, n, k in thinned("GaP") if nm <= 650]
+    bond = tabulated("main/GaP/nk/Bond.yml")
+    rows += [(nm, n + 0.011, 0.0) for nm, n in bond if 650 < nm <= 2400]
+    write("GaP", rows)
+
+
+def alas_table():
+    """AlAs: Rakic & Majewski 1996 above 2.9 eV; a square law from 2.164 eV on below, met there; n
+    from Fern & Onton 1971 above 600 nm, faded in from 540 nm."""
+    model = [row for row in thinned("AlAs") if row[0] >= 270]
+    cut = 2.9
+    met = alpha(HC / cut, interpolate(model, HC / cut, 2))
+    law = met / (cut - 2.164) ** 2
+    print(f"AlAs: C = {law:.3g} /cm/eV2, {met:.3g} /cm at {cut} eV")
+
+    def fern(nm):
+        um2 = (nm / 1e3) ** 2
+        return math.sqrt(1 + 1.0792 + 6.0840 * um2 / (um2 - 0.2822**2) + 1.900 * um2 / (um2 - 27.62**2))
+
+    rows = []
+    for nm in sorted({row[0] for row in model if row[0] <= 2000} | {HC / 2.9, HC / 2.164, 480, 520, 600, 2000}):
+        energy = HC / nm
+        n = interpolate(model, nm, 1) if nm <= 600 else 0.0
+        if nm > 560:
+            share = min(max((nm - 560) / 40, 0), 1)
+            n = (1 - share) * n + share * fern(nm)
+        k = interpolate(model, nm, 2) if energy >= cut else k_of(nm, law * max(energy - 2.164, 0) ** 2)
+        rows.append((nm, n, k))
+    write("AlAs", rows)
+
+
+def inas_table():
+    """InAs: Aspnes & Studna 1983 to 826.6 nm, then Adachi 1989 with k times 1.42 fading to 1 at
+    0.9 eV; Urbach tail of 10 meV below the gap of 0.354 eV."""
+    model = tabulated("main/InAs/nk/Adachi.yml")
+    rows = thinned("InAs")
+    grid = [860, 900, 950, 1000, 1060, 1120, 1200, 1280, 1380, 1500, 1650, 1850, 2100, 2400, 2700, 3000, 3200]
+    grid += [3300, 3400, 3450]
+    edge = varshni(0.417, 2.76e-4, 93)
+    for nm in grid:
+        energy = HC / nm
+        fade = 1 + 0.42 * min(max((energy - 0.9) / (1.5 - 0.9), 0), 1)
+        n = interpolate(model, nm, 1)
+        rows.append((nm, n, interpolate(model, nm, 2) * fade))
+    at_edge = interpolate(model, HC / edge, 2)
+    for below in (0.0, 0.01, 0.02, 0.04, 0.08, 0.15):
+        nm = HC / (edge - below)
+        k = at_edge * math.exp(-below / 0.010)
+        rows.append((nm, interpolate(model, nm, 1), k if alpha(nm, k) >= 1e-3 else 0.0))
+    write("InAs", rows)
+
+
+def gasb_table():
+    """GaSb: Ferrini et al. 1998 above 0.75 eV; edge 0.727 eV, 3.5e3 /cm, 10 meV below."""
+    measured = thinned("GaSb")
+    rows = [row for row in measured if HC / row[0] >= 0.75]
+    join = rows[-1]
+    at_join = alpha(join[0], join[2])
+    for energy in (0.74, 0.727, 0.717, 0.707, 0.69, 0.66, 0.62, 0.58, 0.54, 0.50):
+        nm = HC / energy
+        if energy >= 0.727:
+            share = (energy - 0.727) / (HC / join[0] - 0.727)
+            per_cm = 3.5e3 + share * (at_join - 3.5e3)
+        else:
+            per_cm = 3.5e3 * math.exp((energy - 0.727) / 0.010)
+        n = interpolate(measured, min(nm, measured[-1][0]), 1)
+        rows.append((nm, n, k_of(nm, per_cm) if per_cm >= 1e-3 else 0.0))
+    write("GaSb", rows)
+
+
+def zns_table():
+    """ZnS: Querry 1987 below 395 nm, Amotchkina et al. 2020 above."""
+    ultraviolet = [row for row in tabulated("main/ZnS/nk/Querry.yml") if 255 <= row[0] < 395]
+    write("ZnS", ultraviolet + thinned("ZnS"))
+
+
+for percent in (9.9, 19.8, 31.5, 41.9, 49.1, 59.0, 70.0, 80.4):
+    algaas_table(percent)
+gap_table()
+alas_table()
+inas_table()
+gasb_table()
+zns_table()
+for name in ("GaAs", "InP", "Ge", "Si", "GaInP"):
+    write(name, thinned(f"joined_{name}"))
+for name, source in {
+    "TiO2": "TiO2", "Al2O3": "Al2O3", "Ta2O5": "Ta2O5", "HfO2": "HfO2", "Nb2O5": "Nb2O5", "ITO": "ITO_Konig",
+    "AZO": "AZO", "glass": "glass_lowiron", "EVA": "EVA", "Au": "Au", "Ag": "Ag", "Al": "Al", "Cu": "Cu",
+    "Ti": "Ti", "Ni": "Ni", "Pd": "Pd", "Pt": "Pt",
+}.items():
+    write(name, thinned(source))
