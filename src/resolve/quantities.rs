@@ -29,6 +29,20 @@ impl<'a> Expected<'a> {
     pub fn new(slot: &'a str, dimension: Dimension, role: Role) -> Self {
         Self { slot, dimension, role }
     }
+
+    /// The slot as it stands in a sentence: a word of the language in backticks, a phrase that
+    /// holds backticks of its own as it is.
+    pub(crate) fn called(&self) -> String {
+        if self.slot.contains('`') { self.slot.to_owned() } else { format!("`{}`", self.slot) }
+    }
+
+    /// What it takes, with its article.
+    pub(crate) fn kind(&self) -> String {
+        if self.dimension.is_none() && self.role.units(self.dimension) == ["%"] {
+            return "a share".to_owned();
+        }
+        self.dimension.name()
+    }
 }
 
 /// What stands in a slot that allows more than a number.
@@ -122,9 +136,19 @@ impl Scope {
         }
     }
 
+    /// Adds all findings of another pass, as they are.
+    pub fn extend(&mut self, findings: Findings) {
+        self.findings.extend(findings);
+    }
+
     /// Takes the findings made so far.
     pub fn take_findings(&mut self) -> Findings {
         std::mem::take(&mut self.findings)
+    }
+
+    /// Whether something of error level was found so far.
+    pub fn has_errors(&self) -> bool {
+        self.findings.has_errors()
     }
 
     /// How many findings there are so far.
@@ -189,6 +213,11 @@ impl Scope {
         outer
     }
 
+    /// Looks names up in `frame` from now on; gives back where it was, for [`Scope::close`].
+    pub fn enter(&mut self, frame: usize) -> usize {
+        std::mem::replace(&mut self.current, frame)
+    }
+
     /// Goes back to the block that [`Scope::open`] returned.
     pub fn close(&mut self, outer: usize) {
         self.current = outer;
@@ -233,7 +262,7 @@ impl Scope {
         let slot = self.slot(value, expected);
         if let (Some(up_to), false) = (&value.up_to, slot.wrong) {
             self.report(
-                Finding::error("value.range", format!("`{}` takes one value, not a range", expected.slot))
+                Finding::error("value.range", format!("{} takes one value, not a range", expected.called()))
                     .at(value.span, "a range")
                     .beside(up_to.span(), "the second bound")
                     .help(format!("write one value, or `free {}`", self.text_of_range(value))),
@@ -241,6 +270,21 @@ impl Scope {
             return None;
         }
         slot.value
+    }
+
+    /// What a value measures, and whether it has no unit; `None` where it is wrong, which is
+    /// reported, or where it holds no number.
+    pub fn dimension(&mut self, value: &Value) -> Option<(Dimension, bool)> {
+        let whole = self.expanded(value);
+        let value = whole.as_ref().unwrap_or(value);
+        let lent = value.up_to.as_ref().and_then(unit_text);
+        let (expression, lent) = match (&value.expression, &value.free) {
+            (Some(expression), _) => (expression, lent),
+            (None, Some(free)) => (&free.low, unit_text(&free.high)),
+            (None, None) => return None,
+        };
+        let evaluated = self.evaluate(expression, lent.as_ref())?;
+        Some((evaluated.quantity.dimension, evaluated.bare))
     }
 
     /// Everything that stands in a slot.
@@ -269,7 +313,7 @@ impl Scope {
                     self.report(
                         Finding::error(
                             "value.range",
-                            format!("the free range of `{}` is empty", expected.slot),
+                            format!("the free range of {} is empty", expected.called()),
                         )
                         .at(free.span, "the lower bound is not below the upper one")
                         .help("write the smaller bound first, such as `free 300 .. 1200 nm`"),

@@ -155,7 +155,11 @@ impl Div for Dimension {
     type Output = Self;
 
     fn div(self, other: Self) -> Self {
-        self * other.inverse()
+        let mut difference = self.0;
+        for (slot, less) in difference.iter_mut().zip(other.0) {
+            *slot = slot.saturating_sub(less);
+        }
+        Self(difference)
     }
 }
 

@@ -43,7 +43,7 @@ impl Scope {
             self.report(
                 Finding::error(
                     "value.range",
-                    format!("`{}` takes a whole number, not {}", expected.slot, number(si)),
+                    format!("{} takes a whole number, not {}", expected.called(), number(si)),
                 )
                 .at(span, "not a whole number")
                 .help(format!("write `{}`", number(si.round().max(1.0)))),
@@ -80,13 +80,13 @@ impl Scope {
 /// A number whose unit is missing, or a share or multiple that does not say so.
 fn bare(value: f64, span: Span, literal: Option<Number>, expected: Expected<'_>) -> Finding {
     let digits = literal.map_or_else(|| number(value), |it| it.text.value.replace(',', "."));
-    let slot = expected.slot;
+    let slot = expected.called();
     match expected.role {
-        Role::Share | Role::PositiveShare if value > 0.0 && value <= 1.0 => {
+        Role::Share | Role::PositiveShare | Role::Ratio if value > 0.0 && value <= 1.0 => {
             let percent = number(value * 100.0);
             Finding::error(
                 "unit.unlikely",
-                format!("`{slot} {digits}` does not say whether it is {percent} % or {digits} %"),
+                format!("{slot} of `{digits}` does not say whether it is {percent} % or {digits} %"),
             )
             .at(span, "a share without `%`")
             .help(format!("write `{percent} %`, or `{digits} %` if that is meant"))
@@ -96,7 +96,7 @@ fn bare(value: f64, span: Span, literal: Option<Number>, expected: Expected<'_>)
             let kilowatts = number(value);
             Finding::error(
                 "unit.unlikely",
-                format!("`{slot} {digits}` does not say whether it is {digits} times the light or {kilowatts} kW/m2"),
+                format!("{slot} of `{digits}` does not say whether it is {digits} times the light or {kilowatts} kW/m2"),
             )
             .at(span, "times, or kW/m2?")
             .help(format!("write `{digits} times`, or `irradiance {digits} kW/m2` instead"))
@@ -104,13 +104,13 @@ fn bare(value: f64, span: Span, literal: Option<Number>, expected: Expected<'_>)
         }
         Role::Gap if (200.0..=20_000.0).contains(&value) => {
             let ev = in_unit(electronvolt_nanometre(value) * crate::units::ELEMENTARY_CHARGE, "eV");
-            Finding::error("unit.missing", format!("`{slot}` has no unit: `{digits}`"))
+            Finding::error("unit.missing", format!("{slot} has no unit: `{digits}`"))
                 .at(span, "a bare number")
                 .help(format!("write `{ev}` if {digits} nm was meant"))
                 .fix(span, ev, false)
         }
         role => {
-            let finding = Finding::error("unit.missing", format!("`{slot}` has no unit: `{digits}`"))
+            let finding = Finding::error("unit.missing", format!("{slot} has no unit: `{digits}`"))
                 .at(span, "a bare number");
             match role.unit_for(value, expected.dimension) {
                 Some(unit) => finding.help(format!("write `{digits} {unit}`")).fix(
@@ -130,11 +130,11 @@ fn bare(value: f64, span: Span, literal: Option<Number>, expected: Expected<'_>)
 
 /// A value of another dimension; the missing factor is worked out where there is one.
 fn mismatch(si: f64, given: Dimension, expression: &Expression, expected: Expected<'_>) -> Finding {
-    let (span, wanted, slot) = (expression.span(), expected.dimension, expected.slot);
+    let (span, wanted, slot) = (expression.span(), expected.dimension, expected.called());
     let written = written(si, given, expression);
     let finding = Finding::error(
         "unit.dimension",
-        format!("`{slot}` takes {}, and `{written}` is {}", wanted.name(), given.name()),
+        format!("{slot} takes {}, and `{written}` is {}", expected.kind(), given.name()),
     )
     .at(span, given.name());
     let photon = |finding: Finding, text: String| {
@@ -158,9 +158,9 @@ fn mismatch(si: f64, given: Dimension, expression: &Expression, expected: Expect
     }
     match expected.role.units(wanted).first() {
         Some(unit) => {
-            finding.help(format!("give {} in `{unit}`, such as `{}`", wanted.name(), example(expected)))
+            finding.help(format!("write {} in `{unit}`, such as `{}`", expected.kind(), example(expected)))
         }
-        None => finding.help(format!("give {}", wanted.name())),
+        None => finding.help(format!("write {}", wanted.name())),
     }
 }
 
@@ -196,13 +196,13 @@ fn mended(literal: &Number, given: Dimension, expected: Expected<'_>) -> Option<
 }
 
 fn out_of_range(si: f64, span: Span, expression: &Expression, expected: Expected<'_>) -> Finding {
-    let (slot, text) = (expected.slot, written(si, expected.dimension, expression));
+    let (slot, text) = (expected.called(), written(si, expected.dimension, expression));
     let error = |message: String, label: &str, help: String| {
         Finding::error("value.range", message).at(span, label).help(help)
     };
     match expected.role {
         Role::CellTemperature | Role::GrowthTemperature | Role::SourceTemperature => error(
-            format!("`{slot} {text}` is not above absolute zero"),
+            format!("{slot} of `{text}` is not above absolute zero"),
             "absolute zero is -273.15 degC",
             format!("write {}", nearest_temperature(expression, expected)),
         ),
@@ -220,25 +220,25 @@ fn out_of_range(si: f64, span: Span, expression: &Expression, expected: Expected
                 "zero".to_owned()
             };
             error(
-                format!("`{slot}` is {given}, {side}"),
+                format!("{slot} is {given}, {side}"),
                 &side,
                 format!("write a value from 0 to {most}, such as `{}`", example(expected)),
             )
         }
         Role::Count => error(
-            format!("`{slot}` is {text}, and it takes a whole number from 1 to 10000"),
+            format!("{slot} is {text}, and it takes a whole number from 1 to 10000"),
             "not from 1 to 10000",
             "write `1` or more".to_owned(),
         ),
         Role::Incidence => error(
-            format!("`{slot} {text}` is not between 0 and 90 deg"),
+            format!("{slot} of `{text}` is not between 0 and 90 deg"),
             "light would not reach the face",
             "write an angle from the normal, such as `30 deg`".to_owned(),
         ),
         _ => {
             let side = if si < 0.0 { "negative" } else { "zero" };
             error(
-                format!("`{slot}` is {side}: `{text}`"),
+                format!("{slot} is {side}: `{text}`"),
                 side,
                 format!("write a value above zero, such as `{}`", example(expected)),
             )
@@ -262,15 +262,13 @@ fn nearest_temperature(expression: &Expression, expected: Expected<'_>) -> Strin
 }
 
 fn unlikely(si: f64, span: Span, expression: &Expression, expected: Expected<'_>) -> Finding {
-    let (slot, text) = (expected.slot, written(si, expected.dimension, expression));
+    let (slot, text) = (expected.called(), written(si, expected.dimension, expression));
     let size = match expected.role.likely() {
         Some((_, high)) if si > high => "larger",
         _ => "smaller",
     };
-    let finding = Finding::warning(
-        "unit.unlikely",
-        format!("`{slot}` of {text} is far {size} than is met in practice"),
-    );
+    let finding =
+        Finding::warning("unit.unlikely", format!("{slot} of {text} is far {size} than is met in practice"));
     let literal = match expression {
         Expression::Number(number) => Some(number),
         _ => None,
@@ -329,7 +327,7 @@ fn example(expected: Expected<'_>) -> &'static str {
         (Role::CellTemperature, _) => "25 degC",
         (Role::GrowthTemperature, _) => "650 degC",
         (Role::SourceTemperature, _) => "5800 K",
-        (Role::Share | Role::PositiveShare, _) => "3 %",
+        (Role::Share | Role::PositiveShare | Role::Ratio, _) => "3 %",
         (Role::Fraction, _) => "0.49",
         (Role::Concentration, _) => "500 times",
         (Role::Count, _) => "8",

@@ -34,6 +34,8 @@ pub enum Role {
     Share,
     /// A share written with `%` that may not be zero.
     PositiveShare,
+    /// A share written with `%` that may exceed 100 %.
+    Ratio,
     /// A fraction of a sublattice, a plain number from 0 to 1.
     Fraction,
     /// A multiple of the light.
@@ -66,7 +68,7 @@ impl Role {
     pub(crate) fn bounds(self) -> Option<Bounds> {
         Some(match self {
             Self::Any | Self::Difference => return None,
-            Self::NotNegative => bounds(0.0, true, f64::INFINITY, false),
+            Self::NotNegative | Self::Ratio => bounds(0.0, true, f64::INFINITY, false),
             Self::Share | Self::Fraction => bounds(0.0, true, 1.0, true),
             Self::PositiveShare => bounds(0.0, false, 1.0, true),
             Self::Count => bounds(1.0, true, 10_000.0, true),
@@ -102,7 +104,7 @@ impl Role {
             Self::Gap => &["eV", "meV"],
             Self::CellTemperature | Self::GrowthTemperature => &["degC", "K"],
             Self::SourceTemperature => &["K"],
-            Self::Share | Self::PositiveShare => &["%"],
+            Self::Share | Self::PositiveShare | Self::Ratio => &["%"],
             Self::Concentration => &["times"],
             Self::Irradiance => &["W/m2", "kW/m2"],
             Self::Incidence => &["deg"],
@@ -113,7 +115,7 @@ impl Role {
 
     /// Whether the number must say that it is a share or a multiple although it has no dimension.
     pub(crate) fn needs_word(self) -> bool {
-        matches!(self, Self::Share | Self::PositiveShare | Self::Concentration)
+        matches!(self, Self::Share | Self::PositiveShare | Self::Ratio | Self::Concentration)
     }
 
     /// The unit in which `value` alone makes sense here, the most usual first.

@@ -1,0 +1,285 @@
+//! What is asked of a stack: requirements, what is sought, charts, measurements, rules accepted
+//! and thresholds set.
+
+use crate::design::{Accept, Chart, Design, Limit, Measured, Requirement, Seek};
+use crate::finding::{Finding, Severity};
+use crate::resolve::properties::pending;
+use crate::resolve::quantities::{Expected, Role};
+use crate::resolve::tree::Body;
+use crate::resolve::{Resolver, names};
+use crate::source::Spanned;
+use crate::syntax::{self, SeekTarget, Statement, Value};
+use crate::units::{Dimension, parse};
+
+/// Resolves every request of `body`.
+pub(super) fn requests(resolver: &mut Resolver<'_, '_>, design: &mut Design, body: &Body<'_>) {
+    let here = resolver.scope.here();
+    for (statement, frame) in &body.requests {
+        resolver.scope.enter(*frame);
+        match statement {
+            Statement::Require(it) => require(resolver, design, it),
+            Statement::Seek(it) => seek(resolver, design, it),
+            Statement::Chart(it) => chart(resolver, design, it),
+            Statement::Vary(it) => vary(resolver, design, it),
+            Statement::Measured(it) => measured(resolver, design, it),
+            Statement::Accept(it) => accept(resolver, design, it),
+            Statement::Limit(it) => limit(resolver, design, it),
+            _ => {}
+        }
+    }
+    resolver.scope.close(here);
+}
+
+fn require(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Require) {
+    let under = conditions(resolver, design, &it.under);
+    let at_yield = it.at_yield.as_ref().and_then(|value| {
+        pending(
+            &mut resolver.scope,
+            Severity::Warning,
+            "the yield against a requirement is",
+            value.span,
+            "read the verdict as that of the nominal design",
+        );
+        resolver.scope.quantity(value, Expected::new("yield", Dimension::NONE, Role::PositiveShare))
+    });
+    let bound = match measure(&it.metric.value) {
+        Some((dimension, role)) => {
+            let expected = Expected::new(&it.metric.value, dimension, role);
+            resolver.scope.quantity(&it.bound, expected)
+        }
+        // A metric nobody knows is told where metrics are evaluated; its bound is read as it is.
+        None => match resolver.scope.dimension(&it.bound) {
+            Some((dimension, _)) => {
+                let expected = Expected::new(&it.metric.value, dimension, Role::Any);
+                resolver.scope.quantity(&it.bound, expected)
+            }
+            None => None,
+        },
+    };
+    let (Some(bound), Some(under)) = (bound, under) else { return };
+    design.requirements.push(Requirement {
+        metric: it.metric.clone(),
+        comparison: it.comparison.value,
+        bound,
+        bound_text: resolver.text(it.bound.span),
+        under,
+        at_yield,
+        text: resolver.text(it.span),
+        span: it.span,
+    });
+}
+
+/// What a metric is compared in, and how its bound is written. Shares say `%`; a fill factor is
+/// written either way.
+fn measure(metric: &str) -> Option<(Dimension, Role)> {
+    let word = metric.rsplit('.').next().unwrap_or(metric);
+    let dimension = match word {
+        "efficiency" | "fill_factor" | "current_mismatch" | "mismatch" | "strain" | "remaining_factor" => {
+            Dimension::NONE
+        }
+        "power" => Dimension::IRRADIANCE,
+        "voc" | "vmp" | "voltage_at_mpp" => Dimension::VOLTAGE,
+        "jsc" | "jmp" | "photocurrent" | "reflected_current" => Dimension::CURRENT_DENSITY,
+        "gap" => Dimension::ENERGY,
+        "thickness" | "grown_thickness" | "lattice_constant" => Dimension::LENGTH,
+        "doping" => Dimension::PER_VOLUME,
+        "areal_mass" => Dimension::AREAL_MASS,
+        "specific_power" => Dimension::SPECIFIC_POWER,
+        _ => return None,
+    };
+    let role = match word {
+        "efficiency" => Role::Share,
+        "current_mismatch" | "mismatch" => Role::Ratio,
+        "gap" => Role::Gap,
+        "strain" | "voc" | "jsc" | "vmp" | "jmp" | "voltage_at_mpp" | "power" => Role::Any,
+        _ => Role::NotNegative,
+    };
+    Some((dimension, role))
+}
+
+/// Names after `under`, each one of the stack's conditions; `None` where one is not.
+fn conditions(
+    resolver: &mut Resolver<'_, '_>,
+    design: &Design,
+    under: &[Spanned<String>],
+) -> Option<Vec<Spanned<String>>> {
+    let mut whole = true;
+    for name in under {
+        if design.condition(&name.value).is_some() {
+            continue;
+        }
+        whole = false;
+        if let Some(item) = resolver.items.conditions.get(&name.value) {
+            // A condition of the file that was wrong has been reported where it stands.
+            if resolver.condition(&name.value).is_none() {
+                continue;
+            }
+            let word = &name.value;
+            resolver.scope.report(
+                Finding::error(
+                    "name.unknown",
+                    format!("stack `{}` does not work under `{word}`", design.name.value),
+                )
+                .at(name.span, "not one of the stack's conditions")
+                .beside(item.name.span, "stated here")
+                .help(format!("write `{word}` behind `conditions` of the stack")),
+            );
+            continue;
+        }
+        let known = design.conditions.iter().map(|condition| condition.name.as_str());
+        let list: Vec<String> = known.clone().map(|name| format!("`{name}`")).collect();
+        let finding = names::unknown(
+            "condition",
+            name,
+            known,
+            &match list.is_empty() {
+                true => "name the stack's conditions first, such as `conditions noon`".to_owned(),
+                false => format!("write one of {}", list.join(", ")),
+            },
+        );
+        resolver.scope.report(finding);
+    }
+    whole.then(|| under.to_vec())
+}
+
+fn seek(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Seek) {
+    conditions(resolver, design, &it.under);
+    let weighed: Vec<Spanned<String>> = it.weighing.iter().map(|(name, _)| name.clone()).collect();
+    conditions(resolver, design, &weighed);
+    for (name, weight) in &it.weighing {
+        let slot = format!("weight of `{}`", name.value);
+        resolver.scope.quantity(weight, Expected::new(&slot, Dimension::NONE, Role::NotNegative));
+    }
+    if let SeekTarget::Equal(value) = &it.target
+        && let Some((dimension, role)) = measure(&it.metric.value)
+    {
+        resolver.scope.quantity(value, Expected::new(&it.metric.value, dimension, role));
+    }
+    let free = if design.free_values.is_empty() { "no value is free; " } else { "" };
+    pending(
+        &mut resolver.scope,
+        Severity::Advice,
+        &format!("{free}settling free values is"),
+        it.span,
+        "write the values you want to see evaluated",
+    );
+    design.seek.push(Seek { text: resolver.text(it.span), span: it.span });
+}
+
+fn chart(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Chart) {
+    conditions(resolver, design, &it.under);
+    for axis in &it.axes {
+        if axis.over.up_to.is_none() {
+            resolver.scope.report(
+                Finding::error("value.range", format!("the chart has no range of `{}`", axis.path.value))
+                    .at(axis.over.span, "one value")
+                    .help("write a range, such as `over 0.2 .. 1.5 um`"),
+            );
+        } else if let Some((dimension, false)) = resolver.scope.dimension(&axis.over) {
+            resolver.scope.slot(&axis.over, Expected::new("over", dimension, Role::Any));
+        }
+        if let Some(points) = &axis.points {
+            resolver.scope.quantity(points, Expected::new("points", Dimension::NONE, Role::Any));
+        }
+    }
+    pending(
+        &mut resolver.scope,
+        Severity::Advice,
+        "charts are",
+        it.span,
+        "set the value from the command line, such as `--set d=\"700 nm\"`, once for each point",
+    );
+    design.charts.push(Chart { text: resolver.text(it.span), span: it.span });
+}
+
+fn vary(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Vary) {
+    if it.tolerance.meaning.is_none() {
+        let text = resolver.text(it.tolerance.span);
+        resolver.scope.report(
+            Finding::error("value.missing", format!("`{text}` does not say what it means"))
+                .at(it.tolerance.span, "one standard deviation, or limits?")
+                .help(format!("write `{text} sigma` for one standard deviation, or `{text} limits`")),
+        );
+    }
+    pending(
+        &mut resolver.scope,
+        Severity::Advice,
+        "tolerances that vary together are",
+        it.span,
+        "read the figures as those of the nominal design",
+    );
+    design.vary_together.push(Spanned::new(resolver.text(it.span), it.span));
+}
+
+fn measured(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Measured) {
+    const KINDS: &[&str] = &["eqe", "jv"];
+    if !KINDS.contains(&it.what.value.as_str()) {
+        let finding =
+            names::unknown("kind of measurement", &it.what, KINDS.iter().copied(), "write `eqe` or `jv`");
+        resolver.scope.report(finding);
+    }
+    if let Some(of) = &it.of
+        && design.junction(&of.value).is_none()
+    {
+        let known = design.junctions.iter().map(|junction| junction.name.value.as_str());
+        let finding = names::unknown("junction", of, known, "name a junction of this stack");
+        resolver.scope.report(finding);
+    }
+    if let Some(under) = &it.under {
+        conditions(resolver, design, std::slice::from_ref(under));
+    }
+    resolver.files.read(&mut resolver.scope, it.span.source, &it.file, "table");
+    pending(
+        &mut resolver.scope,
+        Severity::Advice,
+        "comparison with measurements is",
+        it.span,
+        "read the figures as predicted",
+    );
+    design.measured.push(Measured { text: resolver.text(it.span), span: it.span });
+}
+
+fn accept(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Accept) {
+    let given = it.because.as_ref().is_some_and(|reason| !reason.value.trim().is_empty());
+    if !given {
+        let code = &it.code.value;
+        resolver.scope.report(
+            Finding::error("accept.no-reason", format!("`accept {code}` gives no reason"))
+                .at(it.because.as_ref().map_or(it.span, |reason| reason.span), "why is it accepted?")
+                .help("write why at its end, such as `because \"graded buffer relaxes it\"`"),
+        );
+    }
+    design.accepts.push(Accept {
+        code: it.code.clone(),
+        on: it.on.clone(),
+        because: it.because.clone(),
+        span: it.span,
+    });
+}
+
+fn limit(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Limit) {
+    let threshold = crate::check::rule(&it.code.value).and_then(|rule| rule.threshold);
+    let unit = threshold.and_then(|threshold| parse(threshold.unit).ok());
+    let slot = format!("limit {}", it.code.value);
+    let value = match unit {
+        Some(unit) => {
+            let role = if unit.dimension.is_none() { Role::Ratio } else { Role::Any };
+            resolver.scope.quantity(&it.value, Expected::new(&slot, unit.dimension, role))
+        }
+        // A code without a threshold is told where rules are known.
+        None => plain(resolver, &slot, &it.value),
+    };
+    let Some(value) = value else { return };
+    design.limits.push(Limit {
+        code: it.code.clone(),
+        value,
+        text: resolver.text(it.value.span),
+        span: it.span,
+    });
+}
+
+/// A value of whatever dimension it has.
+fn plain(resolver: &mut Resolver<'_, '_>, slot: &str, value: &Value) -> Option<f64> {
+    let (dimension, _) = resolver.scope.dimension(value)?;
+    resolver.scope.quantity(value, Expected::new(slot, dimension, Role::Any))
+}
