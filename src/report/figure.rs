@@ -1,0 +1,533 @@
+//! Figures: drawings in SVG, written by our own code so that every label is known to fit.
+//!
+//! A [`Drawing`] keeps the box of each of its labels, worked out from [`crate::report::width`];
+//! tests hold them against each other and against the edges. Coordinates are CSS pixels at full
+//! size. Two drawings a wide figure, 840 and 400 units, so that words never shrink.
+
+use std::fmt::Write as _;
+
+use serde::Serialize;
+use serde::ser::{SerializeStruct, Serializer};
+
+use crate::report::palette;
+use crate::report::text::{Text, escape_html, formula, visible};
+use crate::report::view::Table;
+use crate::report::width::width;
+
+pub mod curves;
+pub mod eqe;
+pub mod hatch;
+pub mod ledger;
+pub mod light;
+pub mod plot;
+pub mod power;
+pub mod section;
+pub mod staircase;
+
+/// Units across of a drawing that fills the column.
+pub const WIDE: f64 = 840.0;
+/// Units across of the same figure on a telephone.
+pub const SLIM: f64 = 400.0;
+
+/// One figure of a sheet, with everything that goes with it.
+#[derive(Clone, Debug)]
+pub struct Figure {
+    /// Prefix of its ids, `f2`; no user's word is in it.
+    pub id: String,
+    /// From 1.
+    pub number: usize,
+    /// What it shows, in a few words.
+    pub title: String,
+    /// What can be read from it, for those who do not see it.
+    pub desc: String,
+    /// Beneath it.
+    pub caption: Text,
+    /// Its numbers.
+    pub data: Table,
+    /// The full drawing.
+    pub wide: Drawing,
+    /// For narrow screens; where it is `None` the full one serves.
+    pub slim: Option<Drawing>,
+    /// Whether it takes half a column.
+    pub half: bool,
+    /// `figure-stack.svg`
+    pub file: String,
+    /// The full drawing as a file of its own.
+    pub standalone: String,
+}
+
+impl Figure {
+    /// Puts `drawing` and its words together; call order gives `number`.
+    pub fn new(number: usize, file: &str, title: &str, desc: String) -> Self {
+        Self {
+            id: format!("f{number}"),
+            number,
+            title: title.into(),
+            desc: visible(&desc),
+            caption: Text::new(),
+            data: Table::default(),
+            wide: Drawing::new(0.0, 0.0),
+            slim: None,
+            half: false,
+            file: format!("figure-{file}.svg"),
+            standalone: String::new(),
+        }
+    }
+
+    /// Sets the drawings and writes the standalone file.
+    #[must_use]
+    pub fn drawn(mut self, wide: Drawing, slim: Option<Drawing>) -> Self {
+        self.standalone = wide.standalone(&self);
+        self.wide = wide;
+        self.slim = slim;
+        self
+    }
+}
+
+impl Serialize for Figure {
+    /// What a template needs: the drawings as SVG elements.
+    fn serialize<S: Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
+        let mut map = serializer.serialize_struct("Figure", 10)?;
+        map.serialize_field("id", &self.id)?;
+        map.serialize_field("number", &self.number)?;
+        map.serialize_field("title", &self.title)?;
+        map.serialize_field("desc", &Text::of(self.desc.clone()))?;
+        map.serialize_field("caption", &self.caption)?;
+        map.serialize_field("data", &self.data)?;
+        map.serialize_field("half", &self.half)?;
+        map.serialize_field("file", &self.file)?;
+        let class = match (self.half, &self.slim) {
+            (true, _) => "fig half",
+            (false, Some(_)) => "fig wide",
+            (false, None) => "fig",
+        };
+        map.serialize_field("wide", &self.wide.element(self, class, ""))?;
+        map.serialize_field("slim", &self.slim.as_ref().map(|slim| slim.element(self, "fig slim", "s")))?;
+        map.end()
+    }
+}
+
+/// Where a label begins.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Anchor {
+    /// At its left end.
+    Start,
+    /// At its middle.
+    Middle,
+    /// At its right end.
+    End,
+}
+
+/// Words on a drawing.
+#[derive(Clone, Debug)]
+pub struct Label {
+    x: f64,
+    y: f64,
+    /// Words, whether bold, whether lowered.
+    runs: Vec<(String, bool, bool)>,
+    class: &'static str,
+    junction: Option<(&'static str, usize)>,
+    size: f64,
+    bold: bool,
+    anchor: Anchor,
+    halo: bool,
+}
+
+impl Label {
+    /// Words whose baseline begins at `x`, `y`.
+    pub fn at(x: f64, y: f64, words: &str) -> Self {
+        Self {
+            x,
+            y,
+            runs: vec![(visible(words), false, false)],
+            class: "",
+            junction: None,
+            size: 12.5,
+            bold: false,
+            anchor: Anchor::Start,
+            halo: false,
+        }
+    }
+
+    /// A material's label with its fractions lowered.
+    pub fn material(x: f64, y: f64, label: &str) -> Self {
+        let mut out = Self::at(x, y, "");
+        out.runs = formula(&visible(label)).into_iter().map(|(low, piece)| (piece, false, low)).collect();
+        out
+    }
+
+    /// Adds bold words.
+    #[must_use]
+    pub fn strong(mut self, words: &str) -> Self {
+        self.runs.push((visible(words), true, false));
+        self
+    }
+
+    /// Adds a lowered index.
+    #[must_use]
+    pub fn lowered(mut self, words: &str) -> Self {
+        self.runs.push((visible(words), false, true));
+        self
+    }
+
+    /// Adds plain words.
+    #[must_use]
+    pub fn and(mut self, words: &str) -> Self {
+        self.runs.push((visible(words), false, false));
+        self
+    }
+
+    /// A colour class: `q`, `bad`, `od`.
+    #[must_use]
+    pub fn class(mut self, class: &'static str) -> Self {
+        self.class = class;
+        self
+    }
+
+    /// In the colour of a junction: `i` on the ground, `o` on its area.
+    #[must_use]
+    pub fn junction(mut self, kind: &'static str, junction: usize) -> Self {
+        self.junction = Some((kind, palette::style_number(junction)));
+        self
+    }
+
+    /// One of the sizes 11.5, 12.5, 15, 24, 31; the two large ones are bold.
+    #[must_use]
+    pub fn size(mut self, size: f64) -> Self {
+        self.size = size;
+        self.bold |= size > 20.0;
+        self
+    }
+
+    /// All of it bold.
+    #[must_use]
+    pub fn bold(mut self) -> Self {
+        self.bold = true;
+        self
+    }
+
+    /// Which end `x` is.
+    #[must_use]
+    pub fn anchor(mut self, anchor: Anchor) -> Self {
+        self.anchor = anchor;
+        self
+    }
+
+    /// `x` is its right end.
+    #[must_use]
+    pub fn end(self) -> Self {
+        self.anchor(Anchor::End)
+    }
+
+    /// `x` is its middle.
+    #[must_use]
+    pub fn middle(self) -> Self {
+        self.anchor(Anchor::Middle)
+    }
+
+    /// A rim in the colour of the ground, where curves may run behind.
+    #[must_use]
+    pub fn halo(mut self) -> Self {
+        self.halo = true;
+        self
+    }
+
+    /// How wide it is at most.
+    pub fn width(&self) -> f64 {
+        self.runs
+            .iter()
+            .map(|(words, bold, low)| width(words, if *low { 9.5 } else { self.size }, *bold || self.bold))
+            .sum()
+    }
+
+    /// The box it needs.
+    pub fn bounds(&self) -> LabelBox {
+        let w = self.width();
+        let left = match self.anchor {
+            Anchor::Start => self.x,
+            Anchor::Middle => self.x - w / 2.0,
+            Anchor::End => self.x - w,
+        };
+        let low = if self.runs.iter().any(|(_, _, low)| *low) { 0.36 } else { 0.24 };
+        LabelBox {
+            words: self.runs.iter().map(|(words, _, _)| words.as_str()).collect(),
+            left,
+            right: left + w,
+            top: self.y - 0.8 * self.size,
+            bottom: self.y + low * self.size,
+        }
+    }
+
+    fn classes(&self) -> String {
+        let mut classes: Vec<String> = Vec::new();
+        let mut add = |class: &str| classes.push(class.to_string());
+        match self.size {
+            x if x < 12.0 => add("s"),
+            x if x > 30.0 => add("huge"),
+            x if x > 20.0 => add("big"),
+            x if x > 14.0 => add("mid"),
+            _ => {}
+        }
+        if !self.class.is_empty() {
+            add(self.class);
+        }
+        if let Some((kind, number)) = self.junction {
+            add(&format!("{kind}{number}"));
+        }
+        if self.bold && self.size < 20.0 {
+            add("b");
+        }
+        match self.anchor {
+            Anchor::Start => {}
+            Anchor::Middle => add("m"),
+            Anchor::End => add("e"),
+        }
+        if self.halo {
+            add("halo");
+        }
+        classes.join(" ")
+    }
+
+    fn svg(&self) -> String {
+        let mut inner = String::new();
+        let mut lowered = false;
+        for (words, bold, low) in &self.runs {
+            let words = escape_html(words);
+            let shift = match (lowered, *low) {
+                (false, true) => " dy=\"3\"",
+                (true, false) => " dy=\"-3\"",
+                _ => "",
+            };
+            lowered = *low;
+            match (*low, *bold) {
+                (true, _) => {
+                    let _ = write!(inner, "<tspan class=\"sub\"{shift}>{words}</tspan>");
+                }
+                (false, true) => {
+                    let _ = write!(inner, "<tspan class=\"b\"{shift}>{words}</tspan>");
+                }
+                (false, false) if !shift.is_empty() => {
+                    let _ = write!(inner, "<tspan{shift}>{words}</tspan>");
+                }
+                (false, false) => inner.push_str(&words),
+            }
+        }
+        let classes = self.classes();
+        let class = if classes.is_empty() { String::new() } else { format!(" class=\"{classes}\"") };
+        format!("<text x=\"{}\" y=\"{}\"{class}>{inner}</text>\n", unit(self.x), unit(self.y))
+    }
+}
+
+/// The place of one label.
+#[derive(Clone, Debug, PartialEq)]
+pub struct LabelBox {
+    /// What it says.
+    pub words: String,
+    /// Left edge.
+    pub left: f64,
+    /// Right edge.
+    pub right: f64,
+    /// Upper edge.
+    pub top: f64,
+    /// Lower edge.
+    pub bottom: f64,
+}
+
+impl LabelBox {
+    /// Whether two boxes share ground, with `gap` kept free between them sideways.
+    pub fn meets(&self, other: &Self, gap: f64) -> bool {
+        self.left < other.right + gap
+            && other.left < self.right + gap
+            && self.top < other.bottom
+            && other.top < self.bottom
+    }
+}
+
+/// One drawing.
+#[derive(Clone, Debug, Default)]
+pub struct Drawing {
+    /// Units across.
+    pub width: f64,
+    /// Units down.
+    pub height: f64,
+    body: String,
+    /// Every label with its place.
+    pub labels: Vec<LabelBox>,
+}
+
+impl Drawing {
+    /// An empty one.
+    pub fn new(width: f64, height: f64) -> Self {
+        Self { width, height, body: String::new(), labels: Vec::new() }
+    }
+
+    /// Adds a label.
+    pub fn text(&mut self, label: Label) {
+        if label.runs.iter().all(|(words, _, _)| words.is_empty()) {
+            return;
+        }
+        self.labels.push(label.bounds());
+        self.body.push_str(&label.svg());
+    }
+
+    /// Adds the first of `labels` that meets no label so far and stays inside; whether one did.
+    pub fn text_where_free(&mut self, labels: impl IntoIterator<Item = Label>) -> bool {
+        for label in labels {
+            let bounds = label.bounds();
+            let inside = bounds.left >= 0.0
+                && bounds.right <= self.width
+                && bounds.top >= 0.0
+                && bounds.bottom <= self.height;
+            if inside && !self.labels.iter().any(|other| other.meets(&bounds, 4.0)) {
+                self.text(label);
+                return true;
+            }
+        }
+        false
+    }
+
+    /// A filled rectangle; its upper left corner, width, height.
+    pub fn rect(&mut self, class: &str, at: (f64, f64), size: (f64, f64)) {
+        let _ = writeln!(
+            self.body,
+            "<rect x=\"{}\" y=\"{}\" width=\"{}\" height=\"{}\" class=\"{class}\"/>",
+            unit(at.0),
+            unit(at.1),
+            unit(size.0.max(0.0)),
+            unit(size.1.max(0.0))
+        );
+    }
+
+    /// A straight line.
+    pub fn line(&mut self, class: &str, from: (f64, f64), to: (f64, f64)) {
+        let _ = writeln!(
+            self.body,
+            "<line x1=\"{}\" y1=\"{}\" x2=\"{}\" y2=\"{}\" class=\"{class}\"/>",
+            unit(from.0),
+            unit(from.1),
+            unit(to.0),
+            unit(to.1)
+        );
+    }
+
+    /// An open line through points.
+    pub fn polyline(&mut self, class: &str, points: &[(f64, f64)]) {
+        if points.len() > 1 {
+            let _ = writeln!(self.body, "<polyline class=\"{class}\" points=\"{}\"/>", coordinates(points));
+        }
+    }
+
+    /// A closed area.
+    pub fn polygon(&mut self, class: &str, points: &[(f64, f64)]) {
+        if points.len() > 2 {
+            let _ = writeln!(self.body, "<polygon class=\"{class}\" points=\"{}\"/>", coordinates(points));
+        }
+    }
+
+    /// A path; nothing where `data` is empty.
+    pub fn path(&mut self, class: &str, data: &str) {
+        if !data.is_empty() {
+            let _ = writeln!(self.body, "<path class=\"{class}\" d=\"{data}\"/>");
+        }
+    }
+
+    /// A dot.
+    pub fn dot(&mut self, class: &str, at: (f64, f64), radius: f64) {
+        let _ = writeln!(
+            self.body,
+            "<circle cx=\"{}\" cy=\"{}\" r=\"{}\" class=\"{class}\"/>",
+            unit(at.0),
+            unit(at.1),
+            unit(radius)
+        );
+    }
+
+    /// As an element of a page, with its own title and description. `suffix` keeps the ids of two
+    /// drawings of one figure apart.
+    fn element(&self, figure: &Figure, class: &str, suffix: &str) -> String {
+        let id = format!("{}{suffix}", figure.id);
+        format!(
+            "<svg class=\"{class}\" viewBox=\"0 0 {} {}\" role=\"img\" aria-labelledby=\"{id}-t {id}-d\" xmlns=\"http://www.w3.org/2000/svg\">\n\
+             <title id=\"{id}-t\">{}</title>\n<desc id=\"{id}-d\">{}</desc>\n{}</svg>",
+            unit(self.width),
+            unit(self.height),
+            escape_html(&figure.title),
+            escape_html(&figure.desc),
+            self.body
+        )
+    }
+
+    /// As decoration: no name, not read out.
+    pub fn decoration(&self, class: &str) -> String {
+        format!(
+            "<svg class=\"{class}\" viewBox=\"0 0 {} {}\" preserveAspectRatio=\"none\" aria-hidden=\"true\" focusable=\"false\" xmlns=\"http://www.w3.org/2000/svg\">\n{}</svg>",
+            unit(self.width),
+            unit(self.height),
+            self.body
+        )
+    }
+
+    /// As a file: with the classes it uses and a ground of its own, since nobody knows what it
+    /// will be laid on.
+    fn standalone(&self, figure: &Figure) -> String {
+        let margin = 10.0;
+        let (w, h) = (self.width + 2.0 * margin, self.height + 2.0 * margin);
+        let ground = format!(
+            "<rect x=\"-{margin}\" y=\"-{margin}\" width=\"{}\" height=\"{}\" class=\"paper\"/>\n",
+            unit(w),
+            unit(h)
+        );
+        let body = format!("{ground}{}", self.body);
+        format!(
+            "<svg class=\"fig\" viewBox=\"-{margin} -{margin} {w} {h}\" width=\"{w}\" height=\"{h}\" role=\"img\" aria-labelledby=\"{id}-t {id}-d\" xmlns=\"http://www.w3.org/2000/svg\">\n\
+             <title id=\"{id}-t\">{}</title>\n<desc id=\"{id}-d\">{}</desc>\n<style>\n{}</style>\n{body}</svg>\n",
+            escape_html(&figure.title),
+            escape_html(&figure.desc),
+            palette::figure_css(Some(&body)),
+            w = unit(w),
+            h = unit(h),
+            id = figure.id,
+        )
+    }
+}
+
+/// A coordinate: one decimal, no sign on zero. What is not finite becomes 0; evaluation rules it
+/// out, and a broken coordinate must not reach a file.
+pub fn unit(value: f64) -> String {
+    let tenths = if value.is_finite() { (value * 10.0).round() } else { 0.0 };
+    let tenths = if tenths == 0.0 { 0.0 } else { tenths };
+    format!("{}", tenths / 10.0)
+}
+
+/// Eight points a line, so that a change shows as a few lines of a diff.
+fn coordinates(points: &[(f64, f64)]) -> String {
+    let mut out = String::new();
+    for (index, (x, y)) in points.iter().enumerate() {
+        if index > 0 {
+            out.push(if index % 8 == 0 { '\n' } else { ' ' });
+        }
+        let _ = write!(out, "{},{}", unit(*x), unit(*y));
+    }
+    out
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn coordinates_are_short_and_finite() {
+        assert_eq!(unit(-0.01), "0");
+        assert_eq!(unit(12.34), "12.3");
+        assert_eq!(unit(f64::NAN), "0");
+    }
+
+    #[test]
+    fn a_label_finds_the_first_free_place() {
+        let mut drawing = Drawing::new(200.0, 40.0);
+        drawing.text(Label::at(0.0, 12.0, "taken"));
+        assert!(drawing.text_where_free([Label::at(10.0, 14.0, "meets"), Label::at(100.0, 12.0, "free")]));
+        assert_eq!(drawing.labels[1].words, "free");
+        assert!(!drawing.text_where_free([Label::at(190.0, 12.0, "over the edge")]));
+    }
+}

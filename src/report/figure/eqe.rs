@@ -1,0 +1,87 @@
+//! External quantum efficiency of each junction against wavelength, and what is not reflected.
+
+use crate::report::context::Context;
+use crate::report::figure::plot::{Scale, axis_below, axis_left, cut, interpolate, thin};
+use crate::report::figure::{Drawing, Label, SLIM, WIDE};
+use crate::report::number::fixed;
+use crate::report::palette::style_number;
+use crate::report::text::visible;
+use crate::report::width::fit;
+
+/// First and last wavelength drawn, nm: the junctions' range with a little room.
+pub fn range(context: &Context<'_>) -> Option<(f64, f64)> {
+    let spectral = &context.first.spectral;
+    let live = |i: &usize| spectral.eqe.values().any(|eqe| eqe.get(*i).is_some_and(|q| *q > 0.005));
+    let indices: Vec<usize> = (0..spectral.wavelength_nm.len()).filter(live).collect();
+    let first = spectral.wavelength_nm.get(*indices.first()?)?;
+    let last = spectral.wavelength_nm.get(*indices.last()?)?;
+    let room = (last - first) * 0.03;
+    Some((((first - room) / 10.0).floor() * 10.0, ((last + room) / 10.0).ceil() * 10.0))
+}
+
+/// Both drawings.
+pub fn draw(context: &Context<'_>, range: (f64, f64)) -> (Drawing, Drawing) {
+    (draw_in(context, range, (WIDE, 44.0, 210.0)), draw_in(context, range, (SLIM, 34.0, 170.0)))
+}
+
+fn draw_in(context: &Context<'_>, range: (f64, f64), (width, left, height): (f64, f64, f64)) -> Drawing {
+    let spectral = &context.first.spectral;
+    let top = 24.0;
+    let foot = top + height;
+    let mut drawing = Drawing::new(width, foot + 42.0);
+    let x = Scale::new(range.0, range.1, (left, width - 12.0));
+    let y = Scale::new(0.0, 100.0, (foot, top));
+    let curve = |values: &[f64], of: &dyn Fn(f64) -> f64| -> Vec<(f64, f64)> {
+        spectral.wavelength_nm.iter().zip(values).map(|(nm, v)| (x.of(*nm), y.of(100.0 * of(*v)))).collect()
+    };
+    let frame = ((x.at.0, top), (x.at.1, foot));
+    for run in cut(&curve(&spectral.reflectance, &|r| 1.0 - r), frame.0, frame.1) {
+        drawing.polyline("cq", &thin(&run, 0.12));
+    }
+    for (index, junction) in context.first.junctions.iter().enumerate() {
+        let Some(eqe) = spectral.eqe.get(&junction.name) else { continue };
+        for run in cut(&curve(eqe, &|q| q), frame.0, frame.1) {
+            drawing.polyline(&format!("c{}", style_number(index)), &thin(&run, 0.12));
+        }
+    }
+    let ticks: Vec<(f64, String)> = (0..=5)
+        .map(|i| (f64::from(i) * 20.0, if i == 5 { "100 %".into() } else { fixed(f64::from(i) * 20.0, 0) }))
+        .map(|(v, words)| (v, if left < 40.0 { words.replace(" %", "") } else { words }))
+        .collect();
+    axis_left(&mut drawing, y, left, &ticks);
+    let (values, _) = x.ticks(if width > 500.0 { 12 } else { 6 });
+    let ticks: Vec<(f64, String)> =
+        values.iter().map(|v| (*v, fixed(*v, 0).replace('\u{202f}', ""))).collect();
+    axis_below(&mut drawing, x, foot, &ticks);
+    drawing.text(Label::at(width - 12.0, foot + 36.0, "wavelength, nm").size(11.5).class("q").end());
+    labels(context, &mut drawing, (x, y), (top, foot));
+    drawing
+}
+
+/// Each name under its own curve where it is the highest, what is not reflected above.
+fn labels(context: &Context<'_>, drawing: &mut Drawing, (x, y): (Scale, Scale), (top, foot): (f64, f64)) {
+    let spectral = &context.first.spectral;
+    for (index, junction) in context.first.junctions.iter().enumerate() {
+        let Some(eqe) = spectral.eqe.get(&junction.name) else { continue };
+        // The centre of the range where it takes more than half of its own greatest share.
+        let most = eqe.iter().copied().fold(0.0, f64::max);
+        let live: Vec<f64> = spectral
+            .wavelength_nm
+            .iter()
+            .zip(eqe)
+            .filter(|(nm, q)| **q >= 0.5 * most && **nm >= x.from && **nm <= x.to)
+            .map(|(nm, _)| *nm)
+            .collect();
+        let (Some(from), Some(to)) = (live.first(), live.last()) else { continue };
+        let centre = x.of((from + to) / 2.0);
+        let height = interpolate(&spectral.wavelength_nm, eqe, (from + to) / 2.0).unwrap_or(most);
+        let name = fit(&visible(&junction.name), 15.0, true, 150.0);
+        let label =
+            |at: f64| Label::at(centre, at, &name).size(15.0).bold().junction("i", index).middle().halo();
+        let below = y.of(100.0 * height) + 24.0;
+        let rows = (0..5).map(|row| below + 20.0 * f64::from(row)).filter(|at| *at < foot - 4.0);
+        drawing.text_where_free(rows.map(label));
+    }
+    let words = Label::at(x.at.1, top - 9.0, "not reflected (dashed)").size(11.5).class("q").end();
+    drawing.text_where_free([words]);
+}

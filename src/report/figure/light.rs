@@ -1,0 +1,619 @@
+//! Where the light goes: every photon of the sun, divided into what becomes current and what is
+//! lost.
+//!
+//! The horizontal axis is stretched so that equal widths are equal photon current, the vertical
+//! one is the share of the photons: every area reads in mA/cm², and each cell of the grid is a
+//! round amount.
+
+use crate::report::context::{Context, Row, Style};
+use crate::report::figure::hatch::{Hatch, strokes};
+use crate::report::figure::plot::{Scale, axis_left, interpolate, round_step, thin};
+use crate::report::figure::staircase::{GAP, Hung, arrange};
+use crate::report::figure::{Drawing, Label, LabelBox, SLIM, WIDE};
+use crate::report::number::fixed;
+use crate::report::text::visible;
+use crate::report::width::fit;
+
+/// One part of the light.
+#[derive(Clone, Debug)]
+pub struct Band {
+    /// What it is, for the table.
+    pub name: String,
+    /// The same in fewer words, for labels.
+    pub short: String,
+    /// How it is drawn.
+    pub style: Style,
+    /// The junction whose current it is, where it is current.
+    pub junction: Option<usize>,
+    /// Share of the photons at each wavelength, 0..1.
+    share: Vec<f64>,
+    /// Over the part of the spectrum that is drawn, mA/cm2.
+    pub drawn_ma: f64,
+    /// Over the whole spectrum, mA/cm2.
+    pub whole_ma: f64,
+}
+
+/// All parts of the light under the first condition, from the bottom of the figure to its top.
+#[derive(Clone, Debug)]
+pub struct Light {
+    /// Parts; at each wavelength their shares add up to 1.
+    pub bands: Vec<Band>,
+    /// nm.
+    wavelength_nm: Vec<f64>,
+    /// Photon current counted from the blue end, mA/cm2.
+    counted_ma: Vec<f64>,
+    /// First wavelength, last drawn, last at all, nm.
+    pub range_nm: (f64, f64, f64),
+    /// Photon current of the drawn part and of all, mA/cm2.
+    pub total_ma: (f64, f64),
+}
+
+/// Layers by themselves at most; the others together.
+const LAYERS_SHOWN: usize = 3;
+
+impl Light {
+    /// Divides the light; `None` where the condition has no spectral data.
+    pub fn of(context: &Context<'_>) -> Option<Self> {
+        let spectral = &context.first.spectral;
+        let n = spectral
+            .wavelength_nm
+            .len()
+            .min(spectral.photon_current_ma_per_cm2_per_nm.len())
+            .min(spectral.reflectance.len());
+        if n < 3 {
+            return None;
+        }
+        let wavelength_nm = spectral.wavelength_nm[..n].to_vec();
+        let density = &spectral.photon_current_ma_per_cm2_per_nm[..n];
+        let mut counted_ma = vec![0.0; n];
+        for i in 1..n {
+            counted_ma[i] = counted_ma[i - 1]
+                + (wavelength_nm[i] - wavelength_nm[i - 1]) * (density[i] + density[i - 1]) / 2.0;
+        }
+        let all = counted_ma[n - 1];
+        let sum_at = |i: usize| -> f64 { spectral.eqe.values().filter_map(|eqe| eqe.get(i)).sum() };
+        let last_absorbed = (0..n).rev().find(|&i| sum_at(i) > 0.01).unwrap_or(n - 1);
+        let room = counted_ma[last_absorbed] * 0.05;
+        let cut =
+            (last_absorbed..n).find(|&i| counted_ma[i] >= counted_ma[last_absorbed] + room).unwrap_or(n - 1);
+        if counted_ma[cut] <= 0.0 {
+            return None;
+        }
+        let mut light = Self {
+            bands: Vec::new(),
+            range_nm: (wavelength_nm[0], wavelength_nm[cut], wavelength_nm[n - 1]),
+            total_ma: (counted_ma[cut], all),
+            wavelength_nm,
+            counted_ma,
+        };
+        light.divide(context, n, cut);
+        Some(light)
+    }
+
+    fn divide(&mut self, context: &Context<'_>, n: usize, cut: usize) {
+        let spectral = &context.first.spectral;
+        let open = 1.0 - context.shading();
+        let rows: Vec<Row<'_>> = context.layers().collect();
+        let zero = vec![0.0; n];
+        let share_of = |row: &Row<'_>| -> &[f64] {
+            spectral.absorptance.get(&row.result.name).filter(|a| a.len() >= n).map_or(&zero, |a| a)
+        };
+        let mut absorbed = vec![0.0; n];
+        let mut not_collected = vec![0.0; n];
+        for (index, junction) in context.first.junctions.iter().enumerate() {
+            let eqe = spectral.eqe.get(&junction.name).filter(|eqe| eqe.len() >= n).map_or(&zero, |e| e);
+            let taken: Vec<f64> = (0..n)
+                .map(|i| {
+                    rows.iter()
+                        .filter(|row| row.junction() == Some(index) && row.makes_current())
+                        .map(|row| share_of(row)[i])
+                        .sum::<f64>()
+                        .max(eqe[i])
+                })
+                .collect();
+            for i in 0..n {
+                absorbed[i] += taken[i];
+                not_collected[i] += (taken[i] - eqe[i]) * open;
+            }
+            let name = visible(&junction.name);
+            self.push(
+                cut,
+                Band {
+                    name: format!("{name}, as current"),
+                    short: name,
+                    style: Style {
+                        class: format!("f{}", crate::report::palette::style_number(index)),
+                        hatch: None,
+                        key: None,
+                    },
+                    junction: Some(index),
+                    share: (0..n).map(|i| eqe[i] * open).collect(),
+                    drawn_ma: 0.0,
+                    whole_ma: 0.0,
+                },
+            );
+        }
+        let lost = |name: &str, short: &str, style: Style, share: Vec<f64>| Band {
+            name: name.into(),
+            short: short.into(),
+            style,
+            junction: None,
+            share,
+            drawn_ma: 0.0,
+            whole_ma: 0.0,
+        };
+        let plus = Style::hatched(Hatch::Plus(8.0), "");
+        self.push(cut, lost("absorbed, not collected", "not collected", plus, not_collected));
+        self.layers(context, cut, &rows, &share_of, &mut absorbed);
+        let reflected: Vec<f64> = (0..n).map(|i| spectral.reflectance[i] * open).collect();
+        let passing: Vec<f64> = (0..n).map(|i| (open - absorbed[i] * open - reflected[i]).max(0.0)).collect();
+        let through = Style { class: "thru".into(), hatch: None, key: None };
+        self.push(cut, lost("passing through", "passing through", through, passing));
+        let zigzag = Style::hatched(Hatch::Zigzag(5.0), "");
+        self.push(cut, lost("reflected", "reflected", zigzag, reflected));
+        if open < 1.0 {
+            let metal = Style { class: "fm".into(), hatch: None, key: None };
+            self.push(cut, lost("under the fingers", "fingers", metal, vec![1.0 - open; n]));
+        }
+    }
+
+    /// The largest layers that make no current by themselves, the others as one.
+    fn layers<'r>(
+        &mut self,
+        context: &Context<'_>,
+        cut: usize,
+        rows: &'r [Row<'r>],
+        share_of: &dyn Fn(&Row<'_>) -> &'r [f64],
+        absorbed: &mut [f64],
+    ) {
+        let n = absorbed.len();
+        let open = 1.0 - context.shading();
+        let mut parts: Vec<(usize, Band)> = Vec::new();
+        for row in rows.iter().filter(|row| !row.makes_current()) {
+            let share = share_of(row);
+            if share.iter().all(|s| *s <= 0.0) {
+                continue;
+            }
+            for i in 0..n {
+                absorbed[i] += share[i];
+            }
+            let name = layer_words(context, row);
+            let band = Band {
+                short: name.clone(),
+                name,
+                style: row.style(),
+                junction: None,
+                share: share.iter().take(n).map(|s| s * open).collect(),
+                drawn_ma: 0.0,
+                whole_ma: 0.0,
+            };
+            parts.push((row.index, self.measured(cut, band)));
+        }
+        parts.sort_by(|a, b| b.1.drawn_ma.total_cmp(&a.1.drawn_ma).then(a.0.cmp(&b.0)));
+        let small = self.total_ma.0 * 0.002;
+        let shown = parts.iter().take(LAYERS_SHOWN).filter(|(_, band)| band.drawn_ma > small).count();
+        let rest = parts.split_off(shown.min(parts.len()));
+        parts.sort_by_key(|(index, _)| *index);
+        self.bands.extend(parts.into_iter().map(|(_, band)| band));
+        if let Some(((_, first), others)) = rest.split_first() {
+            if others.is_empty() {
+                self.bands.push(first.clone());
+                return;
+            }
+            let mut together = first.clone();
+            together.name = if shown == 0 {
+                format!("{} layers that make no current", rest.len())
+            } else {
+                format!("{} other layers", rest.len())
+            };
+            together.short = if shown == 0 { "layers".into() } else { "other layers".into() };
+            together.style = Style::hatched(Hatch::Lines(-45.0, 5.0), "");
+            for (_, other) in others {
+                for (sum, more) in together.share.iter_mut().zip(&other.share) {
+                    *sum += more;
+                }
+            }
+            let together = self.measured(cut, together);
+            self.bands.push(together);
+        }
+    }
+
+    fn push(&mut self, cut: usize, band: Band) {
+        let band = self.measured(cut, band);
+        // What is nothing anywhere has no line in the table either.
+        if band.whole_ma > self.total_ma.1 * 1e-5 || band.junction.is_some() {
+            self.bands.push(band);
+        }
+    }
+
+    fn measured(&self, cut: usize, mut band: Band) -> Band {
+        let counted = &self.counted_ma;
+        let part = |i: usize| (counted[i] - counted[i - 1]) * (band.share[i] + band.share[i - 1]) / 2.0;
+        let drawn: f64 = (1..=cut).map(part).sum();
+        let rest: f64 = (cut + 1..counted.len()).map(part).sum();
+        band.drawn_ma = drawn;
+        band.whole_ma = drawn + rest;
+        band
+    }
+}
+
+/// `AlInP window of top`, `wafer`
+pub fn layer_words(context: &Context<'_>, row: &Row<'_>) -> String {
+    let duty = row.duty(context.design);
+    match row.junction().and_then(|index| context.first.junctions.get(index)) {
+        Some(junction) => format!("{duty} of {}", visible(&junction.name)),
+        None if row.result.name.contains('.') || duty == "tunnel" => {
+            format!("{duty} {}", visible(row.material()))
+        }
+        None if matches!(duty, "coat" | "contact" | "layer" | "buffer") => {
+            format!("{} {duty}", visible(row.material()))
+        }
+        None => duty.to_string(),
+    }
+}
+
+/// Both drawings.
+pub fn draw(context: &Context<'_>, light: &Light) -> (Drawing, Drawing) {
+    let wide = Frame { width: WIDE, left: 44.0, right: 796.0, height: 300.0, slim: false };
+    let slim = Frame { width: SLIM, left: 34.0, right: 380.0, height: 250.0, slim: true };
+    (draw_in(context, light, &wide), draw_in(context, light, &slim))
+}
+
+struct Frame {
+    width: f64,
+    left: f64,
+    right: f64,
+    height: f64,
+    slim: bool,
+}
+
+/// A band in units: its outline, thinned, and its edges for finding room.
+struct Shape<'a> {
+    band: &'a Band,
+    lower: Vec<(f64, f64)>,
+    upper: Vec<(f64, f64)>,
+}
+
+impl Shape<'_> {
+    fn edge(points: &[(f64, f64)], x: f64) -> f64 {
+        let xs: Vec<f64> = points.iter().map(|p| p.0).collect();
+        let ys: Vec<f64> = points.iter().map(|p| p.1).collect();
+        interpolate(&xs, &ys, x).unwrap_or(0.0)
+    }
+
+    fn height_at(&self, x: f64) -> f64 {
+        Self::edge(&self.lower, x) - Self::edge(&self.upper, x)
+    }
+
+    fn polygon(&self) -> Vec<(f64, f64)> {
+        self.upper.iter().copied().chain(self.lower.iter().rev().copied()).collect()
+    }
+
+    /// Where a box fits: its centre, with the most room around it.
+    fn room_for(&self, (w, h): (f64, f64), frame: &Frame) -> Option<(f64, f64)> {
+        let step = 4.0;
+        let mut best: Option<(f64, (f64, f64))> = None;
+        let mut x = frame.left + w / 2.0 + 4.0;
+        while x + w / 2.0 + 4.0 <= frame.right {
+            let ends = [x - w / 2.0, x - w / 4.0, x, x + w / 4.0, x + w / 2.0];
+            let low = ends.iter().map(|x| Self::edge(&self.lower, *x)).fold(f64::MAX, f64::min);
+            let high = ends.iter().map(|x| Self::edge(&self.upper, *x)).fold(f64::MIN, f64::max);
+            let spare = low - high - h;
+            if spare > 8.0 && best.is_none_or(|(most, _)| spare > most + 0.5) {
+                best = Some((spare, (x, (low + high) / 2.0)));
+            }
+            x += step;
+        }
+        best.map(|(_, centre)| centre)
+    }
+}
+
+fn draw_in(context: &Context<'_>, light: &Light, frame: &Frame) -> Drawing {
+    let x = Scale::new(0.0, light.total_ma.0, (frame.left, frame.right));
+    // Places over the plot depend on where the bands lie, so these come first, on a plot at 0.
+    let shapes = shapes(light, frame, x);
+    let mut inside: Vec<(usize, (f64, f64), f64)> = Vec::new();
+    let mut hung: Vec<(usize, f64, f64)> = Vec::new();
+    let small = light.total_ma.0 * 0.004;
+    for (index, shape) in shapes.iter().enumerate() {
+        if shape.band.drawn_ma < small && shape.band.junction.is_none() {
+            continue;
+        }
+        let place = shape.band.junction.and_then(|_| {
+            [24.0, 15.0].into_iter().find_map(|size| {
+                let w =
+                    Label::at(0.0, 0.0, &context.scale.number(shape.band.drawn_ma)).size(size).bold().width();
+                let unit = Label::at(0.0, 0.0, context.scale.unit).size(11.5).width();
+                let name = Label::at(0.0, 0.0, &short_name(shape.band, frame)).size(15.0).width();
+                shape.room_for((w.max(unit).max(name) + 6.0, size + 40.0), frame).map(|c| (c, size))
+            })
+        });
+        match place {
+            Some((centre, size)) => inside.push((index, centre, size)),
+            None => hung.push((index, anchor(shape, frame, &hung), 0.0)),
+        }
+    }
+    let (rows, places) = hang(context, &shapes, frame, &mut hung);
+    let row_height = if frame.slim { 17.0 } else { 20.0 };
+    let top = 8.0 + row_height * rows as f64 + 8.0;
+    let mut drawing = Drawing::new(frame.width, top + frame.height + if frame.slim { 78.0 } else { 78.0 });
+    let foot = top + frame.height;
+    paint(&mut drawing, &shapes, top);
+    let step = grid(&mut drawing, context, light, frame, x, top);
+    labels_inside(&mut drawing, context, &shapes, &inside, frame, top);
+    unit_cell(&mut drawing, context, &shapes, frame, (x, step, top));
+    for ((index, at, _), (row, rightward)) in hung.iter().zip(places) {
+        let shape = &shapes[*index];
+        let y = 8.0 + row_height * row as f64;
+        let middle = top + (Shape::edge(&shape.lower, *at) + Shape::edge(&shape.upper, *at)) / 2.0;
+        drawing.line("lead", (*at, y - 1.0), (*at, middle));
+        drawing.dot("mk", (*at, middle), 2.0);
+        let words = hung_label(context, shape.band, frame);
+        let label = Label { x: at + if rightward { GAP } else { -GAP }, y: y + 9.0, ..words };
+        drawing.text(if rightward { label } else { label.end() });
+    }
+    wavelengths(&mut drawing, light, x, foot);
+    if light.total_ma.1 > light.total_ma.0 * 1.002 {
+        goes_on(&mut drawing, frame.right + 5.0, top, frame.height);
+    }
+    drawing
+}
+
+fn shapes<'a>(light: &'a Light, frame: &Frame, x: Scale) -> Vec<Shape<'a>> {
+    let n = light.wavelength_nm.iter().take_while(|nm| **nm <= light.range_nm.1).count();
+    let mut level = vec![0.0; n];
+    let edge = |level: &[f64]| -> Vec<(f64, f64)> {
+        let points: Vec<(f64, f64)> = level
+            .iter()
+            .zip(&light.counted_ma)
+            .map(|(share, counted)| (x.of(*counted), frame.height * (1.0 - share.min(1.0))))
+            .collect();
+        thin(&points, 0.12)
+    };
+    let mut lower = edge(&level);
+    light
+        .bands
+        .iter()
+        .map(|band| {
+            for (sum, more) in level.iter_mut().zip(&band.share) {
+                *sum += more;
+            }
+            let upper = edge(&level);
+            let shape = Shape { band, lower: lower.clone(), upper: upper.clone() };
+            lower = upper;
+            shape
+        })
+        .collect()
+}
+
+/// Where a leader reaches a band: thick enough, and clear of the leaders so far.
+fn anchor(shape: &Shape<'_>, frame: &Frame, others: &[(usize, f64, f64)]) -> f64 {
+    let candidates: Vec<(f64, f64)> = (0..=120)
+        .map(|i| frame.left + 3.0 + (frame.right - frame.left - 6.0) * f64::from(i) / 120.0)
+        .map(|x| (x, shape.height_at(x)))
+        .collect();
+    let most = candidates.iter().map(|c| c.1).fold(0.0, f64::max);
+    let clearance = |x: f64| others.iter().map(|o| (o.1 - x).abs()).fold(f64::MAX, f64::min);
+    let width = (frame.right - frame.left) / 14.0;
+    candidates
+        .iter()
+        .filter(|c| c.1 >= 0.7 * most)
+        .max_by(|a, b| {
+            let worth = |c: &(f64, f64)| c.1 / most.max(1e-9) + (clearance(c.0) / width).min(1.0);
+            worth(a).total_cmp(&worth(b))
+        })
+        .map_or(frame.left + 3.0, |c| c.0)
+}
+
+fn short_name(band: &Band, frame: &Frame) -> String {
+    fit(&band.short, 15.0, false, if frame.slim { 90.0 } else { 160.0 })
+}
+
+fn hung_label(context: &Context<'_>, band: &Band, frame: &Frame) -> Label {
+    let (size, room) = if frame.slim { (11.5, 130.0) } else { (12.5, 230.0) };
+    let words = if frame.slim { &band.short } else { &band.name };
+    let words =
+        band.junction.map_or_else(|| fit(words, size, false, room), |_| fit(&band.short, size, false, room));
+    Label::at(0.0, 0.0, &format!("{words} ")).strong(&context.scale.number(band.drawn_ma)).size(size)
+}
+
+/// Rows over the plot; labels that find no place are left to the table, smallest first.
+fn hang(
+    context: &Context<'_>,
+    shapes: &[Shape<'_>],
+    frame: &Frame,
+    hung: &mut Vec<(usize, f64, f64)>,
+) -> (usize, Vec<(usize, bool)>) {
+    hung.sort_by(|a, b| a.1.total_cmp(&b.1));
+    loop {
+        let items: Vec<Hung> = hung
+            .iter()
+            .map(|(index, x, _)| Hung {
+                x: *x,
+                width: hung_label(context, shapes[*index].band, frame).width(),
+            })
+            .collect();
+        if let Some((places, rows)) = arrange(&items, frame.width) {
+            return (rows, places.into_iter().map(|p| (p.row, p.rightward)).collect());
+        }
+        let least = (0..hung.len())
+            .min_by(|&a, &b| shapes[hung[a].0].band.drawn_ma.total_cmp(&shapes[hung[b].0].band.drawn_ma))
+            .unwrap_or(0);
+        hung.remove(least);
+    }
+}
+
+fn paint(drawing: &mut Drawing, shapes: &[Shape<'_>], top: f64) {
+    for shape in shapes {
+        let polygon: Vec<(f64, f64)> = shape.polygon().iter().map(|p| (p.0, p.1 + top)).collect();
+        drawing.polygon(&shape.band.style.class, &polygon);
+        if let Some((class, hatch)) = &shape.band.style.hatch {
+            drawing.path(class, &strokes(*hatch, &polygon));
+        }
+    }
+}
+
+/// Lines so that each cell is a round amount; returns the width of a cell, mA/cm2.
+fn grid(
+    drawing: &mut Drawing,
+    context: &Context<'_>,
+    light: &Light,
+    frame: &Frame,
+    x: Scale,
+    top: f64,
+) -> f64 {
+    let foot = top + frame.height;
+    let step = round_step(light.total_ma.0 / 11.0);
+    let mut at = step;
+    while at < light.total_ma.0 {
+        drawing.line("grid", (x.of(at), top), (x.of(at), foot));
+        at += step;
+    }
+    let y = Scale::new(0.0, 100.0, (foot, top));
+    for share in [20.0, 40.0, 60.0, 80.0] {
+        drawing.line("grid", (frame.left, y.of(share)), (frame.right, y.of(share)));
+    }
+    let ticks: Vec<(f64, String)> = (0..=5)
+        .map(|i| {
+            (
+                f64::from(i) * 20.0,
+                if i == 5 && !frame.slim { "100 %".into() } else { fixed(f64::from(i) * 20.0, 0) },
+            )
+        })
+        .collect();
+    axis_left(drawing, y, frame.left, &ticks);
+    // The counting axis.
+    let base = foot + 42.0;
+    drawing.line("axis", (frame.left, base), (frame.right, base));
+    let minor = step / 5.0;
+    let mut count = 0;
+    while f64::from(count) * minor <= light.total_ma.0 * 1.0001 {
+        let at = f64::from(count) * minor;
+        let major = count % 5 == 0;
+        drawing.line("axis", (x.of(at), base - if major { 6.0 } else { 3.0 }), (x.of(at), base));
+        if major {
+            let words = trimmed(context.scale.of(at));
+            drawing
+                .text_where_free([Label::at(x.of(at), base + 15.0, &words).size(11.5).class("q").middle()]);
+        }
+        count += 1;
+    }
+    let words = format!("photon current counted from the blue end, {}", context.scale.unit);
+    drawing.text(Label::at(frame.width - 2.0, base + 31.0, &words).size(11.5).class("q").end());
+    step
+}
+
+fn trimmed(value: f64) -> String {
+    let text = fixed(value, 2);
+    text.trim_end_matches('0').trim_end_matches('.').to_string()
+}
+
+fn labels_inside(
+    drawing: &mut Drawing,
+    context: &Context<'_>,
+    shapes: &[Shape<'_>],
+    inside: &[(usize, (f64, f64), f64)],
+    frame: &Frame,
+    top: f64,
+) {
+    for (index, (x, y), size) in inside {
+        let band = shapes[*index].band;
+        let junction = band.junction.unwrap_or(0);
+        let y = y + top;
+        let on = |label: Label| label.junction("o", junction).middle();
+        drawing.text(on(Label::at(*x, y - size / 2.0 - 2.0, &short_name(band, frame)).size(15.0)));
+        drawing.text(on(Label::at(*x, y + size / 2.0 + 1.0, &context.scale.number(band.drawn_ma))
+            .size(*size)
+            .bold()));
+        drawing.text(on(Label::at(*x, y + size / 2.0 + 18.0, context.scale.unit).size(11.5)));
+    }
+}
+
+/// One cell of the grid, outlined and named, in the lowest junction that has one free.
+fn unit_cell(
+    drawing: &mut Drawing,
+    context: &Context<'_>,
+    shapes: &[Shape<'_>],
+    frame: &Frame,
+    (x, step, top): (Scale, f64, f64),
+) {
+    let amount = trimmed(context.scale.of(step) * 0.2);
+    let cell_height = frame.height / 5.0;
+    for shape in shapes.iter().rev() {
+        let Some(junction) = shape.band.junction else { continue };
+        let columns = ((x.to / step).floor() as i64 - 1).max(0);
+        for column in (0..columns).rev() {
+            let (left, right) = (x.of(column as f64 * step), x.of((column + 1) as f64 * step));
+            for row in (0..5).rev() {
+                let (upper, lower) = (cell_height * f64::from(row), cell_height * f64::from(row + 1));
+                let full = [left, (left + right) / 2.0, right].iter().all(|x| {
+                    Shape::edge(&shape.upper, *x) <= upper + 0.5
+                        && Shape::edge(&shape.lower, *x) >= lower - 0.5
+                });
+                let cell =
+                    LabelBox { words: String::new(), left, right, top: upper + top, bottom: lower + top };
+                if !full || drawing.labels.iter().any(|label| label.meets(&cell, 2.0)) {
+                    continue;
+                }
+                let middle = (left + right) / 2.0;
+                let on = |y: f64, words: &str| {
+                    Label::at(middle, top + y, words).size(11.5).junction("o", junction).middle()
+                };
+                let centre = (upper + lower) / 2.0;
+                let lines = [
+                    [
+                        on(centre - 4.0, "this area is"),
+                        on(centre + 12.0, &format!("{amount} {}", context.scale.unit)).bold(),
+                    ],
+                    [on(centre - 4.0, &format!("{amount} mA/")), on(centre + 11.0, "cm²")],
+                ];
+                let unit_is_long = context.scale.unit.starts_with('A');
+                let fitting = lines
+                    .into_iter()
+                    .take(if unit_is_long { 1 } else { 2 })
+                    .find(|lines| lines.iter().all(|line| line.width() <= right - left - 4.0));
+                if let Some(lines) = fitting {
+                    let n = crate::report::palette::style_number(junction);
+                    drawing.rect(&format!("u{n}"), (left, top + upper), (right - left, lower - upper));
+                    for line in lines {
+                        drawing.text(line);
+                    }
+                    return;
+                }
+            }
+        }
+    }
+}
+
+fn wavelengths(drawing: &mut Drawing, light: &Light, x: Scale, foot: f64) {
+    let place = |nm: f64| interpolate(&light.wavelength_nm, &light.counted_ma, nm).map(|ma| x.of(ma));
+    let step = if light.range_nm.1 > 1300.0 { 100.0 } else { 50.0 };
+    let first = (light.range_nm.0 / step).ceil() as i64;
+    let last = (light.range_nm.1 / step + 1e-9).floor() as i64;
+    let ticks: Vec<(f64, f64)> =
+        (first..=last).filter_map(|i| place(i as f64 * step).map(|x| (i as f64 * step, x))).collect();
+    for (_, at) in &ticks {
+        drawing.line("axis", (*at, foot), (*at, foot + 5.0));
+    }
+    let label = |at: f64, words: &str| Label::at(at, foot + 18.0, words).size(11.5).class("q").middle();
+    if let Some((nm, at)) = ticks.last() {
+        let words = format!("{} nm", fixed(*nm, 0).replace('\u{202f}', ""));
+        let half = label(0.0, &words).width() / 2.0;
+        drawing.text(label(at.min(drawing.width - half), &words));
+    }
+    // Hundreds first: where there is no room for all, the round ones stay.
+    for hundreds in [true, false] {
+        for (nm, at) in ticks.iter().filter(|(nm, _)| (nm % 100.0 == 0.0) == hundreds) {
+            let words = fixed(*nm, 0).replace('\u{202f}', "");
+            drawing.text_where_free([label(*at, &words)]);
+        }
+    }
+}
+
+/// The spectrum goes on.
+fn goes_on(drawing: &mut Drawing, x: f64, top: f64, height: f64) {
+    let step = height / 6.0;
+    let points: Vec<(f64, f64)> =
+        (0..=6).map(|i| (x + if i % 2 == 0 { 0.0 } else { 4.0 }, top + step * f64::from(i))).collect();
+    drawing.polyline("thin", &points);
+}

@@ -1,0 +1,143 @@
+//! Where the light goes, with its words.
+
+use crate::report::context::Context;
+use crate::report::figure::light::{Light, draw};
+use crate::report::figure::{Figure, eqe, plot};
+use crate::report::number::{CurrentScale, fixed, with_unit};
+use crate::report::text::{Text, visible};
+use crate::report::view::layers::joined;
+use crate::report::view::{Section, Table};
+
+/// The section; empty where there is no spectral data.
+pub fn light(context: &Context<'_>) -> Section {
+    let mut section = Section::new("light", "Where the light goes");
+    let Some(light) = Light::of(context) else { return section };
+    let scale = context.scale;
+    let nm = |value: f64| with_unit(&fixed(value, 0).replace('\u{202f}', ""), "nm");
+    let made: f64 = light.bands.iter().filter(|band| band.junction.is_some()).map(|band| band.drawn_ma).sum();
+    let mut lost: Vec<_> =
+        light.bands.iter().filter(|band| band.junction.is_none() && band.drawn_ma > 0.0).collect();
+    lost.sort_by(|a, b| b.drawn_ma.total_cmp(&a.drawn_ma));
+    let losses: Vec<String> =
+        lost.iter().take(3).map(|band| format!("{} ({})", band.name, scale.number(band.drawn_ma))).collect();
+    let mut lede = Text::of(format!(
+        "Of the {} of sunlight up to {}, {} become current.",
+        scale.text(light.total_ma.0),
+        nm(light.range_nm.1),
+        scale.number(made)
+    ));
+    if !losses.is_empty() {
+        let begin = if losses.len() == 1 { "The loss" } else { "The largest losses" };
+        lede = lede.p(format!(" {begin}: {}.", joined(&losses)));
+    }
+    section.lede = Some(lede);
+
+    let (wide, slim) = draw(context, &light);
+    let parts: Vec<String> =
+        light.bands.iter().map(|band| format!("{} {}", band.name, scale.number(band.drawn_ma))).collect();
+    let mut figure = Figure::new(
+        3,
+        "light",
+        "Where the light goes",
+        format!(
+            "Every photon between {} and {}, {} in all, divided into what becomes current and what is lost. The axis is stretched so that equal widths are equal photon current and every area reads in {}: {}.",
+            nm(light.range_nm.0),
+            nm(light.range_nm.1),
+            scale.text(light.total_ma.0),
+            scale.unit,
+            parts.join(", ")
+        ),
+    )
+    .drawn(wide, Some(slim));
+    let cell = plot::round_step(light.total_ma.0 / 11.0) * 0.2;
+    let cell = CurrentScale::text(scale, cell);
+    let mut caption = format!(
+        "Under {}. Height is the share of the photons, width is photon current, so area is {} and each cell of the grid is {cell}.",
+        visible(&context.first.name),
+        scale.unit
+    );
+    if light.total_ma.1 > light.total_ma.0 * 1.002 {
+        caption.push_str(&format!(
+            " Beyond {} lie {} that make no current.",
+            nm(light.range_nm.1),
+            scale.text(light.total_ma.1 - light.total_ma.0)
+        ));
+    }
+    figure.caption = Text::of(caption);
+    figure.data = table(context, &light);
+    section.figures.push(figure);
+    section.figures.extend(efficiency(context));
+    section.notes = vec![
+        Text::new()
+            .b("Solid")
+            .p(" is current, ")
+            .b("hatched")
+            .p(" is lost, in the hatch of the layer that took it. Blank passes through."),
+        Text::of("Count cells, or read the numbers: both give the same answer."),
+    ];
+    section
+}
+
+fn table(context: &Context<'_>, light: &Light) -> Table {
+    let nm = |value: f64| fixed(value, 0).replace('\u{202f}', "");
+    let drawn = format!(">{} to {} nm, as drawn", nm(light.range_nm.0), nm(light.range_nm.1));
+    let whole = format!(">{} to {} nm", nm(light.range_nm.0), nm(light.range_nm.2));
+    let mut table = Table::new(
+        Text::of(format!("Photon current, {}", context.scale.unit)),
+        &["part of the light", &drawn, &whole],
+    );
+    let cells = |name: &str, drawn: f64, whole: f64| {
+        vec![Text::of(name), Text::of(context.scale.number(drawn)), Text::of(context.scale.number(whole))]
+    };
+    for band in &light.bands {
+        table.row(cells(&band.name, band.drawn_ma, band.whole_ma));
+    }
+    table.row(cells("all", light.total_ma.0, light.total_ma.1));
+    table
+}
+
+fn efficiency(context: &Context<'_>) -> Option<Figure> {
+    let range = eqe::range(context)?;
+    let (wide, slim) = eqe::draw(context, range);
+    let names: Vec<String> = context.first.junctions.iter().map(|j| visible(&j.name)).collect();
+    let mut figure = Figure::new(
+        4,
+        "eqe",
+        "External quantum efficiency",
+        format!(
+            "External quantum efficiency of {} against wavelength from {} to {} nm, with the share of the light that is not reflected.",
+            joined(&names),
+            fixed(range.0, 0),
+            fixed(range.1, 0)
+        ),
+    )
+    .drawn(wide, Some(slim));
+    figure.caption = Text::of(format!(
+        "Electrons per photon that reaches the cell between the fingers, under {}.",
+        visible(&context.first.name)
+    ));
+    let spectral = &context.first.spectral;
+    let mut heads = vec![">wavelength, nm".to_string()];
+    heads.extend(names.iter().map(|name| format!(">{name}, %")));
+    heads.push(">reflected, %".into());
+    let heads: Vec<&str> = heads.iter().map(String::as_str).collect();
+    let mut table = Table::new(Text::of("Quantum efficiency and reflectance"), &heads);
+    let step = if range.1 - range.0 > 900.0 { 50.0 } else { 25.0 };
+    let mut nm = (range.0 / step).ceil() * step;
+    while nm <= range.1 {
+        let at = |values: &[f64]| {
+            plot::interpolate(&spectral.wavelength_nm, values, nm)
+                .map(|v| fixed(v * 100.0, 1))
+                .unwrap_or_default()
+        };
+        let mut cells = vec![Text::of(fixed(nm, 0).replace('\u{202f}', ""))];
+        for junction in &context.first.junctions {
+            cells.push(Text::of(spectral.eqe.get(&junction.name).map(|eqe| at(eqe)).unwrap_or_default()));
+        }
+        cells.push(Text::of(at(&spectral.reflectance)));
+        table.row(cells);
+        nm += step;
+    }
+    figure.data = table;
+    Some(figure)
+}
