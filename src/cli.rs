@@ -6,12 +6,15 @@ use std::process::ExitCode;
 
 use clap::{Parser, Subcommand};
 
+mod build;
 mod check;
 mod console;
 mod findings;
 mod input;
 mod materials;
 mod output;
+mod summary;
+mod watch;
 mod why;
 
 pub use output::slug;
@@ -79,6 +82,10 @@ struct Arguments {
 enum Command {
     /// Read, resolve and evaluate stack files, and report what is wrong with them
     Check(check::Check),
+    /// Check, evaluate, and write the design sheets and the numbers
+    Build(build::Build),
+    /// Build, then again at every save
+    Watch(watch::Watch),
     /// Show the page of a finding: what it reports, why it matters, an example, its cure
     Why(why::Why),
     /// Show what the material library holds
@@ -99,6 +106,8 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
     let console = Console::new(arguments.color);
     let exit = match arguments.command {
         Command::Check(command) => check::run(&command, &console),
+        Command::Build(command) => build::run(&command, &console),
+        Command::Watch(command) => watch::run(&command, &console),
         Command::Why(command) => why::run(&command, &console),
         Command::Materials(command) => materials::run(&command, &console),
     };
