@@ -112,7 +112,7 @@ pub enum Statement {
     /// `base GaInP matched 612 nm p 1e17 /cm3 Zn { … } as thick`
     Layer(Box<LayerStatement>),
     /// `junction top { … }`, `tunnel as lower { … }`, `recombination { … }`, `repeat 20 { … }`
-    Group(Group),
+    Group(Box<Group>),
     /// `name argument argument … { … }`: `light AM1.5G`, `shading 3 %`, `voltage from fit { … }`,
     /// `fingers { … }`, `growth inverted`
     Property(Property),
@@ -121,13 +121,13 @@ pub enum Statement {
     /// `place NAME(12 nm, b = 3 nm) as lower`
     Place(Place),
     /// `require METRIC COMPARISON QUANTITY under CONDITION at yield P`
-    Require(Require),
+    Require(Box<Require>),
     /// `seek highest efficiency under noon weighing noon 3, roof 1`
-    Seek(Seek),
+    Seek(Box<Seek>),
     /// `chart efficiency against top.base.thickness over 0.2 .. 1.5 um, 40 points`
     Chart(Chart),
     /// `vary together top.* ± 2 % sigma`
-    Vary(Vary),
+    Vary(Box<Vary>),
     /// `measured eqe "run-17.csv" of top under noon`
     Measured(Measured),
     /// `accept lattice.mismatch on buffer because "…"`
@@ -376,9 +376,9 @@ pub struct Value {
     /// `.. 0.72` after the first number.
     pub up_to: Option<Expression>,
     /// `free 300 .. 1200 nm`
-    pub free: Option<FreeRange>,
+    pub free: Option<Box<FreeRange>>,
     /// `± 3 % sigma`
-    pub tolerance: Option<Tolerance>,
+    pub tolerance: Option<Box<Tolerance>>,
     /// All of it.
     pub span: Span,
 }

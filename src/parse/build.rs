@@ -17,6 +17,9 @@ mod layers;
 mod requests;
 mod values;
 
+/// Beyond so many findings nobody reads on, and the search for ways out would take most of the time.
+const CURES: usize = 200;
+
 /// What the builders share.
 pub(super) struct Builder<'a> {
     source: &'a Source,
@@ -191,53 +194,60 @@ impl<'a> Builder<'a> {
         Block { statements, span }
     }
 
+    /// The block of a statement that has one.
+    fn own_block(&mut self, node: Node<'_>) -> Option<Block> {
+        let block = node.into_inner().find(|part| part.as_rule() == Rule::block)?;
+        Some(self.block(block))
+    }
+
     fn statement(&mut self, node: Node<'_>) -> Statement {
         let span = self.span(&node);
         let outer = std::mem::replace(&mut self.broken, false);
-        let statement = self.whole_statement(node);
-        let broken = std::mem::replace(&mut self.broken, outer);
-        if broken { Statement::Invalid(span) } else { statement }
+        let statement = self.whole_statement(node).filter(|_| !self.broken);
+        self.broken = outer;
+        statement.unwrap_or(Statement::Invalid(span))
     }
 
-    fn whole_statement(&mut self, node: Node<'_>) -> Statement {
-        let span = self.span(&node);
-        let made = match node.as_rule() {
-            Rule::layer => self.layer(node),
-            Rule::property => self.property(node),
-            Rule::group => self.group(node),
-            Rule::replace => self.replace(node),
-            Rule::let_item => self.let_statement(node),
-            Rule::place => self.place(node),
-            Rule::require => self.require(node),
-            Rule::seek => self.seek(node),
-            Rule::chart => self.chart(node),
-            Rule::vary => self.vary(node),
-            Rule::measured => self.measured(node),
-            Rule::accept => self.accept(node),
-            Rule::limit => self.limit(node),
-            Rule::remove => self.remove(node),
-            Rule::insert => self.insert(node),
-            Rule::bad_block => {
-                self.bad_block(node);
-                None
-            }
-            _ => {
-                self.findings.push(expected::explain(self.source, span));
-                None
-            }
+    fn whole_statement(&mut self, node: Node<'_>) -> Option<Statement> {
+        // One call through a pointer keeps the frame small: blocks nest through here, and in an
+        // unoptimised build each arm of a match would hold a statement of its own.
+        let build: fn(&mut Self, Node<'_>) -> Option<Statement> = match node.as_rule() {
+            Rule::layer => Self::layer,
+            Rule::property => Self::property,
+            Rule::group => Self::group,
+            Rule::replace => Self::replace,
+            Rule::let_item => Self::let_statement,
+            Rule::place => Self::place,
+            Rule::require => Self::require,
+            Rule::seek => Self::seek,
+            Rule::chart => Self::chart,
+            Rule::vary => Self::vary,
+            Rule::measured => Self::measured,
+            Rule::accept => Self::accept,
+            Rule::limit => Self::limit,
+            Rule::remove => Self::remove,
+            Rule::insert => Self::insert,
+            Rule::bad_block => Self::bad_block,
+            _ => Self::bad_statement,
         };
-        made.unwrap_or(Statement::Invalid(span))
+        build(self, node)
+    }
+
+    fn bad_statement(&mut self, node: Node<'_>) -> Option<Statement> {
+        let span = self.span(&node);
+        self.findings.push(expected::explain(self.source, span, self.findings.0.len() < CURES));
+        None
     }
 
     /// Reports the head and, by building it, what is wrong inside the block.
-    fn bad_block(&mut self, node: Node<'_>) {
+    fn bad_block(&mut self, node: Node<'_>) -> Option<Statement> {
         let start = self.span(&node);
-        if let Some(block) = node.into_inner().find(|part| part.as_rule() == Rule::block) {
-            let open = block.clone().into_inner().next().map_or(start, |open| self.span(&open));
-            let head = Span { end: open.end, ..start };
-            self.findings.push(expected::explain(self.source, head));
-            self.block(block);
-        }
+        let block = node.into_inner().find(|part| part.as_rule() == Rule::block)?;
+        let open = block.clone().into_inner().next().map_or(start, |open| self.span(&open));
+        let cured = self.findings.0.len() < CURES;
+        self.findings.push(expected::explain(self.source, Span { end: open.end, ..start }, cured));
+        self.block(block);
+        None
     }
 
     fn let_statement(&mut self, node: Node<'_>) -> Option<Statement> {

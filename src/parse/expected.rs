@@ -3,6 +3,7 @@
 use crate::finding::Finding;
 use crate::parse::grammar::{self, Refusal, Rule};
 use crate::source::{Source, Span};
+use crate::syntax::DUTIES;
 
 mod brackets;
 mod cures;
@@ -20,15 +21,16 @@ struct Trouble<'a> {
     rules: Vec<Rule>,
 }
 
-/// Says what is wrong with `span`: a statement, or the head of a block with its `{`.
-pub(super) fn explain(source: &Source, span: Span) -> Finding {
+/// Says what is wrong with `span`: a statement, or the head of a block with its `{`. Without `cured`
+/// the way out is the general form, not an edit that was tried.
+pub(super) fn explain(source: &Source, span: Span, cured: bool) -> Finding {
     let text = source.slice(span);
     if let Some(finding) = brackets::unpaired(source, span) {
         return finding;
     }
     match grammar::explain(text) {
         Ok(()) => misplaced(text, span),
-        Err(refusal) => Trouble::new(text, refusal).finding(span),
+        Err(refusal) => Trouble::new(text, refusal).finding(span, cured),
     }
 }
 
@@ -50,12 +52,16 @@ impl<'a> Trouble<'a> {
         let rest = text.get(refusal.at..).unwrap_or_default();
         let skipped = rest.len() - rest.trim_start_matches([' ', '\t', '\r', '\n', '\u{a0}']).len();
         let at = refusal.at + skipped;
-        let at = if at >= text.trim_end().len() { text.trim_end().len() } else { at };
+        let at = at.min(text.trim_end().len());
+        // A letter names cannot hold stops the reader inside a word: show the whole word.
+        let foreign = |c: char| c.is_alphabetic() && !c.is_ascii();
+        let at =
+            if text[at..].starts_with(foreign) { text[..at].trim_end_matches(is_word).len() } else { at };
         Self { text, at, token: token_at(text, at), rules: refusal.rules }
     }
 
-    fn finding(&self, span: Span) -> Finding {
-        let cure = cures::find(self);
+    fn finding(&self, span: Span, cured: bool) -> Finding {
+        let cure = cured.then(|| cures::find(self)).flatten();
         let place = self.place(span);
         let label = match (&cure, self.token.is_empty()) {
             (Some(cure), _) => cure.label.clone(),
@@ -66,14 +72,29 @@ impl<'a> Trouble<'a> {
         let Some(cure) = cure else {
             return finding.help(self.form());
         };
+        let finding = finding.help(cure.help);
+        let Some(edit) = cure.edit else { return finding };
         let start = span.start as usize;
-        let edit = Span::new(span.source, start + cure.from, start + cure.to);
-        finding.help(cure.help).fix(edit, cure.replacement, cure.safe)
+        let at = Span::new(span.source, start + edit.range.start, start + edit.range.end);
+        finding.fix(at, edit.replacement, edit.safe)
+    }
+
+    /// What would have fitted, without what may stand almost anywhere and tells nobody anything.
+    fn wanted(&self) -> Vec<Rule> {
+        let noise = |rule: &Rule| {
+            matches!(rule, Rule::unit | Rule::operator | Rule::sign | Rule::group_word | Rule::nested_formula)
+        };
+        let telling = |rule: &Rule| !noise(rule) && !matches!(rule, Rule::open | Rule::EOI);
+        let wanted: Vec<Rule> = self.rules.iter().copied().filter(telling).collect();
+        if !wanted.is_empty() {
+            return wanted;
+        }
+        self.rules.iter().copied().filter(|rule| !noise(rule)).collect()
     }
 
     fn message(&self) -> String {
         let mut wanted: Vec<&str> = Vec::new();
-        for name in self.rules.iter().filter(|rule| !is_noise(**rule)).map(|rule| names::human(*rule)) {
+        for name in self.wanted().into_iter().map(names::human) {
             if !wanted.contains(&name) {
                 wanted.push(name);
             }
@@ -114,21 +135,21 @@ impl<'a> Trouble<'a> {
         Span::new(span.source, start + from, start + to)
     }
 
-    /// How such a statement is written.
+    /// How such a statement, or the words before the trouble, are written.
     fn form(&self) -> String {
-        match names::form(first_word(self.text)) {
+        let head = first_word(self.text);
+        let before = self.text[..self.at].split_whitespace().next_back().unwrap_or_default();
+        match names::form(head).or_else(|| names::inner_form(before)) {
             Some(form) => format!("write it as `{form}`"),
             None if self.text.trim() == "{" => {
                 "write before `{` what the block belongs to, such as `junction top {`".to_owned()
             }
+            None if DUTIES.contains(&head) => {
+                "a layer is written as `base GaInP matched 600 nm p 1e17 /cm3 Zn`".to_owned()
+            }
             None => "a statement is a name and its values, such as `temperature 25 degC`".to_owned(),
         }
     }
-}
-
-/// What may stand almost anywhere and tells nobody what is missing.
-fn is_noise(rule: Rule) -> bool {
-    matches!(rule, Rule::unit | Rule::operator | Rule::sign | Rule::group_word | Rule::EOI)
 }
 
 fn is_word(c: char) -> bool {

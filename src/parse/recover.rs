@@ -34,12 +34,9 @@ struct Open {
 pub(super) fn too_large(source: &Source) -> Option<Finding> {
     let size = source.text.len();
     (size > SIZE_LIMIT).then(|| {
-        Finding::error(
-            "syntax.too-large",
-            format!("this file has {size} bytes; at most {SIZE_LIMIT} are read"),
-        )
-        .at(Span::new(source.id, 0, 0), "")
-        .help("split it and bring the pieces together with `use \"other.stack\"`")
+        Finding::error("syntax.limit", format!("this file has {size} bytes; at most {SIZE_LIMIT} are read"))
+            .at(Span::new(source.id, 0, 0), "")
+            .help("split it and bring the pieces together with `use \"other.stack\"`")
     })
 }
 
@@ -50,7 +47,8 @@ pub(super) fn scan(source: &Source) -> Scan {
     let mut scan = Scan::default();
     let mut braces = Braces::default();
     let mut brackets = 0_usize;
-    let (mut last, mut line_start, mut at) = (b' ', 0, 0);
+    let mut line = Line::new(bytes, 0);
+    let (mut last, mut at) = (b' ', 0);
     while let Some(&byte) = bytes.get(at) {
         match byte {
             b'"' => at = text_end(bytes, at),
@@ -63,20 +61,20 @@ pub(super) fn scan(source: &Source) -> Scan {
             }
             b'{' => {
                 brackets = 0;
-                braces.open.push(Open { at, indent: indent(bytes, line_start) });
+                braces.open.push(Open { at, indent: line.indent });
             }
             b'}' => {
                 brackets = 0;
-                let first = line_start + indent(bytes, line_start) == at;
-                braces.close(at, first.then_some(at - line_start), &mut scan);
+                let first = line.start + line.indent == at;
+                braces.close(at, first.then_some(line.indent), &mut scan);
             }
             b';' => brackets = 0,
             b'\n' => {
-                line_start = at + 1;
-                if !goes_on(bytes, at, last) {
+                line = Line::new(bytes, at + 1);
+                if brackets > 0 && !goes_on(&bytes[line.start..line_end(bytes, line.start)], last) {
                     brackets = 0;
                 }
-                if starts_item(&source.text, line_start) {
+                if starts_item(&source.text[line.start..]) {
                     braces.settle(&mut scan);
                 }
             }
@@ -132,26 +130,44 @@ impl Braces {
     }
 }
 
-fn indent(bytes: &[u8], line_start: usize) -> usize {
-    let line = bytes.get(line_start..).unwrap_or_default();
-    line.iter().take_while(|byte| matches!(byte, b' ' | b'\t')).count()
+/// The line at hand.
+struct Line {
+    start: usize,
+    /// Bytes of space before its first sign.
+    indent: usize,
 }
 
-fn starts_item(text: &str, line_start: usize) -> bool {
-    let line = text.get(line_start..).unwrap_or_default();
+impl Line {
+    fn new(bytes: &[u8], start: usize) -> Self {
+        let line = bytes.get(start..).unwrap_or_default();
+        let indent = line.iter().take_while(|byte| matches!(byte, b' ' | b'\t')).count();
+        Self { start, indent }
+    }
+}
+
+fn starts_item(line: &str) -> bool {
     ITEM_STARTS.iter().any(|word| {
         line.strip_prefix(word)
             .is_some_and(|rest| !rest.starts_with(|c: char| c.is_ascii_alphanumeric() || c == '_'))
     })
 }
 
-/// Whether brackets may go on after this newline: the grammar lets them after `(` or `,` and
-/// before `,` or `)`.
-fn goes_on(bytes: &[u8], newline: usize, last: u8) -> bool {
-    matches!(last, b'(' | b'[' | b',') || {
-        let next = bytes[newline..].iter().find(|byte| !byte.is_ascii_whitespace());
-        matches!(next, Some(b',' | b')' | b']' | b'(' | b'['))
+/// Whether brackets may go on in `line`, the one after a newline: the grammar lets them after `(`
+/// or `,` and before `,` or `)`, but two words in a row are a statement of their own.
+fn goes_on(line: &[u8], last: u8) -> bool {
+    let line = line.trim_ascii();
+    match line.first() {
+        // An empty line decides nothing.
+        None | Some(b',' | b')' | b']' | b'(' | b'[') => return true,
+        Some(_) => {}
     }
+    let word = line.iter().take_while(|byte| byte.is_ascii_alphanumeric() || **byte == b'_').count();
+    let next = line[word..].trim_ascii_start();
+    let apart = word > 0 && word + next.len() < line.len();
+    let two_words = apart
+        && line[0].is_ascii_alphabetic()
+        && next.first().is_some_and(|byte| byte.is_ascii_alphanumeric() || *byte == b'"');
+    matches!(last, b'(' | b'[' | b',') && !two_words
 }
 
 /// The last byte of the quoted text that begins at `start`, or the last before the line ends.
@@ -173,14 +189,14 @@ fn line_end(bytes: &[u8], start: usize) -> usize {
 }
 
 fn too_deep(span: Span) -> Finding {
-    Finding::error("syntax.nesting", format!("brackets nested more than {NESTING_LIMIT} deep"))
+    Finding::error("syntax.limit", format!("brackets nested more than {NESTING_LIMIT} deep"))
         .at(span, format!("level {}", NESTING_LIMIT + 1))
         .help("close the brackets opened before this one, or name inner parts with `let` or `part`")
 }
 
 /// pest's own limits of stack and steps: a backstop no text is known to reach.
 pub(super) fn gave_up(source: &Source) -> Finding {
-    Finding::error("syntax.nesting", "this file is too entangled to be read")
+    Finding::error("syntax.limit", "this file is too entangled to be read")
         .at(Span::new(source.id, 0, 0), "")
         .help("split it and bring the pieces together with `use \"other.stack\"`")
 }

@@ -291,8 +291,13 @@ impl Scope {
     pub fn slot(&mut self, value: &Value, expected: Expected<'_>) -> Slot {
         let whole = self.expanded(value);
         let value = whole.as_ref().unwrap_or(value);
-        let mut slot =
-            Slot { value: None, up_to: None, free: None, tolerance: value.tolerance.clone(), wrong: false };
+        let mut slot = Slot {
+            value: None,
+            up_to: None,
+            free: None,
+            tolerance: value.tolerance.as_deref().cloned(),
+            wrong: false,
+        };
         let lent = value.up_to.as_ref().and_then(unit_text);
         if let Some(expression) = &value.expression {
             slot.value = self.lent(expression, lent, expected);

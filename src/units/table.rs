@@ -49,6 +49,7 @@ pub const SYMBOLS: &[Symbol] = &[
     symbol("points", 0.01, Dimension::NONE, ""),
     symbol("times", 1.0, Dimension::NONE, ""),
     symbol("sq", 1.0, Dimension::NONE, ""),
+    symbol("photons", 1.0, Dimension::NONE, ""),
 ];
 
 /// Prefix letters and what they multiply by.

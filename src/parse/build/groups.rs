@@ -3,7 +3,7 @@
 use crate::parse::build::Builder;
 use crate::parse::grammar::{Node, Rule};
 use crate::source::{Span, Spanned};
-use crate::syntax::{Argument, Group, GroupKind, Insert, Place, Property, Remove, Statement, Value};
+use crate::syntax::{Argument, Block, Group, GroupKind, Insert, Place, Property, Remove, Statement, Value};
 
 impl Builder<'_> {
     /// The only word inside: `as name`, `of top`, `under noon`.
@@ -12,8 +12,15 @@ impl Builder<'_> {
     }
 
     pub(super) fn group(&mut self, node: Node<'_>) -> Option<Statement> {
+        let mut group = self.group_head(node.clone())?;
+        group.block = self.own_block(node)?;
+        Some(Statement::Group(group))
+    }
+
+    /// All but the block: a frame that is gone before blocks nest.
+    fn group_head(&mut self, node: Node<'_>) -> Option<Box<Group>> {
         let span = self.span(&node);
-        let (mut kind, mut name, mut count, mut block) = (None, None, None, None);
+        let (mut kind, mut name, mut count) = (None, None, None);
         let mut words = Vec::new();
         for part in node.into_inner() {
             let at = self.span(&part);
@@ -26,20 +33,27 @@ impl Builder<'_> {
                 Rule::alias => name = self.only_word(part),
                 Rule::value => count = Some(self.value(part)),
                 Rule::group_word => words.push(self.word(&part)),
-                _ => block = Some(self.block(part)),
+                _ => {}
             }
         }
-        Some(Statement::Group(Group { kind: kind?, name, count, words, block: block?, span }))
+        let block = Block { statements: Vec::new(), span };
+        Some(Box::new(Group { kind: kind?, name, count, words, block, span }))
     }
 
     pub(super) fn property(&mut self, node: Node<'_>) -> Option<Statement> {
+        let mut property = self.property_head(node.clone())?;
+        property.block = self.own_block(node);
+        Some(Statement::Property(property))
+    }
+
+    fn property_head(&mut self, node: Node<'_>) -> Option<Property> {
         let span = self.span(&node);
-        let (mut name, mut block) = (None, None);
+        let mut name = None;
         let mut arguments = Vec::new();
         for part in node.into_inner() {
             match part.as_rule() {
                 Rule::property_name => name = Some(self.word(&part)),
-                Rule::block => block = Some(self.block(part)),
+                Rule::block => {}
                 Rule::alias => {
                     // A property has no name of its own to give: the words stay words.
                     let at = self.span(&part);
@@ -50,7 +64,7 @@ impl Builder<'_> {
                 _ => arguments.push(self.argument(part)),
             }
         }
-        Some(Statement::Property(Property { name: name?, arguments, block, span }))
+        Some(Property { name: name?, arguments, block: None, span })
     }
 
     pub(super) fn place(&mut self, node: Node<'_>) -> Option<Statement> {
@@ -85,14 +99,15 @@ impl Builder<'_> {
 
     pub(super) fn insert(&mut self, node: Node<'_>) -> Option<Statement> {
         let span = self.span(&node);
-        let (mut after, mut path, mut block) = (true, None, None);
-        for part in node.into_inner() {
+        let (mut after, mut path) = (true, None);
+        for part in node.clone().into_inner() {
             match part.as_rule() {
                 Rule::side => after = part.as_str() == "after",
                 Rule::path => path = Some(self.word(&part)),
-                _ => block = Some(self.block(part)),
+                _ => {}
             }
         }
-        Some(Statement::Insert(Insert { after, path: path?, block: block?, span }))
+        let block = self.own_block(node)?;
+        Some(Statement::Insert(Insert { after, path: path?, block, span }))
     }
 }

@@ -10,15 +10,22 @@ use crate::syntax::{
 
 impl Builder<'_> {
     pub(super) fn layer(&mut self, node: Node<'_>) -> Option<Statement> {
+        let mut layer = self.layer_head(node.clone())?;
+        layer.block = self.own_block(node);
+        Some(Statement::Layer(layer))
+    }
+
+    /// All but the block: a frame that is gone before blocks nest.
+    fn layer_head(&mut self, node: Node<'_>) -> Option<Box<LayerStatement>> {
         let span = self.span(&node);
-        let (mut duty, mut material, mut alias, mut block) = (None, None, None, None);
+        let (mut duty, mut material, mut alias) = (None, None, None);
         let mut attributes = Vec::new();
         for part in node.into_inner() {
             match part.as_rule() {
                 Rule::duty => duty = Some(self.word(&part)),
                 Rule::phrase => material = self.phrase(part),
                 Rule::alias => alias = self.only_word(part),
-                Rule::block => block = Some(self.block(part)),
+                Rule::block => {}
                 _ => attributes.extend(self.attribute(part)),
             }
         }
@@ -27,24 +34,30 @@ impl Builder<'_> {
             demote(&mut material, &mut attributes);
         }
         settle_names(&mut attributes);
-        Some(Statement::Layer(Box::new(LayerStatement { duty, material, attributes, alias, block, span })))
+        Some(Box::new(LayerStatement { duty, material, attributes, alias, block: None, span }))
     }
 
     pub(super) fn replace(&mut self, node: Node<'_>) -> Option<Statement> {
+        let mut replace = self.replace_head(node.clone())?;
+        replace.block = self.own_block(node);
+        Some(Statement::Replace(replace))
+    }
+
+    fn replace_head(&mut self, node: Node<'_>) -> Option<Box<Replace>> {
         let span = self.span(&node);
-        let (mut path, mut material, mut block) = (None, None, None);
+        let (mut path, mut material) = (None, None);
         let mut attributes = Vec::new();
         for part in node.into_inner() {
             match part.as_rule() {
                 Rule::dotted => path = Some(self.word(&part)),
                 Rule::phrase => material = self.phrase(part),
-                Rule::block => block = Some(self.block(part)),
+                Rule::block | Rule::alias => {}
                 _ => attributes.extend(self.attribute(part)),
             }
         }
         demote(&mut material, &mut attributes);
         settle_names(&mut attributes);
-        Some(Statement::Replace(Box::new(Replace { path: path?, material, attributes, block, span })))
+        Some(Box::new(Replace { path: path?, material, attributes, block: None, span }))
     }
 
     fn phrase(&mut self, node: Node<'_>) -> Option<MaterialPhrase> {
@@ -71,6 +84,7 @@ impl Builder<'_> {
         for part in node.into_inner() {
             match part.as_rule() {
                 Rule::value => value = Some(self.value(part)),
+                Rule::gap_word | Rule::to_word => {}
                 _ => word = Some(self.word(&part)),
             }
         }

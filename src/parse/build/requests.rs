@@ -25,12 +25,12 @@ impl Builder<'_> {
                     comparison = Some(Spanned::new(sign, self.span(&part)));
                 }
                 Rule::value => bound = Some(self.value(part)),
-                Rule::at_yield => at_yield = part.into_inner().next().map(|it| self.value(it)),
+                Rule::at_yield => at_yield = part.into_inner().nth(1).map(|it| self.value(it)),
                 _ => under.extend(part.into_inner().map(|name| self.word(&name))),
             }
         }
         let (metric, comparison, bound) = (metric?, comparison?, bound?);
-        Some(Statement::Require(Require { metric, comparison, bound, under, at_yield, span }))
+        Some(Statement::Require(Box::new(Require { metric, comparison, bound, under, at_yield, span })))
     }
 
     pub(super) fn seek(&mut self, node: Node<'_>) -> Option<Statement> {
@@ -49,7 +49,7 @@ impl Builder<'_> {
                 _ => weighing.extend(part.into_inner().filter_map(|weight| self.weight(weight))),
             }
         }
-        Some(Statement::Seek(Seek { metric: metric?, target: target?, under, weighing, span }))
+        Some(Statement::Seek(Box::new(Seek { metric: metric?, target: target?, under, weighing, span })))
     }
 
     fn weight(&mut self, node: Node<'_>) -> Option<(Spanned<String>, Value)> {
@@ -89,13 +89,14 @@ impl Builder<'_> {
         for part in node.into_inner() {
             match part.as_rule() {
                 Rule::path => paths.push(self.word(&part)),
+                Rule::together => {}
                 _ => {
                     self.operators = 0;
                     tolerance = self.tolerance(part);
                 }
             }
         }
-        Some(Statement::Vary(Vary { paths, tolerance: tolerance?, span }))
+        Some(Statement::Vary(Box::new(Vary { paths, tolerance: tolerance?, span })))
     }
 
     pub(super) fn measured(&mut self, node: Node<'_>) -> Option<Statement> {

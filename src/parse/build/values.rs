@@ -24,8 +24,10 @@ impl Builder<'_> {
                 Rule::up_to | Rule::inner_up_to => {
                     value.up_to = part.into_inner().next().map(|it| self.expression(it));
                 }
-                Rule::free | Rule::inner_free => value.free = self.free(part),
-                Rule::tolerance | Rule::inner_tolerance => value.tolerance = self.tolerance(part),
+                Rule::free | Rule::inner_free => value.free = self.free(part).map(Box::new),
+                Rule::tolerance | Rule::inner_tolerance => {
+                    value.tolerance = self.tolerance(part).map(Box::new)
+                }
                 _ => value.expression = Some(self.expression(part)),
             }
         }
@@ -102,7 +104,7 @@ impl Builder<'_> {
         if before <= OPERATOR_LIMIT {
             self.findings.push(
                 Finding::error(
-                    "syntax.nesting",
+                    "syntax.limit",
                     format!("an expression with more than {OPERATOR_LIMIT} arithmetic signs"),
                 )
                 .at(span, format!("more than {OPERATOR_LIMIT} signs here"))

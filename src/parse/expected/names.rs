@@ -20,6 +20,13 @@ pub(super) fn human(rule: Rule) -> &'static str {
         Rule::code => "a code such as `lattice.mismatch`",
         Rule::collecting => "`collecting`",
         Rule::comma_number | Rule::number | Rule::inner_number | Rule::number_text => "a number",
+        Rule::fingers_word => "`fingers`",
+        Rule::gap_word => "`gap`",
+        Rule::item_name => "a name",
+        Rule::to_word => "`to`",
+        Rule::together => "`together`",
+        Rule::under_word => "`under`",
+        Rule::yield_word => "`yield`",
         Rule::comparison => "`>=`, `<=`, `>` or `<`",
         Rule::diffused => "`diffused`",
         Rule::doping => "a doping such as `n 2e18 /cm3 Si`",
@@ -115,7 +122,7 @@ pub(super) fn human(rule: Rule) -> &'static str {
         | Rule::unit_power
         | Rule::unit_atom => "a unit",
         Rule::word_char | Rule::plain_text | Rule::word_text => "a word",
-        Rule::junk | Rule::open_text => "text that cannot be read",
+        Rule::junk | Rule::junk_lines | Rule::junk_inside | Rule::open_text => "text that cannot be read",
     }
 }
 
@@ -145,7 +152,12 @@ pub(super) fn opening(rule: Rule) -> &'static [&'static str] {
         Rule::removed => &["removed"],
         Rule::side => &["after", "before"],
         Rule::steps_word => &["steps"],
-        Rule::under | Rule::under_one => &["under"],
+        Rule::under | Rule::under_one | Rule::under_word => &["under"],
+        Rule::fingers_word => &["fingers"],
+        Rule::gap_word => &["gap"],
+        Rule::together => &["together"],
+        Rule::to_word => &["to"],
+        Rule::yield_word => &["yield"],
         Rule::weighing => &["weighing"],
         Rule::with => &["with"],
         _ => &[],
@@ -177,6 +189,24 @@ pub(super) fn form(head: &str) -> Option<&'static str> {
         "tunnel" => "tunnel { … }",
         "use" => "use \"parts/tunnels.stack\"",
         "vary" => "vary together top.* ± 2 % sigma",
+        _ => return None,
+    })
+}
+
+/// How the words that follow a word or sign inside a statement are written.
+pub(super) fn inner_form(before: &str) -> Option<&'static str> {
+    Some(match before {
+        "n" | "p" => "n 2e18 /cm3 Si",
+        "with" => "with In 0.49",
+        "of" | "gap" => "of gap 1.9 eV",
+        "to" | "ordered" => "ordered to 1.85 eV",
+        "free" | ".." => "free 300 .. 1200 nm",
+        "±" | "+-" => "± 3 % sigma",
+        "in" | "steps" => "in 8 steps of 250 nm",
+        "offcut" => "offcut 6 deg",
+        "absorbs" => "absorbs all_above_gap",
+        "as" => "as lower",
+        "only" | "under" => "only under fingers",
         _ => return None,
     })
 }
