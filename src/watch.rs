@@ -54,11 +54,17 @@ pub fn watch(rhythm: Rhythm, mut build: impl FnMut() -> Option<Seen>, mut tell: 
             Err(_) => tell("the build broke off, which is a fault of bandloom; waiting for the next change"),
         }
         bell.listen(&seen.folders());
-        // What changed while it was built is seen here, before the first wait.
-        while !seen.changed() {
-            bell.wait(rhythm.poll.unwrap_or(SLOW_LOOK), |path| seen.concerns(path));
+        // What changed while it was built is seen here, before the first wait. A file caught
+        // between two steps of a save may be the same as before in the end.
+        loop {
+            while !seen.changed() {
+                bell.wait(rhythm.poll.unwrap_or(SLOW_LOOK), |path| seen.concerns(path));
+            }
+            settle(&bell, &seen, rhythm);
+            if seen.changed() {
+                break;
+            }
         }
-        settle(&bell, &seen, rhythm);
     }
 }
 
