@@ -262,6 +262,24 @@ impl Family {
     /// The material at `composition`. `ordered_to_ev` sets the direct gap at 300 K instead of the
     /// default ordering.
     pub fn at(&self, composition: &Composition, ordered_to_ev: Option<f64>) -> Material {
+        let mut material = self.without_optics(composition, ordered_to_ev);
+        if let Some(bands) = &material.bands {
+            material.optics = self.optics(composition, bands);
+        }
+        material
+    }
+
+    /// Index and absorption at `composition` with the bands in force there.
+    pub fn optics(&self, composition: &Composition, bands: &Bands) -> Optics {
+        match &self.index {
+            FamilyIndex::None => Optics::None,
+            FamilyIndex::Blend(blend) => blend.at(self, composition, bands),
+            FamilyIndex::Shifted(shifted) => shifted.at(self, composition, bands),
+        }
+    }
+
+    /// As [`Family::at`], without the work of making a table.
+    pub fn without_optics(&self, composition: &Composition, ordered_to_ev: Option<f64>) -> Material {
         let mut material = Material::bare(&self.name, MaterialClass::Semiconductor);
         material.label = self.label(composition);
         let sites = self.sites.iter().zip(composition);
@@ -276,11 +294,6 @@ impl Family {
         material.elastic = self.elastic(composition);
         material.constants = self.constants(composition);
         material.density_g_per_cm3 = self.density(composition);
-        material.optics = match &self.index {
-            FamilyIndex::None => Optics::None,
-            FamilyIndex::Blend(blend) => blend.at(self, composition, &bands),
-            FamilyIndex::Shifted(shifted) => shifted.at(self, composition, &bands),
-        };
         material.bands = Some(bands);
         material.origins = self.origins_at(composition, ordered_to_ev);
         material.cautions = self.cautions.clone();

@@ -6,8 +6,9 @@
 use std::collections::BTreeMap;
 use std::sync::Arc;
 
-use crate::materials::alloy::{Compound, Family};
-use crate::materials::{formula, library};
+use crate::materials::alloy::{Composition, Compound, Family};
+use crate::materials::optics::Optics;
+use crate::materials::{Material, ROOM_TEMPERATURE_K, formula, library};
 use crate::parse::parse;
 use crate::resolve::files::Files;
 use crate::resolve::materials::blocks::{Reader, Texts};
@@ -59,6 +60,8 @@ pub struct Library {
     user: BTreeMap<String, UserItem>,
     /// `None` while it is being read, or where it could not be.
     read: BTreeMap<String, Option<Definition>>,
+    /// Tables of alloys made so far: layers of one composition share one table.
+    tables: BTreeMap<(String, Vec<u64>), Optics>,
 }
 
 impl Library {
@@ -157,6 +160,17 @@ impl Library {
             _ => None,
         })?;
         Reader::new(self, scope, Texts::BuiltIn).item(kind, item)
+    }
+
+    /// The material of a family at a composition, see [`Family::at`].
+    fn alloy(&mut self, family: &Family, composition: &Composition, ordered_to_ev: Option<f64>) -> Material {
+        let mut material = family.without_optics(composition, ordered_to_ev);
+        let Some(bands) = &material.bands else { return material };
+        let edge = bands.gamma.as_ref().map(|gamma| gamma.at(ROOM_TEMPERATURE_K));
+        let bits = composition.iter().flatten().copied().chain(edge).map(f64::to_bits).collect();
+        let made = self.tables.entry((family.name.clone(), bits));
+        material.optics = made.or_insert_with(|| family.optics(composition, bands)).clone();
+        material
     }
 
     /// Every name, the user's first, then the library's in its own order.

@@ -2,9 +2,11 @@
 //!
 //! A table is carried to another composition by mapping photon energy piecewise linearly through
 //! the critical points E0, E1, E2, and dielectric functions (never n and k) are averaged there:
-//! Snyder, Woollam, Alterovitz and Johs, J. Appl. Phys. 68, 5925 (1990). Below the direct gap the
-//! absorption is an Urbach tail of the value at the gap and, where X lies lower, a square law from
-//! the X gap on; below both it is nothing.
+//! Snyder, Woollam, Alterovitz and Johs, J. Appl. Phys. 68, 5925 (1990).
+//!
+//! Below the direct gap a direct relative keeps its own tail, moved rigidly; an indirect one, whose
+//! table there shows its own X gap, gives an Urbach tail instead. Where the X gap of the target lies
+//! below its direct gap, a square law starts from it. Below both, nothing is absorbed.
 
 use std::sync::Arc;
 
@@ -67,6 +69,8 @@ struct Source<'a> {
     table: &'a IndexTable,
     /// E0, E1, E2, eV.
     points: [f64; 3],
+    /// Whether its lowest gap is E0, so that its table is a clean tail below.
+    is_direct: bool,
     /// Factor on `ε − 1`.
     scale: f64,
 }
@@ -80,7 +84,8 @@ impl Blend {
             let own = sample.e0_ev.or_else(|| direct_gap(&family.bands(&sample.composition)));
             let Some(own) = own else { return Optics::None };
             let points = [own, sample.critical_ev.0, sample.critical_ev.1];
-            sources.push(Source { weight, table: &sample.table, points, scale: 1.0 });
+            let is_direct = indirect_gap(&family.bands(&sample.composition)).is_none();
+            sources.push(Source { weight, table: &sample.table, points, is_direct, scale: 1.0 });
         }
         let mean = |at: usize| sources.iter().map(|source| source.weight * source.points[at]).sum::<f64>();
         let target = [e0, mean(1), mean(2)];
@@ -128,6 +133,7 @@ impl Shifted {
             weight: 1.0,
             table: &self.table,
             points: self.parent_ev,
+            is_direct: true,
             scale: 1.0 + polynomial(self.scale),
         };
         table(&[source], target, indirect_gap(bands), self.tail)
@@ -167,30 +173,37 @@ fn table(sources: &[Source<'_>], target: [f64; 3], x_gap: Option<f64>, tail: Tai
     if sources.is_empty() || !maps.iter().chain([&own]).all(increasing) {
         return Optics::None;
     }
+    let e0 = target[0];
     let index_at = |energy: f64| -> (f64, f64) {
         let (mut real, mut imaginary) = (0.0, 0.0);
         for (source, map) in sources.iter().zip(&maps) {
-            let (n, k) = source.table.at(EV_M / mapped(energy, &own, map).max(1e-3), 0.0);
+            let (n, mut k) = source.table.at(EV_M / mapped(energy, &own, map).max(1e-3), 0.0);
+            if energy < e0 && !source.is_direct {
+                k = source.table.at(EV_M / source.points[0], 0.0).1 * ((energy - e0) / tail.urbach_ev).exp();
+            }
             real += source.weight * (1.0 + source.scale * (n * n - k * k - 1.0));
             imaginary += source.weight * source.scale * 2.0 * n * k;
         }
         let modulus = real.hypot(imaginary);
         let n = ((modulus + real) / 2.0).max(0.0).sqrt();
-        (n, ((modulus - real) / 2.0).max(0.0).sqrt())
+        // ε2/2n rather than a difference of nearly equal numbers, which would leave noise in k.
+        (n, if n > 0.0 { imaginary / (2.0 * n) } else { 0.0 })
     };
     let per_k = |energy: f64| 4.0 * std::f64::consts::PI * energy / EV_M;
-    let indirect =
-        |energy: f64| x_gap.map_or(0.0, |x| tail.indirect_per_m_ev2 * (energy - x).max(0.0).powi(2));
-    let e0 = target[0];
-    let at_gap = (index_at(e0).1 * per_k(e0) - indirect(e0)).max(0.0);
+    let at_gap = index_at(e0).1 * per_k(e0);
+    // The indirect law holds up to E0 and takes at most four fifths of the absorption there, so
+    // that what is left of the direct tail meets the table without a step.
+    let law = |energy: f64| x_gap.map_or(0.0, |x| tail.indirect_per_m_ev2 * (energy - x).max(0.0).powi(2));
+    let share = if law(e0) > 0.0 { (0.8 * at_gap / law(e0)).min(1.0) } else { 0.0 };
+    let direct_share = if at_gap > 0.0 { 1.0 - share * law(e0) / at_gap } else { 1.0 };
     let (mut wavelength_m, mut ns, mut ks) = (Vec::new(), Vec::new(), Vec::new());
     for wavelength in grid(e0, x_gap, tail.urbach_ev) {
         let energy = EV_M / wavelength;
-        let (n, above) = index_at(energy);
+        let (n, k) = index_at(energy);
         let k = if energy >= e0 {
-            above
+            k
         } else {
-            let alpha = at_gap * ((energy - e0) / tail.urbach_ev).exp() + indirect(energy);
+            let alpha = direct_share * k * per_k(energy) + share * law(energy);
             // Under 0.1 /m (1e-3 /cm) a metre absorbs a tenth: nothing, in a thin film.
             if alpha < 0.1 { 0.0 } else { alpha / per_k(energy) }
         };

@@ -7,8 +7,8 @@ use crate::finding::Finding;
 use crate::materials::alloy::blend::{Blend, Sample, Shifted, Tail};
 use crate::materials::alloy::{Bowing, BowingLaw, Composition, Compound, Family, FamilyIndex, Ordering};
 use crate::materials::elements::{Site, site};
-use crate::materials::formula;
 use crate::materials::optics::{IndexTable, Optics};
+use crate::materials::{ROOM_TEMPERATURE_K, formula};
 use crate::resolve::materials::Definition;
 use crate::resolve::materials::blocks::{Reader, constant};
 use crate::resolve::materials::values::{Arguments, Kind, properties, quantity, single};
@@ -372,9 +372,12 @@ impl Reader<'_> {
             return self.sample_of(&member, composition);
         }
         let file = arguments.text()?;
-        let table = Arc::new(self.table(file)?);
+        let mut table = self.table(file)?;
         let (e0_ev, critical_ev) = self.points(property)?;
-        Some(Sample { composition, table, e0_ev, critical_ev })
+        // Below its gap a table is read logarithmically.
+        let own = family.bands(&composition).gamma.map(|gamma| gamma.at(ROOM_TEMPERATURE_K));
+        table.gap_ev = e0_ev.or(own);
+        Some(Sample { composition, table: Arc::new(table), e0_ev, critical_ev })
     }
 
     /// `samples members`: the tables of all end members.
@@ -413,9 +416,10 @@ impl Reader<'_> {
     /// `parent "GaInP.csv" { gap 1.88 eV; e1 3.40 eV; e2 4.80 eV }`
     fn parent(&mut self, property: &Property) -> Option<(Arc<IndexTable>, [f64; 3])> {
         let file = Arguments::of(property).text()?;
-        let table = Arc::new(self.table(file)?);
+        let mut table = self.table(file)?;
         let (e0, (e1, e2)) = self.points(property)?;
-        Some((table, [e0?, e1, e2]))
+        table.gap_ev = e0;
+        Some((Arc::new(table), [e0?, e1, e2]))
     }
 
     /// The critical points of a sample: its gap where stated, E1 and E2.

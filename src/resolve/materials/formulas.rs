@@ -137,12 +137,17 @@ fn complete(scope: &mut Scope, name: &Spanned<String>, shares: &[&Share]) -> Opt
 
 fn outside_help(text: &str, share: &Share, shares: &[&Share]) -> String {
     let fraction = share.fraction.unwrap_or(0.0);
-    if fraction > 1.0 && fraction <= 100.0 {
+    // Nobody means 1.2 %, but 51 % is often written as 51.
+    if (2.0..=100.0).contains(&fraction) {
         let meant = number(fraction / 100.0);
         return format!("write `{}{meant}` if {} % was meant", share.element, number(fraction));
     }
-    let element = &shares[0].element;
-    format!("write the fraction of {element} in `{text}` as a number from 0 to 1")
+    let others: f64 =
+        shares.iter().filter(|other| other.element != share.element).filter_map(|other| other.fraction).sum();
+    if (0.0..1.0).contains(&others) && others > 0.0 {
+        return format!("write `{}{}` in `{text}`", share.element, number(rounded(1.0 - others)));
+    }
+    format!("write a fraction from 0 to 1, such as `{}0.5`", share.element)
 }
 
 /// Fractions that do not sum to 1: the last one gives way.
@@ -201,63 +206,82 @@ fn part_span(name: &Spanned<String>, element: &str) -> Span {
 
 fn unreadable(name: &Spanned<String>, error: &FormulaError, library: &Library) -> Finding {
     let text = &name.value;
-    match error {
+    let (at, length, message, label) = match error {
         FormulaError::UnknownElement(at, symbol) => {
-            let start = name.span.start as usize + at;
-            let span = Span::new(name.span.source, start, start + symbol.len());
-            let finding =
-                Finding::error("formula.unknown-element", format!("`{symbol}` in `{text}` is no element"))
-                    .at(span, "no chemical symbol");
-            match look_alike(text, symbol, *at, library) {
-                Some(meant) => finding.help(format!("write `{meant}`")).fix(name.span, meant, false),
-                None => finding.help("write chemical symbols such as `Al`, `Ga`, `In`, `As`, `P`"),
-            }
+            (*at, symbol.len(), format!("`{symbol}` in `{text}` is no element"), "no chemical symbol")
         }
         FormulaError::Unreadable(at) => {
-            let start = name.span.start as usize + at;
-            let length = text[(*at).min(text.len())..].chars().next().map_or(0, char::len_utf8);
-            Finding::error("formula.unknown-element", format!("`{text}` cannot be read as a formula"))
-                .at(Span::new(name.span.source, start, start + length), "neither a symbol nor a fraction")
-                .help("write symbols and fractions, such as `Ga0.51In0.49P`")
+            let length = text.get(*at..).and_then(|rest| rest.chars().next()).map_or(0, char::len_utf8);
+            (*at, length, format!("`{text}` cannot be read as a formula"), "neither a symbol nor a fraction")
         }
+    };
+    let start = name.span.start as usize + at;
+    let finding = Finding::error("formula.unknown-element", message)
+        .at(Span::new(name.span.source, start, start + length), label);
+    let meant = letters_mended(text, library).or_else(|| match error {
+        FormulaError::UnknownElement(at, symbol) => look_alike(text, symbol, *at, library),
+        FormulaError::Unreadable(_) => None,
+    });
+    match meant {
+        Some(meant) => finding.help(format!("write `{meant}`")).fix(name.span, meant, false),
+        None => finding.help("write chemical symbols and fractions, such as `Ga0.51In0.49P`"),
     }
+}
+
+/// The formula with letters and digits that look alike put right: `A10.3Ga0.7As`, `Ga0.5ln0.5P`,
+/// `GaO.5In0.5P`.
+fn letters_mended(text: &str, library: &Library) -> Option<String> {
+    const ALIKE: &[(&str, &str)] =
+        &[("A1", "Al"), ("AI", "Al"), ("ln", "In"), ("1n", "In"), ("lN", "In"), ("O.", "0.")];
+    let mended = ALIKE.iter().fold(text.to_owned(), |text, (wrong, right)| text.replace(wrong, right));
+    (mended != text && is_known(&mended, library)).then_some(mended)
+}
+
+fn is_known(formula: &str, library: &Library) -> bool {
+    let Some(mut own) = formula::elements(formula) else { return false };
+    own.sort_unstable();
+    library.names().into_iter().any(|name| {
+        formula::elements(name).is_some_and(|mut other| {
+            other.sort_unstable();
+            other == own
+        })
+    })
 }
 
 /// The formula with the stray symbol replaced by the element that makes it a known family.
 fn look_alike(text: &str, symbol: &str, at: usize, library: &Library) -> Option<String> {
-    const MOST: &[&str] = &["Al", "Ga", "In", "As", "P", "Sb", "Si", "Ge"];
-    let known = |formula: &str| {
-        let mut own = formula::elements(formula)?;
-        own.sort_unstable();
-        library.names().into_iter().find(|name| {
-            formula::elements(name).is_some_and(|mut other| {
-                other.sort_unstable();
-                other == own
-            })
-        })
-    };
+    const MOST: &[&str] = &["Al", "Ga", "In", "As", "Sb", "Si", "Ge"];
     let similar = |element: &&&str| {
         let (a, b) = (element.to_lowercase(), symbol.to_lowercase());
         a.len() == b.len() && a.bytes().zip(b.bytes()).filter(|(x, y)| x != y).count() <= 1
     };
-    MOST.iter().filter(similar).find_map(|element| {
-        let mended = format!("{}{element}{}", &text[..at], &text[at + symbol.len()..]);
-        known(&mended).map(|_| mended.clone())
-    })
+    let mended = |element: &&str| format!("{}{element}{}", &text[..at], &text[at + symbol.len()..]);
+    MOST.iter().filter(similar).map(mended).find(|mended| is_known(mended, library))
 }
 
 fn no_family(name: &Spanned<String>, elements: &[String], library: &Library) -> Finding {
+    let text = &name.value;
     let mut list: Vec<&str> = elements.iter().map(String::as_str).collect();
     list.dedup();
-    let families: Vec<&str> = library
-        .names()
-        .into_iter()
-        .filter(|known| formula::elements(known).is_some_and(|own| own.len() > 2))
-        .collect();
-    Finding::error(
+    let finding = Finding::error(
         "name.unknown",
-        format!("no alloy of {} is known, so `{}` has no data", list.join(", "), name.value),
+        format!("no alloy of {} is known, so `{text}` has no data", list.join(", ")),
     )
-    .at(name.span, "no family of these elements")
-    .help(format!("define it with `alloy`, or use one of {}", families.join(", ")))
+    .at(name.span, "no family of these elements");
+    // A sublattice forgotten: `In0.53Ga0.47`.
+    for missing in ["As", "P", "Sb"] {
+        let whole = format!("{text}{missing}");
+        if !list.contains(&missing) && is_known(&whole, library) {
+            return finding.help(format!("write `{whole}` if that was meant"));
+        }
+    }
+    let shared = |known: &&str| {
+        let own = formula::elements(known).unwrap_or_default();
+        own.len() > 2 && own.iter().filter(|element| list.contains(&element.as_str())).count() >= 2
+    };
+    let near: Vec<&str> = library.names().into_iter().filter(shared).take(5).collect();
+    if near.is_empty() {
+        return finding.help("define its family with `alloy`; `bandloom materials` lists those built in");
+    }
+    finding.help(format!("define its family with `alloy`, or use one of {}", near.join(", ")))
 }

@@ -84,17 +84,20 @@ pub fn materials_of(library: &mut Library, scope: &mut Scope, request: &Phrase<'
     match library.find(&name.value, scope) {
         Some(Definition::Compound(compound)) => {
             if let Some(qualifier) = request.phrase.qualifiers.first() {
-                scope.report(unsolved::fixed(name, qualifier, &compound.material));
+                let finding = unsolved::fixed(name, qualifier, &compound.material);
+                let finding =
+                    unsolved::other_families(library, scope, finding, (qualifier, &compound.material));
+                scope.report(finding);
                 return None;
             }
             Some(Resolved { materials: vec![compound.material.clone()], free: Vec::new() })
         }
-        Some(Definition::Family(family)) => of_family(scope, request, &family, None),
+        Some(Definition::Family(family)) => of_family(library, scope, request, (&family, None)),
         // Defined, but wrong, which was reported where it stands.
         None if library.is_defined(&name.value) => None,
         None if is_formula(&name.value) => {
             let (family, composition) = formulas::composition_of(library, scope, name)?;
-            of_family(scope, request, &family, Some(composition))
+            of_family(library, scope, request, (&family, Some(composition)))
         }
         None => {
             scope.report(unknown(library, name));
@@ -128,11 +131,12 @@ struct Wish {
     ends: (f64, Option<f64>),
 }
 
+/// A family, and its composition where a formula states it.
 fn of_family(
+    library: &mut Library,
     scope: &mut Scope,
     request: &Phrase<'_>,
-    family: &Family,
-    stated: Option<Composition>,
+    (family, stated): (&Family, Option<Composition>),
 ) -> Option<Resolved> {
     let mut asked = Asked::new(request, family);
     let mut resolved = Resolved::default();
@@ -229,7 +233,7 @@ fn of_family(
                 return None;
             }
         }
-        let mut material = family.at(&composition, ordered);
+        let mut material = library.alloy(family, &composition, ordered);
         if stated.is_some() {
             material.label.clone_from(&request.phrase.name.value);
         }

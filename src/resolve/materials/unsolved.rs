@@ -3,11 +3,13 @@
 use crate::finding::Finding;
 use crate::materials::alloy::solve::{GapReach, Unsolved, Wanted, gap_reach, lattice_reach, solve};
 use crate::materials::alloy::{Composition, Family};
-use crate::materials::{Material, ROOM_TEMPERATURE_K};
+use crate::materials::{Material, ROOM_TEMPERATURE_K, formula};
 use crate::resolve::materials::phrases::{Phrase, Reference};
+use crate::resolve::materials::{Definition, Library};
+use crate::resolve::quantities::{Expected, Role, Scope};
 use crate::source::{Span, Spanned};
 use crate::syntax::Qualifier;
-use crate::units::number;
+use crate::units::{Dimension, ELEMENTARY_CHARGE, number};
 
 /// A phrase about a family, and where its parts stand.
 pub(super) struct Asked<'a> {
@@ -45,10 +47,9 @@ impl<'a> Asked<'a> {
     /// Points at the layer a phrase is matched to.
     fn beside(&self, finding: Finding) -> Finding {
         match (&self.matched, self.lattice) {
-            (Some((_, beneath)), Some((angstrom, _))) => finding.beside(
-                beneath.span,
-                format!("`{}`, {} Å", beneath.material.label, number(round(angstrom, 4))),
-            ),
+            (Some((_, beneath)), Some((angstrom, _))) => {
+                finding.beside(beneath.span, format!("`{}`, {angstrom:.4} Å", beneath.material.label))
+            }
             _ => finding,
         }
     }
@@ -109,7 +110,7 @@ pub(super) fn finding(asked: &Asked<'_>, wanted: &[Wanted], error: &Unsolved) ->
         (Unsolved::Gap(reach), Some(gap)) => out_of_reach(asked, gap, reach),
         (Unsolved::Over, Some(gap)) if asked.matched.is_some() => matched_has_one_gap(asked, gap),
         (Unsolved::Lattice(low, high), _) => unmatchable(asked, (*low, *high)),
-        (Unsolved::Open(count), _) => open(asked, *count),
+        (Unsolved::Open(count), _) => open(asked, *count, gap),
         (Unsolved::Over, _) => over(asked),
         _ => incomplete(asked),
     }
@@ -230,7 +231,7 @@ fn edge_member(family: &Family, angstrom: f64, temperature_k: f64) -> Option<Str
         .map(|material| material.name.clone())
 }
 
-fn open(asked: &Asked<'_>, count: usize) -> Finding {
+fn open(asked: &Asked<'_>, count: usize, gap: Option<f64>) -> Finding {
     let (name, family) = (asked.name(), asked.family);
     let shown = if asked.matched.is_some() { format!("{name} matched") } else { name.to_owned() };
     let noun = if count == 1 { "one fraction" } else { "two fractions" };
@@ -243,6 +244,9 @@ fn open(asked: &Asked<'_>, count: usize) -> Finding {
         return finding.help(format!(
             "write `{name} matched`, `{name} of gap 1.8 eV` or `{name} with {element} {middle}`"
         ));
+    }
+    if let Some(gap) = gap {
+        return finding.help(format!("write `{name} matched of gap {}`", ev(gap)));
     }
     let gap = reachable_gap(asked).map_or_else(|| "2.1 eV".to_owned(), |gap| ev(round(gap, 2)));
     finding.help(format!("write `{name} matched of gap {gap}` or `{name} matched with {element} 0.2`"))
@@ -289,7 +293,7 @@ pub(super) fn ordering(asked: &Asked<'_>, composition: &Composition, gap: f64) -
         return Some(
             Finding::error("gap.unreachable", format!("`{name}` shows no ordering that would move its gap"))
                 .at(place, "no ordering is known of this family")
-                .help(format!("write `{name} of gap {}`", ev(gap))),
+                .help(format!("write `{} of gap {}`", written(asked.request), ev(gap))),
         );
     };
     let random = asked.family.random_gap_ev(composition)?;
@@ -328,7 +332,7 @@ pub(super) fn fixed(name: &Spanned<String>, qualifier: &Qualifier, material: &Ma
             let lattice = material.lattice_constant(ROOM_TEMPERATURE_K);
             let has = lattice.map_or_else(
                 || "no lattice constant".to_owned(),
-                |angstrom| format!("the lattice constant {} Å", number(round(angstrom, 4))),
+                |angstrom| format!("the lattice constant {angstrom:.4} Å"),
             );
             ("lattice.unmatchable", *span, format!("`{text}` has one composition and {has}"))
         }
@@ -339,6 +343,32 @@ pub(super) fn fixed(name: &Spanned<String>, qualifier: &Qualifier, material: &Ma
     Finding::error(code, message)
         .at(span, "nothing is left to work out")
         .help(format!("write `{text}` alone"))
+}
+
+/// Adds the families that could give the gap a compound does not have.
+pub(super) fn other_families(
+    library: &mut Library,
+    scope: &mut Scope,
+    finding: Finding,
+    (qualifier, material): (&Qualifier, &Material),
+) -> Finding {
+    let Qualifier::OfGap { value, .. } = qualifier else { return finding };
+    let Some(own) = formula::elements(&material.name) else { return finding };
+    let expected = Expected::new("gap", Dimension::ENERGY, Role::Gap);
+    let Some(gap) = scope.quantity(value, expected).map(|si| si / ELEMENTARY_CHARGE) else { return finding };
+    let names: Vec<String> = library.names().into_iter().map(str::to_owned).collect();
+    for name in names {
+        let holds = formula::elements(&name)
+            .is_some_and(|all| all.len() == 3 && own.iter().all(|it| all.contains(it)));
+        if !holds {
+            continue;
+        }
+        let Some(Definition::Family(family)) = library.find(&name, scope) else { continue };
+        if gap_reach(&family, None).is_some_and(|reach| (reach.low.0.ev..=reach.high.0.ev).contains(&gap)) {
+            return finding.help(format!("write `{name} of gap {}`", ev(gap)));
+        }
+    }
+    finding
 }
 
 /// A qualifier after a formula that already states its composition.
