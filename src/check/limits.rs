@@ -2,6 +2,7 @@
 
 use super::{RULES, rule};
 use crate::design::Design;
+use crate::finding::suggest::near;
 use crate::finding::{Finding, Findings};
 use crate::source::Spanned;
 use crate::why;
@@ -49,17 +50,10 @@ pub(super) fn is_known(code: &str) -> bool {
 pub(super) fn unknown_code(code: &Spanned<String>) -> Finding {
     let finding = Finding::error("name.unknown", format!("`{}` is no code of a finding", code.value))
         .at(code.span, "unknown code");
-    let nearest = RULES
-        .iter()
-        .map(|rule| rule.code)
-        .chain(why::PAGES.iter().map(|(code, _)| *code))
-        .map(|known| (edits(known, &code.value), known))
-        .min();
-    match nearest {
-        Some((distance, known)) if distance <= known.len() / 3 => {
-            finding.help(format!("write `{known}`")).fix(code.span, known, false)
-        }
-        _ => finding.help("`bandloom why` lists every code"),
+    let known = RULES.iter().map(|rule| rule.code).chain(why::PAGES.iter().map(|(code, _)| *code));
+    match near(&code.value, known) {
+        Some(known) => finding.help(format!("write `{known}`")).fix(code.span, known, false),
+        None => finding.help("`bandloom why` lists every code"),
     }
 }
 
@@ -69,33 +63,4 @@ fn without_threshold(code: &Spanned<String>) -> Finding {
     Finding::error("name.unknown", format!("`{}` has no threshold to set", code.value))
         .at(code.span, "judges by no number")
         .help(format!("thresholds can be set for {}", adjustable.join(", ")))
-}
-
-/// Levenshtein distance in characters.
-fn edits(a: &str, b: &str) -> usize {
-    let b: Vec<char> = b.chars().collect();
-    let mut row: Vec<usize> = (0..=b.len()).collect();
-    for (i, ca) in a.chars().enumerate() {
-        let mut diagonal = row[0];
-        row[0] = i + 1;
-        for (j, cb) in b.iter().enumerate() {
-            let kept = diagonal + usize::from(ca != *cb);
-            diagonal = row[j + 1];
-            row[j + 1] = kept.min(row[j] + 1).min(diagonal + 1);
-        }
-    }
-    row[b.len()]
-}
-
-#[cfg(test)]
-mod tests {
-    use super::edits;
-
-    #[test]
-    fn counts_edits() {
-        // Standard example of the Levenshtein distance.
-        assert_eq!(edits("kitten", "sitting"), 3);
-        assert_eq!(edits("", "abc"), 3);
-        assert_eq!(edits("gap.order", "gap.order"), 0);
-    }
 }

@@ -15,6 +15,18 @@ pub(super) static RULE: Rule = Rule {
 };
 
 fn run(context: &Context, report: &mut Report) {
+    if context.design.junctions.is_empty() {
+        let name = &context.design.name;
+        report.push(
+            Vec::<String>::new(),
+            Finding::error(
+                RULE.code,
+                format!("stack `{}` has no junction, so no light becomes current", name.value),
+            )
+            .at(name.span, "no junction in it")
+            .help("add one, such as `junction top { absorber ideal of gap 1.42 eV }`"),
+        );
+    }
     for facts in &context.junctions {
         let name = facts.name();
         let mut any = false;

@@ -3,7 +3,7 @@
 use clap::Args;
 
 use crate::cli::Exit;
-use crate::cli::console::Console;
+use crate::cli::console::{Console, Stream};
 use crate::materials::{Material, OriginKind, ROOM_TEMPERATURE_K};
 use crate::resolve::materials::{Entry, entries, look_up, with_gap};
 
@@ -76,7 +76,8 @@ pub(crate) fn run(command: &Materials, console: &Console) -> Exit {
                 if !text.is_empty() {
                     text.push('\n');
                 }
-                text.push_str(&sheet(&material, wafer.as_ref().map(|(_, wafer)| wafer), command.at));
+                let on = wafer.as_ref().map(|(_, wafer)| wafer);
+                text.push_str(&sheet(&material, on, command.at, console.look(Stream::Out).width));
             }
             None => exit = Exit::Trouble,
         }
@@ -133,7 +134,7 @@ fn line(material: &Material, on: Option<&Material>) -> String {
 }
 
 /// Everything known of one material, a line each.
-fn sheet(material: &Material, on: Option<&Material>, at_nm: f64) -> String {
+fn sheet(material: &Material, on: Option<&Material>, at_nm: f64, width: usize) -> String {
     let mut rows: Vec<(&str, String)> = Vec::new();
     if let Some(gap) = material.gap(ROOM_TEMPERATURE_K) {
         rows.push(("gap", format!("{:.4} eV at 300 K, {}", gap.ev, gap.kind.word())));
@@ -173,12 +174,45 @@ fn sheet(material: &Material, on: Option<&Material>, at_nm: f64) -> String {
     for (what, value) in rows {
         text.push_str(&format!("  {what:<10}{value}\n"));
     }
+    // What comes from one publication stands in one entry.
+    let mut cited: Vec<(String, Vec<&str>)> = Vec::new();
     for origin in &material.origins {
-        let kind = if origin.kind == OriginKind::Published { "" } else { origin.kind.word() };
-        let kind = if kind.is_empty() { String::new() } else { format!(" ({kind})") };
-        text.push_str(&format!("  source    {}{kind}: {}\n", origin.what, origin.cite));
+        let kind = match origin.kind {
+            OriginKind::Published => String::new(),
+            kind => format!(" [{}]", kind.word()),
+        };
+        let cite = format!("{}{kind}", origin.cite);
+        match cited.iter_mut().find(|(known, _)| *known == cite) {
+            Some((_, what)) if what.contains(&origin.what.as_str()) => {}
+            Some((_, what)) => what.push(&origin.what),
+            None => cited.push((cite, vec![&origin.what])),
+        }
+    }
+    if !cited.is_empty() {
+        text.push_str("  sources\n");
+    }
+    for (cite, what) in cited {
+        text.push_str(&hanging(&format!("{}: {cite}", what.join(", ").replace('_', " ")), width));
     }
     text
+}
+
+/// An entry indented by four, its further lines by six, broken at spaces.
+fn hanging(text: &str, width: usize) -> String {
+    let mut out = String::from("   ");
+    let mut used = 3;
+    for word in text.split_whitespace() {
+        let length = word.chars().count();
+        if used + 1 + length > width && used > 6 {
+            out.push_str("\n     ");
+            used = 5;
+        }
+        out.push(' ');
+        out.push_str(word);
+        used += 1 + length;
+    }
+    out.push('\n');
+    out
 }
 
 #[cfg(test)]

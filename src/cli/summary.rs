@@ -37,6 +37,7 @@ fn verdict(stack: &Stack, results: &Results) -> String {
         1 if met == 1 => "the requirement is met".to_owned(),
         1 => "the requirement fails".to_owned(),
         all if met == all => format!("all {all} requirements are met"),
+        all if all - met == 1 => format!("1 of {all} requirements fails"),
         all => format!("{} of {all} requirements fail", all - met),
     };
     let count = |severity| stack.findings.count(severity);
@@ -101,17 +102,15 @@ fn figures(results: &Results) -> Vec<String> {
 }
 
 fn row(condition: &ConditionResult) -> Vec<String> {
-    let mut cells = vec![
-        condition.name.clone(),
-        format!("{:.2} %", condition.efficiency * 100.0),
-        format!("{} W/m2", significant(condition.power_w_per_m2)),
-    ];
+    let mut cells = vec![condition.name.clone(), format!("{:.2} %", condition.efficiency * 100.0)];
     if let (Some(voc), Some(jsc), Some(fill)) =
         (condition.voc_v, condition.jsc_ma_per_cm2, condition.fill_factor)
     {
         cells.push(format!("{voc:.3} V"));
         cells.push(format!("{} mA/cm2", significant(jsc)));
         cells.push(format!("FF {:.1} %", fill * 100.0));
+    } else {
+        cells.push(format!("{} W/m2", significant(condition.power_w_per_m2)));
     }
     if let Some(limiting) = &condition.limiting_junction {
         cells.push(format!("limited by {limiting}"));

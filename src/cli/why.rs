@@ -4,7 +4,7 @@ use clap::Args;
 
 use crate::cli::Exit;
 use crate::cli::console::Console;
-use crate::resolve::names::near;
+use crate::finding::suggest::near;
 use crate::why::{PAGES, page, summary};
 
 const EXAMPLES: &str = "\

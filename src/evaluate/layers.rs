@@ -1,9 +1,9 @@
 //! The layer table.
 
+use crate::design::Polarity;
 use crate::design::{Design, Extent, Layer, Place};
 use crate::growth::{LayerGrowth, ROOM_K, lattice_states};
 use crate::results::{LayerResult, OriginResult};
-use crate::syntax::Polarity;
 
 /// One row per layer of the design, same order.
 pub(super) fn layer_results(design: &Design) -> Vec<LayerResult> {

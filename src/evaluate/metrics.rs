@@ -1,11 +1,11 @@
 //! The figures a `require` may name: dotted paths, their dimension, their value.
 
+use crate::design::Comparison;
 use crate::design::{Condition, Design, Requirement, ZERO_CELSIUS_K};
 use crate::evaluate::lit::junction_gap;
+use crate::finding::suggest::near;
 use crate::finding::{Finding, Findings};
-use crate::resolve::names::near;
 use crate::results::{ConditionResult, JunctionResult, LayerResult, Results};
-use crate::syntax::Comparison;
 use crate::units::Dimension;
 
 type OfCondition = fn(&ConditionResult) -> Option<f64>;

@@ -101,6 +101,8 @@ const MAY: &[(&str, &[&str])] = &[
             "growth",
             "numerics",
             "why",
+            // `limit CODE value` is read in the unit of its rule.
+            "check",
         ],
     ),
     (
