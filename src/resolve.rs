@@ -81,6 +81,7 @@ pub fn resolve(
             library.add_material(&mut scope, &mut files, item);
         }
     }
+    library.finish(&mut scope);
     let mut resolver = Resolver {
         scope,
         files,

@@ -7,13 +7,13 @@ use crate::finding::Finding;
 use crate::materials::alloy::solve::{Wanted, solve};
 use crate::materials::alloy::{Composition, Family};
 use crate::materials::{Material, Origin, OriginKind, SharedMaterial};
-use crate::resolve::materials::models::{MODELS, model};
+use crate::resolve::materials::models::{MODEL_PROPERTIES, MODELS, model};
 use crate::resolve::materials::unsolved::{self, Asked};
 use crate::resolve::materials::{Definition, Library, formulas};
 use crate::resolve::names;
 use crate::resolve::quantities::{Expected, Role, Scope, Slot};
 use crate::source::{Span, Spanned};
-use crate::syntax::{Argument, Block, MaterialPhrase, Qualifier, Value};
+use crate::syntax::{Argument, Block, MaterialPhrase, Qualifier, Statement, Value};
 use crate::units::{Dimension, ELEMENTARY_CHARGE};
 
 /// A layer that another is matched to.
@@ -35,8 +35,7 @@ pub struct Phrase<'a> {
     /// `absorbs all_above_gap`, `absorbs 95 %`, where stated on the line.
     pub absorbs: Option<&'a Argument>,
     /// The layer's block, for what the models without a chemistry need (see
-    /// [`MODEL_PROPERTIES`](crate::resolve::materials::MODEL_PROPERTIES)); its other statements
-    /// are the layer's own business.
+    /// [`MODEL_PROPERTIES`]); its other statements are the layer's own business.
     pub block: Option<&'a Block>,
     /// The relaxed lattice beneath in growth order; `None` where there is none, or where it could
     /// not be resolved (see `beneath_unknown`).
@@ -81,6 +80,7 @@ pub fn materials_of(library: &mut Library, scope: &mut Scope, request: &Phrase<'
     if MODELS.contains(&name.value.as_str()) && !library.is_defined(&name.value) {
         return model(scope, request);
     }
+    no_model(scope, request);
     match library.find(&name.value, scope) {
         Some(Definition::Compound(compound)) => {
             if let Some(qualifier) = request.phrase.qualifiers.first() {
@@ -102,6 +102,33 @@ pub fn materials_of(library: &mut Library, scope: &mut Scope, request: &Phrase<'
         None => {
             scope.report(unknown(library, name));
             None
+        }
+    }
+}
+
+/// What only a model without a chemistry takes is a finding beside a material.
+fn no_model(scope: &mut Scope, request: &Phrase<'_>) {
+    let name = &request.phrase.name.value;
+    if let Some(absorbs) = request.absorbs {
+        scope.report(
+            Finding::error("material.statement", format!("`absorbs` belongs to `ideal`, not to `{name}`"))
+                .at(absorbs.span(), "what a material absorbs follows from its index")
+                .help("delete it, or write `ideal of gap …` instead of the material"),
+        );
+    }
+    let statements = request.block.into_iter().flat_map(|block| &block.statements);
+    for statement in statements {
+        let Statement::Property(property) = statement else { continue };
+        let word = property.name.value.as_str();
+        if MODEL_PROPERTIES.contains(&word) {
+            scope.report(
+                Finding::error(
+                    "material.statement",
+                    format!("`{word}` belongs to `direct`, not to `{name}`"),
+                )
+                .at(property.span, "a material has its own")
+                .help("delete it, or define a `material` of your own with it"),
+            );
         }
     }
 }
