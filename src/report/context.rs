@@ -150,10 +150,14 @@ impl Row<'_> {
             Duty::Metal => Style { class: "fm".into(), hatch: None, key: None },
             Duty::Mirror => Style::hatched(Hatch::Lines(0.0, 2.4), "mirror"),
             Duty::Air => Style { class: "lay".into(), hatch: None, key: None },
-            Duty::Coat => Style {
-                hatch: Some(("hd".into(), Hatch::Dots(8.0))),
-                ..Style::hatched(Hatch::Dots(8.0), "coat")
-            },
+            // Neighbouring coats differ in the distance of their dots.
+            Duty::Coat => {
+                let distance = if self.index.is_multiple_of(2) { 5.4 } else { 8.0 };
+                Style {
+                    hatch: Some(("hd".into(), Hatch::Dots(distance))),
+                    ..Style::hatched(Hatch::Dots(8.0), "coat")
+                }
+            }
             Duty::Window => Style::hatched(Hatch::Lines(0.0, 4.0), "window"),
             Duty::Bsf => Style::hatched(Hatch::Lines(90.0, 4.0), "BSF"),
             Duty::Cap => Style::hatched(Hatch::Cross(6.0), "cap"),

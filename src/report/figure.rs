@@ -377,7 +377,8 @@ impl Drawing {
             let inside = bounds.left >= 0.0
                 && bounds.right <= self.width
                 && bounds.top >= 0.0
-                && bounds.bottom <= self.height;
+                // A drawing that still grows downwards has no height yet.
+                && (self.height == 0.0 || bounds.bottom <= self.height);
             if inside && !self.labels.iter().any(|other| other.meets(&bounds, 4.0)) {
                 self.text(label);
                 return true;

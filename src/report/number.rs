@@ -199,6 +199,24 @@ pub fn counted(n: usize, noun: &str) -> String {
     format!("{} {noun}", count(n))
 }
 
+/// `1, 4–7` from ascending numbers; `between` separates the runs.
+pub fn ranges(numbers: &[usize], between: &str) -> String {
+    let mut runs: Vec<(usize, usize)> = Vec::new();
+    for &n in numbers {
+        match runs.last_mut() {
+            Some((_, last)) if *last + 1 == n => *last = n,
+            Some((_, last)) if *last == n => {}
+            _ => runs.push((n, n)),
+        }
+    }
+    let words = runs.into_iter().map(|(from, to)| match to - from {
+        0 => from.to_string(),
+        1 => format!("{from}{between}{to}"),
+        _ => format!("{from}–{to}"),
+    });
+    words.collect::<Vec<_>>().join(between)
+}
+
 /// Rounds parts to `decimals` so that the rounded parts add up to the rounded whole: the largest
 /// remainders take what is left over. Returns integers in units of the last decimal.
 pub fn round_to_sum(parts: &[f64], decimals: i32) -> Vec<i64> {
@@ -252,6 +270,12 @@ mod tests {
         assert_eq!(round_to_sum(&parts, 2).iter().sum::<i64>(), 10_000);
         let with_negative = [10.004, -0.004, 0.0];
         assert_eq!(round_to_sum(&with_negative, 2).iter().sum::<i64>(), 1000);
+    }
+
+    #[test]
+    fn runs_of_numbers_are_short() {
+        assert_eq!(ranges(&[1, 2, 5, 6, 7, 9], ", "), "1, 2, 5–7, 9");
+        assert_eq!(ranges(&[], ", "), "");
     }
 
     #[test]

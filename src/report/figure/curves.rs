@@ -6,7 +6,7 @@
 
 use crate::report::context::Context;
 use crate::report::figure::plot::{Scale, axis_below, axis_left, cut, interpolate, thin};
-use crate::report::figure::{Drawing, Label, SLIM, WIDE};
+use crate::report::figure::{Drawing, Label, LabelBox, SLIM, WIDE};
 use crate::report::number::{fixed, with_unit};
 use crate::report::palette::style_number;
 use crate::report::text::visible;
@@ -186,7 +186,8 @@ fn draw_in(context: &Context<'_>, lines: &[Line], (width, left): (f64, f64)) -> 
     plane(&mut drawing, context, lines, (x, y));
     plot_labels(&mut drawing, context, lines, (x, y), strip.is_some());
     let (ticks, decimals) = x.ticks(if slim { 5 } else { 10 });
-    let ticks: Vec<(f64, String)> = ticks.into_iter().map(|v| (v, fixed(v, decimals))).collect();
+    let ticks: Vec<(f64, String)> =
+        ticks.into_iter().map(|v| (v, if v == 0.0 { "0".into() } else { fixed(v, decimals) })).collect();
     axis_below(&mut drawing, x, foot, &ticks);
     drawing.text(Label::at(x.at.1, foot + 36.0, "voltage, V").size(11.5).class("q").end());
     drawing
@@ -229,6 +230,23 @@ fn plane(drawing: &mut Drawing, context: &Context<'_>, lines: &[Line], (x, y): (
     }
 }
 
+/// Whether one of the curves runs through a box.
+fn crossed(lines: &[Line], bounds: &LabelBox, (x, y): (Scale, Scale)) -> bool {
+    let (low, high) = ((bounds.left - 1.0, bounds.top), (bounds.right + 1.0, bounds.bottom));
+    lines.iter().any(|line| {
+        let points: Vec<Point> = line.points.iter().map(|(v, j)| (x.of(*v), y.of(*j))).collect();
+        !cut(&points, low, high).is_empty()
+    })
+}
+
+/// Puts the first label that is free of other labels and of curves; else the first that is free
+/// of other labels.
+fn put(drawing: &mut Drawing, lines: &[Line], scales: (Scale, Scale), labels: Vec<Label>) {
+    let (clear, crossed): (Vec<Label>, Vec<Label>) =
+        labels.into_iter().partition(|label| !crossed(lines, &label.bounds(), scales));
+    drawing.text_where_free(clear.into_iter().chain(crossed));
+}
+
 fn strip_labels(drawing: &mut Drawing, context: &Context<'_>, lines: &[Line], (x, y): (Scale, Scale)) {
     let volts = |v: f64| with_unit(&fixed(v, 2), "V");
     let inside = |j: f64| (y.from..=y.to).contains(&j);
@@ -241,12 +259,8 @@ fn strip_labels(drawing: &mut Drawing, context: &Context<'_>, lines: &[Line], (x
                 let label = if line.junction.is_none() { label.bold() } else { label };
                 if dx < 0.0 { label.end() } else { label }
             };
-            drawing.text_where_free([
-                label(7.0, 14.0),
-                label(-7.0, 14.0),
-                label(7.0, -6.0),
-                label(-7.0, -6.0),
-            ]);
+            let places = [(7.0, 14.0), (-7.0, 14.0), (7.0, -6.0), (-7.0, -6.0), (7.0, 28.0), (-7.0, 28.0)];
+            put(drawing, lines, (x, y), places.map(|(dx, dy)| label(dx, dy)).into());
         }
     }
     let limiting = context.limiting();
@@ -258,12 +272,17 @@ fn strip_labels(drawing: &mut Drawing, context: &Context<'_>, lines: &[Line], (x
                 let label = |x: f64, y: f64| {
                     Label::at(x, y, "J").lowered("sc").and(" ").strong(&context.scale.number(j)).halo()
                 };
-                drawing.text_where_free([
-                    label(px + 7.0, py + 15.0),
-                    label(px + 7.0, py - 7.0),
-                    label(px - 7.0, py - 7.0).end(),
-                    label(px - 7.0, py + 15.0).end(),
-                ]);
+                put(
+                    drawing,
+                    lines,
+                    (x, y),
+                    vec![
+                        label(px + 7.0, py + 15.0),
+                        label(px + 7.0, py - 7.0),
+                        label(px - 7.0, py - 7.0).end(),
+                        label(px - 7.0, py + 15.0).end(),
+                    ],
+                );
             }
             Some(index) if v < 0.0 => {
                 let words = format!("{} driven to {}", fit(&line.name, 12.5, true, 120.0), volts(v));
@@ -271,11 +290,12 @@ fn strip_labels(drawing: &mut Drawing, context: &Context<'_>, lines: &[Line], (x
                     let label = Label::at(x, y, &words).bold().halo();
                     if limiting == Some(index) { label.class("bad") } else { label.junction("i", index) }
                 };
-                drawing.text_where_free([
-                    label(px + 2.0, py + 18.0),
-                    label(px + 2.0, py + 34.0),
-                    label(px + 2.0, py - 10.0),
-                ]);
+                put(
+                    drawing,
+                    lines,
+                    (x, y),
+                    vec![label(px + 2.0, py + 18.0), label(px + 2.0, py + 34.0), label(px + 2.0, py - 10.0)],
+                );
             }
             Some(_) => {}
         }
@@ -297,7 +317,7 @@ fn strip_labels(drawing: &mut Drawing, context: &Context<'_>, lines: &[Line], (x
         let labels = places
             .filter(|place| place.2)
             .map(|(px, py, _)| line.coloured(Label::at(px, py, &words).and(&value).bold().halo()));
-        drawing.text_where_free(labels.collect::<Vec<_>>());
+        put(drawing, lines, (x, y), labels.collect());
     }
 }
 
@@ -322,28 +342,28 @@ fn plot_labels(
             let at = line.points.iter().rev().find(|p| p.1 >= j).map_or(line.voc, |p| p.0);
             [(x.of(at) - 8.0, base, true), (x.of(at) + 9.0, base, false)]
         });
-        let mut placed = false;
-        for (px, base, ends) in places {
-            if placed || base - 14.0 < y.at.1 {
-                continue;
-            }
-            let make = |dy: f64, words: &str| {
-                let label = Label::at(px, base + dy, words).halo();
-                if ends { label.end() } else { label }
-            };
-            let first = line.coloured(make(0.0, &name).bold());
-            let second = line.coloured(make(15.0, &voltage));
-            let bounds = [first.bounds(), second.bounds()];
-            let free = bounds.iter().all(|b| {
+        let candidates: Vec<[Label; 2]> = places
+            .filter(|(_, base, _)| base - 14.0 >= y.at.1)
+            .map(|(px, base, ends)| {
+                let make = |dy: f64, words: &str| {
+                    let label = Label::at(px, base + dy, words).halo();
+                    line.coloured(if ends { label.end() } else { label })
+                };
+                [make(0.0, &name).bold(), make(15.0, &voltage)]
+            })
+            .collect();
+        let free = |pair: &&[Label; 2]| {
+            pair.iter().map(Label::bounds).all(|b| {
                 b.left >= x.at.0 + 2.0
                     && b.right <= drawing.width
-                    && !drawing.labels.iter().any(|other| other.meets(b, 6.0))
-            });
-            if free {
-                drawing.text(first);
-                drawing.text(second);
-                placed = true;
-            }
+                    && !drawing.labels.iter().any(|other| other.meets(&b, 6.0))
+            })
+        };
+        let clear = |pair: &&[Label; 2]| !pair.iter().any(|l| crossed(lines, &l.bounds(), (x, y)));
+        let chosen =
+            candidates.iter().filter(free).find(clear).or_else(|| candidates.iter().find(free)).cloned();
+        for label in chosen.into_iter().flatten() {
+            drawing.text(label);
         }
         if let Some((v, j)) = line.at_power.filter(|_| !has_strip || line.junction.is_none()) {
             let (px, py) = (x.of(v), y.of(j));
@@ -354,12 +374,12 @@ fn plot_labels(
                 super::power::power_words(context.first.junctions[index].power_w_per_m2)
             };
             let label = |dx: f64, dy: f64| line.coloured(Label::at(px + dx, py + dy, &power).halo()).end();
-            drawing.text_where_free([
-                label(-7.0, 17.0),
-                label(-7.0, 33.0),
-                label(-7.0, -8.0),
-                label(-7.0, 49.0),
-            ]);
+            put(
+                drawing,
+                lines,
+                (x, y),
+                vec![label(-7.0, 17.0), label(-7.0, 33.0), label(-7.0, -8.0), label(-7.0, 49.0)],
+            );
         }
     }
 }

@@ -11,7 +11,7 @@ use crate::report::width::fit;
 /// First and last wavelength drawn, nm: the junctions' range with a little room.
 pub fn range(context: &Context<'_>) -> Option<(f64, f64)> {
     let spectral = &context.first.spectral;
-    let live = |i: &usize| spectral.eqe.values().any(|eqe| eqe.get(*i).is_some_and(|q| *q > 0.005));
+    let live = |i: &usize| spectral.eqe.values().any(|eqe| eqe.get(*i).is_some_and(|q| *q > 0.025));
     let indices: Vec<usize> = (0..spectral.wavelength_nm.len()).filter(live).collect();
     let first = spectral.wavelength_nm.get(*indices.first()?)?;
     let last = spectral.wavelength_nm.get(*indices.last()?)?;
@@ -78,8 +78,10 @@ fn labels(context: &Context<'_>, drawing: &mut Drawing, (x, y): (Scale, Scale), 
         let name = fit(&visible(&junction.name), 15.0, true, 150.0);
         let label =
             |at: f64| Label::at(centre, at, &name).size(15.0).bold().junction("i", index).middle().halo();
-        let below = y.of(100.0 * height) + 24.0;
-        let rows = (0..5).map(|row| below + 20.0 * f64::from(row)).filter(|at| *at < foot - 4.0);
+        // Where the curve stands high there is room under it, between its own flanks.
+        let below = y.of(50.0 * height);
+        let rows =
+            [0.0, 22.0, -22.0, 44.0, -44.0].map(|dy| below + dy).into_iter().filter(|at| *at < foot - 4.0);
         drawing.text_where_free(rows.map(label));
     }
     let words = Label::at(x.at.1, top - 9.0, "not reflected (dashed)").size(11.5).class("q").end();

@@ -72,7 +72,8 @@ impl Light {
         }
         let all = counted_ma[n - 1];
         let sum_at = |i: usize| -> f64 { spectral.eqe.values().filter_map(|eqe| eqe.get(i)).sum() };
-        let last_absorbed = (0..n).rev().find(|&i| sum_at(i) > 0.01).unwrap_or(n - 1);
+        // A faint tail, as of held end values, must not stretch the figure over the far infrared.
+        let last_absorbed = (0..n).rev().find(|&i| sum_at(i) > 0.025).unwrap_or(n - 1);
         let room = counted_ma[last_absorbed] * 0.05;
         let cut =
             (last_absorbed..n).find(|&i| counted_ma[i] >= counted_ma[last_absorbed] + room).unwrap_or(n - 1);

@@ -11,9 +11,8 @@ use crate::report::width::fit;
 use crate::results::ConditionResult;
 
 const PANEL: (f64, f64) = (190.0, 206.0);
-const GAP: f64 = 28.0;
 /// Conditions that are drawn; the others stand in the table.
-pub const MOST: usize = 6;
+pub const MOST: usize = 8;
 
 /// Whether all panels share one scale of current: not where concentration sets them apart.
 pub fn shared_scale(conditions: &[ConditionResult]) -> bool {
@@ -33,18 +32,19 @@ fn greatest_voltage(condition: &ConditionResult) -> f64 {
     condition.voc_v.unwrap_or_else(|| condition.junctions.iter().map(|j| j.voltage_at_mpp_v).sum())
 }
 
-/// Half a column.
-pub fn draw(context: &Context<'_>) -> Drawing {
+/// `across` panels side by side in a drawing `width` units wide.
+pub fn draw(context: &Context<'_>, across: usize, width: f64) -> Drawing {
+    let gap = (width - PANEL.0 * across as f64) / (across.max(2) - 1) as f64;
     let conditions: Vec<&ConditionResult> = context.results.conditions.iter().take(MOST).collect();
     let shared = shared_scale(&context.results.conditions);
     let most = |of: fn(&ConditionResult) -> f64| conditions.iter().map(|c| of(c)).fold(0.0, f64::max);
     let voltage = most(greatest_voltage);
     let current = most(greatest_current);
-    let panels_down = conditions.len().div_ceil(2).max(1);
+    let panels_down = conditions.len().div_ceil(across).max(1);
     let height = panels_down as f64 * (PANEL.1 + 14.0) - 8.0;
-    let mut drawing = Drawing::new(PANEL.0 * 2.0 + GAP, height);
+    let mut drawing = Drawing::new(width, height);
     for (index, condition) in conditions.iter().enumerate() {
-        let at = ((index % 2) as f64 * (PANEL.0 + GAP), (index / 2) as f64 * (PANEL.1 + 14.0));
+        let at = ((index % across) as f64 * (PANEL.0 + gap), (index / across) as f64 * (PANEL.1 + 14.0));
         let scale = if shared { current } else { greatest_current(condition) };
         panel(&mut drawing, condition, at, (voltage, scale));
     }

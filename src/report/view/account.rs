@@ -228,6 +228,12 @@ fn merged(context: &Context<'_>, entries: Vec<Entry>) -> Vec<Entry> {
         }
         out.push(entry);
     }
+    if let Some(at) = together {
+        // The others come last among the layers.
+        let end = out.iter().rposition(|e| e.kind == Kind::Layer).unwrap_or(at);
+        out[at..=end].rotate_left(1);
+    }
+    let mut out = tails_merged(out);
     let nothing = |e: &Entry| e.kind != Kind::Delivered && e.exact.iter().all(|v| v.abs() < 0.005);
     let dropped: Vec<f64> = (0..context.results.conditions.len())
         .map(|index| out.iter().filter(|e| nothing(e)).map(|e| e.exact[index]).sum())
@@ -238,6 +244,25 @@ fn merged(context: &Context<'_>, entries: Vec<Entry>) -> Vec<Entry> {
         for (sum, more) in largest.exact.iter_mut().zip(dropped) {
             *sum += more;
         }
+    }
+    out
+}
+
+/// What is lifted from below the gaps is small everywhere: one line.
+fn tails_merged(entries: Vec<Entry>) -> Vec<Entry> {
+    let mut out: Vec<Entry> = Vec::new();
+    for entry in entries {
+        if entry.kind == Kind::Tail
+            && let Some(first) = out.iter_mut().find(|e| e.kind == Kind::Tail)
+        {
+            for (sum, more) in first.exact.iter_mut().zip(&entry.exact) {
+                *sum += more;
+            }
+            first.words = "lifted from below the gaps".into();
+            first.junction = None;
+            continue;
+        }
+        out.push(entry);
     }
     out
 }

@@ -4,9 +4,8 @@
 //! safety officer, safety data sheets, local codes, licensed practice.
 
 use crate::report::context::{Context, Row};
-use crate::report::number::{fixed, with_unit};
+use crate::report::number::{fixed, ranges, with_unit};
 use crate::report::text::{Text, visible};
-use crate::report::view::layers::joined;
 use crate::report::view::{Item, Section};
 
 /// Above this a direct voltage counts as dangerous to touch in dry places: the usual bound of
@@ -88,9 +87,8 @@ pub fn cautions(context: &Context<'_>) -> Section {
 }
 
 fn class_item(class: &str, layers: &[usize]) -> Item {
-    let numbers: Vec<String> = layers.iter().map(usize::to_string).collect();
     let where_ = if layers.len() == 1 { "layer" } else { "layers" };
-    let place = format!(" ({where_} {})", joined(&numbers));
+    let place = format!(" ({where_} {})", ranges(layers, ", "));
     match class_words(class) {
         Some((head, body)) => Item { head: Text::of(format!("{head}{place}")), body: Text::of(body) },
         None => Item {

@@ -1,9 +1,9 @@
 //! Headline figures, current against voltage, conditions side by side.
 
 use crate::report::context::Context;
-use crate::report::figure::Figure;
 use crate::report::figure::curves::{draw, short_circuit_voltages};
 use crate::report::figure::power::{self, power_words, shared_scale};
+use crate::report::figure::{Figure, SLIM, WIDE};
 use crate::report::number::{celsius, current, fixed, percent, significant, with_unit};
 use crate::report::text::{Text, visible};
 use crate::report::view::layers::{capital, joined};
@@ -68,8 +68,13 @@ pub fn headline(context: &Context<'_>) -> Section {
             desc.join("; ")
         ),
     );
-    figure.half = true;
-    let mut figure = figure.drawn(power::draw(context), None);
+    // One or two panels stand beside the table, more stand over it.
+    figure.half = conditions.len() <= 2;
+    let mut figure = if figure.half {
+        figure.drawn(power::draw(context, 2, 408.0), None)
+    } else {
+        figure.drawn(power::draw(context, 4, WIDE), Some(power::draw(context, 2, SLIM)))
+    };
     figure.caption = if context.separate() {
         Text::of("Solid area is power delivered, one rectangle a junction, each at its own greatest power.")
     } else {
@@ -85,14 +90,9 @@ pub fn headline(context: &Context<'_>) -> Section {
     figure.data = corners(context);
     section.figures.push(figure);
     section.tables.push(headline_table(context));
-    let mut lights = Text::new();
-    for (index, condition) in conditions.iter().enumerate() {
-        if index > 0 {
-            lights = lights.p(" ");
-        }
-        lights = lights.b(condition.name.clone()).p(format!(" {}.", condition_words(context, condition)));
-    }
-    section.notes.push(lights);
+    section.notes.extend(conditions.iter().map(|condition| {
+        Text::new().b(condition.name.clone()).p(format!(" {}.", condition_words(context, condition)))
+    }));
     section.notes.push(Text::of(format!(
         "Efficiency is power over all the light the cell receives; under {} that is {}.",
         visible(&context.first.name),

@@ -1,6 +1,7 @@
 //! Sources, numbered in the order in which the sheet first needs them; models; lights.
 
 use crate::report::context::{Context, Row};
+use crate::report::number::ranges;
 use crate::report::text::Text;
 use crate::report::view::{Item, Section, Table};
 
@@ -53,7 +54,7 @@ impl Sources {
             .collect();
         numbers.sort_unstable();
         numbers.dedup();
-        numbers.iter().map(usize::to_string).collect::<Vec<_>>().join("\u{a0}")
+        ranges(&numbers, "\u{a0}")
     }
 
     /// The list.
@@ -68,8 +69,12 @@ impl Sources {
             .iter()
             .zip(&self.uses)
             .map(|(cite, uses)| {
-                let uses = if uses.is_empty() { String::new() } else { format!(" ({})", uses.join(", ")) };
-                Item { head: Text::new(), body: Text::of(format!("{cite}{uses}")) }
+                let uses = if uses.is_empty() {
+                    String::new()
+                } else {
+                    format!(" ({})", uses.join(", ").replace('_', " "))
+                };
+                Item { head: Text::new(), body: Text::message(cite).p(uses) }
             })
             .collect();
         section

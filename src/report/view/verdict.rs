@@ -150,10 +150,21 @@ fn words(text: &str) -> &str {
     text.split(" under ").next().unwrap_or(text).trim_end()
 }
 
+/// A number and its unit stay on one line.
+fn unbroken(text: &str) -> String {
+    let mut out = String::new();
+    let mut after_digit = false;
+    for c in text.chars() {
+        out.push(if c == ' ' && after_digit { '\u{a0}' } else { c });
+        after_digit = c.is_ascii_digit();
+    }
+    out.replace("<= ", "<=\u{a0}").replace(">= ", ">=\u{a0}").replace("\u{a0}at yield", " at yield")
+}
+
 fn row(context: &Context<'_>, result: &RequirementResult) -> VerdictRow {
     let at_yield = stated(context, result).is_some_and(|requirement| requirement.at_yield.is_some());
     let (decimals, difference) = difference(result, true);
-    let shown: String = words(&result.text).split_whitespace().collect::<Vec<_>>().join(" ");
+    let shown = unbroken(&words(&result.text).split_whitespace().collect::<Vec<_>>().join(" "));
     let under = match (&result.condition, at_yield) {
         (Some(condition), false) => Text::of(format!("under {condition}")),
         (Some(condition), true) => Text::of(format!("under {condition}, nominal device")),
