@@ -8,6 +8,7 @@ mod integration {
     mod house_rules;
     mod physics;
     mod robustness;
+    mod sheet;
     mod tool;
     mod watching;
 }

@@ -5,6 +5,7 @@ use crate::report::ReportInput;
 use crate::report::figure::hatch::Hatch;
 use crate::report::number::CurrentScale;
 use crate::report::palette::style_number;
+use crate::report::text::visible;
 use crate::results::{ConditionResult, LayerLight, LayerResult, Results};
 
 /// The input and its first condition, under which the figures are drawn.
@@ -74,6 +75,15 @@ impl<'a> Context<'a> {
     }
 }
 
+/// `under noon`; a stack's own condition has no name of the user's.
+pub fn under(condition: &ConditionResult) -> String {
+    if condition.name == "stated" {
+        "under the stated condition".into()
+    } else {
+        format!("under {}", visible(&condition.name))
+    }
+}
+
 /// One layer: as designed, as resolved, and in the light of the first condition.
 #[derive(Clone, Copy, Debug)]
 pub struct Row<'a> {
@@ -87,14 +97,14 @@ pub struct Row<'a> {
     pub light: Option<&'a LayerLight>,
 }
 
-impl Row<'_> {
+impl<'a> Row<'a> {
     /// The number it has on the whole sheet.
     pub fn number(&self) -> usize {
         self.index + 1
     }
 
     /// Its material as shown.
-    pub fn material(&self) -> &str {
+    pub fn material(&self) -> &'a str {
         &self.result.material
     }
 

@@ -432,6 +432,18 @@ impl Drawing {
         }
     }
 
+    /// Where the next element would go, for [`Self::path_under`].
+    pub fn mark(&self) -> usize {
+        self.body.len()
+    }
+
+    /// A path beneath everything added since `mark`.
+    pub fn path_under(&mut self, mark: usize, class: &str, data: &str) {
+        if !data.is_empty() && self.body.is_char_boundary(mark) {
+            self.body.insert_str(mark, &format!("<path class=\"{class}\" d=\"{data}\"/>\n"));
+        }
+    }
+
     /// A dot.
     pub fn dot(&mut self, class: &str, at: (f64, f64), radius: f64) {
         let _ = writeln!(

@@ -93,6 +93,12 @@ pub fn superscript(value: i32) -> String {
         .collect()
 }
 
+/// At most two decimals, none where they are zero.
+pub fn trimmed(value: f64) -> String {
+    let text = fixed(value, 2);
+    text.trim_end_matches('0').trim_end_matches('.').to_string()
+}
+
 /// A number and its unit, kept on one line.
 pub fn with_unit(number: &str, unit: &str) -> String {
     if unit.is_empty() { number.to_string() } else { format!("{number}{NO_BREAK}{unit}") }
@@ -173,9 +179,7 @@ pub fn doping(per_cm3: f64) -> String {
 /// A temperature in °C, with decimals only where there are some.
 pub fn celsius(kelvin: f64) -> String {
     let value = kelvin - 273.15;
-    let text = fixed(value, 2);
-    let trimmed = text.trim_end_matches('0').trim_end_matches('.');
-    with_unit(trimmed, "°C")
+    with_unit(&trimmed(value), "°C")
 }
 
 /// `one`, `two`, … `twelve`, then digits.

@@ -128,6 +128,7 @@ fn wide(context: &Context<'_>, account: &Account) -> Drawing {
     row_line(&mut drawing, "light on the cell", &total, &total, second_total.as_deref(), true, y);
     drawing.line("hair", (0.0, y), (WIDE, y));
     let first_row = y;
+    let mark = drawing.mark();
     let mut remains = account.total;
     let (ticks, decimals) = x.ticks(5);
     let mut grid_lines = String::new();
@@ -175,7 +176,7 @@ fn wide(context: &Context<'_>, account: &Account) -> Drawing {
         };
         drawing.text_where_free([Label::at(at, y + 15.0, &words).size(11.5).class("q").middle()]);
     }
-    drawing.path("hair", &grid_lines);
+    drawing.path_under(mark, "hair", &grid_lines);
     y += ROW;
     row_line(
         &mut drawing,

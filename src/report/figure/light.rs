@@ -10,7 +10,7 @@ use crate::report::figure::hatch::{Hatch, strokes};
 use crate::report::figure::plot::{Scale, axis_left, interpolate, round_step, thin};
 use crate::report::figure::staircase::{GAP, Hung, arrange};
 use crate::report::figure::{Drawing, Label, LabelBox, SLIM, WIDE};
-use crate::report::number::fixed;
+use crate::report::number::{fixed, trimmed};
 use crate::report::text::visible;
 use crate::report::width::fit;
 
@@ -277,9 +277,12 @@ struct Shape<'a> {
 
 impl Shape<'_> {
     fn edge(points: &[(f64, f64)], x: f64) -> f64 {
-        let xs: Vec<f64> = points.iter().map(|p| p.0).collect();
-        let ys: Vec<f64> = points.iter().map(|p| p.1).collect();
-        interpolate(&xs, &ys, x).unwrap_or(0.0)
+        let after = points.partition_point(|p| p.0 < x);
+        match (after.checked_sub(1).and_then(|i| points.get(i)), points.get(after)) {
+            (Some(a), Some(b)) if b.0 > a.0 => a.1 + (b.1 - a.1) * (x - a.0) / (b.0 - a.0),
+            (Some(p), _) | (None, Some(p)) => p.1,
+            (None, None) => 0.0,
+        }
     }
 
     fn height_at(&self, x: f64) -> f64 {
@@ -290,20 +293,27 @@ impl Shape<'_> {
         self.upper.iter().copied().chain(self.lower.iter().rev().copied()).collect()
     }
 
-    /// Where a box fits: its centre, with the most room around it.
+    /// Where a box fits: its centre, with the most room around it, and near the band's middle.
     fn room_for(&self, (w, h): (f64, f64), frame: &Frame) -> Option<(f64, f64)> {
-        let step = 4.0;
+        let places = 200;
+        let xs =
+            (0..=places).map(|i| frame.left + (frame.right - frame.left) * f64::from(i) / f64::from(places));
+        let weight: Vec<(f64, f64)> = xs.map(|x| (x, self.height_at(x).max(0.0))).collect();
+        let total: f64 = weight.iter().map(|w| w.1).sum();
+        let middle = weight.iter().map(|w| w.0 * w.1).sum::<f64>() / total.max(1e-9);
         let mut best: Option<(f64, (f64, f64))> = None;
-        let mut x = frame.left + w / 2.0 + 4.0;
-        while x + w / 2.0 + 4.0 <= frame.right {
+        for (x, _) in weight {
+            if x - w / 2.0 < frame.left + 4.0 || x + w / 2.0 > frame.right - 4.0 {
+                continue;
+            }
             let ends = [x - w / 2.0, x - w / 4.0, x, x + w / 4.0, x + w / 2.0];
             let low = ends.iter().map(|x| Self::edge(&self.lower, *x)).fold(f64::MAX, f64::min);
             let high = ends.iter().map(|x| Self::edge(&self.upper, *x)).fold(f64::MIN, f64::max);
             let spare = low - high - h;
-            if spare > 8.0 && best.is_none_or(|(most, _)| spare > most + 0.5) {
-                best = Some((spare, (x, (low + high) / 2.0)));
+            let worth = spare.min(60.0) - 0.15 * (x - middle).abs();
+            if spare > 8.0 && best.is_none_or(|(most, _)| worth > most) {
+                best = Some((worth, (x, (low + high) / 2.0)));
             }
-            x += step;
         }
         best.map(|(_, centre)| centre)
     }
@@ -502,11 +512,6 @@ fn grid(
     let words = format!("photon current counted from the blue end, {}", context.scale.unit);
     drawing.text(Label::at(frame.width - 2.0, base + 31.0, &words).size(11.5).class("q").end());
     step
-}
-
-fn trimmed(value: f64) -> String {
-    let text = fixed(value, 2);
-    text.trim_end_matches('0').trim_end_matches('.').to_string()
 }
 
 fn labels_inside(

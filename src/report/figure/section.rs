@@ -7,7 +7,7 @@ use crate::design::{Duty, Extent};
 use crate::report::context::{Context, Row, Style};
 use crate::report::figure::hatch::{Hatch, rectangle, strokes};
 use crate::report::figure::{Drawing, Label, SLIM, WIDE};
-use crate::report::number::{doping, fixed, thickness, with_unit};
+use crate::report::number::{doping, fixed, thickness, trimmed, with_unit};
 use crate::report::palette::style_number;
 use crate::report::width::fit;
 
@@ -83,7 +83,7 @@ fn draw_in(context: &Context<'_>, layout: Layout) -> Drawing {
     }
     let foot = edges[edges.len() - 1];
     let mut drawing = Drawing::new(layout.width, 0.0);
-    head(&mut drawing, &layout, over);
+    head(context, &mut drawing, &layout, over);
     for (index, row) in rows.iter().enumerate() {
         let (y, h) = (edges[index], edges[index + 1] - edges[index]);
         area(&mut drawing, &row.style(), (layout.stack.0, y), (layout.stack.1, h));
@@ -102,7 +102,9 @@ fn draw_in(context: &Context<'_>, layout: Layout) -> Drawing {
     for (index, row) in rows.iter().enumerate() {
         words(context, &mut drawing, &layout, row, (edges[index] + edges[index + 1]) / 2.0);
     }
-    drawing.height = keys(context, &mut drawing, &layout, &rows, foot + 14.0);
+    let end = keys(context, &mut drawing, &layout, &rows, foot + 14.0);
+    // The words of a bracket may reach further down than its layers.
+    drawing.height = drawing.labels.iter().map(|label| label.bottom + 4.0).fold(end, f64::max);
     drawing
 }
 
@@ -114,7 +116,7 @@ pub fn area(drawing: &mut Drawing, style: &Style, at: (f64, f64), size: (f64, f6
     }
 }
 
-fn head(drawing: &mut Drawing, layout: &Layout, over: f64) {
+fn head(context: &Context<'_>, drawing: &mut Drawing, layout: &Layout, over: f64) {
     let small = |x: f64, words: &str| Label::at(x, 14.0, words).size(11.5).class("q");
     drawing.text(small(layout.stack.0, "sunward"));
     if layout.slim {
@@ -124,9 +126,13 @@ fn head(drawing: &mut Drawing, layout: &Layout, over: f64) {
         drawing.text(small(324.0, "no.").end());
         drawing.text(small(334.0, "duty"));
         drawing.text(small(428.0, "material as resolved"));
-        drawing.text(small(676.0, "thickness").end());
+        if context.layers().any(|row| row.result.thickness_nm.is_some()) || over > 0.0 {
+            drawing.text(small(676.0, "thickness").end());
+        }
         drawing.text(small(742.0, "gap").end());
-        drawing.text(small(758.0, "doping /cm³"));
+        if context.layers().any(|row| row.result.doping_per_cm3.is_some()) {
+            drawing.text(small(758.0, "doping /cm³"));
+        }
     }
     let left = layout.stack.0 + layout.stack.1 + 12.0;
     drawing.line("axis", (left, 22.0), (layout.width, 22.0));
@@ -160,7 +166,7 @@ fn fingers(
     let y = HEAD + OVER - 9.0;
     let text_x = if layout.slim { 218.0 } else { 334.0 };
     drawing.text(Label::at(text_x, y, "fingers"));
-    let share = with_unit(&trimmed_percent(context.shading()), "% of area");
+    let share = with_unit(&trimmed(context.shading() * 100.0), "% of area");
     drawing.text(Label::at(if layout.slim { SLIM } else { 676.0 }, y, &share).end());
     for (index, row) in under.iter().enumerate() {
         let row_y = y + OVER * (index as f64 + 1.0);
@@ -168,11 +174,6 @@ fn fingers(
         let from = (lefts[1] + post, under_top + each * (index as f64 + 0.3).min(0.6));
         drawing.line("lead", from, (x + w + 10.0, row_y - 4.0));
     }
-}
-
-fn trimmed_percent(share: f64) -> String {
-    let text = fixed(share * 100.0, 2);
-    text.trim_end_matches('0').trim_end_matches('.').to_string()
 }
 
 /// A wafer is cut short: two zigzags with nothing between.

@@ -1,6 +1,6 @@
 //! The ledger's lines in words, in hundredths that add up.
 
-use crate::report::context::{Context, Style};
+use crate::report::context::{Context, Style, under};
 use crate::report::figure::Figure;
 use crate::report::figure::ledger::{draw, hundredths};
 use crate::report::figure::light::layer_words;
@@ -178,7 +178,7 @@ fn entry(context: &Context<'_>, key: &Key, exact: Vec<f64>) -> Entry {
             (None, Some(path)) => visible(path),
             _ => "absorbed without current".into(),
         },
-        Kind::Passing => "passing below every gap".into(),
+        Kind::Passing => "passing through".into(),
         Kind::Beyond => "outside the optical data".into(),
         Kind::Heat => format!("turned to heat in {of}"),
         Kind::Tail => format!("lifted from below the gap in {of}"),
@@ -295,8 +295,8 @@ pub fn section(context: &Context<'_>) -> Section {
         "ledger",
         "Ledger of the light's power",
         format!(
-            "A ruled account in W/m2 under {}: of {} on the cell {} are delivered. {} with a bar each; the numbers are in the table.",
-            visible(&context.first.name),
+            "A ruled account in W/m2 {}: of {} on the cell {} are delivered. {} with a bar each; the numbers are in the table.",
+            under(context.first),
             hundredths(account.total),
             hundredths(delivered),
             counted(account.entries.len(), "line")

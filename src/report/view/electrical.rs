@@ -1,6 +1,6 @@
 //! Headline figures, current against voltage, conditions side by side.
 
-use crate::report::context::Context;
+use crate::report::context::{Context, under};
 use crate::report::figure::curves::{draw, short_circuit_voltages};
 use crate::report::figure::power::{self, power_words, shared_scale};
 use crate::report::figure::{Figure, SLIM, WIDE};
@@ -41,11 +41,8 @@ fn row(
 pub fn headline(context: &Context<'_>) -> Section {
     let mut section = Section::new("figures", "Headline figures");
     let conditions = &context.results.conditions;
-    let each: Vec<String> = conditions
-        .iter()
-        .take(4)
-        .map(|c| format!("{} under {}", percent(c.efficiency, 2), visible(&c.name)))
-        .collect();
+    let each: Vec<String> =
+        conditions.iter().take(4).map(|c| format!("{} {}", percent(c.efficiency, 2), under(c))).collect();
     let more = conditions.len().saturating_sub(4);
     let mut words = format!("Efficiency is {}", joined(&each));
     if more > 0 {
@@ -94,8 +91,8 @@ pub fn headline(context: &Context<'_>) -> Section {
         Text::new().b(condition.name.clone()).p(format!(" {}.", condition_words(context, condition)))
     }));
     section.notes.push(Text::of(format!(
-        "Efficiency is power over all the light the cell receives; under {} that is {}.",
-        visible(&context.first.name),
+        "Efficiency is power over all the light the cell receives; {} that is {}.",
+        under(context.first),
         with_unit(&fixed(context.first.incident_w_per_m2, 2), "W/m²")
     )));
     section
@@ -171,14 +168,14 @@ pub fn curves(context: &Context<'_>) -> Section {
         "curves",
         "Voltage and current",
         format!(
-            "Current against voltage under {}, each junction by itself{}. At the greatest power: {}{whole}.",
-            visible(&first.name),
+            "Current against voltage {}, each junction by itself{}. At the greatest power: {}{whole}.",
+            under(first),
             if series { " and the stack" } else { "" },
             joined(&marks)
         ),
     )
     .drawn(wide, Some(slim));
-    let mut caption = format!("Under {}.", visible(&first.name));
+    let mut caption = format!("{}.", capital(&under(first)));
     if series {
         caption.push_str(" Dots are operating points: at the greatest power, and with the terminals joined. Dotted lines join points of equal current; along each, the junctions’ voltages add up to the stack’s and what the resistances take.");
     } else {
@@ -235,7 +232,7 @@ fn curves_lede(context: &Context<'_>, short: &[Option<f64>], series: bool) -> Te
 fn operating(context: &Context<'_>, short: &[Option<f64>], series: bool) -> Table {
     let first = context.first;
     let mut table = Table::new(
-        Text::of(format!("Under {}", visible(&first.name))),
+        Text::of(capital(&under(first))),
         &[
             "",
             ">open circuit, V",

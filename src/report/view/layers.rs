@@ -1,7 +1,7 @@
 //! The cross-section with its words, and the table of layers.
 
-use crate::design::{Duty, Extent, Growth, Place};
-use crate::report::context::{Context, Row};
+use crate::design::{Duty, Extent, Growth, InterconnectKind, Place};
+use crate::report::context::{Context, Row, under};
 use crate::report::figure::Figure;
 use crate::report::figure::section::{doping_words, draw};
 use crate::report::number::{counted, fixed, signed, thickness};
@@ -33,10 +33,9 @@ pub fn stack(context: &Context<'_>) -> Section {
                 })
                 .collect();
             lede.b(junctions[limiting].name.clone()).p(format!(
-                " limits the current: {} against {} {}.",
-                context.scale.number(junctions[limiting].photocurrent_ma_per_cm2),
-                joined(&others),
-                context.scale.unit
+                " limits the current: {}, against {}.",
+                context.scale.text(junctions[limiting].photocurrent_ma_per_cm2),
+                joined(&others)
             ))
         }
         _ => {
@@ -118,7 +117,7 @@ fn caption(context: &Context<'_>) -> Text {
     if planes {
         words.push_str(" The heavy line is the p–n plane.");
     }
-    words.push_str(&format!(" Currents under {}.", visible(&context.first.name)));
+    words.push_str(&format!(" Currents {}.", under(context.first)));
     Text::of(words)
 }
 
@@ -163,7 +162,12 @@ fn table(context: &Context<'_>, mut sources: Option<&mut Sources>) -> Table {
     let strained = context.layers().any(|row| row.result.strain.is_some_and(|s| s.abs() >= 5e-6));
     let lattice = context.layers().any(|row| row.result.lattice_constant_angstrom.is_some());
     let doped = context.layers().any(|row| row.result.doping_per_cm3.is_some());
-    let mut heads = vec![">no.", "layer", "material", ">thickness", ">gap, eV"];
+    let measured = context.layers().any(|row| row.result.thickness_nm.is_some());
+    let mut heads = vec![">no.", "layer", "material"];
+    if measured {
+        heads.push(">thickness");
+    }
+    heads.push(">gap, eV");
     if lattice {
         heads.extend([">lattice, Å", ">mismatch, %"]);
     }
@@ -178,8 +182,7 @@ fn table(context: &Context<'_>, mut sources: Option<&mut Sources>) -> Table {
     if sources.is_some() {
         heads.push("sources");
     }
-    let mut table =
-        Table::new(Text::of("As resolved, at 25 °C; currents under ").p(context.first.name.clone()), &heads);
+    let mut table = Table::new(Text::of("As resolved, at 25 °C; currents ").p(under(context.first)), &heads);
     table.kind = "roomy";
     let mut place = None;
     for row in context.layers() {
@@ -194,16 +197,18 @@ fn table(context: &Context<'_>, mut sources: Option<&mut Sources>) -> Table {
             Text::of(row.number().to_string()),
             layer_cell(context, &row),
             Text::material(row.material()),
-            Text::of(thickness_words(&row)),
-            match (row.result.gap_ev, row.result.gap_kind.as_deref()) {
-                (Some(gap), Some(kind)) if kind.starts_with("indirect") => Text::of(format!(
-                    "{} {}",
-                    kind.replace("indirect ", "").replace(['(', ')'], ""),
-                    fixed(gap, 2)
-                )),
-                (gap, _) => number(gap, 2),
-            },
         ];
+        if measured {
+            cells.push(Text::of(thickness_words(&row)));
+        }
+        cells.push(match (row.result.gap_ev, row.result.gap_kind.as_deref()) {
+            (Some(gap), Some(kind)) if kind.starts_with("indirect") => Text::of(format!(
+                "{} {}",
+                kind.replace("indirect ", "").replace(['(', ')'], ""),
+                fixed(gap, 2)
+            )),
+            (gap, _) => number(gap, 2),
+        });
         if lattice {
             cells.push(number(row.result.lattice_constant_angstrom, 4));
             cells.push(Text::of(row.result.mismatch.map(|m| signed(m * 100.0, 2)).unwrap_or_default()));
@@ -259,7 +264,11 @@ fn group_words(context: &Context<'_>, place: Place) -> Text {
         Place::Interconnect(index) => match context.design.interconnects.get(index) {
             Some(interconnect) => {
                 let name = visible(&interconnect.name.value);
-                Text::of(if name.starts_with("tunnel") { name } else { format!("tunnel {name}") })
+                let kind = match interconnect.kind {
+                    InterconnectKind::Tunnel => "tunnel",
+                    InterconnectKind::Recombination => "recombination",
+                };
+                Text::of(if name.starts_with(kind) { name } else { format!("{kind} {name}") })
             }
             None => Text::of("tunnel"),
         },
@@ -275,29 +284,26 @@ fn origins(context: &Context<'_>, sources: &mut Sources) -> Table {
         &["material", "number", "how it came to be", "source"],
     );
     table.kind = "fold";
-    let mut seen: Vec<(String, String, String, String)> = Vec::new();
-    let mut last = String::new();
+    let mut shown: Vec<&str> = Vec::new();
     for row in context.layers() {
+        if shown.contains(&row.material()) {
+            continue;
+        }
+        shown.push(row.material());
+        // Numbers of one source that came to be in one way share a line.
+        let mut lines: Vec<(&str, &str, Vec<String>)> = Vec::new();
         for origin in &row.result.origins {
-            let key =
-                (row.result.material.clone(), origin.what.clone(), origin.kind.clone(), origin.cite.clone());
-            if seen.contains(&key) {
-                continue;
+            let what = origin.what.replace('_', " ");
+            match lines.iter_mut().find(|(kind, cite, _)| *kind == origin.kind && *cite == origin.cite) {
+                Some((_, _, whats)) if whats.contains(&what) => {}
+                Some((_, _, whats)) => whats.push(what),
+                None => lines.push((&origin.kind, &origin.cite, vec![what])),
             }
-            let number = if origin.cite.is_empty() {
-                String::new()
-            } else {
-                sources.number(&origin.cite, &origin.what).to_string()
-            };
-            let name = if last == row.result.material { Text::new() } else { Text::material(row.material()) };
-            last.clone_from(&row.result.material);
-            table.row(vec![
-                name,
-                Text::of(origin.what.clone()),
-                Text::of(origin.kind.clone()),
-                Text::of(number),
-            ]);
-            seen.push(key);
+        }
+        for (index, (kind, cite, whats)) in lines.into_iter().enumerate() {
+            let number = if cite.is_empty() { String::new() } else { sources.number(cite, "").to_string() };
+            let name = if index == 0 { Text::material(row.material()) } else { Text::new() };
+            table.row(vec![name, Text::of(whats.join(", ")), Text::of(kind), Text::of(number)]);
         }
     }
     table

@@ -1,11 +1,11 @@
 //! Where the light goes, with its words.
 
-use crate::report::context::Context;
+use crate::report::context::{Context, under};
 use crate::report::figure::light::{Light, draw};
 use crate::report::figure::{Figure, eqe, plot};
-use crate::report::number::{CurrentScale, fixed, with_unit};
+use crate::report::number::{fixed, trimmed, with_unit};
 use crate::report::text::{Text, visible};
-use crate::report::view::layers::joined;
+use crate::report::view::layers::{capital, joined};
 use crate::report::view::{Section, Table};
 
 /// The section; empty where there is no spectral data.
@@ -49,11 +49,11 @@ pub fn light(context: &Context<'_>) -> Section {
         ),
     )
     .drawn(wide, Some(slim));
-    let cell = plot::round_step(light.total_ma.0 / 11.0) * 0.2;
-    let cell = CurrentScale::text(scale, cell);
+    let cell = scale.of(plot::round_step(light.total_ma.0 / 11.0) * 0.2);
+    let cell = with_unit(&trimmed(cell), scale.unit);
     let mut caption = format!(
-        "Under {}. Height is the share of the photons, width is photon current, so area is {} and each cell of the grid is {cell}.",
-        visible(&context.first.name),
+        "{}. Height is the share of the photons, width is photon current, so area is {} and each cell of the grid is {cell}.",
+        capital(&under(context.first)),
         scale.unit
     );
     if light.total_ma.1 > light.total_ma.0 * 1.002 {
@@ -113,8 +113,8 @@ fn efficiency(context: &Context<'_>) -> Option<Figure> {
     )
     .drawn(wide, Some(slim));
     figure.caption = Text::of(format!(
-        "Electrons per photon that reaches the cell between the fingers, under {}.",
-        visible(&context.first.name)
+        "Electrons per photon that reaches the cell between the fingers, {}.",
+        under(context.first)
     ));
     let spectral = &context.first.spectral;
     let mut heads = vec![">wavelength, nm".to_string()];
