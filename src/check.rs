@@ -13,6 +13,7 @@ use crate::units::{self, Dimension};
 mod accept;
 mod current_mismatch;
 mod doping_missing;
+mod families;
 mod free;
 mod free_on_bound;
 mod free_outside;

@@ -262,6 +262,8 @@ pub struct Material {
     pub name: String,
     /// What it is.
     pub class: MaterialClass,
+    /// The family it is a composition of; `None` for compounds and models.
+    pub family: Option<Arc<alloy::Family>>,
     /// Fraction of each element of its sublattice, in the order of the label. Empty for models
     /// and for compounds without a free composition.
     pub composition: Vec<(String, f64)>,
@@ -290,6 +292,7 @@ impl Material {
             label: name.to_owned(),
             name: name.to_owned(),
             class,
+            family: None,
             composition: Vec::new(),
             lattice: None,
             bands: None,

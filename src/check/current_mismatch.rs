@@ -80,6 +80,12 @@ fn finding(context: &Context, condition: &ConditionResult, shift: &Shift) -> Opt
     })
 }
 
+/// What would balance the currents under `condition`, whatever the threshold.
+pub(super) fn balance_help(context: &Context, condition: &ConditionResult) -> Option<String> {
+    let shift = shift(condition).filter(|shift| shift.excess > 0.0)?;
+    help(context, condition, &shift)
+}
+
 /// The change of one junction that balances the two: a thickness where it has one, else a gap.
 fn help(context: &Context, condition: &ConditionResult, shift: &Shift) -> Option<String> {
     // The upper of the two decides how the light is shared.

@@ -1,5 +1,6 @@
 //! `gap.indirect-absorber`: an absorber whose lowest gap is indirect, too thin for that.
 
+use super::families::last_direct;
 use super::junctions::describe;
 use super::show::{ev, length};
 use super::{Context, Report, Rule, Threshold};
@@ -47,10 +48,10 @@ fn run(context: &Context, report: &mut Report) {
                 ),
             )
             .at(layer.spans.material, format!("{}{direct}", gap.kind.word()))
-            .help(format!(
-                "choose a composition with a direct gap, or make the absorbers at least {} thick",
-                length(enough)
-            )),
+            .help(match material.family.as_ref().and_then(|family| last_direct(family)) {
+                Some(label) => format!("`{label}` is the last with a direct gap; write that or less"),
+                None => format!("make the absorbers of `{}` at least {} thick", facts.name(), length(enough)),
+            }),
         );
     }
 }

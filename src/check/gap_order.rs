@@ -3,6 +3,7 @@
 use super::show::ev;
 use super::{Context, Report, Rule};
 use crate::finding::{Finding, Severity};
+use crate::numerics::constants::CHARGE;
 
 pub(super) static RULE: Rule = Rule {
     code: "gap.order",
@@ -18,7 +19,7 @@ fn run(context: &Context, report: &mut Report) {
         let [upper, lower] = pair else { continue };
         let (Some(above), Some(below)) = (upper.gap(), lower.gap()) else { continue };
         // Closer than this they are the same gap: `gap.equal`.
-        if above.ev > below.ev - context.threshold(&super::gap_equal::RULE) {
+        if above.ev > below.ev - context.threshold(&super::gap_equal::RULE) / CHARGE {
             continue;
         }
         let (Some((_, shading)), Some((_, shaded))) = (upper.main_absorber(), lower.main_absorber()) else {

@@ -13,7 +13,7 @@ pub(super) static RULE: Rule = Rule {
     severity: Severity::Warning,
     title: "a window or back surface field absorbs light",
     threshold: Some(Threshold {
-        default: 0.05,
+        default: 0.1,
         unit: "%",
         meaning: "the current lost in the layer, as a share of its junction's",
     }),

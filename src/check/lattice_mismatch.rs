@@ -6,6 +6,7 @@
 //! is uncovered while it grows): a warning, since growth often overshoots it; an error beyond
 //! People and Bean's estimate.
 
+use super::families::matched;
 use super::junctions::describe;
 use super::show::{celsius, count, length, percent, significant};
 use super::{Context, Report, Rule, Threshold};
@@ -27,6 +28,9 @@ pub(super) static RULE: Rule = Rule {
 /// Poisson ratio of a (001) film whose elastic constants nobody gave: that of most cubic
 /// semiconductors lies between 0.27 (Si, Ge) and 0.36 (InP, InAs).
 const USUAL_POISSON: f64 = 1.0 / 3.0;
+
+/// Nobody grows a closed layer thinner than this, m.
+const LEAST_LAYER_M: f64 = 3e-9;
 
 /// Layers that follow each other in growth and are off by the same amount.
 struct Slab {
@@ -126,20 +130,21 @@ fn finding(
         more => format!(" with {} above it", count(more, "layer")),
     };
     let stays = match safe {
-        Some(safe) => format!("only {} stay coherent", length(safe)),
-        None => "no thickness stays coherent".to_string(),
+        Some(safe) => {
+            format!("{}{with} is beyond the {} that stay coherent", length(thickness), length(safe))
+        }
+        None => format!("{}{with} cannot stay coherent", length(thickness)),
     };
     let mut finding = Finding::new(
         severity,
         code,
         format!(
-            "{} is {} {} than {} at {}: {}{with} relax into dislocations, {stays}",
+            "{} is {} {} than {} at {}: {stays}",
             describe(design, layer),
             percent(slab.mismatch.abs()),
             if slab.mismatch > 0.0 { "larger" } else { "smaller" },
             describe(design, ground),
             celsius(temperature_k),
-            length(thickness),
         ),
     )
     .at(layer.spans.material, format!("lattice constant {}", constant(material)?))
@@ -147,20 +152,38 @@ fn finding(
     for more in &slab.layers[1..] {
         finding = finding.beside(design.layers[*more].spans.material, "off by the same amount");
     }
-    Some(match (matched(material, beneath, temperature_k), safe) {
-        (Some(label), _) => finding
-            .help(format!("`{label}` matches; write `{} matched`", material.name))
-            .fix(layer.spans.material, format!("{} matched", material.name), false),
-        (None, Some(safe)) if safe >= 1e-9 => finding.help(format!(
-            "keep it below {} nm, or grow it on a relaxed buffer of its own lattice constant",
-            significant((safe * 1e9).floor(), 3)
-        )),
-        _ => finding
-            .help(format!("grow it on a relaxed buffer with a lattice constant of {}", constant(material)?)),
+    let thin =
+        safe.filter(|safe| *safe >= LEAST_LAYER_M).map(|safe| format!("keep it below {}", whole_nm(safe)));
+    if code == super::lattice_critical_thickness::RULE.code {
+        let thin = thin.map_or_else(String::new, |thin| format!("{thin}, or "));
+        return Some(
+            finding.help(format!("{thin}write `relaxed` for `pseudomorphic` if it is meant to relax")),
+        );
+    }
+    let found = matched(material, beneath, temperature_k);
+    Some(match (found, thin) {
+        // A whole alloy, such as GaInP on GaAs; an alloy that only fits as one of its end members
+        // was meant to be strained.
+        (Some((label, phrase)), _) if label.contains(|c: char| c.is_ascii_digit()) => finding
+            .help(format!("`{label}` matches; write `{phrase}`"))
+            .fix(layer.spans.material, phrase, false),
+        (Some((label, _)), Some(thin)) => finding.help(format!("{thin}, or write `{label}`, which matches")),
+        (_, Some(thin)) => {
+            finding.help(format!("{thin}, or grow it on {}", own_ground(material, constant(material)?)))
+        }
+        _ => finding.help(format!("grow it on {}", own_ground(material, constant(material)?))),
     })
 }
 
-/// The composition of the layer's own family that matches the lattice beneath.
-fn matched(_material: &Material, _beneath: &Material, _temperature_k: f64) -> Option<String> {
-    None
+/// `16 nm`, rounded down.
+fn whole_nm(metres: f64) -> String {
+    format!("{} nm", significant((metres * 1e9).floor(), 3))
+}
+
+/// What a layer would fit on.
+fn own_ground(material: &Material, constant: String) -> String {
+    match material.family {
+        None => format!("`{}` or a relaxed buffer of {constant}", material.name),
+        Some(_) => format!("a relaxed buffer of {constant}"),
+    }
 }

@@ -1,4 +1,5 @@
-//! `limit CODE value`: whether the code has a threshold and the value can be one.
+//! `limit CODE value`: whether the code is one and has a threshold. The value itself was judged
+//! when it was read.
 
 use super::{RULES, rule};
 use crate::design::Design;
@@ -20,22 +21,8 @@ pub(super) fn check(design: &Design) -> Findings {
             });
             continue;
         };
-        let Some(threshold) = rule.threshold else {
+        if rule.threshold.is_none() {
             findings.push(without_threshold(&limit.code));
-            continue;
-        };
-        if !limit.value.is_finite() || limit.value < 0.0 {
-            findings.push(
-                Finding::error(
-                    "value.range",
-                    format!(
-                        "limit of `{code}` is `{}`; {} cannot be negative",
-                        limit.text, threshold.meaning
-                    ),
-                )
-                .at(limit.span, "less than nothing")
-                .help(format!("write a value above 0 {}", threshold.unit)),
-            );
         }
     }
     findings

@@ -85,11 +85,14 @@ fn barriers(context: &Context, facts: &JunctionFacts, report: &mut Report) {
         return;
     }
     let absorbing = || facts.absorbers().filter(|(_, layer)| sign(layer).is_some());
-    let (Some((_, front)), Some((_, rear))) = (absorbing().next(), absorbing().next_back()) else { return };
-    for (_, layer) in &facts.layers {
+    let (Some((first, front)), Some((last, rear))) = (absorbing().next(), absorbing().next_back()) else {
+        return;
+    };
+    for (index, layer) in &facts.layers {
+        // On the wrong side they are `structure.order`.
         let (neighbour, side) = match layer.duty {
-            Duty::Window => (front, "above"),
-            Duty::Bsf => (rear, "behind"),
+            Duty::Window if *index < first => (front, "above"),
+            Duty::Bsf if *index > last => (rear, "behind"),
             _ => continue,
         };
         // A window that is itself the emitter of an absorber without one: both signs are right.

@@ -2,7 +2,7 @@
 
 use super::show::significant;
 use super::{Context, Report, Rule};
-use crate::design::Requirement;
+use crate::design::{Comparison, Requirement};
 use crate::finding::{Finding, Severity};
 use crate::results::{ConditionResult, RequirementResult};
 
@@ -25,18 +25,27 @@ fn run(context: &Context, report: &mut Report) {
             .collect();
         failed.sort_by(|a, b| a.margin.total_cmp(&b.margin));
         let Some((worst, others)) = failed.split_first() else { continue };
-        let mut finding = Finding::error(RULE.code, message(requirement, worst, others))
-            .at(requirement.span, format!("short by {}", in_unit(worst.margin.abs(), requirement, worst)));
+        let finding = Finding::error(RULE.code, message(requirement, worst, others))
+            .at(requirement.span, format!("off by {}", difference(worst.margin.abs(), requirement, worst)));
         let condition = worst
             .condition
             .as_ref()
             .and_then(|name| results.conditions.iter().find(|condition| condition.name == *name));
-        finding = match condition.and_then(|condition| largest_loss(requirement, condition)) {
-            Some(help) => finding.help(help),
-            None => {
-                finding.help(format!("the bound that holds is {}", in_unit(worst.value, requirement, worst)))
-            }
-        };
+        let help = condition
+            .and_then(|condition| match requirement.metric.value.as_str() {
+                "efficiency" | "power" => largest_loss(condition),
+                "current_mismatch" => super::current_mismatch::balance_help(context, condition),
+                _ => None,
+            })
+            .unwrap_or_else(|| {
+                format!(
+                    "change the design, or write `{} {} {}`, which holds",
+                    requirement.metric.value,
+                    requirement.comparison.sign(),
+                    holding(requirement, worst)
+                )
+            });
+        let finding = finding.help(help);
         report.push([requirement.metric.value.as_str()], finding);
     }
 }
@@ -69,6 +78,31 @@ fn in_unit(value: f64, requirement: &Requirement, result: &RequirementResult) ->
     }
 }
 
+/// A difference of two such values.
+fn difference(value: f64, requirement: &Requirement, result: &RequirementResult) -> String {
+    match result.unit.as_str() {
+        "1" if requirement.bound_text.contains('%') => format!("{} points", significant(value * 100.0, 3)),
+        "1" | "" => significant(value, 3),
+        unit => format!("{} {unit}", significant(value, 3)),
+    }
+}
+
+/// The nearest bound of three digits that holds.
+fn holding(requirement: &Requirement, result: &RequirementResult) -> String {
+    let percent = result.unit == "1" && requirement.bound_text.contains('%');
+    let (value, unit) = match result.unit.as_str() {
+        _ if percent => (result.value * 100.0, "%"),
+        "1" => (result.value, ""),
+        unit => (result.value, unit),
+    };
+    let step = 10f64.powi((value.abs().max(1e-300)).log10().floor() as i32 - 2);
+    let rounded = match requirement.comparison {
+        Comparison::AtLeast | Comparison::Above => (value / step - 1e-9).floor() * step,
+        Comparison::AtMost | Comparison::Below => (value / step + 1e-9).ceil() * step,
+    };
+    format!("{} {unit}", significant(rounded, 3)).trim_end().to_string()
+}
+
 /// Ledger lines that a design can act on; heat and what passes belong to the gaps.
 const AVOIDABLE: &[(&str, &str)] = &[
     ("fingers", "shading by the fingers"),
@@ -80,11 +114,8 @@ const AVOIDABLE: &[(&str, &str)] = &[
     ("series", "series resistance"),
 ];
 
-/// For power and efficiency: the largest loss that a design can act on.
-fn largest_loss(requirement: &Requirement, condition: &ConditionResult) -> Option<String> {
-    if !matches!(requirement.metric.value.as_str(), "efficiency" | "power") {
-        return None;
-    }
+/// The largest loss that a design can act on.
+fn largest_loss(condition: &ConditionResult) -> Option<String> {
     let avoidable = condition.ledger_w_per_m2.iter().filter_map(|line| {
         AVOIDABLE.iter().find(|(name, _)| *name == line.line).map(|(_, words)| (line, *words))
     });

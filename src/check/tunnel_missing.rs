@@ -27,8 +27,6 @@ fn run(context: &Context, report: &mut Report) {
             continue;
         }
         let rear = upper.rear_sign().unwrap_or(Polarity::P);
-        let (p, n) = ("layer Al0.3Ga0.7As 15 nm p 8e19 /cm3 C", "layer GaAs 15 nm n 2e19 /cm3 Te");
-        let (first, second) = if rear == Polarity::P { (p, n) } else { (n, p) };
         let (top, bottom) = (upper.name(), lower.name());
         report.push(
             [top, bottom],
@@ -42,7 +40,10 @@ fn run(context: &Context, report: &mut Report) {
             )
             .at(lower.junction.name.span, format!("meets `{top}` here"))
             .beside(upper.junction.name.span, "the junction above")
-            .help(format!("write `tunnel {{ {first}; {second} }}` between them")),
+            .help(format!(
+                "write `tunnel {{ resistance 1 mohm cm2 }}` between them, or its two layers, the {} one first",
+                letter(rear)
+            )),
         );
     }
 }

@@ -2,14 +2,13 @@
 
 use std::sync::Arc;
 
-use crate::design::{Condition, Design, Junction, Terminals, VoltageModel};
-use crate::evaluate::junctions::{fit_at, inner_interconnects, strings};
+use crate::design::{Design, Junction, Terminals, VoltageModel};
+use crate::evaluate::junctions::fit_at;
 use crate::evaluate::lit::{Lit, junction_gap};
 use crate::finding::{Finding, Findings};
 use crate::materials::optics::Optics;
-use crate::results::{ConditionResult, Results};
-use crate::source::Span;
-use crate::units::{Dimension, number, trade};
+use crate::results::Results;
+use crate::units::number;
 
 /// An absorber that can be absorbed in nowhere.
 pub(super) const NO_THICKNESS: &str = "structure.no-thickness";
@@ -71,9 +70,6 @@ pub(super) fn after(design: &Design, results: &Results, lit: &[Arc<Lit>]) -> Fin
     let mut findings = Findings::new();
     findings.extend(held_ends(design, results, lit));
     findings.extend(fits_below_the_limit(design, lit));
-    for (condition, result) in design.conditions.iter().zip(&results.conditions) {
-        findings.extend(tunnel_peaks(design, condition, result));
-    }
     findings
 }
 
@@ -153,40 +149,4 @@ fn fits_below_the_limit(design: &Design, lit: &[Arc<Lit>]) -> Findings {
         );
     }
     findings
-}
-
-fn tunnel_peaks(design: &Design, condition: &Condition, result: &ConditionResult) -> Findings {
-    let mut findings = Findings::new();
-    let operating = result.jmp_ma_per_cm2.map(|current| 10.0 * current);
-    for string in strings(design) {
-        for index in inner_interconnects(design, &string.junctions) {
-            let interconnect = &design.interconnects[index];
-            let (Some(peak), Some(current)) = (interconnect.peak_a_per_m2, operating) else { continue };
-            if current > peak {
-                findings.push(tunnel_peak(
-                    interconnect.name.value.as_str(),
-                    interconnect.span,
-                    condition,
-                    (current, peak),
-                ));
-            }
-        }
-    }
-    findings
-}
-
-fn tunnel_peak(name: &str, span: Span, condition: &Condition, (current, peak): (f64, f64)) -> Finding {
-    let show = |current: f64| trade(current, Dimension::CURRENT_DENSITY);
-    Finding::error(
-        "tunnel.peak",
-        format!(
-            "`{name}` carries {} at the maximum power point under `{}`, above its peak of {}",
-            show(current),
-            condition.name,
-            show(peak)
-        ),
-    )
-    .at(span, format!("peak {}", show(peak)))
-    .beside(condition.span, format!("{} times the light", number(condition.concentration)))
-    .help(format!("dope it for a peak of {} or more, or lower the concentration", show(1.5 * current)))
 }

@@ -369,21 +369,6 @@ pub(super) fn slot(
     }
     let path = format!("{path}.{what}");
     if let Some((range, span)) = slot.free {
-        let outside = slot.value.is_some_and(|value| !(range.0..=range.1).contains(&value));
-        if outside && let Some(now) = slot.value {
-            let (low, high) = (trade(range.0, expected.dimension), trade(range.1, expected.dimension));
-            resolver.scope.report(
-                Finding::error(
-                    "value.range",
-                    format!(
-                        "`{path}` is {}, outside its free range {low} .. {high}",
-                        trade(now, expected.dimension)
-                    ),
-                )
-                .at(value.span, "outside its own range")
-                .help(format!("write a value from {low} to {high}, or widen the range")),
-            );
-        }
         let whole = value.free.as_ref().map_or(span, |_| value.span);
         let text = resolver.text(span);
         design.free_values.push(FreeValue {

@@ -21,6 +21,7 @@ pub fn ideal(gap_ev: f64, share: f64) -> SharedMaterial {
 pub fn material(gap_ev: f64, optics: Optics) -> SharedMaterial {
     let valley = Valley { members: vec![(1.0, GapLaw::constant(gap_ev))], offset_ev: 0.0 };
     Arc::new(Material {
+        family: None,
         label: format!("model {gap_ev} eV"),
         name: "model".to_owned(),
         class: MaterialClass::GapModel,

@@ -100,6 +100,8 @@ const MAY: &[(&str, &[&str])] = &[
             "design",
             "growth",
             "numerics",
+            // The unit of the threshold that `limit` sets, from the static table of rules.
+            "check",
             "why",
             // `limit CODE value` is read in the unit of its rule.
             "check",

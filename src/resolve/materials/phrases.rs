@@ -163,7 +163,7 @@ fn of_family(
     library: &mut Library,
     scope: &mut Scope,
     request: &Phrase<'_>,
-    (family, stated): (&Family, Option<Composition>),
+    (family, stated): (&Arc<Family>, Option<Composition>),
 ) -> Option<Resolved> {
     let mut asked = Asked::new(request, family);
     let mut resolved = Resolved::default();
@@ -261,6 +261,7 @@ fn of_family(
             }
         }
         let mut material = library.alloy(family, &composition, ordered);
+        material.family = Some(Arc::clone(family));
         if stated.is_some() {
             material.label.clone_from(&request.phrase.name.value);
         }
