@@ -17,21 +17,21 @@ use rayon::prelude::*;
 use crate::design::{Condition, Design};
 use crate::evaluate::lit::Lit;
 use crate::finding::Outcome;
+use crate::materials::optics::Optics;
 use crate::results::{ConditionResult, FreeValueResult, RequirementResult, Results, SCHEMA_VERSION};
 
 pub use hash::design_hash;
 
 /// Evaluates every condition of a design. `source` is the path shown in the numbers file.
 ///
-/// There is no value where the design is not whole: a material that could not be resolved
-/// (reported where it was read), a free value without a number (`free.unsettled`), no junction or
-/// one without an absorber (`structure.no-absorber`), an absorber without a thickness
-/// (`structure.no-thickness`, reported here), or light without photons. Requirements are checked
-/// for unknown metrics in any case.
+/// There is no value where the design is not whole, all of which is reported elsewhere: a material
+/// that could not be resolved, an absorber without a thickness (`value.missing`), a free value
+/// without a number (`free.unsettled`), no junction or one without an absorber
+/// (`structure.no-absorber`), light without photons (`light.range`). Requirements are checked for
+/// unknown metrics in any case. What is stated but not evaluated yet is reported by `resolve`.
 pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
     let mut findings = metrics::check(design);
-    findings.extend(findings::before(design));
-    if !is_whole(design) || findings.iter().any(|finding| finding.code == findings::NO_THICKNESS) {
+    if !is_whole(design) {
         return Outcome::nothing(findings);
     }
     let Some(lit) = lit_by_condition(design) else {
@@ -70,7 +70,11 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
 fn is_whole(design: &Design) -> bool {
     let resolved = design.layers.iter().all(|layer| layer.material.is_some());
     let settled = design.free_values.iter().all(|free| free.value.is_some());
-    resolved && settled && !design.junctions.is_empty() && !design.conditions.is_empty()
+    let thick = design.lit_layers().all(|(_, layer)| {
+        let ideal = layer.material.as_ref().is_some_and(|m| matches!(m.optics, Optics::Ideal(_)));
+        !layer.collects() || ideal || layer.thickness_m.is_some()
+    });
+    resolved && settled && thick && !design.junctions.is_empty() && !design.conditions.is_empty()
 }
 
 /// One [`Lit`] per condition; conditions that share light and temperature share the work.

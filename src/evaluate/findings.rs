@@ -2,68 +2,15 @@
 
 use std::sync::Arc;
 
-use crate::design::{Design, Junction, Terminals, VoltageModel};
+use crate::design::{Design, VoltageModel};
 use crate::evaluate::junctions::fit_at;
 use crate::evaluate::lit::{Lit, junction_gap};
 use crate::finding::{Finding, Findings};
-use crate::materials::optics::Optics;
 use crate::results::Results;
 use crate::units::number;
 
-/// An absorber that can be absorbed in nowhere.
-pub(super) const NO_THICKNESS: &str = "structure.no-thickness";
-
 /// Share of a current from which held end values are worth a warning.
 const HELD_SHARE: f64 = 1e-3;
-
-/// What can be said without any figure.
-pub(super) fn before(design: &Design) -> Findings {
-    let mut findings = Findings::new();
-    for (_, layer) in design.lit_layers() {
-        let needs =
-            layer.material.as_ref().is_some_and(|material| !matches!(material.optics, Optics::Ideal(_)));
-        let free = format!("{}.thickness", layer.path);
-        let is_free = design.free_values.iter().any(|value| value.path == free);
-        if layer.collects() && needs && layer.thickness_m.is_none() && !is_free {
-            findings.push(
-                Finding::error(NO_THICKNESS, format!("`{}` has no thickness to absorb in", layer.path))
-                    .at(layer.spans.statement, "an absorber without thickness")
-                    .help("add its thickness after the material, such as `1 um`"),
-            );
-        }
-    }
-    for junction in &design.junctions {
-        if junction.voltage == VoltageModel::Layers {
-            findings.push(stand_in(junction));
-        }
-    }
-    if design.terminals == Terminals::Three {
-        findings.push(
-            Finding::warning(
-                "feature.pending",
-                "three terminals are not evaluated yet: the stack is taken as a series string",
-            )
-            .at(design.name.span, "`terminals three` in this stack")
-            .help("write `terminals two` or `terminals four`"),
-        );
-    }
-    findings
-}
-
-fn stand_in(junction: &Junction) -> Finding {
-    let name = &junction.name;
-    let message = format!(
-        "the voltage of `{}` from its layers is not evaluated yet: its radiative limit stands in, an upper bound",
-        name.value
-    );
-    let (span, text) = match junction.voltage_span {
-        Some(span) => (span, "asked for here"),
-        None => (name.span, "emitter and base are given, so this is the default"),
-    };
-    Finding::warning("feature.pending", message)
-        .at(span, text)
-        .help("state what is known of its quality, such as `voltage from ere 1 %`")
-}
 
 /// What the figures show.
 pub(super) fn after(design: &Design, results: &Results, lit: &[Arc<Lit>]) -> Findings {

@@ -88,6 +88,10 @@ fn optics(design: &Design) -> ModelNote {
         }
         _ => "no reflectance is stated, so none is taken".to_owned(),
     };
+    let instead = match design.optics {
+        OpticsModel::Interference { .. } => "Stands in for interference, which is not evaluated yet. ",
+        OpticsModel::OnePass { .. } => "",
+    };
     let mirror = design.lit_layers().any(|(_, layer)| layer.duty == Duty::Mirror);
     let rear = if mirror {
         "the mirror sends it back once, with its Fresnel reflectance where it is a metal with an index, else wholly"
@@ -97,7 +101,7 @@ fn optics(design: &Design) -> ModelNote {
     ModelNote {
         name: "optics one_pass".to_owned(),
         does: format!(
-            "Beer–Lambert straight down through the lit layers in order; {front}; coats and other layers without \
+            "{instead}Beer–Lambert straight down through the lit layers in order; {front}; coats and other layers without \
              absorption do nothing; {rear}."
         ),
         blind_to: "Interference, reflection between layers, the colour of the coat, scattering.".to_owned(),
