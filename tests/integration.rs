@@ -7,6 +7,8 @@ mod integration {
     mod docs;
     mod house_rules;
     mod physics;
+    mod physics_circuit;
+    mod physics_properties;
     mod robustness;
     mod sheet;
     mod tool;

@@ -66,6 +66,10 @@ impl Diode {
     /// the least of the voltages at which one term alone would do.
     pub fn voltage(&self, current: f64) -> (f64, f64) {
         let recombines = self.photocurrent - current;
+        if recombines == 0.0 {
+            // Also of a junction in the dark that does not even leak: it blocks all else.
+            return (0.0, -1.0 / self.dark(0.0).1);
+        }
         if current >= self.ceiling() {
             return (f64::NEG_INFINITY, f64::NEG_INFINITY);
         }
@@ -141,7 +145,8 @@ mod tests {
 
     #[test]
     fn a_diode_without_anything_stays_at_zero() {
-        assert_eq!(plain(0.0, 0.0).voltage(0.0).0, f64::NEG_INFINITY);
+        assert_eq!(plain(0.0, 0.0).voltage(0.0).0, 0.0);
+        assert_eq!(plain(0.0, 0.0).voltage(1e-9).0, f64::NEG_INFINITY);
         assert_eq!(plain(0.0, 0.0).voltage(-1.0).0, 0.0);
     }
 }

@@ -11,10 +11,6 @@ const TERMS: usize = 32;
 /// How far above the edge emission is integrated, in kT: exp(−45) is below rounding.
 const ABOVE_EDGE_KT: f64 = 45.0;
 
-/// How far below the gap a tail may emit, eV. Urbach tails of 20 meV and less have decayed to
-/// 1e-6 of their weight there; what tables hold further down is noise, not a band edge.
-const BELOW_GAP_EV: f64 = 0.4;
-
 /// How the voltage enters the emission.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Statistics {
@@ -46,7 +42,7 @@ impl Radiative {
     ///
     /// `absorptance(energies in eV)` is the share of the light entering at the front that the
     /// junction absorbs. `breaks_ev` are energies where it jumps. Nothing is counted below
-    /// `lowest_ev`, where its data end, nor more than 0.4 eV below the gap.
+    /// `lowest_ev`, where its edge or its data end.
     pub fn new(
         gap_ev: f64,
         temperature_k: f64,
@@ -116,14 +112,16 @@ impl Radiative {
 /// Gauss–Legendre energies and weights from below the gap to far above it, fine near the gap and
 /// split at every break.
 fn nodes(gap_ev: f64, thermal_v: f64, breaks_ev: &[f64], lowest_ev: f64) -> (Vec<f64>, Vec<f64>) {
-    let first = (gap_ev - BELOW_GAP_EV).max(lowest_ev).max(0.0);
+    let first = lowest_ev.clamp(0.0, gap_ev);
     let last = gap_ev + ABOVE_EDGE_KT * thermal_v;
     let mut cuts = vec![first, last];
     let mut add = |from: f64, to: f64, step: f64| {
         let count = ((to - from) / step).round() as usize;
         cuts.extend((0..=count).map(|i| gap_ev + thermal_v * (from + step * i as f64)));
     };
-    add(-BELOW_GAP_EV / thermal_v, -4.0, 0.25);
+    let lowest = (first - gap_ev) / thermal_v;
+    add(lowest.min(-16.0), -16.0, 1.0);
+    add(lowest.clamp(-16.0, -4.0), -4.0, 0.25);
     add(-4.0, 4.0, 0.125);
     add(4.0, 16.0, 0.5);
     add(16.0, ABOVE_EDGE_KT, 1.5);

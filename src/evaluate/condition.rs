@@ -197,14 +197,18 @@ fn limiting(design: &Design, photocurrents: &[f64]) -> Option<String> {
     Some(design.junctions[least.0].name.value.clone())
 }
 
-/// `(max − min)/min` of the photocurrents; `None` for one junction or where one is dark.
+/// `(max − min)/min` of the photocurrents; `None` for one junction, or where one gets less than a
+/// trillionth of the light of another and so is dark.
 fn mismatch(photocurrents: &[f64]) -> Option<f64> {
     let least = photocurrents.iter().copied().fold(f64::INFINITY, f64::min);
     let most = photocurrents.iter().copied().fold(0.0, f64::max);
-    (photocurrents.len() > 1 && least > 0.0).then(|| (most - least) / least)
+    (photocurrents.len() > 1 && least > 1e-12 * most).then(|| (most - least) / least)
 }
+
+/// Powers below this are dark, W/m2: what a tail absorbs by rounding has no fill factor.
+const DARK_W_PER_M2: f64 = 1e-15;
 
 /// `part / whole`, 0 where there is no whole: a cell in the dark has no fill factor to speak of.
 fn ratio(part: f64, whole: f64) -> f64 {
-    if whole > 0.0 { part / whole } else { 0.0 }
+    if whole > DARK_W_PER_M2 { part / whole } else { 0.0 }
 }

@@ -12,6 +12,10 @@ use crate::optics::one_pass::{OnePass, Shares};
 /// terrestrial tables.
 const DATA_END_M: f64 = 4000e-9;
 
+/// How far below the gap a table may emit, eV: Urbach tails of 20 meV and less have lost all their
+/// weight there; what a table holds further down is noise, not a band edge.
+const TABLE_TAIL_EV: f64 = 0.4;
+
 /// Absorption, photon currents and powers at one times, normal incidence, without fingers.
 ///
 /// Integrals over wavelength are weighted sums over [`Lit::wavelength_m`]: the weights hold the
@@ -169,14 +173,17 @@ fn by_junction(rows: &[(usize, Option<usize>)], shares: &Shares, junctions: usiz
 
 fn emission(optics: &OnePass, gap_ev: &[f64], temperature_k: f64) -> Vec<Radiative> {
     let jumps: Vec<f64> = optics.jumps_m().iter().map(|edge| HC_EV / edge).collect();
-    let lowest = |junction: usize| {
-        let rows = optics.rows();
-        optics
-            .table_ranges_m()
-            .iter()
-            .filter(|(row, ..)| rows[*row].1 == Some(junction))
-            .map(|(_, _, last)| HC_EV / last)
-            .fold(0.0, f64::max)
+    let rows = optics.rows();
+    let tables = optics.table_ranges_m();
+    // Where the tables of a junction end, and no further down than a band edge can reach.
+    let lowest = |junction: usize, gap: f64| {
+        let own = tables.iter().filter(|(row, ..)| rows[*row].1 == Some(junction));
+        let ends: Vec<f64> = own.map(|(_, _, last)| HC_EV / last).collect();
+        if optics.is_sharp(junction) {
+            return gap;
+        }
+        let end = ends.iter().copied().fold(0.0, f64::max);
+        if ends.is_empty() { 0.0 } else { end.max(gap - TABLE_TAIL_EV) }
     };
     gap_ev
         .iter()
@@ -184,8 +191,7 @@ fn emission(optics: &OnePass, gap_ev: &[f64], temperature_k: f64) -> Vec<Radiati
         .map(|(junction, &gap)| {
             let statistics =
                 if optics.is_model(junction) { Statistics::BoseEinstein } else { Statistics::Diode };
-            let lowest = if optics.is_sharp(junction) { gap } else { lowest(junction) };
-            Radiative::new(gap, temperature_k, statistics, (&jumps, lowest), |energy| {
+            Radiative::new(gap, temperature_k, statistics, (&jumps, lowest(junction, gap)), |energy| {
                 let wavelength: Vec<f64> = energy.iter().map(|energy| HC_EV / energy).collect();
                 optics.junction_share(junction, &wavelength)
             })

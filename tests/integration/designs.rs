@@ -8,17 +8,17 @@ use bandloom::materials::optics::{IdealEdge, Optics};
 use bandloom::materials::{Bands, GapLaw, Material, MaterialClass, SharedMaterial, Valley};
 use bandloom::source::{Span, Spanned};
 
-pub fn named(name: &str) -> Spanned<String> {
+pub(crate) fn named(name: &str) -> Spanned<String> {
     Spanned::new(name.to_owned(), Span::default())
 }
 
 /// A material that absorbs `share` of what reaches it above `gap_ev`, whatever the temperature.
-pub fn ideal(gap_ev: f64, share: f64) -> SharedMaterial {
+pub(crate) fn ideal(gap_ev: f64, share: f64) -> SharedMaterial {
     material(gap_ev, Optics::Ideal(IdealEdge { gap_ev, absorbs: share }))
 }
 
 /// A gap model with any optics.
-pub fn material(gap_ev: f64, optics: Optics) -> SharedMaterial {
+pub(crate) fn material(gap_ev: f64, optics: Optics) -> SharedMaterial {
     let valley = Valley { members: vec![(1.0, GapLaw::constant(gap_ev))], offset_ev: 0.0 };
     Arc::new(Material {
         family: None,
@@ -37,7 +37,7 @@ pub fn material(gap_ev: f64, optics: Optics) -> SharedMaterial {
     })
 }
 
-pub fn layer(
+pub(crate) fn layer(
     path: &str,
     duty: Duty,
     place: Place,
@@ -63,7 +63,7 @@ pub fn layer(
     }
 }
 
-pub fn junction(name: &str, layers: std::ops::Range<usize>, voltage: VoltageModel) -> Junction {
+pub(crate) fn junction(name: &str, layers: std::ops::Range<usize>, voltage: VoltageModel) -> Junction {
     Junction {
         name: named(name),
         layers,
@@ -76,7 +76,7 @@ pub fn junction(name: &str, layers: std::ops::Range<usize>, voltage: VoltageMode
     }
 }
 
-pub fn condition(name: &str, light: Arc<Spectrum>, temperature_k: f64) -> Condition {
+pub(crate) fn condition(name: &str, light: Arc<Spectrum>, temperature_k: f64) -> Condition {
     Condition {
         name: name.to_owned(),
         light,
@@ -90,7 +90,7 @@ pub fn condition(name: &str, light: Arc<Spectrum>, temperature_k: f64) -> Condit
 }
 
 /// An empty stack under AM1.5G at 25 degC.
-pub fn empty() -> Design {
+pub(crate) fn empty() -> Design {
     let light = builtin("AM1.5G").expect("built in");
     Design {
         name: named("by hand"),
@@ -120,7 +120,7 @@ pub fn empty() -> Design {
 }
 
 /// Junctions `j0`, `j1`, … sunward first, each one ideal absorber of gap and share given.
-pub fn ideal_stack(absorbers: &[(f64, f64)], voltage: &VoltageModel) -> Design {
+pub(crate) fn ideal_stack(absorbers: &[(f64, f64)], voltage: &VoltageModel) -> Design {
     let mut design = empty();
     for (index, &(gap_ev, share)) in absorbers.iter().enumerate() {
         let name = format!("j{index}");
@@ -132,13 +132,13 @@ pub fn ideal_stack(absorbers: &[(f64, f64)], voltage: &VoltageModel) -> Design {
 }
 
 /// The stack of [`ideal_stack`] with everything above each gap absorbed, radiative limit only.
-pub fn limit_stack(gaps_ev: &[f64]) -> Design {
+pub(crate) fn limit_stack(gaps_ev: &[f64]) -> Design {
     let absorbers: Vec<(f64, f64)> = gaps_ev.iter().map(|&gap| (gap, 1.0)).collect();
     ideal_stack(&absorbers, &VoltageModel::RadiativeLimit)
 }
 
 /// The stack under another light.
-pub fn under(mut design: Design, light: Spectrum, concentration: f64, temperature_k: f64) -> Design {
+pub(crate) fn under(mut design: Design, light: Spectrum, concentration: f64, temperature_k: f64) -> Design {
     let mut condition = condition("other", Arc::new(light), temperature_k);
     condition.concentration = concentration;
     design.conditions = vec![condition];
