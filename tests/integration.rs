@@ -6,6 +6,7 @@ mod integration {
     mod designs;
     mod docs;
     mod house_rules;
+    mod materials;
     mod physics;
     mod physics_circuit;
     mod physics_properties;

@@ -18,11 +18,15 @@ use crate::syntax::{Argument, Item, Named, Statement};
 
 mod alloys;
 mod blocks;
+mod citations;
 mod formulas;
+mod groups;
 mod index;
 mod listing;
+mod misplaced;
 mod models;
 mod phrases;
+mod samples;
 mod unsolved;
 mod values;
 

@@ -27,7 +27,7 @@ pub enum Unsolved {
     /// More was asked for than the family has free fractions.
     Over,
     /// The gap lies outside what can be reached under the other wishes.
-    Gap(GapReach),
+    Gap(Box<GapReach>),
     /// The lattice constant lies outside what can be reached: lowest and highest, Å.
     Lattice(f64, f64),
     /// Fractions of one sublattice that cannot hold together.
@@ -308,7 +308,7 @@ fn on_gap(family: &Family, path: &Path<'_>, wanted: f64) -> Result<Composition, 
             return Ok(composition.clone());
         }
     }
-    Err(Unsolved::Gap(reach))
+    Err(Unsolved::Gap(Box::new(reach)))
 }
 
 fn reach(compositions: impl Iterator<Item = Composition>, family: &Family) -> Option<GapReach> {

@@ -5,18 +5,14 @@ use std::sync::Arc;
 
 use crate::finding::Finding;
 use crate::materials::alloy::{Compound, zinc_blende_density};
-use crate::materials::constants::{ConstantUnit, Constants, NAMES};
 use crate::materials::optics::Optics;
-use crate::materials::{
-    Bands, Elastic, GapLaw, Lattice, Material, MaterialClass, Origin, OriginKind, Valley, Varshni, elements,
-    formula,
-};
-use crate::resolve::materials::values::{Arguments, Kind, properties, quantity, single};
+use crate::materials::{Material, MaterialClass, Origin, OriginKind, elements, formula};
+use crate::resolve::materials::values::{Arguments, Kind, properties, single};
 use crate::resolve::materials::{Definition, ItemKind, Library};
 use crate::resolve::names;
 use crate::resolve::quantities::Scope;
-use crate::source::{SourceId, Spanned};
-use crate::syntax::{Named, Property, Statement};
+use crate::source::SourceId;
+use crate::syntax::{Named, Property};
 
 /// The words a `material` block knows.
 const GROUPS: &[&str] = &[
@@ -55,9 +51,9 @@ pub(super) struct Reader<'a> {
     pub(super) scope: &'a mut Scope,
     pub(super) texts: Texts<'a>,
     /// `source NAME "…"` of the item.
-    sources: BTreeMap<String, String>,
+    pub(super) sources: BTreeMap<String, String>,
     /// `cite` of the item's own body, for groups that have none.
-    whole: Option<(OriginKind, String)>,
+    pub(super) whole: Option<(OriginKind, String)>,
     pub(super) origins: Vec<Origin>,
 }
 
@@ -120,7 +116,7 @@ impl<'a> Reader<'a> {
             self.density_of_crystal(&mut material);
         }
         material.origins = std::mem::take(&mut self.origins);
-        if self.scope.finding_count() == before {
+        if self.scope.finding_count() == before && index.is_none() {
             self.complete(item, &material);
         }
         Compound { about, material: Arc::new(material), critical_ev }
@@ -139,25 +135,6 @@ impl<'a> Reader<'a> {
                 .help("state at least an index, such as `index { constant 1.9; cite \"…\" }`"),
             );
         }
-    }
-
-    /// `source NAME "…"` and the `cite` of the body.
-    pub(super) fn read_sources(&mut self, statements: &[&Property]) {
-        for property in statements.iter().filter(|property| property.name.value == "source") {
-            let mut arguments = Arguments::of(property);
-            if let (Some(name), Some(text)) = (arguments.word(), arguments.text()) {
-                self.sources.insert(name.value.clone(), text.value.clone());
-                arguments.end(self.scope);
-            } else {
-                self.scope.report(
-                    Finding::error("material.statement", "`source` needs a name and a text")
-                        .at(property.span, "a name for the source, then its citation")
-                        .help("write `source smith \"J. Smith, J. Appl. Phys. 1, 2 (2003)\"`"),
-                );
-            }
-        }
-        let whole = statements.iter().find(|property| property.name.value == "cite");
-        self.whole = whole.and_then(|property| self.citation(property));
     }
 
     pub(super) fn about(&mut self, property: &Property) -> String {
@@ -232,130 +209,6 @@ impl<'a> Reader<'a> {
         ));
     }
 
-    fn lattice(&mut self, group: &Property) -> Option<Lattice> {
-        let (mut constant, mut slope, mut expansion) = (None, None, None);
-        for property in self.inside(group) {
-            match property.name.value.as_str() {
-                "constant" => constant = single(property, Kind::ANGSTROM, self.scope),
-                "slope" => slope = single(property, Kind::ANGSTROM_PER_KELVIN, self.scope),
-                "expansion" => expansion = single(property, Kind::PER_KELVIN, self.scope),
-                "cite" => {}
-                _ => self.unknown_in("lattice", property, &["constant", "slope", "expansion"]),
-            }
-        }
-        self.origin(group, "lattice");
-        let constant = constant?;
-        let slope = slope.or(expansion.map(|share| share * constant)).unwrap_or(0.0);
-        Some(Lattice { a300_angstrom: constant, slope_angstrom_per_k: slope })
-    }
-
-    fn bands(&mut self, group: &Property, constants: &mut Constants) -> Option<Bands> {
-        let mut bands = Bands::default();
-        for property in self.inside(group) {
-            match property.name.value.as_str() {
-                "direct" => bands.gamma = self.gap_law(property).map(Valley::of),
-                "x" => bands.x = self.gap_law(property).map(Valley::of),
-                "l" => bands.l = self.gap_law(property).map(Valley::of),
-                "cite" => {}
-                word => match constant("gap", word) {
-                    Some((name, _)) => {
-                        let value = single(property, Kind::ENERGY, self.scope);
-                        constants.0.extend(value.map(|value| (name, value)));
-                    }
-                    None => {
-                        let known = ["direct", "x", "l", "split_off", "valence_offset"];
-                        self.unknown_in("gap", property, &known);
-                    }
-                },
-            }
-        }
-        self.origin(group, "gap");
-        let known = bands.gamma.is_some() || bands.x.is_some() || bands.l.is_some();
-        known.then_some(bands)
-    }
-
-    /// `1.519 eV`, then `varshni 0.5405 meV/K 204 K` or `phonon 0.1081 eV 164 K`, if the law is
-    /// known.
-    fn gap_law(&mut self, property: &Property) -> Option<GapLaw> {
-        let mut arguments = Arguments::of(property);
-        let slot = property.name.value.as_str();
-        let at_zero_ev = quantity(&mut arguments, slot, Kind::GAP, self.scope)?;
-        let law = if arguments.keyword("varshni") {
-            let alpha_ev_per_k = quantity(&mut arguments, "varshni", Kind::ENERGY_PER_KELVIN, self.scope)?;
-            let beta_k = quantity(&mut arguments, "varshni", Kind::KELVIN, self.scope)?;
-            GapLaw::Varshni(Varshni { at_zero_ev, alpha_ev_per_k, beta_k })
-        } else if arguments.keyword("phonon") {
-            let amplitude_ev = quantity(&mut arguments, "phonon", Kind::ENERGY, self.scope)?;
-            let theta_k = quantity(&mut arguments, "phonon", Kind::KELVIN, self.scope)?;
-            GapLaw::Phonon { at_zero_ev, amplitude_ev, theta_k }
-        } else {
-            GapLaw::constant(at_zero_ev)
-        };
-        arguments.end(self.scope);
-        Some(law)
-    }
-
-    fn elastic(&mut self, group: &Property) -> Option<Elastic> {
-        let mut values = [None; 3];
-        let words = ["c11", "c12", "c44"];
-        for property in self.inside(group) {
-            match words.iter().position(|word| *word == property.name.value) {
-                Some(at) => values[at] = single(property, Kind::GIGAPASCAL, self.scope),
-                None if property.name.value == "cite" => {}
-                None => self.unknown_in("elastic", property, &words),
-            }
-        }
-        self.origin(group, "elastic");
-        if let [Some(c11_gpa), Some(c12_gpa), Some(c44_gpa)] = values {
-            return Some(Elastic { c11_gpa, c12_gpa, c44_gpa });
-        }
-        if group.block.is_some() {
-            self.scope.report(
-                Finding::error("material.incomplete", "`elastic` needs `c11`, `c12` and `c44`")
-                    .at(group.name.span, "not all three can be read")
-                    .help("state all three, such as `c11 122.1 GPa; c12 56.6 GPa; c44 60.0 GPa`"),
-            );
-        }
-        None
-    }
-
-    fn constants(&mut self, group: &Property, name: &str, constants: &mut Constants) {
-        for property in self.inside(group) {
-            let word = property.name.value.as_str();
-            match constant(name, word) {
-                Some((key, unit)) => {
-                    let kind = if unit == ConstantUnit::Energy { Kind::ENERGY } else { Kind::PLAIN };
-                    let value = single(property, kind, self.scope);
-                    constants.0.extend(value.map(|value| (key, value)));
-                }
-                None if word == "cite" => {}
-                None => {
-                    let known: Vec<&str> = NAMES
-                        .iter()
-                        .filter(|(_, group, ..)| *group == name)
-                        .map(|(_, _, word, _)| *word)
-                        .collect();
-                    self.unknown_in(name, property, &known);
-                }
-            }
-        }
-        self.origin(group, name);
-    }
-
-    pub(super) fn critical_points(&mut self, group: &Property) -> Option<(f64, f64)> {
-        let (mut e1, mut e2) = (None, None);
-        for property in self.inside(group) {
-            match property.name.value.as_str() {
-                "e1" => e1 = single(property, Kind::GAP, self.scope),
-                "e2" => e2 = single(property, Kind::GAP, self.scope),
-                "cite" => {}
-                _ => self.unknown_in("critical_points", property, &["e1", "e2"]),
-            }
-        }
-        self.origin(group, "critical points");
-        Some((e1?, e2?))
-    }
-
     /// Crystals of known lattice and elements have a density without anybody measuring it.
     fn density_of_crystal(&mut self, material: &mut Material) {
         let (Some(lattice), Some(symbols)) = (material.lattice, formula::elements(&material.name)) else {
@@ -376,101 +229,4 @@ impl<'a> Reader<'a> {
                 .to_owned(),
         });
     }
-
-    /// Records where a group comes from; a group without a citation is a finding.
-    pub(super) fn origin(&mut self, group: &Property, what: &str) {
-        let inner = group.block.iter().flat_map(|block| &block.statements);
-        let cites: Vec<&Property> = inner
-            .filter_map(|statement| match statement {
-                Statement::Property(property) if property.name.value == "cite" => Some(property),
-                _ => None,
-            })
-            .collect();
-        let before = self.origins.len();
-        for property in &cites {
-            if let Some((kind, cite)) = self.citation(property) {
-                self.origins.push(Origin { what: what.to_owned(), kind, cite });
-            }
-        }
-        if self.origins.len() > before {
-            return;
-        }
-        if let Some((kind, cite)) = self.whole.clone() {
-            self.origins.push(Origin { what: what.to_owned(), kind, cite });
-            return;
-        }
-        if cites.is_empty() {
-            let name = &group.name.value;
-            self.scope.report(
-                Finding::error(
-                    "material.no-citation",
-                    format!("`{name}` does not say where its numbers come from"),
-                )
-                .at(group.name.span, "no `cite` in this group")
-                .help(format!("add `cite \"…\"` to `{name}`, for example `cite measured \"own run 17\"`")),
-            );
-        }
-    }
-
-    /// `cite [measured | published | …] [source …] ["…"]`
-    fn citation(&mut self, property: &Property) -> Option<(OriginKind, String)> {
-        let mut arguments = Arguments::of(property);
-        let (mut kind, mut parts) = (OriginKind::Stated, Vec::new());
-        let mut first = true;
-        loop {
-            if let Some(text) = arguments.text() {
-                parts.push(text.value.clone());
-            } else if let Some(word) = arguments.word() {
-                match (origin_kind(&word.value), self.sources.get(&word.value)) {
-                    (Some(known), _) if first => kind = known,
-                    (_, Some(text)) => parts.push(text.clone()),
-                    _ => {
-                        self.unknown_source(word);
-                        return None;
-                    }
-                }
-            } else {
-                break;
-            }
-            first = false;
-        }
-        arguments.end(self.scope);
-        if parts.is_empty() {
-            self.scope.report(
-                Finding::error("material.no-citation", "`cite` names no source")
-                    .at(property.span, "a text is due")
-                    .help("write `cite \"…\"` with the paper, the handbook or the run the numbers come from"),
-            );
-            return None;
-        }
-        Some((kind, parts.join("; ")))
-    }
-
-    fn unknown_source(&mut self, word: &Spanned<String>) {
-        let kinds = ["measured", "published", "joined", "model", "estimate", "memory", "stated"];
-        let known = self.sources.keys().map(String::as_str).chain(kinds);
-        let otherwise = format!("write it as a text, or define it: `source {} \"…\"`", word.value);
-        self.scope.report(names::unknown("source", word, known, &otherwise));
-    }
-}
-
-fn origin_kind(word: &str) -> Option<OriginKind> {
-    Some(match word {
-        "measured" => OriginKind::Measured,
-        "published" => OriginKind::Published,
-        "joined" => OriginKind::Joined,
-        "model" => OriginKind::Model,
-        "estimate" => OriginKind::Estimate,
-        "memory" => OriginKind::Memory,
-        "stated" => OriginKind::Stated,
-        _ => return None,
-    })
-}
-
-/// The name a constant is kept under and its unit.
-pub(super) fn constant(group: &str, word: &str) -> Option<(&'static str, ConstantUnit)> {
-    NAMES
-        .iter()
-        .find(|(_, own_group, own_word, _)| *own_group == group && *own_word == word)
-        .map(|(name, _, _, unit)| (*name, *unit))
 }

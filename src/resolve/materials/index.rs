@@ -21,7 +21,9 @@ impl Reader<'_> {
     /// table holds at (`at 300 K` unless stated), or from a stated `edge 1.88 eV`.
     pub(super) fn index(&mut self, group: &Property, bands: Option<&Bands>) -> Optics {
         let (mut table, mut edge, mut at_k, mut range) = (None, None, ROOM_TEMPERATURE_K, None);
+        let mut is_stated = false;
         for property in self.inside(group) {
+            is_stated |= ["table", "constant", "sellmeier", "cauchy"].contains(&property.name.value.as_str());
             match property.name.value.as_str() {
                 "table" => {
                     let mut arguments = Arguments::of(property);
@@ -43,7 +45,10 @@ impl Reader<'_> {
         }
         self.origin(group, "index");
         let Some(mut table) = table else {
-            self.nothing_said(group);
+            // What is stated and wrong was reported where it stands.
+            if !is_stated {
+                self.nothing_said(group);
+            }
             return Optics::None;
         };
         if let Some((low, high)) = range {
@@ -66,7 +71,7 @@ impl Reader<'_> {
     }
 
     fn nothing_said(&mut self, group: &Property) {
-        if group.block.is_some() && self.scope.finding_count() == 0 {
+        if group.block.is_some() {
             self.scope.report(
                 Finding::error("material.incomplete", "`index` states no index")
                     .at(group.name.span, "no table, constant or law")

@@ -9,7 +9,7 @@ use crate::materials::alloy::{Composition, Family};
 use crate::materials::{Material, Origin, OriginKind, SharedMaterial};
 use crate::resolve::materials::models::{MODEL_PROPERTIES, MODELS, model};
 use crate::resolve::materials::unsolved::{self, Asked};
-use crate::resolve::materials::{Definition, Library, formulas};
+use crate::resolve::materials::{Definition, Library, formulas, misplaced};
 use crate::resolve::names;
 use crate::resolve::quantities::{Expected, Role, Scope, Slot};
 use crate::source::{Span, Spanned};
@@ -84,9 +84,9 @@ pub fn materials_of(library: &mut Library, scope: &mut Scope, request: &Phrase<'
     match library.find(&name.value, scope) {
         Some(Definition::Compound(compound)) => {
             if let Some(qualifier) = request.phrase.qualifiers.first() {
-                let finding = unsolved::fixed(name, qualifier, &compound.material);
+                let finding = misplaced::fixed(name, qualifier, &compound.material);
                 let finding =
-                    unsolved::other_families(library, scope, finding, (qualifier, &compound.material));
+                    misplaced::other_families(library, scope, finding, (qualifier, &compound.material));
                 scope.report(finding);
                 return None;
             }
@@ -178,7 +178,7 @@ fn of_family(
                 ordered = slot.value.map(|gap| gap / ELEMENTARY_CHARGE);
             }
             _ if stated.is_some() => {
-                scope.report(unsolved::already_stated(request, family, qualifier));
+                scope.report(misplaced::already_stated(request, family, qualifier));
                 return None;
             }
             Qualifier::Matched { to, span } => {
@@ -205,7 +205,7 @@ fn of_family(
             }
             Qualifier::With { element, value, span } => {
                 if family.position(&element.value).is_none() {
-                    scope.report(unsolved::no_such_element(family, element));
+                    scope.report(misplaced::no_such_element(family, element));
                     return None;
                 }
                 let slot_name = format!("with {}", element.value);
@@ -254,11 +254,11 @@ fn of_family(
                 },
             },
         };
-        if let Some(ordered) = ordered {
-            if let Some(finding) = unsolved::ordering(&asked, &composition, ordered) {
-                scope.report(finding);
-                return None;
-            }
+        if let Some(ordered) = ordered
+            && let Some(finding) = unsolved::ordering(&asked, &composition, ordered)
+        {
+            scope.report(finding);
+            return None;
         }
         let mut material = library.alloy(family, &composition, ordered);
         material.family = Some(Arc::clone(family));
