@@ -92,6 +92,7 @@ pub fn resolve(
         bodies: HashMap::new(),
     };
     let designs = resolver.designs(first);
+    resolver.library.finish(&mut resolver.scope);
     Outcome::with(designs, resolver.scope.take_findings())
 }
 
