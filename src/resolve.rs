@@ -90,6 +90,7 @@ pub fn resolve(
         conditions: HashMap::new(),
         spectra: HashMap::new(),
         bodies: HashMap::new(),
+        materials: HashMap::new(),
     };
     let designs = resolver.designs(first);
     resolver.library.finish(&mut resolver.scope);
@@ -106,6 +107,7 @@ pub(crate) struct Resolver<'a, 's> {
     conditions: HashMap<&'s str, Option<(Condition, Vec<String>)>>,
     spectra: HashMap<&'s str, Option<Arc<Spectrum>>>,
     bodies: HashMap<&'s str, State<'s>>,
+    materials: chemistry::Cache,
 }
 
 /// A stack's body with its parts put in, and the frame of its own names.

@@ -64,32 +64,42 @@ pub(super) fn draft<'b, 's>(
     let layer = blank(duty, path, place, node);
     let mut draft = Draft { layer, node, step, phrase: None, wrong: false };
     let here = resolver.scope.here();
-    let mut bare: Option<&Value> = None;
     let mut thickness: Option<Span> = None;
-    for (attribute, frame) in &node.attributes {
+    let mut skip = false;
+    for (at, (attribute, frame)) in node.attributes.iter().enumerate() {
+        if std::mem::take(&mut skip) {
+            continue;
+        }
         resolver.scope.enter(*frame);
+        // `70 Nm`: a bare number and a word that is nearly a unit are one slip, not two.
+        if let Some((Attribute::Word(word), _)) = node.attributes.get(at + 1)
+            && let Attribute::Value(value) | Attribute::Doping { value, species: None, .. } = attribute
+            && properties::lone_unit(&mut resolver.scope, value, word)
+        {
+            skip = true;
+            draft.wrong = true;
+            thickness = thickness.or(Some(value.span));
+            continue;
+        }
         match attribute {
             Attribute::Value(value) => {
                 if let Some(first) = thickness
                     && !is_sheet_resistance(resolver, value)
                 {
-                    if !unit_slip(resolver, bare, value) {
-                        conflict(
-                            &mut resolver.scope,
-                            format!("`{}` has two thicknesses", draft.layer.path),
-                            value.span,
-                            first,
-                            "keep one of them",
-                        );
-                    }
+                    conflict(
+                        &mut resolver.scope,
+                        format!("`{}` has two thicknesses", draft.layer.path),
+                        value.span,
+                        first,
+                        "keep one of them",
+                    );
                     continue;
                 }
                 if value_of_layer(resolver, design, &mut draft, value) {
                     thickness = Some(value.span);
-                    bare = Some(value);
                 }
             }
-            Attribute::Word(word) => stray_word(resolver, bare, word),
+            Attribute::Word(word) => stray_word(resolver, word),
             other => said(resolver, design, &mut draft, other),
         }
     }
@@ -174,20 +184,7 @@ fn not_a_name(resolver: &mut Resolver<'_, '_>, draft: &mut Draft<'_, '_>, name: 
     false
 }
 
-/// `70 Nm`: the second word is nearly a unit of the bare number before it.
-fn unit_slip(resolver: &mut Resolver<'_, '_>, bare: Option<&Value>, value: &Value) -> bool {
-    match (&value.expression, bare) {
-        (Some(Expression::Name(word)), Some(bare)) => properties::lone_unit(&mut resolver.scope, bare, word),
-        _ => false,
-    }
-}
-
-fn stray_word(resolver: &mut Resolver<'_, '_>, bare: Option<&Value>, word: &Spanned<String>) {
-    if let Some(bare) = bare
-        && properties::lone_unit(&mut resolver.scope, bare, word)
-    {
-        return;
-    }
+fn stray_word(resolver: &mut Resolver<'_, '_>, word: &Spanned<String>) {
     let finding = Finding::error("name.unknown", format!("`{}` says nothing of a layer", word.value));
     resolver.scope.report(match names::near(&word.value, WORDS.iter().copied()) {
         Some(near) => finding
@@ -323,7 +320,7 @@ fn property_of_layer(
         "mobility" => (Dimension::MOBILITY, Role::Positive),
         "sunward_velocity" | "rear_velocity" => (Dimension::VELOCITY, Role::NotNegative),
         "growth_temperature" => (Dimension::TEMPERATURE, Role::GrowthTemperature),
-        "rate" => (Dimension::VELOCITY, Role::Positive),
+        "rate" => (Dimension::VELOCITY, Role::GrowthRate),
         "texture" => {
             pending(
                 &mut resolver.scope,

@@ -1,7 +1,7 @@
 //! Materials of the layers, worked out in growth order, because a phrase may be matched to the
 //! relaxed lattice beneath it.
 
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, HashMap};
 use std::sync::Arc;
 
 use crate::design::{Design, Duty, FreeValue, Growth, Place, Strain, ZERO_CELSIUS_K};
@@ -9,8 +9,8 @@ use crate::materials::optics::{IndexTable, Optics};
 use crate::materials::{Material, MaterialClass, Origin, OriginKind, SharedMaterial};
 use crate::resolve::Resolver;
 use crate::resolve::layers::Draft;
-use crate::resolve::materials::{Phrase, Reference, materials_of};
-use crate::syntax::Attribute;
+use crate::resolve::materials::{Phrase, Reference, Resolved, materials_of};
+use crate::syntax::{Attribute, Expression, Qualifier, Value};
 
 /// Room temperature, at which a lattice is matched where no growth temperature is stated, K.
 const ROOM_K: f64 = ZERO_CELSIUS_K + 25.0;
@@ -84,9 +84,8 @@ impl Walk {
             _ => None,
         });
         let here = resolver.scope.enter(frame);
-        let resolved = materials_of(
-            &mut resolver.library,
-            &mut resolver.scope,
+        let resolved = cached(
+            resolver,
             &Phrase {
                 phrase,
                 absorbs,
@@ -147,6 +146,47 @@ impl Walk {
             self.unknown = false;
         }
     }
+}
+
+/// What the same words mean on the same lattice: worked out once in a run.
+pub(super) type Cache = HashMap<Key, (Resolved, Option<SharedMaterial>)>;
+
+/// The words, the lattice beneath by identity, the temperature by its bits, and the steps.
+type Key = (String, usize, u64, usize);
+
+/// [`materials_of`], or what it gave before. Only phrases whose meaning is settled by the key are
+/// kept: no names of values, nothing left free, no layer named.
+fn cached(resolver: &mut Resolver<'_, '_>, phrase: &Phrase<'_>) -> Option<Resolved> {
+    let settled = phrase.absorbs.is_none()
+        && phrase.block.is_none()
+        && !phrase.beneath_unknown
+        && phrase.phrase.qualifiers.iter().all(|qualifier| match qualifier {
+            Qualifier::Matched { to, .. } => to.is_none(),
+            Qualifier::OfGap { value, .. }
+            | Qualifier::OrderedTo { value, .. }
+            | Qualifier::With { value, .. } => is_literal(value),
+        });
+    if !settled {
+        return materials_of(&mut resolver.library, &mut resolver.scope, phrase);
+    }
+    let lattice = phrase.beneath.map(|reference| reference.material.clone());
+    let identity = lattice.as_ref().map_or(0, |material| Arc::as_ptr(material) as usize);
+    let key = (resolver.text(phrase.phrase.span), identity, phrase.temperature_k.to_bits(), phrase.steps);
+    if let Some((known, _)) = resolver.materials.get(&key) {
+        return Some(known.clone());
+    }
+    let before = resolver.scope.finding_count();
+    let resolved = materials_of(&mut resolver.library, &mut resolver.scope, phrase)?;
+    if resolver.scope.finding_count() == before {
+        // The lattice is kept beside it, so that its address is not given to another one.
+        resolver.materials.insert(key, (resolved.clone(), lattice));
+    }
+    Some(resolved)
+}
+
+fn is_literal(value: &Value) -> bool {
+    let number = |it: &Option<Expression>| it.as_ref().is_none_or(|it| matches!(it, Expression::Number(_)));
+    value.free.is_none() && value.tolerance.is_none() && number(&value.expression) && number(&value.up_to)
 }
 
 /// Layers that are grown and can carry others.

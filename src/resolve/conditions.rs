@@ -158,10 +158,11 @@ impl<'s> Resolver<'_, 's> {
     ) -> Option<Spectrum> {
         let expected = Expected::new("blackbody", Dimension::TEMPERATURE, Role::SourceTemperature);
         let Some(value) = property.arguments.get(at).and_then(properties::as_value) else {
-            properties::missing(
+            properties::missing_of(
                 &mut self.scope,
-                property,
-                "write its temperature, such as `blackbody 5800 K`",
+                "the black body has no temperature",
+                property.span,
+                "write `blackbody 5800 K`",
             );
             return None;
         };

@@ -20,6 +20,14 @@ impl<'a> Files<'a> {
         Self { world, sources }
     }
 
+    /// The path of a file as seen from the folder of the first one.
+    pub fn shown(&self, id: SourceId) -> String {
+        let first = self.sources.iter().next().and_then(|source| source.path.parent());
+        let path = &self.sources.get(id).path;
+        let path = first.and_then(|folder| path.strip_prefix(folder).ok()).unwrap_or(path);
+        crate::source::shown(path)
+    }
+
     /// The text named by `path` in the file `from`; read once however often it is named.
     ///
     /// `what` is what people call the file: `file`, `spectrum`, `index table`. `None` where it

@@ -92,6 +92,20 @@ fn junction<'s>(resolver: &mut Resolver<'_, 's>, design: &mut Design, index: usi
         }
     }
     resolver.scope.close(here);
+    let junction = &design.junctions[index];
+    if let (VoltageModel::Fit(fit), Some(_), Some(span)) =
+        (&junction.voltage, junction.shunt_ohm_m2, junction.voltage_span)
+        && fit.shunt_ohm_m2.is_some()
+        && let Some((shunt, _)) = group.properties.iter().find(|(it, _)| it.name.value == "shunt")
+    {
+        properties::conflict(
+            &mut resolver.scope,
+            format!("`{}` states its shunt and one in its fit", junction.name.value),
+            shunt.name.span,
+            span,
+            "keep one of the two",
+        );
+    }
 }
 
 fn interconnect<'s>(
@@ -163,7 +177,12 @@ fn voltage(resolver: &mut Resolver<'_, '_>, property: &Property) -> Option<Volta
         "ere" => {
             let expected = Expected::new("ere", Dimension::NONE, Role::PositiveShare);
             let Some(value) = arguments.get(1).and_then(properties::as_value) else {
-                properties::missing(scope, property, "write `voltage from ere 2 %`");
+                properties::missing_of(
+                    scope,
+                    "`ere` has no value",
+                    word.span,
+                    "write `voltage from ere 2 %`",
+                );
                 return None;
             };
             properties::no_more(scope, property, taken + 2);
@@ -212,6 +231,9 @@ fn fit(resolver: &mut Resolver<'_, '_>, property: &Property) -> Option<VoltageMo
     let at = read("at", Dimension::TEMPERATURE, Role::CellTemperature);
     scope.close(outer);
     let has = |word: &str| stated.iter().any(|inner| inner.name.value == word);
+    if properties::is_broken(block) {
+        return None;
+    }
     if !has("j01") && !has("j02") {
         scope.report(
             Finding::error("value.missing", "the fit states no dark current")

@@ -56,7 +56,7 @@ pub(super) fn drafts<'b, 's>(
         }
     }
     super::junctions::groups(resolver, design, &groups);
-    if total == 0 && drafts.is_empty() {
+    if total == 0 && drafts.is_empty() && !body.broken {
         resolver.scope.report(
             Finding::error("structure.empty", format!("stack `{}` has no layers", design.name.value))
                 .at(design.name.span, "nothing in it")
@@ -187,8 +187,8 @@ impl<'b, 's> Walk<'_, '_, 'b, 's> {
         }
         let path = joined(prefix, &name);
         let named = Spanned::new(path.clone(), group.name.map_or(group.head, |name| name.span));
-        self.take(&named, word);
-        if group.nodes.is_empty() && kind == GroupKind::Junction {
+        self.take(&named, "thing");
+        if group.nodes.is_empty() && kind == GroupKind::Junction && !group.broken {
             self.resolver.scope.report(
                 Finding::error("structure.empty", format!("junction `{name}` has no layers"))
                     .at(group.head, "nothing in it")
@@ -246,7 +246,7 @@ impl<'b, 's> Walk<'_, '_, 'b, 's> {
         let path = match node.alias {
             // The same part placed twice brings the same alias twice: then the path tells them apart.
             Some(alias) if self.taken.get(&alias.value) != Some(&alias.span) => {
-                self.take(alias, "layer");
+                self.take(alias, "thing");
                 if name == alias.value { alias.value.clone() } else { dotted }
             }
             _ => {

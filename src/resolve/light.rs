@@ -5,7 +5,7 @@ use std::sync::Arc;
 use crate::finding::Finding;
 use crate::light::Spectrum;
 use crate::resolve::Resolver;
-use crate::resolve::properties::{self, conflict};
+use crate::resolve::properties::{self, conflict, is_broken};
 use crate::resolve::quantities::{Expected, Role};
 use crate::resolve::table::{Column, Columns};
 use crate::source::Spanned;
@@ -48,7 +48,11 @@ impl<'s> Resolver<'_, 's> {
                 return None;
             }
             (Some(file), None) => {
-                let columns = Columns { wavelength: find("wavelength"), value: find("irradiance") };
+                let columns = Columns {
+                    wavelength: find("wavelength"),
+                    value: find("irradiance"),
+                    broken: is_broken(&item.block),
+                };
                 let (wavelength, irradiance) = self.spectral_table(
                     file,
                     columns,
@@ -62,6 +66,7 @@ impl<'s> Resolver<'_, 's> {
                 spectrum.name.clone_from(name);
                 spectrum
             }
+            (None, None) if is_broken(&item.block) => return None,
             (None, None) => {
                 self.scope.report(
                     Finding::error("value.missing", format!("spectrum `{name}` has no light in it"))
@@ -102,7 +107,7 @@ impl<'s> Resolver<'_, 's> {
         self.scope.quantity(&value, Expected::new("scaled to", Dimension::IRRADIANCE, Role::Irradiance))
     }
 
-    /// `filtered by "glass.csv" { wavelength column 1 in nm; transmittance column 2 in % }`
+    /// `filtered by "glass.csv" { wavelength column 1 in nm; transmittance column 2 in percent }`
     fn filtered(
         &mut self,
         mut spectrum: Spectrum,
@@ -116,7 +121,11 @@ impl<'s> Resolver<'_, 's> {
             None => Vec::new(),
         };
         let find = |word: &str| stated.iter().copied().find(|property| property.name.value == word);
-        let columns = Columns { wavelength: find("wavelength"), value: find("transmittance") };
+        let columns = Columns {
+            wavelength: find("wavelength"),
+            value: find("transmittance"),
+            broken: property.block.as_ref().is_some_and(is_broken),
+        };
         let (wavelength, share) =
             self.spectral_table(property, columns, name, ("transmittance", &[Dimension::NONE]))?;
         if let Some(at) = share.iter().position(|share| *share > 1.0) {
@@ -124,7 +133,7 @@ impl<'s> Resolver<'_, 's> {
             self.scope.report(
                 Finding::error("value.range", format!("the filter passes more than 100 % at {nanometres}"))
                     .at(property.span, "more than it receives")
-                    .help("state the column `in %` where the table holds percent"),
+                    .help("state the column `in percent` where the table holds percent"),
             );
             return None;
         }
@@ -159,8 +168,9 @@ impl<'s> Resolver<'_, 's> {
             );
             return None;
         };
-        let wavelength = self.column(columns.wavelength, path, ("wavelength", &[Dimension::LENGTH]));
-        let value = self.column(columns.value, path, value);
+        let wavelength =
+            self.column(columns.wavelength, path, ("wavelength", &[Dimension::LENGTH], columns.broken));
+        let value = self.column(columns.value, path, (value.0, value.1, columns.broken));
         let id = self.files.read(&mut self.scope, name.span.source, path, "table")?;
         let (wavelength, value): (Column, Column) = (wavelength?, value?);
         self.table(id, path, &wavelength, &value)

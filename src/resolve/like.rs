@@ -5,7 +5,7 @@ use crate::resolve::names;
 use crate::resolve::properties::Kept;
 use crate::resolve::tree::{Body, Expansion, LayerNode, Node, local_names};
 use crate::source::Spanned;
-use crate::syntax::{Attribute, Block, GroupKind, Insert, Replace, Statement};
+use crate::syntax::{Attribute, Block, GroupKind, Insert, Property, Replace, Statement};
 
 /// Changes `base` as the statements of `block` say, in their order.
 pub(super) fn derive<'s>(expansion: &mut Expansion<'_, 's>, base: Body<'s>, block: &'s Block) -> Body<'s> {
@@ -14,7 +14,8 @@ pub(super) fn derive<'s>(expansion: &mut Expansion<'_, 's>, base: Body<'s>, bloc
     let frame = expansion.scope.here();
     let mut kept = Kept::default();
     for (property, frame) in sorted.properties {
-        if !crate::resolve::tree::known_of_stack(expansion.scope, property)
+        if is_a_path(expansion, &body, property)
+            || !crate::resolve::tree::known_of_stack(expansion.scope, property)
             || !kept.keep(expansion.scope, property)
         {
             continue;
@@ -22,6 +23,7 @@ pub(super) fn derive<'s>(expansion: &mut Expansion<'_, 's>, base: Body<'s>, bloc
         override_property(&mut body, property.name.value.as_str());
         body.properties.push((property, frame));
     }
+    body.broken |= sorted.broken;
     for node in sorted.nodes {
         swap(expansion, &mut body, node);
     }
@@ -40,6 +42,27 @@ pub(super) fn derive<'s>(expansion: &mut Expansion<'_, 's>, base: Body<'s>, bloc
         }
     }
     body
+}
+
+/// `top 500 nm`: a group or a layer named without saying which layer of it.
+fn is_a_path(expansion: &mut Expansion<'_, '_>, body: &Body<'_>, property: &Property) -> bool {
+    let name = &property.name;
+    let Some(at) = local_names(&body.nodes).iter().position(|known| *known == name.value) else {
+        return false;
+    };
+    let help = match &body.nodes[at] {
+        Node::Group(group) => match local_names(&group.nodes).first() {
+            Some(first) => format!("name one layer of it, such as `{}.{first}`", name.value),
+            None => "write the whole of it again, in its block".to_owned(),
+        },
+        Node::Layer(layer) => format!("write `{}` and what changes", layer.duty.value),
+    };
+    expansion.scope.report(
+        Finding::error("name.unknown", format!("`{}` alone does not say what changes", name.value))
+            .at(name.span, "which layer of it?")
+            .help(help),
+    );
+    true
 }
 
 /// Takes out of the base what the new statement settles: the property itself, and with

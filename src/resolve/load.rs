@@ -39,7 +39,7 @@ impl Visit {
                 let way: Vec<String> = self.chain[from..]
                     .iter()
                     .chain([&target])
-                    .map(|id| format!("`{}`", crate::source::shown(&files.sources.get(*id).path)))
+                    .map(|id| format!("`{}`", files.shown(*id)))
                     .collect();
                 scope.report(
                     Finding::error(
@@ -118,11 +118,15 @@ pub(super) fn report_duplicate(scope: &mut Scope, kind: &str, second: &Spanned<S
     let name = &second.value;
     let quoted = if kind == "stack" { format!("\"{name} 2\"") } else { format!("`{name}_2`") };
     scope.report(
-        Finding::error("name.duplicate", format!("two {kind}s are called `{name}`"))
+        Finding::error("name.duplicate", format!("two {} are called `{name}`", plural(kind)))
             .at(second.span, "the second of that name")
             .beside(first, "the first")
             .help(format!("give one of them another name, such as {quoted}")),
     );
+}
+
+fn plural(kind: &str) -> String {
+    if kind == "spectrum" { "spectra".to_owned() } else { format!("{kind}s") }
 }
 
 /// Words that open an item.

@@ -284,6 +284,11 @@ pub(super) fn missing(scope: &mut Scope, property: &Property, help: &str) {
     );
 }
 
+/// Something that is not said where it is due.
+pub(super) fn missing_of(scope: &mut Scope, message: &str, span: Span, help: &str) {
+    scope.report(Finding::error("value.missing", message).at(span, "nothing stands behind it").help(help));
+}
+
 /// A statement that parses and resolves and is not evaluated yet: named, never passed over.
 pub(super) fn pending(
     scope: &mut Scope,
@@ -297,6 +302,12 @@ pub(super) fn pending(
             .at(span, "read and kept, without effect on the figures")
             .help(help),
     );
+}
+
+/// Whether a statement of the block could not be read: what it said is unknown, so nothing is said
+/// of what the block lacks.
+pub(super) fn is_broken(block: &Block) -> bool {
+    block.statements.iter().any(|statement| matches!(statement, Statement::Invalid(_)))
 }
 
 /// Two statements that each settle the same thing.

@@ -93,6 +93,29 @@ struct Frame {
     parent: Option<usize>,
 }
 
+/// Words that open something else on a layer's line, where a name would be read as one of them.
+const RESERVED: &[&str] = &[
+    "absorbs",
+    "as",
+    "collecting",
+    "diffused",
+    "free",
+    "graded",
+    "in",
+    "matched",
+    "n",
+    "of",
+    "offcut",
+    "only",
+    "ordered",
+    "p",
+    "pseudomorphic",
+    "relaxed",
+    "removed",
+    "to",
+    "with",
+];
+
 /// Every name in sight, the findings made on the way, and what was reported already.
 ///
 /// Names do not depend on their order: a `let` may use one that stands below it. A block and a
@@ -170,6 +193,16 @@ impl Scope {
 
     fn define_at(&mut self, home: usize, name: &Spanned<String>, value: &Value) {
         let binding = Binding { name: name.clone(), value: value.clone(), home, state: State::Waiting };
+        if RESERVED.contains(&name.value.as_str()) {
+            self.report(
+                Finding::error(
+                    "name.reserved",
+                    format!("`{}` says something of a layer already", name.value),
+                )
+                .at(name.span, "no name for a value")
+                .help(format!("choose another name, such as `{}_side`", name.value)),
+            );
+        }
         let first = self.frames[self.current].bindings.get(&name.value).map(|known| known.name.span);
         match first {
             Some(first) => self.report(

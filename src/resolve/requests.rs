@@ -155,11 +155,10 @@ fn seek(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Seek)
     {
         resolver.scope.quantity(value, Expected::new(&it.metric.value, dimension, role));
     }
-    let free = if design.free_values.is_empty() { "no value is free; " } else { "" };
     pending(
         &mut resolver.scope,
         Severity::Advice,
-        &format!("{free}settling free values is"),
+        "settling free values is",
         it.span,
         "write the values you want to see evaluated",
     );

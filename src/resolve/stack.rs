@@ -117,7 +117,7 @@ fn body_properties(resolver: &mut Resolver<'_, '_>, design: &mut Design, body: &
     };
     assume("growth", "grown upright, as nothing is stated");
     assume("terminals", "two terminals, as nothing is stated");
-    assume("optics", "optics by interference where every layer has n and k, as nothing is stated");
+    assume("optics", "one pass of light without reflection at the front, as no optics are stated");
     assume("fingers", "no front grid: neither shading nor series resistance, as nothing is stated");
 }
 
@@ -281,7 +281,7 @@ fn conditions<'s>(resolver: &mut Resolver<'_, 's>, design: &mut Design, body: &B
         None => {
             let span = own.first().map_or(design.name.span, |(property, _)| property.span);
             if let Some((condition, assumed)) = resolver.stated_condition("stated", span, &own) {
-                design.assumptions.extend(assumed);
+                assume_once(design, assumed);
                 design.conditions.push(condition);
             }
         }
@@ -325,8 +325,17 @@ fn by_name(resolver: &mut Resolver<'_, '_>, design: &mut Design, property: &Prop
             continue;
         }
         if let Some((condition, assumed)) = resolver.condition(&name.value) {
-            design.assumptions.extend(assumed);
+            assume_once(design, assumed);
             design.conditions.push(condition);
+        }
+    }
+}
+
+/// Two conditions may have assumed the same.
+fn assume_once(design: &mut Design, sentences: Vec<String>) {
+    for sentence in sentences {
+        if !design.assumptions.contains(&sentence) {
+            design.assumptions.push(sentence);
         }
     }
 }

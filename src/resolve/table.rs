@@ -13,6 +13,8 @@ use crate::units::{Dimension, Unit, parse};
 pub(super) struct Columns<'s> {
     pub(super) wavelength: Option<&'s Property>,
     pub(super) value: Option<&'s Property>,
+    /// Whether a statement of the block could not be read: then none is said to be missing.
+    pub(super) broken: bool,
 }
 
 /// One column of a table.
@@ -39,16 +41,19 @@ impl<'s> Resolver<'_, 's> {
         &mut self,
         property: Option<&'s Property>,
         table: &Spanned<String>,
-        what: (&str, &[Dimension]),
+        what: (&str, &[Dimension], bool),
     ) -> Option<Column> {
-        let (word, dimensions) = what;
+        let (word, dimensions, broken) = what;
         let (number, unit_text) = match word {
             "wavelength" => (1, "nm"),
-            "transmittance" => (2, "%"),
+            "transmittance" => (2, "percent"),
             _ => (2, "W/m2/nm"),
         };
         let example = format!("{word} column {number} in {unit_text}");
         let Some(property) = property else {
+            if broken {
+                return None;
+            }
             self.scope.report(
                 Finding::error(
                     "value.missing",
@@ -118,7 +123,12 @@ impl<'s> Resolver<'_, 's> {
         };
         let last = arguments.last().map_or(first.span(), Argument::span);
         let span = first.span().to(last);
-        let text = Spanned::new(self.text(span), span);
+        let written = match first {
+            Argument::Text(quoted) => quoted.value.clone(),
+            Argument::Word(word) if word.value == "percent" => "%".to_owned(),
+            _ => self.text(span),
+        };
+        let text = Spanned::new(written, span);
         if word.value != "in" {
             self.scope.report(
                 Finding::error("unit.missing", format!("`{}` does not say its unit", property.name.value))
@@ -172,7 +182,11 @@ impl<'s> Resolver<'_, 's> {
                             "not above zero",
                         ))
                     } else if a <= last {
-                        Some((whole, "the wavelength does not rise".to_owned(), "not above the row before"))
+                        Some((
+                            whole,
+                            "the wavelength does not rise from row to row".to_owned(),
+                            "not above the row before",
+                        ))
                     } else if b < 0.0 {
                         Some((
                             cells[1].map_or(whole, |cell| cell.0),
@@ -201,7 +215,7 @@ impl<'s> Resolver<'_, 's> {
             if let Some((span, message, label)) = fault {
                 faults += 1;
                 self.scope.report(
-                    Finding::error("spectrum.table", format!("{message} in a table"))
+                    Finding::error("spectrum.table", message)
                         .at(span, label)
                         .beside(path.span, "read from here")
                         .help(help_for(label)),

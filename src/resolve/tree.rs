@@ -40,6 +40,8 @@ pub(super) struct GroupNode<'s> {
     pub(super) properties: Vec<(&'s Property, usize)>,
     pub(super) head: Span,
     pub(super) span: Span,
+    /// Whether something in it could not be read or put in, which was reported.
+    pub(super) broken: bool,
 }
 
 /// A layer or a group.
@@ -57,6 +59,8 @@ pub(super) struct Body<'s> {
     pub(super) properties: Vec<(&'s Property, usize)>,
     /// `require`, `seek`, `chart`, `vary`, `measured`, `accept`, `limit`.
     pub(super) requests: Vec<(&'s Statement, usize)>,
+    /// Whether something in it could not be read or put in, which was reported.
+    pub(super) broken: bool,
 }
 
 /// What is needed to put parts in.
@@ -76,6 +80,7 @@ pub(super) struct Sorted<'s> {
     pub(super) nodes: Vec<Node<'s>>,
     pub(super) properties: Vec<(&'s Property, usize)>,
     pub(super) rest: Vec<(&'s Statement, usize)>,
+    pub(super) broken: bool,
 }
 
 impl<'s> Expansion<'_, 's> {
@@ -93,9 +98,14 @@ impl<'s> Expansion<'_, 's> {
             match statement {
                 Statement::Layer(layer) => sorted.nodes.extend(self.layer(layer)),
                 Statement::Group(group) => sorted.nodes.push(self.group(group)),
-                Statement::Place(place) => sorted.nodes.extend(parts::place(self, place)),
+                Statement::Place(place) => {
+                    let placed = parts::place(self, place);
+                    sorted.broken |= placed.is_empty();
+                    sorted.nodes.extend(placed);
+                }
                 Statement::Property(property) => sorted.properties.push((property, frame)),
-                Statement::Let(_) | Statement::Invalid(_) => {}
+                Statement::Invalid(_) => sorted.broken = true,
+                Statement::Let(_) => {}
                 other => sorted.rest.push((other, frame)),
             }
         }
@@ -139,6 +149,7 @@ impl<'s> Expansion<'_, 's> {
             properties: sorted.properties,
             head: group.name.as_ref().map_or(group.kind.span, |name| group.kind.span.to(name.span)),
             span: group.span,
+            broken: sorted.broken,
         }))
     }
 
@@ -155,7 +166,7 @@ impl<'s> Expansion<'_, 's> {
     pub(super) fn body(&mut self, block: &'s Block) -> Body<'s> {
         let sorted = self.block(block);
         let mut kept = Kept::default();
-        let mut body = Body { nodes: sorted.nodes, ..Body::default() };
+        let mut body = Body { nodes: sorted.nodes, broken: sorted.broken, ..Body::default() };
         for (property, frame) in sorted.properties {
             if known_of_stack(self.scope, property) && kept.keep(self.scope, property) {
                 body.properties.push((property, frame));

@@ -187,7 +187,7 @@ const NAMES: &[(Dimension, &str)] = &[
     (Dimension::PER_LENGTH, "a number per length"),
     (Dimension::PER_TEMPERATURE, "a share per temperature"),
     (Dimension::VELOCITY, "a velocity"),
-    (Dimension::MOBILITY, "a mobility"),
+    (Dimension::MOBILITY, "an area per voltage and time"),
     (Dimension::DIFFUSIVITY, "an area per time"),
     (Dimension::VOLUME_RATE, "a volume per time"),
     (Dimension::VOLUME_SQUARED_RATE, "a squared volume per time"),

@@ -182,6 +182,19 @@ fn mended(literal: &Number, given: Dimension, expected: Expected<'_>) -> Option<
             if wanted == Dimension::ENERGY { unit.replace('V', "eV") } else { unit.replace("eV", "V") };
         return parse(&other).is_ok_and(|it| it.dimension == wanted).then(|| format!("{digits} {other}"));
     }
+    // The unit one writes here may well begin with what was written: `um/h` for `um`.
+    let longer = expected.role.units(wanted).iter().find(|known| known.starts_with(&unit) && **known != unit);
+    if let Some(longer) = longer {
+        return Some(format!("{digits} {longer}"));
+    }
+    // `A` for the ångström.
+    if wanted == Dimension::LENGTH && unit == "A" {
+        return Some(format!("{digits} Å"));
+    }
+    // Divided by an area where it should be multiplied.
+    if wanted / given == Dimension::AREA * Dimension::AREA && unit.contains("/cm2") {
+        return Some(format!("{digits} {}", unit.replace("/cm2", " cm2")));
+    }
     let factor = match wanted / given {
         Dimension::AREA => " cm2",
         Dimension::PER_AREA => "/cm2",
@@ -190,6 +203,7 @@ fn mended(literal: &Number, given: Dimension, expected: Expected<'_>) -> Option<
         Dimension::PER_VOLUME => "/cm3",
         Dimension::PER_TEMPERATURE => "/K",
         ratio if ratio == Dimension::TIME.inverse() => "/s",
+        ratio if ratio == Dimension::MOBILITY / Dimension::AREA => "/V/s",
         _ => return None,
     };
     (!given.is_none()).then(|| format!("{digits} {unit}{factor}"))
@@ -326,6 +340,7 @@ fn example(expected: Expected<'_>) -> &'static str {
         (Role::Gap, _) => "1.42 eV",
         (Role::CellTemperature, _) => "25 degC",
         (Role::GrowthTemperature, _) => "650 degC",
+        (Role::GrowthRate, _) => "2 um/h",
         (Role::SourceTemperature, _) => "5800 K",
         (Role::Share | Role::PositiveShare | Role::Ratio, _) => "3 %",
         (Role::Fraction, _) => "0.49",

@@ -44,6 +44,8 @@ pub enum Role {
     Count,
     /// An angle of incidence, from 0 to less than 90 degrees.
     Incidence,
+    /// How fast a layer grows.
+    GrowthRate,
     /// Temperature of a thermal source.
     SourceTemperature,
     /// Power per area of a light.
@@ -84,11 +86,13 @@ impl Role {
             Self::ThickLayer => (1e-10, 2e-3),
             Self::Coat => (1e-10, 2e-5),
             Self::Wafer => (1e-6, 3e-2),
-            Self::Doping => (1e18, 1e28),
+            // From high-purity wafers, 1e13 /cm3, to the solid itself, 1e22 /cm3.
+            Self::Doping => (1e19, 1e28),
             Self::Gap => (0.05 * 1.602_176_634e-19, 15.0 * 1.602_176_634e-19),
             Self::CellTemperature => (60.0, 520.0),
             Self::GrowthTemperature => (290.0, 1800.0),
             Self::SourceTemperature => (500.0, 60_000.0),
+            Self::GrowthRate => (1e-13, 1e-6),
             Self::Concentration => (1e-4, 10_000.0),
             Self::Irradiance => (1e-2, 1e7),
             _ => return None,
@@ -104,6 +108,7 @@ impl Role {
             Self::Gap => &["eV", "meV"],
             Self::CellTemperature | Self::GrowthTemperature => &["degC", "K"],
             Self::SourceTemperature => &["K"],
+            Self::GrowthRate => &["um/h", "nm/s", "nm/h"],
             Self::Share | Self::PositiveShare | Self::Ratio => &["%"],
             Self::Concentration => &["times"],
             Self::Irradiance => &["W/m2", "kW/m2"],
