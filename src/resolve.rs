@@ -91,6 +91,7 @@ pub fn resolve(
         spectra: HashMap::new(),
         bodies: HashMap::new(),
         materials: HashMap::new(),
+        conditions_whole: true,
     };
     let designs = resolver.designs(first);
     resolver.library.finish(&mut resolver.scope);
@@ -108,6 +109,8 @@ pub(crate) struct Resolver<'a, 's> {
     spectra: HashMap<&'s str, Option<Arc<Spectrum>>>,
     bodies: HashMap<&'s str, State<'s>>,
     materials: chemistry::Cache,
+    /// Whether every condition of the stack at hand is right.
+    conditions_whole: bool,
 }
 
 /// A stack's body with its parts put in, and the frame of its own names.
@@ -208,6 +211,7 @@ impl<'s> Resolver<'_, 's> {
         let mut expansion = Expansion {
             scope: &mut self.scope,
             items: &self.items,
+            sources: self.files.sources,
             placing: Vec::new(),
             layers: 0,
             too_many: false,

@@ -104,7 +104,9 @@ pub(super) fn draft<'b, 's>(
         }
     }
     resolver.scope.close(here);
-    if node.material.is_none() && draft.phrase.is_none() && duty != Duty::Air {
+    if node.unreadable {
+        draft.wrong = true;
+    } else if node.material.is_none() && draft.phrase.is_none() && duty != Duty::Air {
         resolver.scope.report(
             Finding::error("value.missing", format!("`{}` has no material", draft.layer.path))
                 .at(node.duty.span, "made of what?")

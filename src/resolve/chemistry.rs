@@ -17,7 +17,9 @@ const ROOM_K: f64 = ZERO_CELSIUS_K + 25.0;
 
 /// Fills the material of every draft.
 pub(super) fn materials(resolver: &mut Resolver<'_, '_>, design: &mut Design, drafts: &mut [Draft<'_, '_>]) {
-    let mut walk = Walk { beneath: None, unknown: false, named: BTreeMap::new(), graded: Vec::new() };
+    // A layer that could not be read may be the one that carries the others.
+    let unknown = drafts.iter().any(|draft| draft.node.unreadable && draft.layer.duty == Duty::Wafer);
+    let mut walk = Walk { beneath: None, unknown, named: BTreeMap::new(), graded: Vec::new() };
     for index in order(design.growth, drafts) {
         let found = walk.material(resolver, design, &drafts[index], drafts);
         let draft = &mut drafts[index];

@@ -8,12 +8,9 @@ use crate::resolve::Resolver;
 use crate::resolve::layers::Placed;
 use crate::resolve::properties::{self, Kept, pending, quantity};
 use crate::resolve::quantities::{Expected, Role};
-use crate::resolve::tree::{GroupNode, near_or};
+use crate::resolve::tree::{GroupNode, OF_INTERCONNECT, OF_JUNCTION, near_or};
 use crate::syntax::{Argument, Property};
 use crate::units::Dimension;
-
-const OF_JUNCTION: &[&str] = &["voltage", "shunt", "breakdown", "texture", "note"];
-const OF_INTERCONNECT: &[&str] = &["resistance", "peak", "note"];
 
 /// Reads the properties of every junction and interconnect.
 pub(super) fn groups<'s>(resolver: &mut Resolver<'_, 's>, design: &mut Design, groups: &[Placed<'_, 's>]) {

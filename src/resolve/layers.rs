@@ -56,13 +56,6 @@ pub(super) fn drafts<'b, 's>(
         }
     }
     super::junctions::groups(resolver, design, &groups);
-    if total == 0 && drafts.is_empty() && !body.broken {
-        resolver.scope.report(
-            Finding::error("structure.empty", format!("stack `{}` has no layers", design.name.value))
-                .at(design.name.span, "nothing in it")
-                .help("write a junction: `junction top { absorber ideal of gap 1.42 eV }`"),
-        );
-    }
     drafts
 }
 
@@ -188,13 +181,6 @@ impl<'b, 's> Walk<'_, '_, 'b, 's> {
         let path = joined(prefix, &name);
         let named = Spanned::new(path.clone(), group.name.map_or(group.head, |name| name.span));
         self.take(&named, "thing");
-        if group.nodes.is_empty() && kind == GroupKind::Junction && !group.broken {
-            self.resolver.scope.report(
-                Finding::error("structure.empty", format!("junction `{name}` has no layers"))
-                    .at(group.head, "nothing in it")
-                    .help("write its layers, at least `absorber ideal of gap 1.42 eV`"),
-            );
-        }
         let from = self.drafts.len();
         if kind == GroupKind::Junction {
             let index = self.design.junctions.len();

@@ -23,7 +23,6 @@ pub(super) fn derive<'s>(expansion: &mut Expansion<'_, 's>, base: Body<'s>, bloc
         override_property(&mut body, property.name.value.as_str());
         body.properties.push((property, frame));
     }
-    body.broken |= sorted.broken;
     for node in sorted.nodes {
         swap(expansion, &mut body, node);
     }
@@ -119,6 +118,7 @@ fn replace<'s>(expansion: &mut Expansion<'_, 's>, body: &mut Body<'s>, it: &'s R
                 attributes: it.attributes.iter().map(|attribute| (attribute, frame)).collect(),
                 blocks: it.block.iter().map(|block| (block, frame)).collect(),
                 span: it.span,
+                unreadable: false,
             };
             merge(layer, new);
         }

@@ -74,7 +74,6 @@ fn named<'s>(mut nodes: Vec<Node<'s>>, place: &'s Place) -> Vec<Node<'s>> {
                 properties: Vec::new(),
                 head: alias.span,
                 span: place.span,
-                broken: false,
             }))];
         }
     }

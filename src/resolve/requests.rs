@@ -11,8 +11,14 @@ use crate::source::Spanned;
 use crate::syntax::{self, SeekTarget, Statement, Value};
 use crate::units::{Dimension, parse};
 
-/// Resolves every request of `body`.
-pub(super) fn requests(resolver: &mut Resolver<'_, '_>, design: &mut Design, body: &Body<'_>) {
+/// Resolves every request of `body`; `conditions_whole` where every condition of the stack is right.
+pub(super) fn requests(
+    resolver: &mut Resolver<'_, '_>,
+    design: &mut Design,
+    body: &Body<'_>,
+    conditions_whole: bool,
+) {
+    resolver.conditions_whole = conditions_whole;
     let here = resolver.scope.here();
     for (statement, frame) in &body.requests {
         resolver.scope.enter(*frame);
@@ -111,7 +117,7 @@ fn conditions(
         whole = false;
         if let Some(item) = resolver.items.conditions.get(&name.value) {
             // A condition of the file that was wrong has been reported where it stands.
-            if resolver.condition(&name.value).is_none() {
+            if !resolver.conditions_whole || resolver.condition(&name.value).is_none() {
                 continue;
             }
             let word = &name.value;

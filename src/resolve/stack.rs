@@ -24,13 +24,13 @@ pub(super) fn design<'s>(
     let outer = resolver.scope.enter(frame);
     let mut design = empty(stack);
     body_properties(resolver, &mut design, body);
-    conditions(resolver, &mut design, body);
+    let conditions_whole = conditions(resolver, &mut design, body);
     let mut drafts = layers::drafts(resolver, &mut design, body);
     junctions::separate(resolver, &design);
     chemistry::materials(resolver, &mut design, &mut drafts);
     layers::finish(resolver, &mut design, drafts);
     junctions::voltages(&mut design);
-    requests::requests(resolver, &mut design, body);
+    requests::requests(resolver, &mut design, body, conditions_whole);
     resolver.scope.close(outer);
     design
 }
@@ -257,8 +257,9 @@ fn switch(resolver: &mut Resolver<'_, '_>, design: &mut Design, property: &Prope
     }
 }
 
-/// Conditions named, stated in the body, or assumed.
-fn conditions<'s>(resolver: &mut Resolver<'_, 's>, design: &mut Design, body: &Body<'s>) {
+/// Conditions named, stated in the body, or assumed. `false` where one is wrong, which is
+/// reported: then nothing is said of a name that may have been meant by it.
+fn conditions<'s>(resolver: &mut Resolver<'_, 's>, design: &mut Design, body: &Body<'s>) -> bool {
     let named = body.properties.iter().find(|(property, _)| property.name.value == "conditions");
     let own: Vec<(&'s Property, usize)> = body
         .properties
@@ -284,11 +285,12 @@ fn conditions<'s>(resolver: &mut Resolver<'_, 's>, design: &mut Design, body: &B
                 assume_once(design, assumed);
                 design.conditions.push(condition);
             }
+            !design.conditions.is_empty()
         }
     }
 }
 
-fn by_name(resolver: &mut Resolver<'_, '_>, design: &mut Design, property: &Property) {
+fn by_name(resolver: &mut Resolver<'_, '_>, design: &mut Design, property: &Property) -> bool {
     if property.arguments.is_empty() {
         properties::missing(
             &mut resolver.scope,
@@ -329,6 +331,7 @@ fn by_name(resolver: &mut Resolver<'_, '_>, design: &mut Design, property: &Prop
             design.conditions.push(condition);
         }
     }
+    design.conditions.len() == property.arguments.len()
 }
 
 /// Two conditions may have assumed the same.

@@ -151,7 +151,7 @@ impl<'s> Resolver<'_, 's> {
     }
 
     /// Two columns of a table in SI, wavelength strictly ascending, values not negative. Rows of
-    /// heading before the first row of numbers, empty rows and rows after `#` are passed over.
+    /// heading before the first row of numbers, empty rows and rows that open with `#` or `//` are passed over.
     pub(super) fn table(
         &mut self,
         id: SourceId,
@@ -335,5 +335,5 @@ impl<'t> Rows<'t> {
 
 fn skipped(line: &str) -> bool {
     let line = line.trim();
-    line.is_empty() || line.starts_with('#')
+    line.is_empty() || line.starts_with('#') || line.starts_with("//")
 }

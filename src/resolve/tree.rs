@@ -2,13 +2,15 @@
 //! looked up in.
 
 use std::collections::HashMap;
+use std::sync::OnceLock;
 
+use crate::design::Duty;
 use crate::finding::Finding;
 use crate::resolve::load::Items;
 use crate::resolve::properties::{self, Kept};
 use crate::resolve::quantities::Scope;
 use crate::resolve::{names, parts};
-use crate::source::{Span, Spanned};
+use crate::source::{Sources, Span, Spanned};
 use crate::syntax::{
     Attribute, Block, Group, GroupKind, LayerStatement, MaterialPhrase, Property, Statement,
 };
@@ -26,6 +28,9 @@ pub(super) struct LayerNode<'s> {
     /// Blocks in the order stated; a later one overrides an earlier one by property.
     pub(super) blocks: Vec<(&'s Block, usize)>,
     pub(super) span: Span,
+    /// Stands for a statement that could not be read, which was reported: it keeps the layer's
+    /// place, so that no rule misses it.
+    pub(super) unreadable: bool,
 }
 
 /// A junction, a tunnel, a recombination contact, a repeat, or a placed part of several layers.
@@ -40,8 +45,6 @@ pub(super) struct GroupNode<'s> {
     pub(super) properties: Vec<(&'s Property, usize)>,
     pub(super) head: Span,
     pub(super) span: Span,
-    /// Whether something in it could not be read or put in, which was reported.
-    pub(super) broken: bool,
 }
 
 /// A layer or a group.
@@ -59,14 +62,13 @@ pub(super) struct Body<'s> {
     pub(super) properties: Vec<(&'s Property, usize)>,
     /// `require`, `seek`, `chart`, `vary`, `measured`, `accept`, `limit`.
     pub(super) requests: Vec<(&'s Statement, usize)>,
-    /// Whether something in it could not be read or put in, which was reported.
-    pub(super) broken: bool,
 }
 
 /// What is needed to put parts in.
 pub(super) struct Expansion<'e, 's> {
     pub(super) scope: &'e mut Scope,
     pub(super) items: &'e Items<'s>,
+    pub(super) sources: &'e Sources,
     /// Parts being placed, outermost first.
     pub(super) placing: Vec<&'s str>,
     /// Layers so far.
@@ -103,8 +105,17 @@ impl<'s> Expansion<'_, 's> {
                     sorted.broken |= placed.is_empty();
                     sorted.nodes.extend(placed);
                 }
-                Statement::Property(property) => sorted.properties.push((property, frame)),
-                Statement::Invalid(_) => sorted.broken = true,
+                Statement::Property(property) => {
+                    let nearly = nearly_structure(property);
+                    sorted.nodes.extend(nearly.and_then(|word| placeholder(word, property.span)));
+                    sorted.properties.push((property, frame));
+                }
+                Statement::Invalid(span) => {
+                    sorted.broken = true;
+                    let text = self.sources.get(span.source).slice(*span);
+                    let word = text.trim_start().split(|c: char| !(c.is_alphanumeric() || c == '_')).next();
+                    sorted.nodes.extend(word.and_then(|word| placeholder(word, *span)));
+                }
                 Statement::Let(_) => {}
                 other => sorted.rest.push((other, frame)),
             }
@@ -124,6 +135,7 @@ impl<'s> Expansion<'_, 's> {
             attributes: layer.attributes.iter().map(|attribute| (attribute, frame)).collect(),
             blocks: layer.block.iter().map(|block| (block, frame)).collect(),
             span: layer.span,
+            unreadable: false,
         })))
     }
 
@@ -145,11 +157,10 @@ impl<'s> Expansion<'_, 's> {
             name: group.name.as_ref(),
             count: group.count.as_ref().map(|count| (count, outer)),
             words: &group.words,
-            nodes: sorted.nodes,
+            nodes: filled(sorted.nodes, group.kind.value, sorted.broken, group.span),
             properties: sorted.properties,
             head: group.name.as_ref().map_or(group.kind.span, |name| group.kind.span.to(name.span)),
             span: group.span,
-            broken: sorted.broken,
         }))
     }
 
@@ -166,7 +177,7 @@ impl<'s> Expansion<'_, 's> {
     pub(super) fn body(&mut self, block: &'s Block) -> Body<'s> {
         let sorted = self.block(block);
         let mut kept = Kept::default();
-        let mut body = Body { nodes: sorted.nodes, broken: sorted.broken, ..Body::default() };
+        let mut body = Body { nodes: sorted.nodes, ..Body::default() };
         for (property, frame) in sorted.properties {
             if known_of_stack(self.scope, property) && kept.keep(self.scope, property) {
                 body.properties.push((property, frame));
@@ -192,6 +203,67 @@ impl<'s> Expansion<'_, 's> {
     }
 }
 
+/// The layers of a junction; where nothing of it could be read, one that stands for them.
+fn filled<'s>(mut nodes: Vec<Node<'s>>, kind: GroupKind, broken: bool, span: Span) -> Vec<Node<'s>> {
+    let absorbs = |node: &Node<'_>| match node {
+        Node::Layer(layer) => {
+            Duty::of_word(&layer.duty.value).is_some_and(|duty| duty.collects() || duty == Duty::Wafer)
+        }
+        Node::Group(_) => true,
+    };
+    if broken && kind == GroupKind::Junction && !nodes.iter().any(absorbs) {
+        nodes.extend(placeholder("absorber", span));
+    }
+    nodes
+}
+
+/// The duty or the group a mistyped word most likely opens.
+fn nearly_structure(property: &Property) -> Option<&'static str> {
+    let name = property.name.value.as_str();
+    let known = OF_STACK.iter().chain(OF_JUNCTION).chain(OF_INTERCONNECT);
+    if known.clone().any(|known| *known == name) {
+        return None;
+    }
+    let structure = crate::syntax::DUTIES.iter().chain(&STRUCTURE[..3]);
+    let near = names::near(name, known.chain(structure.clone()).copied())?;
+    structure.copied().find(|word| *word == near)
+}
+
+/// A node without content in the place of one that could not be read.
+fn placeholder<'s>(word: &str, span: Span) -> Option<Node<'s>> {
+    static WORDS: OnceLock<Vec<Spanned<String>>> = OnceLock::new();
+    let words = WORDS.get_or_init(|| {
+        crate::syntax::DUTIES.iter().map(|word| Spanned::new((*word).to_owned(), Span::default())).collect()
+    });
+    if let Some(duty) = words.iter().find(|duty| duty.value == word) {
+        return Some(Node::Layer(Box::new(LayerNode {
+            duty,
+            alias: None,
+            material: None,
+            attributes: Vec::new(),
+            blocks: Vec::new(),
+            span,
+            unreadable: true,
+        })));
+    }
+    let kind = match word {
+        "junction" => GroupKind::Junction,
+        "tunnel" => GroupKind::Tunnel,
+        "recombination" => GroupKind::Recombination,
+        _ => return None,
+    };
+    Some(Node::Group(Box::new(GroupNode {
+        kind: Some(kind),
+        name: None,
+        count: None,
+        words: &[],
+        nodes: filled(Vec::new(), kind, true, span),
+        properties: Vec::new(),
+        head: span,
+        span,
+    })))
+}
+
 /// Reports that a stack is too large.
 pub(super) fn report_too_many(scope: &mut Scope, span: Span) {
     scope.report(
@@ -200,6 +272,12 @@ pub(super) fn report_too_many(scope: &mut Scope, span: Span) {
             .help("place fewer parts, or repeat them less often"),
     );
 }
+
+/// What a junction states of itself.
+pub(super) const OF_JUNCTION: &[&str] = &["voltage", "shunt", "breakdown", "texture", "note"];
+
+/// What a tunnel or a recombination contact states of itself.
+pub(super) const OF_INTERCONNECT: &[&str] = &["resistance", "peak", "note"];
 
 /// Properties a stack's body takes.
 pub(super) const OF_STACK: &[&str] = &[
