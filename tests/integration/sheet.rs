@@ -352,8 +352,7 @@ fn hostile_names_are_words_everywhere() {
             if file.name.ends_with(".json") || file.name.ends_with(".csv") {
                 continue;
             }
-            for banned in ["<script", "<img", "<b>|", "</style><", "\u{202e}", "\u{2066}", "https://example"]
-            {
+            for banned in ["<script", "<img", "<b>|", "</style><", "\u{202e}", "\u{2066}"] {
                 assert!(!text.contains(banned), "{banned} in {}", file.name);
             }
             if file.name == "sheet.md" {
