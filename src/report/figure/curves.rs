@@ -148,7 +148,7 @@ fn strip_range(context: &Context<'_>, most: f64) -> Option<(f64, f64)> {
         .map(|j| j.photocurrent_ma_per_cm2)
         .filter(|j| *j <= 1.3 * jsc)
         .fold(jsc, f64::max);
-    let span = (near - jmp).max(0.01 * jsc);
+    let span = (near - jmp).max(0.03 * jsc);
     let range = (jmp - 0.35 * span, near + 0.3 * span);
     ((range.1 - range.0) < 0.5 * most).then_some(range)
 }
@@ -230,6 +230,9 @@ fn plane(drawing: &mut Drawing, context: &Context<'_>, lines: &[Line], (x, y): (
     }
 }
 
+/// With more curves than this, names stand in a column beside the curves.
+const CROWD: usize = 4;
+
 /// Whether one of the curves runs through a box.
 fn crossed(lines: &[Line], bounds: &LabelBox, (x, y): (Scale, Scale)) -> bool {
     let (low, high) = ((bounds.left - 1.0, bounds.top), (bounds.right + 1.0, bounds.bottom));
@@ -250,8 +253,13 @@ fn put(drawing: &mut Drawing, lines: &[Line], scales: (Scale, Scale), labels: Ve
 fn strip_labels(drawing: &mut Drawing, context: &Context<'_>, lines: &[Line], (x, y): (Scale, Scale)) {
     let volts = |v: f64| with_unit(&fixed(v, 2), "V");
     let inside = |j: f64| (y.from..=y.to).contains(&j);
+    let crowded = lines.len() > CROWD;
     for line in lines {
         if let Some((v, j)) = line.at_power.filter(|p| inside(p.1)) {
+            if crowded && line.junction.is_some() {
+                // Their voltages stand in the table.
+                continue;
+            }
             let (px, py) = (x.of(v), y.of(j));
             let words = volts(v);
             let label = |dx: f64, dy: f64| {
@@ -285,23 +293,22 @@ fn strip_labels(drawing: &mut Drawing, context: &Context<'_>, lines: &[Line], (x
                 );
             }
             Some(index) if v < 0.0 => {
-                let words = format!("{} driven to {}", fit(&line.name, 12.5, true, 120.0), volts(v));
-                let label = |x: f64, y: f64| {
-                    let label = Label::at(x, y, &words).bold().halo();
+                let long = format!("{} driven to {}", fit(&line.name, 12.5, true, 120.0), volts(v));
+                let short = format!("driven to {}", volts(v));
+                let label = |x: f64, y: f64, words: &str| {
+                    let label = Label::at(x, y, words).bold().halo();
                     if limiting == Some(index) { label.class("bad") } else { label.junction("i", index) }
                 };
-                put(
-                    drawing,
-                    lines,
-                    (x, y),
-                    vec![label(px + 2.0, py + 18.0), label(px + 2.0, py + 34.0), label(px + 2.0, py - 10.0)],
-                );
+                let places = [(px + 2.0, py + 18.0), (px + 2.0, py + 34.0), (px + 2.0, py - 10.0)];
+                let labels =
+                    [&long, &short].into_iter().flat_map(|words| places.map(|(x, y)| label(x, y, words)));
+                put(drawing, lines, (x, y), labels.collect());
             }
             Some(_) => {}
         }
     }
     // Names at the flat part of each curve.
-    for line in lines.iter().filter(|line| line.junction.is_some()) {
+    for line in lines.iter().filter(|line| line.junction.is_some() && !crowded) {
         let words = format!("{} ", fit(&line.name, 12.5, true, 120.0));
         let value = line
             .junction
@@ -321,6 +328,52 @@ fn strip_labels(drawing: &mut Drawing, context: &Context<'_>, lines: &[Line], (x
     }
 }
 
+/// The junctions' names right of their curves, left of the stack's, each with a leader from its
+/// own curve; whether there was room.
+fn named_in_a_column(drawing: &mut Drawing, lines: &[Line], (x, y): (Scale, Scale)) -> bool {
+    let junctions: Vec<&Line> = lines.iter().filter(|line| line.junction.is_some()).collect();
+    let rightmost = junctions.iter().map(|line| x.of(line.voc)).fold(0.0, f64::max);
+    let stack = lines.iter().find(|line| line.junction.is_none()).and_then(|line| line.at_power);
+    let end = stack.map_or(x.at.1, |p| x.of(p.0)) - 8.0;
+    let left = rightmost + if drawing.width > 500.0 { 26.0 } else { 16.0 };
+    let room = end - left;
+    if room < 60.0 {
+        return false;
+    }
+    let taken = stack.map(|p| y.of(p.1));
+    let mut rows: Vec<f64> = Vec::new();
+    let mut row = y.at.1 + 12.0;
+    while row < y.at.0 - 6.0 {
+        if taken.is_none_or(|line| (row - line - 4.0).abs() > 13.0) {
+            rows.push(row);
+        }
+        row += 17.0;
+    }
+    // A leader leaves its curve below the flat part: those with the most current stand highest.
+    let top_of = |line: &Line| line.points.iter().map(|p| y.of(p.1)).fold(y.at.0, f64::min);
+    let mut order = junctions;
+    order.sort_by(|a, b| top_of(a).total_cmp(&top_of(b)));
+    let mut places = Vec::new();
+    for line in order {
+        let Some(at) = rows.iter().position(|row| row - 4.0 > top_of(line) + 8.0) else { return false };
+        places.push((line, rows.remove(at)));
+    }
+    for (line, base) in places {
+        let j = y.back(base - 4.0);
+        let at = line.points.iter().rev().find(|p| p.1 >= j).map_or(line.voc, |p| p.0);
+        let voltage = with_unit(&fixed(line.voc, 2), "V");
+        let value = Label::at(0.0, 0.0, &voltage).width() + 8.0;
+        // Where both do not fit, the name stays; the voltage stands in the table.
+        let whole = Label::at(0.0, 0.0, "").strong(&line.name).width() + value <= room;
+        let voltage = if whole { voltage } else { String::new() };
+        let name = format!("{} ", fit(&line.name, 12.5, true, if whole { 170.0 } else { room }));
+        drawing.line("lead", (x.of(at), base - 4.0), (left - 4.0, base - 4.0));
+        drawing.dot(&line.mark(), (x.of(at), base - 4.0), 2.4);
+        drawing.text(line.coloured(Label::at(left, base, "").strong(&name).and(&voltage)).halo());
+    }
+    true
+}
+
 fn plot_labels(
     drawing: &mut Drawing,
     context: &Context<'_>,
@@ -332,7 +385,11 @@ fn plot_labels(
     // The stack first: its place counts most. Then from the highest voltage down.
     let mut order: Vec<&Line> = lines.iter().collect();
     order.sort_by(|a, b| b.junction.is_none().cmp(&a.junction.is_none()).then(b.voc.total_cmp(&a.voc)));
+    let column = lines.len() > CROWD && named_in_a_column(drawing, lines, (x, y));
     for line in order {
+        if column && line.junction.is_some() {
+            continue;
+        }
         let name = fit(&line.name, 12.5, true, 130.0);
         let voltage = with_unit(&fixed(line.voc, 2), "V");
         let places = (0..5).flat_map(|row| {

@@ -26,7 +26,7 @@ pub fn draw(context: &Context<'_>, range: (f64, f64)) -> (Drawing, Drawing) {
 
 fn draw_in(context: &Context<'_>, range: (f64, f64), (width, left, height): (f64, f64, f64)) -> Drawing {
     let spectral = &context.first.spectral;
-    let top = 24.0;
+    let top = 26.0;
     let foot = top + height;
     let mut drawing = Drawing::new(width, foot + 42.0);
     let x = Scale::new(range.0, range.1, (left, width - 12.0));
@@ -61,6 +61,8 @@ fn draw_in(context: &Context<'_>, range: (f64, f64), (width, left, height): (f64
 /// Each name under its own curve where it is the highest, what is not reflected above.
 fn labels(context: &Context<'_>, drawing: &mut Drawing, (x, y): (Scale, Scale), (top, foot): (f64, f64)) {
     let spectral = &context.first.spectral;
+    let mut unnamed = Vec::new();
+    drawing.text(Label::at(x.at.1, top - 11.0, "dashed: not reflected").size(11.5).class("q").end());
     for (index, junction) in context.first.junctions.iter().enumerate() {
         let Some(eqe) = spectral.eqe.get(&junction.name) else { continue };
         // The centre of the range where it takes more than half of its own greatest share.
@@ -78,12 +80,41 @@ fn labels(context: &Context<'_>, drawing: &mut Drawing, (x, y): (Scale, Scale), 
         let name = fit(&visible(&junction.name), 15.0, true, 150.0);
         let label =
             |at: f64| Label::at(centre, at, &name).size(15.0).bold().junction("i", index).middle().halo();
-        // Where the curve stands high there is room under it, between its own flanks.
-        let below = y.of(50.0 * height);
-        let rows =
-            [0.0, 22.0, -22.0, 44.0, -44.0].map(|dy| below + dy).into_iter().filter(|at| *at < foot - 4.0);
-        drawing.text_where_free(rows.map(label));
+        let half = label(0.0).width() / 2.0;
+        if 2.0 * half + 8.0 <= x.of(*to) - x.of(*from) {
+            // Where the curve stands high there is room under it, between its own flanks.
+            let below = y.of(50.0 * height);
+            let rows = [0.0, 22.0, -22.0, 44.0, -44.0].map(|dy| below + dy);
+            drawing.text_where_free(rows.into_iter().filter(|at| *at < foot - 4.0).map(label));
+        } else {
+            // Too narrow: over the frame, with a leader down into the band.
+            let at = |dx: f64| {
+                Label::at(centre + dx, top - 11.0, &name).size(12.5).bold().junction("i", index).middle()
+            };
+            if drawing.text_where_free([0.0, 12.0, -12.0, 26.0, -26.0, 44.0, -44.0].map(at)) {
+                drawing.line("lead", (centre, top - 6.0), (centre, y.of(100.0 * height) + 10.0));
+            } else {
+                unnamed.push(index);
+            }
+        }
     }
-    let words = Label::at(x.at.1, top - 9.0, "not reflected (dashed)").size(11.5).class("q").end();
-    drawing.text_where_free([words]);
+    key(context, drawing, &unnamed, x.at.0);
+}
+
+/// A key for the curves that no name could be put to.
+fn key(context: &Context<'_>, drawing: &mut Drawing, junctions: &[usize], left: f64) {
+    let (mut at, mut row) = (left, drawing.height + 12.0);
+    for index in junctions {
+        let name = fit(&visible(&context.first.junctions[*index].name), 12.5, true, 150.0);
+        let label = Label::at(at + 32.0, row, &name).bold().junction("i", *index);
+        if at > left && label.bounds().right > drawing.width {
+            at = left;
+            row += 18.0;
+        }
+        drawing.line(&format!("c{}", style_number(*index)), (at, row - 4.0), (at + 26.0, row - 4.0));
+        let label = Label::at(at + 32.0, row, &name).bold().junction("i", *index);
+        at = label.bounds().right + 16.0;
+        drawing.text(label);
+        drawing.height = row + 6.0;
+    }
 }

@@ -331,11 +331,11 @@ fn draw_in(context: &Context<'_>, light: &Light, frame: &Frame) -> Drawing {
             continue;
         }
         let place = shape.band.junction.and_then(|_| {
-            [24.0, 15.0].into_iter().find_map(|size| {
+            [24.0, 15.0, 12.5].into_iter().find_map(|size| {
                 let w =
                     Label::at(0.0, 0.0, &context.scale.number(shape.band.drawn_ma)).size(size).bold().width();
                 let unit = Label::at(0.0, 0.0, context.scale.unit).size(11.5).width();
-                let name = Label::at(0.0, 0.0, &short_name(shape.band, frame)).size(15.0).width();
+                let name = Label::at(0.0, 0.0, &short_name(shape.band, frame)).size(name_size(size)).width();
                 shape.room_for((w.max(unit).max(name) + 6.0, size + 40.0), frame).map(|c| (c, size))
             })
         });
@@ -406,14 +406,24 @@ fn anchor(shape: &Shape<'_>, frame: &Frame, others: &[(usize, f64, f64)]) -> f64
     let most = candidates.iter().map(|c| c.1).fold(0.0, f64::max);
     let clearance = |x: f64| others.iter().map(|o| (o.1 - x).abs()).fold(f64::MAX, f64::min);
     let width = (frame.right - frame.left) / 14.0;
-    candidates
+    let thick: Vec<(f64, f64)> = candidates.into_iter().filter(|c| c.1 >= 0.7 * most).collect();
+    let middle = thick.get(thick.len() / 2).map_or(frame.left + 3.0, |c| c.0);
+    thick
         .iter()
-        .filter(|c| c.1 >= 0.7 * most)
         .max_by(|a, b| {
-            let worth = |c: &(f64, f64)| c.1 / most.max(1e-9) + (clearance(c.0) / width).min(1.0);
+            // Thick, clear of other leaders, near the middle of where it is thick.
+            let worth = |c: &(f64, f64)| {
+                let off = (c.0 - middle).abs() / (frame.right - frame.left);
+                c.1 / most.max(1e-9) + (clearance(c.0) / width).min(1.0) - 0.5 * off
+            };
             worth(a).total_cmp(&worth(b))
         })
         .map_or(frame.left + 3.0, |c| c.0)
+}
+
+/// A name is no larger than its number.
+fn name_size(size: f64) -> f64 {
+    size.min(15.0)
 }
 
 fn short_name(band: &Band, frame: &Frame) -> String {
@@ -527,7 +537,8 @@ fn labels_inside(
         let junction = band.junction.unwrap_or(0);
         let y = y + top;
         let on = |label: Label| label.junction("o", junction).middle();
-        drawing.text(on(Label::at(*x, y - size / 2.0 - 2.0, &short_name(band, frame)).size(15.0)));
+        drawing
+            .text(on(Label::at(*x, y - size / 2.0 - 2.0, &short_name(band, frame)).size(name_size(*size))));
         drawing.text(on(Label::at(*x, y + size / 2.0 + 1.0, &context.scale.number(band.drawn_ma))
             .size(*size)
             .bold()));

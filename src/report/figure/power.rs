@@ -10,7 +10,8 @@ use crate::report::text::visible;
 use crate::report::width::fit;
 use crate::results::ConditionResult;
 
-const PANEL: (f64, f64) = (190.0, 206.0);
+/// Height of a panel.
+const PANEL: f64 = 206.0;
 /// Conditions that are drawn; the others stand in the table.
 pub const MOST: usize = 8;
 
@@ -34,32 +35,38 @@ fn greatest_voltage(condition: &ConditionResult) -> f64 {
 
 /// `across` panels side by side in a drawing `width` units wide.
 pub fn draw(context: &Context<'_>, across: usize, width: f64) -> Drawing {
-    let gap = (width - PANEL.0 * across as f64) / (across.max(2) - 1) as f64;
+    let gap = 26.0;
+    let across = across.max(1);
+    let panel_width = ((width - gap * (across - 1) as f64) / across as f64).min(300.0);
     let conditions: Vec<&ConditionResult> = context.results.conditions.iter().take(MOST).collect();
     let shared = shared_scale(&context.results.conditions);
     let most = |of: fn(&ConditionResult) -> f64| conditions.iter().map(|c| of(c)).fold(0.0, f64::max);
     let voltage = most(greatest_voltage);
     let current = most(greatest_current);
     let panels_down = conditions.len().div_ceil(across).max(1);
-    let height = panels_down as f64 * (PANEL.1 + 14.0) - 8.0;
+    let height = panels_down as f64 * (PANEL + 14.0) - 8.0;
     let mut drawing = Drawing::new(width, height);
     for (index, condition) in conditions.iter().enumerate() {
-        let at = ((index % across) as f64 * (PANEL.0 + gap), (index / across) as f64 * (PANEL.1 + 14.0));
+        let at = ((index % across) as f64 * (panel_width + gap), (index / across) as f64 * (PANEL + 14.0));
         let scale = if shared { current } else { greatest_current(condition) };
-        panel(&mut drawing, condition, at, (voltage, scale));
+        panel(&mut drawing, condition, (at, panel_width), (voltage, scale));
     }
     drawing
 }
 
-fn panel(drawing: &mut Drawing, condition: &ConditionResult, at: (f64, f64), most: (f64, f64)) {
-    let (left, top) = at;
+fn panel(
+    drawing: &mut Drawing,
+    condition: &ConditionResult,
+    ((left, top), width): ((f64, f64), f64),
+    most: (f64, f64),
+) {
     let temperature =
-        Label::at(left + PANEL.0 - 2.0, top + 14.0, &celsius(condition.temperature_k)).class("q").end();
-    let room = PANEL.0 - temperature.width() - 16.0;
+        Label::at(left + width - 2.0, top + 14.0, &celsius(condition.temperature_k)).class("q").end();
+    let room = width - temperature.width() - 16.0;
     drawing.text(Label::at(left + 2.0, top + 14.0, &fit(&visible(&condition.name), 12.5, true, room)).bold());
     drawing.text(temperature);
     let foot = top + 172.0;
-    let x = Scale::new(0.0, most.0 * 1.06, (left + 2.0, left + PANEL.0));
+    let x = Scale::new(0.0, most.0 * 1.06, (left + 2.0, left + width));
     let y = Scale::new(0.0, most.1 * 1.02, (foot, top + 52.0));
     let scale = CurrentScale::for_largest(greatest_current(condition));
     match (condition.voc_v, condition.jsc_ma_per_cm2, condition.vmp_v, condition.jmp_ma_per_cm2) {
@@ -73,15 +80,15 @@ fn panel(drawing: &mut Drawing, condition: &ConditionResult, at: (f64, f64), mos
                 .zip(&condition.curve.current_ma_per_cm2)
                 .map(|(v, j)| (x.of(*v), y.of(*j)))
                 .collect();
-            for run in cut(&points, (x.of(0.0), top + 30.0), (left + PANEL.0, foot)) {
+            for run in cut(&points, (x.of(0.0), top + 30.0), (left + width, foot)) {
                 drawing.polyline("cs", &thin(&run, 0.12));
             }
-            drawing.line("axis", (left + 2.0, foot), (left + PANEL.0, foot));
+            drawing.line("axis", (left + 2.0, foot), (left + width, foot));
             figures(drawing, condition, (x.of(0.0), x.of(vmp)), (y.of(jmp), foot), "od");
             drawing.text(Label::at(left + 2.0, y.of(jsc) - 6.0, &scale.text(jsc)).size(11.5));
             let voltage = with_unit(&fixed(voc, 3), "V");
             let label =
-                Label::at((x.of(voc) + 6.0).min(left + PANEL.0), foot + 15.0, &voltage).size(11.5).end();
+                Label::at((x.of(voc) + 6.0).min(left + width), foot + 15.0, &voltage).size(11.5).end();
             drawing.text(label);
             if let Some(ff) = condition.fill_factor {
                 let words = format!("fill factor {}", percent(ff, 1));

@@ -68,7 +68,7 @@ pub fn headline(context: &Context<'_>) -> Section {
     // One or two panels stand beside the table, more stand over it.
     figure.half = conditions.len() <= 2;
     let mut figure = if figure.half {
-        figure.drawn(power::draw(context, 2, 408.0), None)
+        figure.drawn(power::draw(context, conditions.len(), 408.0), None)
     } else {
         figure.drawn(power::draw(context, 4, WIDE), Some(power::draw(context, 2, SLIM)))
     };

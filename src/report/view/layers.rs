@@ -41,11 +41,14 @@ pub fn stack(context: &Context<'_>) -> Section {
         _ => {
             let each: Vec<String> = junctions
                 .iter()
-                .map(|j| {
-                    format!("{} makes {}", visible(&j.name), context.scale.text(j.photocurrent_ma_per_cm2))
+                .enumerate()
+                .map(|(index, j)| {
+                    let verb = if index == 0 { " makes" } else { "" };
+                    let current = context.scale.text(j.photocurrent_ma_per_cm2);
+                    format!("{}{verb} {current}", visible(&j.name))
                 })
                 .collect();
-            lede.p(format!("{}.", capital(&joined(&each))))
+            lede.p(format!("Junction {}.", joined(&each)))
         }
     };
     out.lede = Some(lede);
