@@ -71,6 +71,9 @@ fn format(word: &str) -> Result<Format, String> {
 /// Runs the command: findings on standard error, a summary or the one document on standard
 /// output.
 pub(crate) fn run(command: &Build, console: &Console) -> Exit {
+    if let Some(misuse) = command.input.misuse() {
+        return console.trouble(misuse, &["leave it out, or read from `-`"]);
+    }
     let entries = command.input.open(console);
     let options = command.input.options();
     let (templates, templates_exit) = command.sheets.templates(console);

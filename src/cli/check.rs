@@ -30,6 +30,9 @@ pub(crate) struct Check {
 
 /// Runs the command: findings on standard output.
 pub(crate) fn run(command: &Check, console: &Console) -> Exit {
+    if let Some(misuse) = command.input.misuse() {
+        return console.trouble(misuse, &["leave it out, or read from `-`"]);
+    }
     let options = Options { no_evaluation: command.no_evaluation, ..command.input.options() };
     let all: Vec<Compiled> =
         command.input.open(console).iter().map(|entry| entry.compile(&options)).collect();

@@ -57,6 +57,13 @@ impl Input {
         Options { overrides: Overrides { set: self.set.clone() }, ..Options::default() }
     }
 
+    /// What does not go together, for a usage error.
+    pub(crate) fn misuse(&self) -> Option<&'static str> {
+        let piped = self.files.iter().any(|file| file.as_os_str() == "-");
+        (self.read_as.is_some() && !piped)
+            .then_some("`--read-as` says what `-` stands for, and `-` is not among the files")
+    }
+
     /// Opens every file, each once.
     pub(crate) fn open(&self, console: &Console) -> Vec<Entry> {
         let mut seen: Vec<&Path> = Vec::new();

@@ -43,6 +43,9 @@ pub(crate) fn run(command: &Watch, console: &Console) -> Exit {
     if command.input.files.iter().any(|file| file.as_os_str() == "-") {
         return console.trouble("standard input cannot be watched", &["name a file"]);
     }
+    if let Some(misuse) = command.input.misuse() {
+        return console.trouble(misuse, &["leave it out"]);
+    }
     if command.sheets.to_standard_output() {
         return console.trouble("`watch` writes files", &["name a folder with `--into`"]);
     }

@@ -372,4 +372,36 @@ warning: name.duplicate
         let text = render(&finding, &sources, Look { color: false, width: 60 });
         assert!(text.lines().all(|line| line.chars().count() <= 60), "{text}");
     }
+
+    proptest::proptest! {
+        /// Whatever the text and wherever the labels: a frame, no panic, nothing that acts on a
+        /// terminal, and the place that the line index says.
+        #[test]
+        fn every_span_of_every_text_is_drawn(
+            text in "[a-z µ²°硅é\u{0}\u{1b}\u{301}\u{200d}\u{202e}\t\r\n{};]{0,200}",
+            start in 0_usize..220,
+            length in 0_usize..220,
+            other in 0_usize..220,
+        ) {
+            let mut sources = Sources::default();
+            let id = sources.add("a.stack", &text);
+            let floor = |mut at: usize| {
+                at = at.min(text.len());
+                while !text.is_char_boundary(at) { at -= 1; }
+                at
+            };
+            let (start, end) = (floor(start), floor(start + length));
+            let span = crate::source::Span::new(id, start, end);
+            let beside = crate::source::Span::new(id, floor(other), floor(other + 3));
+            let finding = Finding::error("x.y", "m").at(span, "here").beside(beside, "there");
+            let drawn = render(&finding, &sources, PLAIN);
+            let acts = |c: char| (c.is_control() && c != '\n') || c == '\u{202e}';
+            // Tabs inside the source are expanded.
+            proptest::prop_assert!(!drawn.contains(acts), "{drawn:?}");
+            let at = sources.get(id).position(start);
+            let place = format!("[a.stack:{}:{}]", at.line, at.column);
+            proptest::prop_assert!(drawn.contains(&place), "{place}\n{drawn}");
+            proptest::prop_assert!(drawn.contains("here"), "{drawn}");
+        }
+    }
 }

@@ -21,6 +21,7 @@ fn the_exit_code_says_found_or_trouble() {
     place.run(&["check"]).ends(2);
     place.run(&["chekc", "pair.stack"]).ends(2);
     place.run(&["check", "pair.stack", "--set", "d"]).ends(2);
+    place.run(&["check", "pair.stack", "--read-as", "x.stack"]).ends(2);
     place.run(&["build", "pair.stack", "--as", "pdf"]).ends(2);
     place.run(&["--version"]).ends(0);
 }

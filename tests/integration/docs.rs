@@ -23,34 +23,47 @@ fn every_stack_is_named_in_the_readme() {
     assert!(count >= 4, "the demos are there");
 }
 
-/// Fences marked `console` hold commands; each must be one the program takes.
+/// Lines of fences, and what stands between backticks outside them.
+fn code_in(text: &str) -> Vec<&str> {
+    let mut code = Vec::new();
+    let mut inside = false;
+    for line in text.lines() {
+        if line.starts_with("```") {
+            inside = !inside;
+        } else if inside {
+            code.push(line.trim());
+        } else {
+            code.extend(line.split('`').skip(1).step_by(2));
+        }
+    }
+    code
+}
+
+/// Every command shown is one the program takes, with every option shown.
 #[test]
 fn commands_in_the_readme_exist() {
     let readme = paper("README.md");
     let place = Place::new();
     let mut seen = 0;
-    for line in readme.lines() {
-        let line = line.trim().trim_start_matches("$ ");
-        let Some(rest) =
-            line.strip_prefix("bandloom ").or_else(|| line.split_once(" -- ").map(|(_, rest)| rest))
-        else {
-            continue;
+    for code in code_in(&readme) {
+        let (command, options) = match code.split_once("bandloom ").or_else(|| code.split_once(" -- ")) {
+            Some((_, rest)) => (rest.split_whitespace().next().unwrap_or_default(), rest),
+            // An option by itself belongs to all that read stacks.
+            None if code.starts_with("--") => ("check", code),
+            None => continue,
         };
-        let Some(command) = rest.split_whitespace().next() else { continue };
-        if command.chars().all(|c| c.is_ascii_lowercase()) {
-            let help = place.run(&[command, "--help"]).ends(0);
-            for option in rest.split_whitespace().filter(|word| word.starts_with("--") && word.len() > 2) {
-                let option = option
-                    .split('=')
-                    .next()
-                    .unwrap_or(option)
-                    .trim_matches(|c: char| !c.is_alphanumeric() && c != '-');
-                assert!(help.out.contains(option), "`{command}` has no `{option}`: {line}");
-            }
-            seen += 1;
+        if command.is_empty() || !command.chars().all(|c| c.is_ascii_lowercase()) {
+            continue;
         }
+        let help = place.run(&[command, "--help"]).ends(0).out;
+        for option in
+            options.split([' ', '[', ']', '=', '|']).filter(|word| word.starts_with("--") && word.len() > 2)
+        {
+            assert!(help.contains(option), "`bandloom {command}` has no `{option}`: {code}");
+        }
+        seen += 1;
     }
-    assert!(seen > 0, "README shows no command");
+    assert!(seen >= 5, "README shows {seen} commands");
 }
 
 #[test]
