@@ -5,9 +5,11 @@
 
 /// Every code with its page, in alphabetical order.
 pub const PAGES: &[(&str, &str)] = &[
+    ("accept.no-reason", include_str!("why/accept.no-reason.md")),
     ("accept.unused", include_str!("why/accept.unused.md")),
     ("current.mismatch", include_str!("why/current.mismatch.md")),
     ("doping.missing", include_str!("why/doping.missing.md")),
+    ("feature.pending", include_str!("why/feature.pending.md")),
     ("fit.below-radiative", include_str!("why/fit.below-radiative.md")),
     ("formula.composition", include_str!("why/formula.composition.md")),
     ("formula.sum", include_str!("why/formula.sum.md")),
@@ -30,10 +32,18 @@ pub const PAGES: &[(&str, &str)] = &[
     ("material.open", include_str!("why/material.open.md")),
     ("material.statement", include_str!("why/material.statement.md")),
     ("material.table", include_str!("why/material.table.md")),
+    ("name.cycle", include_str!("why/name.cycle.md")),
+    ("name.duplicate", include_str!("why/name.duplicate.md")),
+    ("name.reserved", include_str!("why/name.reserved.md")),
+    ("name.unknown", include_str!("why/name.unknown.md")),
+    ("number.decimal-comma", include_str!("why/number.decimal-comma.md")),
     ("polarity.flipped", include_str!("why/polarity.flipped.md")),
     ("polarity.same", include_str!("why/polarity.same.md")),
     ("require.failed", include_str!("why/require.failed.md")),
     ("require.unknown-metric", include_str!("why/require.unknown-metric.md")),
+    ("spectrum.table", include_str!("why/spectrum.table.md")),
+    ("structure.empty", include_str!("why/structure.empty.md")),
+    ("structure.nesting", include_str!("why/structure.nesting.md")),
     ("structure.no-absorber", include_str!("why/structure.no-absorber.md")),
     ("structure.no-wafer", include_str!("why/structure.no-wafer.md")),
     ("structure.order", include_str!("why/structure.order.md")),
@@ -41,6 +51,16 @@ pub const PAGES: &[(&str, &str)] = &[
     ("tunnel.missing", include_str!("why/tunnel.missing.md")),
     ("tunnel.peak", include_str!("why/tunnel.peak.md")),
     ("tunnel.polarity", include_str!("why/tunnel.polarity.md")),
+    ("unit.dimension", include_str!("why/unit.dimension.md")),
+    ("unit.missing", include_str!("why/unit.missing.md")),
+    ("unit.unknown", include_str!("why/unit.unknown.md")),
+    ("unit.unlikely", include_str!("why/unit.unlikely.md")),
+    ("use.cycle", include_str!("why/use.cycle.md")),
+    ("use.missing", include_str!("why/use.missing.md")),
+    ("use.outside", include_str!("why/use.outside.md")),
+    ("value.conflict", include_str!("why/value.conflict.md")),
+    ("value.missing", include_str!("why/value.missing.md")),
+    ("value.range", include_str!("why/value.range.md")),
 ];
 
 /// The page of `code`.
