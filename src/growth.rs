@@ -138,7 +138,12 @@ pub fn poisson_ratio(elastic: Elastic) -> f64 {
 
 #[cfg(test)]
 mod tests {
+    use std::path::Path;
+
     use super::*;
+    use crate::resolve::{Overrides, resolve};
+    use crate::source::Sources;
+    use crate::world::memory::Memory;
 
     /// Vurgaftman, Meyer and Ram-Mohan, J. Appl. Phys. 89, 5815 (2001): GaAs 5.65325 Å,
     /// C11 122.1, C12 56.6; InAs 6.0583 Å, C11 83.29, C12 45.26 GPa; linear in composition.
@@ -159,6 +164,82 @@ mod tests {
         assert!(strain < 0.0, "a larger layer is compressed");
         assert!((perpendicular_strain(elastic, strain) - 0.013_426).abs() < 2e-6);
         assert!((biaxial_stress_gpa(elastic, strain) + 1.653).abs() < 1e-3);
+    }
+
+    fn design(body: &str) -> Design {
+        let text = format!("stack \"Trial\" {{ light AM1.5G\n{body}\n}}");
+        let world = Memory::new().with("trial.stack", text.as_str());
+        let mut sources = Sources::default();
+        let outcome = resolve(&world, &mut sources, Path::new("trial.stack"), &Overrides::default());
+        assert!(!outcome.findings.has_errors(), "{:?}", outcome.findings);
+        outcome.value.expect("resolved").remove(0)
+    }
+
+    fn state(design: &Design, path: &str) -> LayerGrowth {
+        let index = design.layers.iter().position(|layer| layer.path == path).expect("has the layer");
+        lattice_states(design)[index].expect("has a lattice beneath")
+    }
+
+    #[test]
+    fn mismatch_of_well_known_pairs() {
+        // From the published lattice constants at 300 K (Vurgaftman, Meyer, Ram-Mohan 2001; Ge
+        // 5.6579, Si 5.4310 Å), worked out outside: per cent.
+        for (layer, wafer, percent) in
+            [("GaAs", "Ge", -0.0822), ("GaP", "Si", 0.359), ("In0.2Ga0.8As", "GaAs", 1.433)]
+        {
+            let design = design(&format!(
+                "junction only {{ base {layer} 10 nm p 1e17 /cm3; voltage from ere 1 % }}\n wafer {wafer} 350 um"
+            ));
+            let mismatch = state(&design, "only.base").mismatch * 100.0;
+            assert!((mismatch - percent).abs() < 2e-3, "{layer} on {wafer}: {mismatch} %");
+        }
+    }
+
+    #[test]
+    fn a_relaxed_buffer_is_the_lattice_for_all_above_it() {
+        let design = design(
+            "junction only { base In0.2Ga0.8As 1 um p 1e17 /cm3; voltage from ere 1 % }
+             buffer In0.2Ga0.8As 1 um relaxed p 1e18 /cm3
+             wafer GaAs 350 um",
+        );
+        let buffer = design.layers.iter().position(|layer| layer.duty == Duty::Buffer);
+        let (base, on_wafer) =
+            (state(&design, "only.base"), lattice_states(&design)[buffer.expect("has one")]);
+        assert_eq!(base.beneath, buffer);
+        assert!(base.mismatch.abs() < 1e-12 && base.strain.abs() < 1e-12);
+        let on_wafer = on_wafer.expect("stands on the wafer");
+        assert_eq!(on_wafer.beneath, wafer(&design));
+        assert!(on_wafer.mismatch > 0.014 && on_wafer.strain == 0.0, "off the wafer, but relaxed");
+    }
+
+    #[test]
+    fn inverted_growth_starts_sunward() {
+        let design = design(
+            "growth inverted
+             wafer GaAs 350 um removed
+             junction top { base Al0.3Ga0.7As 1 um p 1e17 /cm3; voltage from ere 1 % }
+             buffer In0.2Ga0.8As 1 um relaxed p 1e18 /cm3
+             tunnel { resistance 1 mohm cm2 }
+             junction bottom { base In0.2Ga0.8As 1 um p 1e17 /cm3; voltage from ere 1 % }",
+        );
+        let paths: Vec<&str> = order(&design).iter().map(|at| design.layers[*at].path.as_str()).collect();
+        assert_eq!(paths.first(), Some(&"wafer"));
+        assert_eq!(paths.last(), Some(&"bottom.base"));
+        assert!(state(&design, "bottom.base").mismatch.abs() < 1e-12, "stands on the buffer");
+        assert!(state(&design, "top.base").mismatch.abs() < 1e-3, "stands on the wafer");
+    }
+
+    #[test]
+    fn growth_temperature_moves_the_mismatch_by_the_difference_of_expansions() {
+        // GaAs 3.88e-5 Å/K (Vurgaftman, Meyer, Ram-Mohan 2001), 6.86e-6 /K; Si 2.6e-6 /K at room
+        // temperature (handbook): 600 K make 0.256 %, within 0.02 % for Si's own rise.
+        let design = design(
+            "junction only { base GaAs 10 nm p 1e17 /cm3 { growth_temperature 625 degC }; voltage from ere 1 % }
+             wafer Si 350 um",
+        );
+        let state = state(&design, "only.base");
+        let grown = state.mismatch_at_growth - state.mismatch;
+        assert!((grown - 0.002_56).abs() < 2e-4, "{grown}");
     }
 
     #[test]

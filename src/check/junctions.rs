@@ -15,7 +15,9 @@ pub(crate) struct JunctionFacts<'a> {
 impl<'a> JunctionFacts<'a> {
     pub(super) fn new(design: &'a Design, index: usize) -> Self {
         let junction = &design.junctions[index];
-        let layers = design.lit_layers().filter(|(_, layer)| layer.place == Place::Junction(index)).collect();
+        let range = junction.layers.clone();
+        let all = design.layers.get(range.clone()).unwrap_or_default();
+        let layers = range.zip(all).filter(|(_, layer)| layer.extent == Extent::Everywhere).collect();
         Self { junction, layers }
     }
 

@@ -3,7 +3,7 @@
 use super::junctions::{JunctionFacts, describe, letter, opposite, sign, stays};
 use super::polarity_same::shared_sign;
 use super::{Context, Report, Rule};
-use crate::design::{Duty, Growth, Layer, Place, Polarity, Terminals};
+use crate::design::{Design, Duty, Growth, Layer, Place, Polarity, Terminals};
 use crate::finding::{Finding, Severity};
 use crate::source::Span;
 use crate::units::{Dimension, trade};
@@ -133,12 +133,17 @@ fn ends(context: &Context, flipped: &[bool], report: &mut Report) {
         && sign(layer).is_some_and(|own| own != due)
         && let Some((at, edge)) = last.layers.iter().rev().find(|(_, layer)| sign(layer) == Some(due))
         // Doped layers of the other sign in between are a tunnel junction of the user's own.
-        && design.layers[at + 1..wafer].iter().all(|between| sign(between).is_none_or(|own| own == due))
+        && between(design, *at, wafer).iter().all(|layer| sign(layer).is_none_or(|own| own == due))
     {
         let finding =
             against(context, layer, edge, &format!("carries the current of the {}-doped", letter(due)));
         report.push([layer.path.as_str()], finding);
     }
+}
+
+/// The layers after `upper` and before `lower`.
+fn between(design: &Design, upper: usize, lower: usize) -> &[Layer] {
+    design.layers.get(upper + 1..lower).unwrap_or_default()
 }
 
 /// The wafer under the last junction, where the current leaves through it.

@@ -17,6 +17,7 @@ pub(super) static RULE: Rule = Rule {
 
 fn run(context: &Context, report: &mut Report) {
     barriers(context, report);
+    interconnects(context, report);
     let Some(first) = context.junctions.first().and_then(|facts| facts.layers.first()).map(|(at, _)| *at)
     else {
         return;
@@ -66,6 +67,31 @@ fn barriers(context: &Context, report: &mut Report) {
                 )),
             );
         }
+    }
+}
+
+/// A tunnel junction with no junction above it, or straight after another one. One below the last
+/// junction is left alone: it turns the sign for a wafer of the other one.
+fn interconnects(context: &Context, report: &mut Report) {
+    let joins = &context.design.interconnects;
+    for (index, join) in joins.iter().enumerate() {
+        let name = &join.name.value;
+        let earlier = joins[..index].iter().find(|other| other.below_junctions == join.below_junctions);
+        let finding = match (join.below_junctions, earlier) {
+            (0, _) => {
+                Finding::error(RULE.code, format!("`{name}` has no junction sunward of it and joins nothing"))
+                    .at(join.span, "on the wrong side")
+            }
+            (_, Some(other)) => Finding::error(
+                RULE.code,
+                format!("`{name}` follows `{}` with no junction between them", other.name.value),
+            )
+            .at(join.span, "joins what is joined already")
+            .beside(other.span, "the first of them"),
+            _ => continue,
+        };
+        let help = format!("write `{name}` between the two junctions it joins, or remove it");
+        report.push([name.as_str()], finding.help(help));
     }
 }
 

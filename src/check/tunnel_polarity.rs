@@ -1,6 +1,6 @@
 //! `tunnel.polarity`: a tunnel junction the wrong way round, or with one sign only.
 
-use super::junctions::{letter, opposite, sign};
+use super::junctions::{JunctionFacts, letter, opposite, sign};
 use super::{Context, Report, Rule};
 use crate::design::{Interconnect, Layer, Polarity};
 use crate::finding::{Finding, Severity};
@@ -24,7 +24,11 @@ fn run(context: &Context, report: &mut Report) {
         let due = due(context, tunnel);
         let wrong = match due {
             _ if doped.len() > 1 && sunward == rear => one_sign(tunnel, first, last, due.unwrap_or(*sunward)),
-            Some(due) if *sunward != due && doped.len() > 1 => reversed(context, tunnel, first, due),
+            Some(due) if *sunward != due && doped.len() > 1 => {
+                let above = tunnel.below_junctions.checked_sub(1).and_then(|at| context.junctions.get(at));
+                let Some(above) = above else { continue };
+                reversed(above, tunnel, first, due)
+            }
             _ => continue,
         };
         report.push([tunnel.name.value.as_str()], wrong);
@@ -45,9 +49,8 @@ fn due(context: &Context, tunnel: &Interconnect) -> Option<Polarity> {
     }
 }
 
-fn reversed(context: &Context, tunnel: &Interconnect, first: &Layer, due: Polarity) -> Finding {
+fn reversed(above: &JunctionFacts, tunnel: &Interconnect, first: &Layer, due: Polarity) -> Finding {
     let name = &tunnel.name.value;
-    let above = &context.junctions[tunnel.below_junctions.saturating_sub(1)];
     let finding = Finding::error(
         RULE.code,
         format!(
