@@ -12,6 +12,8 @@ mod integration {
     mod physics_properties;
     mod robustness;
     mod sheet;
+    mod sheet_cases;
+    mod sheet_page;
     mod tool;
     mod watching;
 }

@@ -8,8 +8,13 @@ use crate::report::context::{Context, Row, Style};
 use crate::report::figure::hatch::{Hatch, rectangle, strokes};
 use crate::report::figure::{Drawing, Label, SLIM, WIDE};
 use crate::report::number::{doping, fixed, thickness, trimmed, with_unit};
-use crate::report::palette::style_number;
 use crate::report::width::fit;
+
+mod brackets;
+mod keys;
+
+use brackets::brackets;
+use keys::keys;
 
 /// Where things stand in one of the two drawings.
 struct Layout {
@@ -218,100 +223,6 @@ fn polarity(polarity: crate::design::Polarity) -> &'static str {
     }
 }
 
-/// A bracket a junction, with its current, its gap, and whether it limits.
-fn brackets(context: &Context<'_>, drawing: &mut Drawing, layout: &Layout, rows: &[Row<'_>], edges: &[f64]) {
-    let x = layout.stack.0;
-    let line = 15.5;
-    let mut blocks = Vec::new();
-    for (index, junction) in context.first.junctions.iter().enumerate() {
-        let of_it: Vec<usize> = (0..rows.len()).filter(|&i| rows[i].junction() == Some(index)).collect();
-        let (Some(first), Some(last)) = (of_it.first(), of_it.last()) else { continue };
-        let (from, to) = (edges[*first] + 1.0, edges[*last + 1] - 1.0);
-        let n = style_number(index);
-        drawing.path(
-            &format!("br{n}"),
-            &format!(
-                "M{},{}H{}V{}H{}",
-                super::unit(x - 7.0),
-                super::unit(from),
-                super::unit(x - 12.0),
-                super::unit(to),
-                super::unit(x - 7.0)
-            ),
-        );
-        let limits = context.limiting() == Some(index);
-        let lines = 3.0 + f64::from(u8::from(limits)) + f64::from(u8::from(layout.slim));
-        blocks.push((index, junction, (from + to) / 2.0, lines * line, limits));
-    }
-    let centres = spread(&blocks.iter().map(|b| (b.2, b.3 + 6.0)).collect::<Vec<_>>(), HEAD);
-    let right = x - 20.0;
-    for ((index, junction, wanted, height, limits), centre) in blocks.into_iter().zip(centres) {
-        if (centre - wanted).abs() > 4.0 {
-            drawing.line("lead", (right + 3.0, centre - height / 2.0 + 8.0), (x - 12.0, wanted));
-        }
-        let mut y = centre - height / 2.0 + 11.0;
-        let mut put = |label: &dyn Fn(f64) -> Label| {
-            drawing.text(label(y).end());
-            y += line;
-        };
-        let name = fit(&crate::report::text::visible(&junction.name), 15.0, true, right - 2.0);
-        put(&|y| Label::at(right, y, &name).size(15.0).bold().junction("i", index));
-        let current = junction.photocurrent_ma_per_cm2;
-        if layout.slim {
-            put(&|y| Label::at(right, y, &context.scale.number(current)));
-            put(&|y| Label::at(right, y, context.scale.unit).size(11.5).class("q"));
-        } else {
-            put(&|y| Label::at(right, y, &context.scale.text(current)));
-        }
-        put(&|y| Label::at(right, y, &with_unit(&fixed(junction.gap_ev, 2), "eV")).class("q"));
-        if limits {
-            put(&|y| Label::at(right - 12.0, y, "limits").bold().class("bad"));
-            let tip = y - line - 4.0;
-            drawing.path("fbad", &format!("M{},{}l-9,-4.5v9z", super::unit(right), super::unit(tip)));
-        }
-    }
-}
-
-/// Centres of blocks of given heights, as near to the wanted ones as they can be without meeting,
-/// none above `top`. Input and output from top to bottom.
-pub fn spread(blocks: &[(f64, f64)], top: f64) -> Vec<f64> {
-    // Blocks that meet merge into clusters that sit at the mean of what their members want.
-    struct Cluster {
-        members: Vec<usize>,
-        centre: f64,
-        height: f64,
-    }
-    let mut clusters: Vec<Cluster> = Vec::new();
-    for (index, (wanted, height)) in blocks.iter().enumerate() {
-        let centre = wanted.max(top + height / 2.0);
-        clusters.push(Cluster { members: vec![index], centre, height: *height });
-        while clusters.len() > 1 {
-            let last = clusters.len() - 1;
-            let (above, below) = (&clusters[last - 1], &clusters[last]);
-            if above.centre + above.height / 2.0 <= below.centre - below.height / 2.0 {
-                break;
-            }
-            let Some(below) = clusters.pop() else { break };
-            if let Some(above) = clusters.last_mut() {
-                let (a, b) = (above.members.len() as f64, below.members.len() as f64);
-                let height = above.height + below.height;
-                above.centre = ((above.centre * a + below.centre * b) / (a + b)).max(top + height / 2.0);
-                above.height = height;
-                above.members.extend(below.members);
-            }
-        }
-    }
-    let mut out = vec![0.0; blocks.len()];
-    for cluster in clusters {
-        let mut y = cluster.centre - cluster.height / 2.0;
-        for member in cluster.members {
-            out[member] = y + blocks[member].1 / 2.0;
-            y += blocks[member].1;
-        }
-    }
-    out
-}
-
 fn words(context: &Context<'_>, drawing: &mut Drawing, layout: &Layout, row: &Row<'_>, middle: f64) {
     words_at(context, drawing, layout, row, middle + if layout.slim { -3.5 } else { 4.5 });
 }
@@ -355,55 +266,6 @@ pub fn doping_words(row: &Row<'_>) -> Option<String> {
     Some(format!("{polarity} {} {species}", doping(density)).trim().to_string())
 }
 
-/// What a height means, and what the hatches are; returns where the drawing ends.
-fn keys(context: &Context<'_>, drawing: &mut Drawing, layout: &Layout, rows: &[Row<'_>], top: f64) -> f64 {
-    let measured = rows.iter().any(|row| row.result.thickness_nm.is_some());
-    let mut bottom = top - 6.0;
-    let small = |x: f64, y: f64, words: &str| Label::at(x, y, words).size(11.5).class("q");
-    let left = if layout.slim { 2.0 } else { layout.stack.0 };
-    if measured {
-        drawing.text(small(left, top + 12.0, "height of a layer by its thickness"));
-        let tallest = layout.height(Some(10_000.0));
-        let ground = top + 24.0 + tallest;
-        let mut x = left;
-        for (nm, words) in [(10.0, "10 nm"), (100.0, "100 nm"), (1000.0, "1 µm"), (10_000.0, "10 µm")] {
-            let h = layout.height(Some(nm));
-            drawing.rect("lay", (x, ground - h), (11.0, h));
-            drawing.text(small(x + 15.0, ground, words));
-            x += if nm == 100.0 { 72.0 } else { 64.0 };
-        }
-        bottom = ground + 6.0;
-    }
-    let mut seen: Vec<(&'static str, Style)> = Vec::new();
-    let shown =
-        rows.iter().copied().chain(context.layers().filter(|row| row.layer.extent == Extent::UnderFingers));
-    for row in shown {
-        let style = row.style();
-        if let Some(key) = style.key
-            && !seen.iter().any(|(other, _)| *other == key)
-        {
-            seen.push((key, style));
-        }
-    }
-    if !seen.is_empty() {
-        let (x, y) = match (layout.slim, measured) {
-            (true, true) => (2.0, bottom + 10.0),
-            (true, false) => (2.0, top),
-            (false, true) => (428.0, top),
-            (false, false) => (layout.stack.0, top),
-        };
-        drawing.text(small(x, y + 12.0, "solid makes current, hatched serves it"));
-        let (across, step) = if layout.slim { (3, 132.0) } else { (3, 136.0) };
-        for (index, (key, style)) in seen.iter().enumerate() {
-            let (cx, cy) = (x + step * (index % across) as f64, y + 24.0 + 25.0 * (index / across) as f64);
-            area(drawing, style, (cx, cy), (26.0, 16.0));
-            drawing.text(small(cx + 32.0, cy + 12.5, &fit(key, 11.5, false, step - 38.0)));
-        }
-        bottom = bottom.max(y + 24.0 + 25.0 * seen.len().div_ceil(across) as f64);
-    }
-    bottom + 4.0
-}
-
 /// The band over the title: this stack's own layers side by side, as decoration.
 pub fn selvedge(context: &Context<'_>, size: (f64, f64)) -> Drawing {
     let layout = Layout { width: size.0, stack: (0.0, size.0), least: 12.0, shrink: 1.0, slim: false };
@@ -426,15 +288,4 @@ pub fn selvedge(context: &Context<'_>, size: (f64, f64)) -> Drawing {
         x += w;
     }
     drawing
-}
-
-#[cfg(test)]
-mod tests {
-    use super::*;
-
-    #[test]
-    fn blocks_that_meet_are_pushed_apart_evenly() {
-        assert_eq!(spread(&[(50.0, 20.0), (55.0, 20.0)], 0.0), [42.5, 62.5]);
-        assert_eq!(spread(&[(5.0, 20.0), (200.0, 20.0)], 0.0), [10.0, 200.0]);
-    }
 }

@@ -1,0 +1,146 @@
+//! Stacks whose sheets are held in tests: the demos, one to six junctions, very many layers, and
+//! names that try to be markup.
+
+use std::path::Path;
+use std::sync::OnceLock;
+
+use bandloom::compile::{Options, compile};
+use bandloom::report::view::{self, Sheet};
+use bandloom::report::{AcceptedRow, FindingRow, Format, OutputFile, ReportInput, Templates, render};
+use bandloom::world::memory::Memory;
+
+pub(super) const SANDPIPER: &str = include_str!("../../stacks/sandpiper.stack");
+pub(super) const KITTIWAKE: &str = include_str!("../../stacks/kittiwake.stack");
+pub(super) const LIMITS: &str = include_str!("../../stacks/gap_limits.stack");
+
+pub(super) const ALL: &[Format] = &[Format::Html, Format::Markdown, Format::Json, Format::Csv];
+
+/// One stack that was evaluated, with everything the sheet is made of, and its files.
+pub(super) struct Case {
+    pub(super) files: Vec<OutputFile>,
+    pub(super) name: String,
+    stack: bandloom::compile::Stack,
+    findings: Vec<FindingRow>,
+    accepted: Vec<AcceptedRow>,
+}
+
+impl Case {
+    pub(super) fn input(&self) -> ReportInput<'_> {
+        ReportInput {
+            design: &self.stack.design,
+            results: self.stack.results.as_ref().expect("evaluated"),
+            findings: &self.findings,
+            accepted: &self.accepted,
+        }
+    }
+
+    pub(super) fn sheet(&self) -> Sheet {
+        view::sheet(&self.input()).expect("a condition was evaluated")
+    }
+
+    pub(super) fn rendered(&self) -> Vec<OutputFile> {
+        render(&self.input(), ALL, &Templates::default()).expect("built-in templates hold")
+    }
+
+    pub(super) fn text(&self, file: &str) -> String {
+        let found = self.files.iter().find(|f| f.name == file).unwrap_or_else(|| panic!("no {file}"));
+        String::from_utf8(found.bytes.clone()).expect("UTF-8")
+    }
+}
+
+/// Every evaluated stack of a text read under `path`.
+pub(super) fn cases(path: &str, text: &str) -> Vec<Case> {
+    let world = Memory::new().with(path, text);
+    let compiled = compile(&world, Path::new(path), &Options::default());
+    let row = |finding: &bandloom::finding::Finding| {
+        let place = finding.primary.as_ref().map(|label| {
+            let source = compiled.sources.get(label.span.source);
+            source.position(label.span.start as usize)
+        });
+        FindingRow {
+            code: finding.code.into(),
+            severity: finding.severity.word().into(),
+            message: finding.message.clone(),
+            file: place.map(|_| path.into()),
+            line: place.map(|p| p.line),
+            column: place.map(|p| p.column),
+            end_line: None,
+            end_column: None,
+            help: finding.helps.clone(),
+            fix: None,
+        }
+    };
+    let found: Vec<String> = compiled.findings.iter().map(|f| format!("{}: {}", f.code, f.message)).collect();
+    let mut out: Vec<Case> = compiled
+        .stacks
+        .iter()
+        .filter(|stack| stack.results.is_some())
+        .map(|stack| Case {
+            files: Vec::new(),
+            name: stack.design.name.value.chars().take(40).collect(),
+            findings: stack.findings.iter().map(row).collect(),
+            accepted: stack
+                .accepted
+                .iter()
+                .map(|a| AcceptedRow { finding: row(&a.finding), reason: a.because.clone() })
+                .collect(),
+            stack: stack.clone(),
+        })
+        .collect();
+    assert!(!out.is_empty(), "nothing of {path} was evaluated: {found:#?}");
+    for case in &mut out {
+        case.files = case.rendered();
+    }
+    out
+}
+
+/// `n` junctions of a limit study, wide gaps first.
+fn junctions(n: usize) -> String {
+    let mut text = format!("stack \"{n} junctions\" {{\n    light AM1.5G\n");
+    for index in 0..n {
+        let gap = 2.2 - 1.5 * index as f64 / n as f64;
+        text.push_str(&format!(
+            "    junction number_{index} {{ absorber ideal of gap {gap:.3} eV absorbs all_above_gap }}\n"
+        ));
+    }
+    text + "}\n"
+}
+
+/// Sixty layers over one junction.
+fn many_layers() -> String {
+    let mut text =
+        String::from("stack \"Sixty\" {\n    light AM1.5G\n    optics one_pass { front_reflectance 2 % }\n");
+    for index in 0..58 {
+        let (name, nm) = if index % 2 == 0 { ("MgF2", 95) } else { ("ZnS", 48) };
+        text.push_str(&format!("    coat {name} {nm} nm\n"));
+    }
+    text + "    junction only {\n        emitter GaAs 100 nm n 2e18 /cm3 Si\n        base GaAs 3 um p 1e17 /cm3 Zn\n        voltage from ere 1 %\n    }\n    wafer GaAs 350 um p 1e18 /cm3 Zn\n}\n"
+}
+
+/// Names that try to be markup, break tables, turn the text around, or never end.
+pub(super) fn hostile() -> String {
+    let long = "x".repeat(300);
+    let word = "w".repeat(120);
+    format!(
+        "condition {word} {{\n    light AM1.5G\n    temperature 30 degC\n}}\nstack \"<script>alert(1)</script> | `tick` **bold** [a](b) \u{202e}turned\u{2066} &amp; {long}\" {{\n    note \"</style><img src=x onerror=alert(1)> | # heading | @all https://example.org\"\n    conditions {word}\n    junction {word} {{ absorber ideal of gap 1.9 eV absorbs all_above_gap }}\n    junction b {{ absorber ideal of gap 1.3 eV absorbs all_above_gap }}\n    require efficiency >= 99 %\n    accept current.mismatch on {word} because \"<b>|`why`|</b> \u{202e}\"\n}}\n"
+    )
+}
+
+/// Made once: evaluation is the slow part.
+pub(super) fn every_case() -> &'static [Case] {
+    static ALL_CASES: OnceLock<Vec<Case>> = OnceLock::new();
+    ALL_CASES.get_or_init(make_cases)
+}
+
+fn make_cases() -> Vec<Case> {
+    let mut all = Vec::new();
+    all.extend(cases("stacks/sandpiper.stack", SANDPIPER));
+    all.extend(cases("stacks/kittiwake.stack", KITTIWAKE));
+    all.extend(cases("stacks/gap_limits.stack", LIMITS));
+    for n in 1..=6 {
+        all.extend(cases("limit.stack", &junctions(n)));
+    }
+    all.extend(cases("sixty.stack", &many_layers()));
+    all.extend(cases("a<b>|`c`.stack", &hostile()));
+    all
+}
