@@ -9,6 +9,7 @@ mod integration {
     mod materials;
     mod physics;
     mod physics_circuit;
+    mod physics_grid;
     mod physics_properties;
     mod robustness;
     mod sheet;

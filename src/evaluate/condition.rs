@@ -158,7 +158,7 @@ fn layer_light(design: &Design, lit: &Lit, enters: f64) -> Vec<LayerLight> {
         })
         .collect();
     for (row, (layer, junction)) in lit.rows.iter().enumerate() {
-        let current = MA_PER_CM2 * enters * lit.row_current(row);
+        let current = MA_PER_CM2 * enters * lit.row_current[row];
         layers[*layer].absorbed_ma_per_cm2 += current;
         if junction.is_some() {
             layers[*layer].collected_ma_per_cm2 += current;

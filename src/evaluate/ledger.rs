@@ -52,7 +52,7 @@ pub(super) fn account(
         line("reflected", open * front * inside),
     ];
     for (row, (layer, junction)) in lit.rows.iter().enumerate() {
-        let power = enters * lit.row_power(row);
+        let power = enters * lit.row_power[row];
         if junction.is_none() && power > 0.0 {
             let path = design.layers[*layer].path.clone();
             lines.push(LedgerLine { layer: Some(path), ..line("absorbed", power) });

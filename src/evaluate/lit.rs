@@ -4,7 +4,7 @@ use crate::circuit::radiative::{Radiative, Statistics};
 use crate::design::{Condition, Design, Place};
 use crate::light::{DATA_START_M, Spectrum};
 use crate::numerics::constants::{CHARGE, HC_EV};
-use crate::numerics::quadrature::{integral_between, linear_at};
+use crate::numerics::quadrature::{integral_between, linear_along};
 use crate::optics::grid::{Features, spectral_grid};
 use crate::optics::one_pass::{OnePass, Shares};
 
@@ -34,6 +34,10 @@ pub(super) struct Lit {
     pub(super) current_weight: Vec<f64>,
     /// W/m2 per unit share.
     pub(super) power_weight: Vec<f64>,
+    /// Photon current absorbed in each row, A/m2, of the light that enters.
+    pub(super) row_current: Vec<f64>,
+    /// Power absorbed in each row, W/m2, of the light that enters.
+    pub(super) row_power: Vec<f64>,
     /// Of each junction at this temperature, eV.
     pub(super) gap_ev: Vec<f64>,
     /// Of each junction.
@@ -49,21 +53,18 @@ impl Lit {
         let optics = OnePass::new(design, temperature_k);
         let rows = optics.rows();
         let features = features(light, &optics, &gap_ev)?;
-        let wavelength_m = spectral_grid(light, &features, |wavelengths| {
-            let shares = optics.shares(wavelengths);
-            by_junction(&rows, &shares, gap_ev.len())
-        });
-        let shares = optics.shares(&wavelength_m);
+        let (wavelength_m, shares) = spectral_grid(light, &features, &optics, gap_ev.len());
         let flux = light.photon_flux();
-        let at = |values: &[f64]| -> Vec<f64> {
-            wavelength_m.iter().map(|&point| linear_at(&light.wavelength_m, values, point)).collect()
-        };
+        let at = |values: &[f64]| linear_along(&light.wavelength_m, values, &wavelength_m);
         let mut current_weight = weights(&wavelength_m, &at(&flux));
         current_weight.iter_mut().for_each(|weight| *weight *= CHARGE);
         let power_weight = weights(&wavelength_m, &at(&light.irradiance));
         let inside: f64 = power_weight.iter().sum();
         let emission = emission(&optics, &gap_ev, temperature_k);
+        let by_row = |weight: &[f64]| shares.absorbed.iter().map(|share| dot(share, weight)).collect();
         Some(Self {
+            row_current: by_row(&current_weight),
+            row_power: by_row(&power_weight),
             rows,
             wavelength_m,
             shares,
@@ -76,16 +77,6 @@ impl Lit {
         })
     }
 
-    /// Photon current of one row, A/m2, of the light that enters.
-    pub(super) fn row_current(&self, row: usize) -> f64 {
-        dot(&self.shares.absorbed[row], &self.current_weight)
-    }
-
-    /// Absorbed power of one row, W/m2, of the light that enters.
-    pub(super) fn row_power(&self, row: usize) -> f64 {
-        dot(&self.shares.absorbed[row], &self.power_weight)
-    }
-
     /// Rows that `junction` collects.
     pub(super) fn collected(&self, junction: usize) -> impl Iterator<Item = usize> {
         self.rows.iter().enumerate().filter(move |(_, row)| row.1 == Some(junction)).map(|(index, _)| index)
@@ -94,7 +85,7 @@ impl Lit {
     /// Photocurrent of `junction`, A/m2, of the light that enters: every photon absorbed where it
     /// is collected gives one electron.
     pub(super) fn photocurrent(&self, junction: usize) -> f64 {
-        self.collected(junction).map(|row| self.row_current(row)).sum()
+        self.collected(junction).map(|row| self.row_current[row]).sum()
     }
 
     /// Share `junction` collects of the light that enters, by wavelength.
@@ -159,16 +150,6 @@ fn features(light: &Spectrum, optics: &OnePass, gap_ev: &[f64]) -> Option<Featur
     let range_m = (first.max(from), last.min(to));
     let jumps_m = optics.jumps_m().into_iter().chain(edges).collect();
     (range_m.0 < range_m.1).then(|| Features { range_m, jumps_m, knots_m: optics.knots_m() })
-}
-
-fn by_junction(rows: &[(usize, Option<usize>)], shares: &Shares, junctions: usize) -> Vec<Vec<f64>> {
-    let mut sums = vec![vec![0.0; shares.passing.len()]; junctions];
-    for ((_, junction), share) in rows.iter().zip(&shares.absorbed) {
-        if let Some(junction) = junction {
-            sums[*junction].iter_mut().zip(share).for_each(|(sum, part)| *sum += part);
-        }
-    }
-    sums
 }
 
 fn emission(optics: &OnePass, gap_ev: &[f64], temperature_k: f64) -> Vec<Radiative> {

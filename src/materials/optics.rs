@@ -86,9 +86,13 @@ impl IndexTable {
     /// Beyond the ends the end value is held.
     pub fn at(&self, wavelength_m: f64, shift_ev: f64) -> (f64, f64) {
         let own = self.own_wavelength(wavelength_m, shift_ev);
+        self.before(own, self.wavelength_m.partition_point(|&point| point <= own))
+    }
+
+    /// `(n, k)` at a wavelength of the table, `above` being the first point beyond it.
+    fn before(&self, own: f64, above: usize) -> (f64, f64) {
         let grid = &self.wavelength_m;
         let last = grid.len() - 1;
-        let above = grid.partition_point(|&point| point <= own);
         if above == 0 {
             return (self.n[0], self.k[0]);
         }
@@ -106,6 +110,26 @@ impl IndexTable {
             return (n, k0 * (k1 / k0).powf(along));
         }
         (n, k0 + share * (k1 - k0))
+    }
+
+    /// `k` of [`IndexTable::at`] at many wavelengths, the same to the bit. Fastest where
+    /// neighbours lie close to each other: each search starts where the last one ended.
+    fn k_along(&self, wavelength_m: &[f64], shift_ev: f64) -> Vec<f64> {
+        let grid = &self.wavelength_m;
+        let mut above = 0;
+        wavelength_m
+            .iter()
+            .map(|&wavelength| {
+                let own = self.own_wavelength(wavelength, shift_ev);
+                while above < grid.len() && grid[above] <= own {
+                    above += 1;
+                }
+                while above > 0 && grid[above - 1] > own {
+                    above -= 1;
+                }
+                self.before(own, above).1
+            })
+            .collect()
     }
 
     /// Drops the points outside `low..=high` m, unless none would be left.
@@ -150,6 +174,18 @@ impl Optics {
                 4.0 * std::f64::consts::PI * table.at(wavelength_m, shift_ev).1 / wavelength_m
             }
             Self::Direct(edge) => edge.absorption(photon_ev(wavelength_m) - shift_ev),
+        }
+    }
+
+    /// [`Optics::absorption`] at many wavelengths, 1/m, the same to the bit.
+    pub fn absorption_along(&self, wavelength_m: &[f64], shift_ev: f64) -> Vec<f64> {
+        match self {
+            Self::Table(table) => {
+                let k = table.k_along(wavelength_m, shift_ev);
+                let each = k.iter().zip(wavelength_m);
+                each.map(|(k, wavelength)| 4.0 * std::f64::consts::PI * k / wavelength).collect()
+            }
+            _ => wavelength_m.iter().map(|&wavelength| self.absorption(wavelength, shift_ev)).collect(),
         }
     }
 

@@ -28,6 +28,24 @@ pub fn linear_at(x: &[f64], f: &[f64], at: f64) -> f64 {
     }
 }
 
+/// [`linear_at`] at many ascending places.
+pub fn linear_along(x: &[f64], f: &[f64], places: &[f64]) -> Vec<f64> {
+    let mut above = 0;
+    places
+        .iter()
+        .map(|&at| {
+            while above < x.len() && x[above] <= at {
+                above += 1;
+            }
+            if above == 0 || above == x.len() {
+                return linear_at(x, f, at);
+            }
+            let n = above;
+            f[n - 1] + (f[n] - f[n - 1]) * (at - x[n - 1]) / (x[n] - x[n - 1])
+        })
+        .collect()
+}
+
 /// `∫ f dx` from `from` to `to` for `f` linear between ascending points and 0 outside them: the
 /// ends are interpolated, never rounded to a point. 0 where `to <= from`.
 pub fn integral_between(x: &[f64], f: &[f64], from: f64, to: f64) -> f64 {
@@ -89,6 +107,7 @@ mod tests {
         assert_eq!(linear_at(&x, &f, 2.0), 5.0);
         assert_eq!(linear_at(&x, &f, 2.1), 0.0);
         assert_eq!(linear_at(&x, &f, 0.9), 0.0);
+        assert_eq!(linear_along(&x, &f, &[0.9, 1.0, 1.5, 2.0, 2.1]), [0.0, 3.0, 4.0, 5.0, 0.0]);
     }
 
     #[test]

@@ -2,15 +2,20 @@
 
 use crate::light::Spectrum;
 use crate::numerics::constants::CHARGE;
-use crate::numerics::quadrature::linear_at;
+use crate::numerics::quadrature::{linear_along, product_integral};
+use crate::optics::one_pass::{OnePass, Shares};
 
 /// How far apart the two sides of a jump stand, relative: far below what any current could show,
 /// far above rounding.
 const SIDE: f64 = 1e-13;
 
-/// Largest relative error of a current by the estimate below: a fifth of the 0.01 % that a
-/// twofold refinement may move it.
-const CURRENT_TOLERANCE: f64 = 2e-5;
+/// Largest relative error of a current by the estimate below: half of the 0.01 % that a twofold
+/// refinement may move it.
+const CURRENT_TOLERANCE: f64 = 5e-5;
+
+/// How much smaller than allowed a curvature seen from the neighbours has to be for an interval
+/// to be left alone without asking for its middle.
+const TRUST: f64 = 3.0;
 
 /// Table points nearer to their neighbour than this are left out, m: the subdivision puts back
 /// what they would have shown.
@@ -30,64 +35,141 @@ pub struct Features {
     pub knots_m: Vec<f64>,
 }
 
-/// Ascending wavelengths, m: the union of the spectrum's points and the knots, both sides of
-/// every jump, and the ends of the range; then every interval halved until halving all of them
-/// once more would move no current by more than 0.01 %.
+/// Ascending wavelengths, m, and the shares there: the union of the spectrum's points and the
+/// knots, both sides of every jump, and the ends of the range; then intervals halved until halving
+/// all of them once more would move the current of no junction by more than 0.01 %.
 ///
-/// `shares` returns the share of light each current takes, `[current][wavelength]`. Photon flux
-/// and share are taken as linear between points, so that an interval of width `h` with the flux
-/// `Φ` and the share off its chord by `δ` in the middle is wrong by `⅔ q Φ h δ` (Simpson's rule
-/// less the trapezoid).
+/// Photon flux and share are taken as linear between points, so that an interval of width `h` with
+/// the flux `Φ` and the share off its chord by `δ` in the middle is wrong by `⅔ q Φ h δ`
+/// (Simpson's rule less the trapezoid). The middle is asked for where the slopes around an
+/// interval leave room for that.
 pub fn spectral_grid(
     light: &Spectrum,
     features: &Features,
-    shares: impl Fn(&[f64]) -> Vec<Vec<f64>>,
-) -> Vec<f64> {
-    let mut points = union(light, features);
-    let flux = light.photon_flux();
-    let flux_at = |wavelength: f64| CHARGE * linear_at(&light.wavelength_m, &flux, wavelength);
+    optics: &OnePass,
+    junctions: usize,
+) -> (Vec<f64>, Shares) {
+    let points = union(light, features);
+    let flux: Vec<f64> = light.photon_flux().iter().map(|flux| CHARGE * flux).collect();
+    let shares = optics.shares(&points);
+    let sums = optics.by_junction(&shares, junctions);
+    let flux_here = linear_along(&light.wavelength_m, &flux, &points);
+    let allowed: Vec<f64> = sums
+        .iter()
+        .map(|sum| CURRENT_TOLERANCE * product_integral(&points, sum, &flux_here) / points.len() as f64)
+        .collect();
 
-    let values = shares(&points);
-    let currents: Vec<f64> = values.iter().map(|row| current(&points, row, flux_at)).collect();
-    let allowed: Vec<f64> = {
-        let each = CURRENT_TOLERANCE / points.len().max(1) as f64;
-        currents.iter().map(|current| current * each).collect()
-    };
-
-    // Intervals still open: left, right, and the shares at both, flattened.
-    let rows = values.len();
-    let mut open: Vec<(f64, f64)> = points.windows(2).map(|pair| (pair[0], pair[1])).collect();
-    let mut ends: Vec<f64> = Vec::with_capacity(2 * rows * open.len());
-    for i in 0..open.len() {
-        ends.extend(values.iter().flat_map(|row| [row[i], row[i + 1]]));
-    }
+    let mut open = doubtful(&points, &sums, &flux_here, &allowed);
+    let mut added = Batch::default();
     for _ in 0..DEEPEST {
-        let middles: Vec<f64> = open.iter().map(|(left, right)| 0.5 * (left + right)).collect();
-        let middle_values = shares(&middles);
-        let (mut next, mut next_ends) = (Vec::new(), Vec::new());
-        for (i, &(left, right)) in open.iter().enumerate() {
-            let middle = middles[i];
-            let own = &ends[2 * rows * i..2 * rows * (i + 1)];
-            let weight = 2.0 / 3.0 * flux_at(middle) * (right - left);
-            let too_coarse = (0..rows).any(|row| {
-                let off = middle_values[row][i] - 0.5 * (own[2 * row] + own[2 * row + 1]);
-                weight * off.abs() > allowed[row]
-            });
-            if too_coarse && middle > left && middle < right {
-                points.push(middle);
-                next.push((left, middle));
-                next.push((middle, right));
-                next_ends.extend((0..rows).flat_map(|row| [own[2 * row], middle_values[row][i]]));
-                next_ends.extend((0..rows).flat_map(|row| [middle_values[row][i], own[2 * row + 1]]));
-            }
-        }
-        if next.is_empty() {
+        if open.is_empty() {
             break;
         }
-        (open, ends) = (next, next_ends);
+        let middles: Vec<f64> = open.iter().map(|interval| 0.5 * (interval.left + interval.right)).collect();
+        let shares = optics.shares(&middles);
+        let sums = optics.by_junction(&shares, junctions);
+        let flux_here = linear_along(&light.wavelength_m, &flux, &middles);
+        let mut next = Vec::new();
+        for (i, interval) in open.iter().enumerate() {
+            let middle = middles[i];
+            let weight = 2.0 / 3.0 * flux_here[i] * (interval.right - interval.left);
+            let values: Vec<f64> = sums.iter().map(|sum| sum[i]).collect();
+            let too_coarse =
+                values.iter().zip(&interval.ends).zip(&allowed).any(|((value, ends), allowed)| {
+                    weight * (value - 0.5 * (ends.0 + ends.1)).abs() > *allowed
+                });
+            if too_coarse && middle > interval.left && middle < interval.right {
+                added.push(middle, &shares, i);
+                let (left, right) = interval.halves(middle, &values);
+                next.extend([left, right]);
+            }
+        }
+        open = next;
     }
-    points.sort_by(f64::total_cmp);
-    points
+    added.merge_into(points, shares)
+}
+
+/// An interval that may be too coarse, with the shares of each junction at both ends.
+struct Interval {
+    left: f64,
+    right: f64,
+    ends: Vec<(f64, f64)>,
+}
+
+impl Interval {
+    fn halves(&self, middle: f64, values: &[f64]) -> (Self, Self) {
+        let lower = self.ends.iter().zip(values).map(|(ends, value)| (ends.0, *value)).collect();
+        let upper = self.ends.iter().zip(values).map(|(ends, value)| (*value, ends.1)).collect();
+        (
+            Self { left: self.left, right: middle, ends: lower },
+            Self { left: middle, right: self.right, ends: upper },
+        )
+    }
+}
+
+/// Intervals whose neighbours' slopes leave room for an error beyond what is allowed: with the
+/// curvature from the change of slope, `δ = f'' h²/8`.
+fn doubtful(points: &[f64], sums: &[Vec<f64>], flux: &[f64], allowed: &[f64]) -> Vec<Interval> {
+    let intervals = points.len().saturating_sub(1);
+    let width = |i: usize| points[i + 1] - points[i];
+    let mut wanted = vec![false; intervals];
+    for (sum, allowed) in sums.iter().zip(allowed) {
+        let slope = |i: usize| (sum[i + 1] - sum[i]) / width(i);
+        for i in 0..intervals {
+            let h = width(i);
+            let bend = |other: usize| (slope(i) - slope(other)).abs() / (h + width(other));
+            let before = if i > 0 { bend(i - 1) } else { 0.0 };
+            let after = if i + 1 < intervals { bend(i + 1) } else { 0.0 };
+            let off = 0.25 * h * h * before.max(after);
+            wanted[i] |= TRUST * 2.0 / 3.0 * flux[i].max(flux[i + 1]) * h * off > *allowed;
+        }
+    }
+    let interval = |i: usize| Interval {
+        left: points[i],
+        right: points[i + 1],
+        ends: sums.iter().map(|sum| (sum[i], sum[i + 1])).collect(),
+    };
+    (0..intervals).filter(|&i| wanted[i]).map(interval).collect()
+}
+
+/// Points put in between, with their shares.
+#[derive(Default)]
+struct Batch {
+    points: Vec<f64>,
+    shares: Shares,
+}
+
+impl Batch {
+    fn push(&mut self, point: f64, shares: &Shares, at: usize) {
+        self.points.push(point);
+        self.shares.absorbed.resize(shares.absorbed.len(), Vec::new());
+        for (own, row) in self.shares.absorbed.iter_mut().zip(&shares.absorbed) {
+            own.push(row[at]);
+        }
+        self.shares.passing.push(shares.passing[at]);
+    }
+
+    /// Both together in ascending order.
+    fn merge_into(self, points: Vec<f64>, shares: Shares) -> (Vec<f64>, Shares) {
+        if self.points.is_empty() {
+            return (points, shares);
+        }
+        let first = points.len();
+        let all: Vec<f64> = points.into_iter().chain(self.points).collect();
+        let mut order: Vec<usize> = (0..all.len()).collect();
+        order.sort_by(|&a, &b| all[a].total_cmp(&all[b]));
+        let pick = |base: &[f64], added: &[f64]| -> Vec<f64> {
+            order.iter().map(|&at| if at < first { base[at] } else { added[at - first] }).collect()
+        };
+        let absorbed = shares
+            .absorbed
+            .iter()
+            .zip(&self.shares.absorbed)
+            .map(|(base, added)| pick(base, added))
+            .collect();
+        let passing = pick(&shares.passing, &self.shares.passing);
+        (order.iter().map(|&at| all[at]).collect(), Shares { absorbed, passing })
+    }
 }
 
 fn union(light: &Spectrum, features: &Features) -> Vec<f64> {
@@ -118,9 +200,4 @@ fn union(light: &Spectrum, features: &Features) -> Vec<f64> {
         points.push(point);
     }
     points
-}
-
-fn current(points: &[f64], share: &[f64], flux_at: impl Fn(f64) -> f64) -> f64 {
-    let product: Vec<f64> = points.iter().zip(share).map(|(&point, share)| share * flux_at(point)).collect();
-    crate::numerics::quadrature::integral(points, &product)
 }

@@ -196,6 +196,17 @@ impl OnePass {
         Shares { absorbed, passing: left }
     }
 
+    /// Share each of the first `junctions` junctions collects, `[junction][wavelength]`.
+    pub fn by_junction(&self, shares: &Shares, junctions: usize) -> Vec<Vec<f64>> {
+        let mut sums = vec![vec![0.0; shares.passing.len()]; junctions];
+        for (slab, share) in self.slabs.iter().zip(&shares.absorbed) {
+            if let Some(sum) = slab.junction.and_then(|junction| sums.get_mut(junction)) {
+                sum.iter_mut().zip(share).for_each(|(sum, part)| *sum += part);
+            }
+        }
+        sums
+    }
+
     /// Share of the light entering at the front that `junction` collects, at wavelengths in m.
     pub fn junction_share(&self, junction: usize, wavelength_m: &[f64]) -> Vec<f64> {
         let mut sum = vec![0.0; wavelength_m.len()];
@@ -235,8 +246,7 @@ impl OnePass {
                 Law::Bulk { medium, thickness_m } => {
                     let medium_absorption = absorption[medium].get_or_insert_with(|| {
                         let Medium { material, edge_shift_ev } = &self.media[medium];
-                        let at = |&wavelength| material.optics.absorption(wavelength, *edge_shift_ev);
-                        wavelength_m.iter().map(at).collect()
+                        material.optics.absorption_along(wavelength_m, *edge_shift_ev)
                     });
                     medium_absorption.iter().map(|&alpha| taken_by(alpha * thickness_m)).collect()
                 }
