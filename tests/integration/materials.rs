@@ -360,3 +360,102 @@ fn definitions_that_lead_in_a_circle_end() {
     )]);
     assert!(!found.is_empty());
 }
+
+/// The designs of a file that has no findings.
+fn designs(text: &str) -> Vec<bandloom::design::Design> {
+    let world = Memory::new().with("main.stack", text);
+    let mut sources = Sources::default();
+    let outcome = resolve(&world, &mut sources, Path::new("main.stack"), &Overrides::default());
+    assert!(outcome.findings.is_empty(), "{:#?}", outcome.findings);
+    outcome.value.expect("designs")
+}
+
+#[test]
+fn graded_layers_step_through_their_range() {
+    let designs = designs(
+        "stack \"Graded\" {\n light AM1.5G\n growth inverted\n junction top { emitter GaInP matched 50 nm n 1e18 /cm3\n base GaInP matched 500 nm p 1e17 /cm3\n voltage from ere 1 % }\n\
+         buffer graded GaInP with In 0.49 .. 0.70 in 8 steps of 250 nm relaxed\n\
+         junction low { emitter InGaAs matched 50 nm n 1e18 /cm3\n base InGaAs matched 2 um p 1e17 /cm3\n voltage from ere 1 % }\n wafer GaAs 350 um p 1e18 /cm3 removed\n}\n",
+    );
+    let material = |layer: &bandloom::design::Layer| layer.material.clone().expect("a material");
+    let steps: Vec<f64> = designs[0]
+        .layers
+        .iter()
+        .filter(|layer| layer.path.starts_with("buffer"))
+        .map(|layer| fraction(&material(layer), "In"))
+        .collect();
+    assert_eq!(steps.len(), 8);
+    for (step, value) in steps.iter().enumerate() {
+        near(*value, 0.49 + 0.03 * step as f64, 1e-12, "a step");
+    }
+    // What is matched on top has the lattice of the last step, at 25 °C.
+    let lattice = |path: &str| {
+        let layer = designs[0].layers.iter().find(|layer| layer.path == path).expect("a layer");
+        material(layer).lattice_constant(298.15).expect("a lattice")
+    };
+    near(lattice("low.base") / lattice("buffer.step8"), 1.0, 1e-9, "matched to the last step");
+}
+
+#[test]
+fn compositions_and_gaps_may_be_left_free() {
+    let designs = designs(
+        "stack \"Free\" {\n light AM1.5G\n junction a { absorber ideal of gap 1.8 eV free 1.6 .. 2.2 eV absorbs all_above_gap }\n\
+         junction b { emitter GaInP with In free 0.4 .. 0.6 50 nm n 1e18 /cm3\n base GaAs 3 um p 1e17 /cm3\n voltage from ere 1 % }\n wafer GaAs 350 um p 1e18 /cm3\n}\n",
+    );
+    let free = |path: &str| {
+        designs[0].free_values.iter().find(|free| free.path == path).expect("a free value").clone()
+    };
+    // 1.8 eV in J by the exact elementary charge.
+    near(free("a.absorber.gap").value.expect("settled") / 1.602_176_634e-19, 1.8, 1e-12, "settled gap");
+    let indium = free("b.emitter.composition.In");
+    assert_eq!((indium.value, indium.range), (None, (0.4, 0.6)));
+    let layers = &designs[0].layers;
+    let emitter = layers.iter().find(|layer| layer.path == "b.emitter").expect("a layer");
+    assert!(emitter.material.is_none());
+}
+
+/// Each measured composition of AlGaAs (D. E. Aspnes et al., J. Appl. Phys. 60, 754 (1986)) predicted
+/// from its two neighbours: the test by which the mapping was published (P. G. Snyder et al.,
+/// J. Appl. Phys. 68, 5925 (1990)). Averages at fixed energy have to do worse.
+#[test]
+fn a_measured_composition_is_predicted_from_its_neighbours() {
+    use bandloom::materials::alloy::FamilyIndex;
+
+    let family = family("AlGaAs");
+    let FamilyIndex::Blend(blend) = &family.index else { panic!("a blend") };
+    let (mut mapped, mut plain) = (0.0, 0.0);
+    for at in 2..blend.samples.len() - 2 {
+        let [left, sample, right] = [at - 1, at, at + 1].map(|at| &blend.samples[at]);
+        let mut without = (*family).clone();
+        if let FamilyIndex::Blend(blend) = &mut without.index {
+            blend.samples.remove(at);
+        }
+        let predicted = without.at(&sample.composition, None);
+        let x = |sample: &bandloom::materials::alloy::blend::Sample| sample.composition[0][0];
+        let share = (x(sample) - x(left)) / (x(right) - x(left));
+        let gap = sample.table.gap_ev.expect("an edge");
+        let (mut own_way, mut other_way, mut count) = ([0.0; 2], [0.0; 2], 0.0);
+        for step in 0..=60 {
+            let energy = 1.9 + 2.5 * f64::from(step) / 60.0;
+            if energy < gap + 0.1 {
+                continue;
+            }
+            let at = |sample: &bandloom::materials::alloy::blend::Sample| sample.table.at(EV_M / energy, 0.0);
+            let own = at(sample);
+            let (n, k) = predicted.index(EV_M / energy, 300.0).expect("an index");
+            let mix = |a: f64, b: f64| a + share * (b - a);
+            own_way[0] += (n - own.0).powi(2);
+            own_way[1] += (k - own.1).powi(2);
+            other_way[0] += (mix(at(left).0, at(right).0) - own.0).powi(2);
+            other_way[1] += (mix(at(left).1, at(right).1) - own.1).powi(2);
+            count += 1.0;
+        }
+        let rms = |sums: [f64; 2]| sums.map(|sum: f64| (sum / count).sqrt());
+        let [n, k] = rms(own_way);
+        // The scatter of the samples' compositions leaves some hundredths.
+        assert!(n < 0.05 && k < 0.05, "Al {}: n off by {n}, k by {k}", x(sample));
+        mapped += n + k;
+        plain += rms(other_way).iter().sum::<f64>();
+    }
+    assert!(mapped < 0.8 * plain, "mapped {mapped}, averaged {plain}");
+}

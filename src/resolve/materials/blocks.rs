@@ -34,7 +34,14 @@ const GROUPS: &[&str] = &[
 ];
 
 /// Words of the language whose numbers nothing uses yet.
-const PENDING: &[&str] = &["mobility", "lifetime", "radiative", "doping_limit", "damage", "expansion"];
+const PENDING: &[&str] = &["mobility", "lifetime", "radiative", "doping_limit", "damage"];
+
+/// Words that are often written beside their group instead of into it.
+const HOMES: &[(&str, &[&str])] = &[
+    ("lattice", &["expansion", "slope", "lattice_constant"]),
+    ("gap", &["direct", "x", "l", "split_off"]),
+    ("index", &["table", "constant", "sellmeier", "cauchy"]),
+];
 
 /// Where the tables of an item are.
 #[derive(Clone, Copy)]
@@ -152,6 +159,14 @@ impl<'a> Reader<'a> {
     }
 
     pub(super) fn unknown_word(&mut self, property: &Property, word: &str) {
+        if let Some((group, ..)) = HOMES.iter().find(|(_, words)| words.contains(&word)) {
+            self.scope.report(
+                Finding::error("material.statement", format!("`{word}` belongs into `{group}`"))
+                    .at(property.name.span, "stands alone here")
+                    .help(format!("write it inside `{group} {{ … }}`")),
+            );
+            return;
+        }
         if PENDING.contains(&word) {
             self.scope.report(
                 Finding::advice("feature.pending", format!("`{word}` of a material is not evaluated yet"))

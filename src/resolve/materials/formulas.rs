@@ -29,9 +29,33 @@ pub(super) fn composition_of(
         }
     };
     let elements: Vec<String> = parts.iter().flat_map(shares).map(|share| share.element.clone()).collect();
-    let Some(Definition::Family(family)) = library.of_elements(&elements, scope) else {
-        scope.report(no_family(name, &elements, library));
+    if let Some(twice) = elements.iter().enumerate().find(|(at, it)| elements[..*at].contains(it)) {
+        scope.report(
+            Finding::error("formula.composition", format!("{} stands twice in `{}`", twice.1, name.value))
+                .at(name.span, "each element has one fraction")
+                .help(format!("write {} once, with the sum of its fractions", twice.1)),
+        );
         return None;
+    }
+    let family = match library.of_elements(&elements, scope) {
+        Some(Definition::Family(family)) => family,
+        Some(Definition::Compound(compound)) => {
+            let own = &compound.material.name;
+            scope.report(
+                Finding::error(
+                    "formula.composition",
+                    format!("`{own}` mixes nothing, so `{}` has no fractions", name.value),
+                )
+                .at(name.span, "one element on each sublattice")
+                .help(format!("write `{own}`"))
+                .fix(name.span, own.clone(), true),
+            );
+            return None;
+        }
+        None => {
+            scope.report(no_family(name, &elements, library));
+            return None;
+        }
     };
     let flat = flatten(scope, name, &parts)?;
     let mut composition = [Vec::new(), Vec::new()];

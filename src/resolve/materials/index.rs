@@ -131,7 +131,8 @@ impl Reader<'_> {
             0.0
         };
         arguments.end(self.scope);
-        Some(table::of_law(|_| (n, k), &[550.0]))
+        // From the vacuum ultraviolet to the far infrared: a constant has no range.
+        Some(table::of_law(|_| (n, k), &[100.0, 1e6]))
     }
 
     /// `sellmeier 0.4876 0.0434 um  0.3988 0.0946 um …`: `n² = 1 + Σ B λ²/(λ² − λ0²)`.
