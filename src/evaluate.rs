@@ -31,6 +31,7 @@ pub use hash::design_hash;
 /// unknown metrics in any case. What is stated but not evaluated yet is reported by `resolve`.
 pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
     let mut findings = metrics::check(design);
+    findings.extend(findings::stand_ins(design));
     if !is_whole(design) {
         return Outcome::nothing(findings);
     }

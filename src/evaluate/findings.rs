@@ -2,7 +2,7 @@
 
 use std::sync::Arc;
 
-use crate::design::{Design, VoltageModel};
+use crate::design::{Design, Junction, VoltageModel};
 use crate::evaluate::junctions::fit_at;
 use crate::evaluate::lit::{Lit, junction_gap};
 use crate::finding::{Finding, Findings};
@@ -93,6 +93,25 @@ fn fits_below_the_limit(design: &Design, lit: &[Arc<Lit>]) -> Findings {
             } else {
                 format!("write `j01 {} A/cm2` or more", per_cm2(limit * 1.001))
             }),
+        );
+    }
+    findings
+}
+
+/// Voltages asked for, or left, to a model that is not evaluated yet: the radiative limit stands in
+/// for it, so that the figures are an upper bound and say so.
+pub(super) fn stand_ins(design: &Design) -> Findings {
+    let from_layers = |junction: &&Junction| junction.voltage == VoltageModel::Layers;
+    let mut findings = Findings::new();
+    for junction in design.junctions.iter().filter(from_layers) {
+        let name = &junction.name.value;
+        findings.push(
+            Finding::warning(
+                "feature.pending",
+                format!("the voltage of `{name}` from its layers is not evaluated yet, only its upper bound"),
+            )
+            .at(junction.voltage_span.unwrap_or(junction.name.span), "the radiative limit stands in for it")
+            .help("write `voltage from ere 1 %`, or `voltage from fit { … }` of a measured curve"),
         );
     }
     findings
