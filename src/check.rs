@@ -10,6 +10,7 @@ use crate::growth::{self, LayerGrowth};
 use crate::results::Results;
 use crate::units::{self, Dimension};
 
+mod absorption;
 mod accept;
 mod current_mismatch;
 mod doping_missing;

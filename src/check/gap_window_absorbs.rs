@@ -1,9 +1,10 @@
 //! `gap.window-absorbs`: a window or back surface field takes light that makes no current.
 
+use super::absorption::{Point, integral, scale_for};
 use super::junctions::describe;
 use super::show::{current, length, percent};
 use super::{Context, Report, Rule, Threshold};
-use crate::design::Duty;
+use crate::design::{Duty, Layer};
 use crate::finding::{Finding, Severity};
 use crate::numerics::constants::{CHARGE, HC};
 use crate::results::ConditionResult;
@@ -23,12 +24,18 @@ pub(super) static RULE: Rule = Rule {
 
 /// What one layer loses under one condition, mA/cm2.
 pub(super) struct Loss<'a> {
-    /// The condition's name.
-    pub(super) condition: &'a str,
+    /// Under which.
+    pub(super) condition: &'a ConditionResult,
     /// Absorbed and not collected, of photons above the smallest gap.
     pub(super) lost: f64,
     /// Of the junction it is compared with.
     pub(super) photocurrent: f64,
+}
+
+impl Loss<'_> {
+    fn share(&self) -> f64 {
+        self.lost / self.photocurrent
+    }
 }
 
 fn run(context: &Context, report: &mut Report) {
@@ -40,27 +47,25 @@ fn run(context: &Context, report: &mut Report) {
                 continue;
             }
             let Some(loss) = worst(context, facts.name(), &layer.path) else { continue };
-            let share = loss.lost / loss.photocurrent;
+            let share = loss.share();
             if share <= allowed {
                 continue;
             }
-            let mut finding = Finding::warning(
+            let finding = Finding::warning(
                 RULE.code,
                 format!(
                     "{} absorbs {} under `{}`, {} of what its junction makes",
                     describe(context.design, layer),
                     current(loss.lost),
-                    loss.condition,
+                    loss.condition.name,
                     percent(share)
                 ),
             )
             .at(layer.spans.material, "its light makes no current");
-            if let Some(thickness) = layer.thickness_m {
-                finding = finding.help(match thinner(thickness, share, allowed) {
-                    Some(thin) => format!("thin it to {}, or choose a wider gap", length(thin)),
-                    None => "choose a material with a wider gap".to_string(),
-                });
-            }
+            let finding = finding.help(match thinner(loss.condition, layer, allowed / share) {
+                Some(thin) => format!("thin it to {}, or choose a wider gap", length(thin)),
+                None => "choose a material with a wider gap".to_string(),
+            });
             report.push([layer.path.as_str()], finding);
         }
     }
@@ -75,46 +80,48 @@ pub(super) fn worst<'a>(context: &Context<'a>, junction: &str, layer: &str) -> O
     let losses = context.results?.conditions.iter().filter_map(|condition| {
         let light = condition.layers.iter().find(|light| light.name == layer)?;
         let photocurrent = condition.junctions.iter().find(|it| it.name == junction)?.photocurrent_ma_per_cm2;
-        let lost = usable(condition, layer).unwrap_or(light.absorbed_ma_per_cm2) - light.collected_ma_per_cm2;
-        (photocurrent > 0.0).then_some(Loss { condition: &condition.name, lost, photocurrent })
+        let lost = light.absorbed_ma_per_cm2 * usable(condition, layer) - light.collected_ma_per_cm2;
+        (photocurrent > 0.0).then_some(Loss { condition, lost, photocurrent })
     });
-    losses.reduce(
-        |worst, next| {
-            if next.lost / next.photocurrent > worst.lost / worst.photocurrent { next } else { worst }
-        },
-    )
+    losses.reduce(|worst, next| if next.share() > worst.share() { next } else { worst })
 }
 
-/// Current in mA/cm2 that `layer` absorbs of photons above the smallest gap of the stack: what
-/// lies below every gap is no loss. `None` without spectral data of the layer.
-fn usable(condition: &ConditionResult, layer: &str) -> Option<f64> {
-    let smallest = condition.junctions.iter().map(|it| it.gap_ev).reduce(f64::min)?;
-    let edge_nm = HC / (smallest * CHARGE) * 1e9;
+/// Share of the photons absorbed in `layer` that lie above the smallest gap of the stack: what
+/// lies below every gap is no loss. 1 without spectral data of the layer.
+fn usable(condition: &ConditionResult, layer: &str) -> f64 {
     let spectral = &condition.spectral;
-    let absorptance = spectral.absorptance.get(layer)?;
+    let smallest = condition.junctions.iter().map(|it| it.gap_ev).reduce(f64::min);
+    let (Some(gap), Some(absorptance)) = (smallest, spectral.absorptance.get(layer)) else { return 1.0 };
+    let edge_nm = HC / (gap * CHARGE) * 1e9;
+    let absorbed = |i: usize| absorptance[i] * spectral.photon_current_ma_per_cm2_per_nm[i];
     let end = spectral.wavelength_nm.partition_point(|nm| *nm <= edge_nm);
-    let value = |i: usize| absorptance[i] * spectral.photon_current_ma_per_cm2_per_nm[i];
-    let steps = spectral.wavelength_nm[..end].windows(2).enumerate();
-    Some(steps.map(|(i, pair)| 0.5 * (value(i) + value(i + 1)) * (pair[1] - pair[0])).sum())
+    let (part, whole) =
+        (integral(&spectral.wavelength_nm[..end], absorbed), integral(&spectral.wavelength_nm, absorbed));
+    if whole > 0.0 { part / whole } else { 1.0 }
 }
 
-/// Thickness in whole nanometres at which the layer keeps within `allowed`, taking the light it
-/// absorbs as proportional to thickness (cautious: absorption saturates, so less is needed off).
-/// `None` below a thickness that still closes a surface.
-pub(super) fn thinner(thickness_m: f64, share: f64, allowed: f64) -> Option<f64> {
-    let nanometres = (thickness_m * 1e9 * allowed / share).floor();
-    (nanometres >= 5.0).then_some(nanometres * 1e-9)
+/// Thickness in whole nanometres at which `layer` absorbs `ratio` of what it absorbs now. `None`
+/// where that would be too thin to close a surface.
+pub(super) fn thinner(condition: &ConditionResult, layer: &Layer, ratio: f64) -> Option<f64> {
+    let (thickness, material) = (layer.thickness_m?, layer.material.as_ref()?);
+    let spectral = &condition.spectral;
+    let absorptance = spectral.absorptance.get(&layer.path)?;
+    let points: Vec<Point> = spectral
+        .wavelength_nm
+        .iter()
+        .zip(absorptance)
+        .zip(&spectral.photon_current_ma_per_cm2_per_nm)
+        .map(|((nm, share), flux)| Point {
+            main: material.absorption(nm * 1e-9, condition.temperature_k) * thickness,
+            others: 0.0,
+            eqe: *share,
+            flux: *flux,
+        })
+        .collect();
+    let scale = scale_for(&spectral.wavelength_nm, &points, ratio)?;
+    let nanometres = (thickness * scale * 1e9).floor();
+    (nanometres >= LEAST_NM).then_some(nanometres * 1e-9)
 }
 
-#[cfg(test)]
-mod tests {
-    use super::thinner;
-
-    #[test]
-    fn thinner_in_proportion() {
-        // 5 % allowed, 12.5 % lost: 0.4 of 100 nm.
-        let thin = thinner(100e-9, 0.125, 0.05).expect("worth it");
-        assert!((thin - 40e-9).abs() < 1e-15);
-        assert_eq!(thinner(20e-9, 0.5, 0.05), None, "2 nm close no surface");
-    }
-}
+/// Thinner than this no film closes a surface, nm.
+const LEAST_NM: f64 = 5.0;

@@ -60,7 +60,7 @@ fn finding(
             "`{}` absorbs {} under `{}`, {} of what `{}` below makes",
             tunnel.name.value,
             current(lost),
-            loss.condition,
+            loss.condition.name,
             percent(share),
             below.name()
         ),
@@ -70,7 +70,7 @@ fn finding(
         finding = finding.beside(layer.spans.material, says(layer));
     }
     let narrow = below.gap().filter(|below| gap(most).is_some_and(|own| own.ev <= below.ev));
-    let thin = most.thickness_m.and_then(|thickness| thinner(thickness, share, allowed));
+    let thin = thinner(loss.condition, most, allowed / share);
     Some(finding.help(match (narrow, thin) {
         (Some(below), _) => format!("choose materials with a gap above {}", ev(below.ev)),
         (None, Some(thin)) => format!("thin its layers to {}", length(thin)),

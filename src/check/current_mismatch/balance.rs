@@ -1,6 +1,7 @@
 //! How far currents could be evened out, and by which thickness or gap.
 
 use crate::check::Context;
+use crate::check::absorption::{Point, integral, scale_for};
 use crate::numerics::constants::{CHARGE, HC};
 use crate::results::ConditionResult;
 
@@ -90,38 +91,6 @@ pub(super) fn thickness_for(
     scale_for(wavelengths, &points, target / result.photocurrent_ma_per_cm2).map(|scale| scale * now)
 }
 
-/// One wavelength: optical depth of the layer that changes and of the others, quantum efficiency
-/// now, incident photon current.
-struct Point {
-    main: f64,
-    others: f64,
-    eqe: f64,
-    flux: f64,
-}
-
-/// By what the main optical depth must be multiplied for the current to change by `ratio`; only
-/// ratios count, so shading and collection drop out. `None` beyond a factor of 30.
-fn scale_for(wavelengths: &[f64], points: &[Point], ratio: f64) -> Option<f64> {
-    let made = |scale: f64| {
-        integral(wavelengths, |i| {
-            let Point { main, others, eqe, flux } = points[i];
-            let before = -(-main - others).exp_m1();
-            let after = -(-scale * main - others).exp_m1();
-            flux * if before > 1e-9 { (eqe * after / before).min(1.0) } else { eqe }
-        })
-    };
-    let wanted = ratio * made(1.0);
-    let (mut low, mut high) = (1.0 / 30.0, 30.0);
-    if !(made(low) < wanted && wanted < made(high)) {
-        return None;
-    }
-    for _ in 0..40 {
-        let middle = f64::sqrt(low * high);
-        if made(middle) < wanted { low = middle } else { high = middle }
-    }
-    Some(f64::sqrt(low * high))
-}
-
 /// Gap in eV at which `junction` keeps `target` mA/cm2 of what it makes now.
 pub(super) fn gap_for(condition: &ConditionResult, junction: &str, target: f64) -> Option<f64> {
     let spectral = &condition.spectral;
@@ -140,11 +109,6 @@ pub(super) fn gap_for(condition: &ConditionResult, junction: &str, target: f64) 
         sum += part;
     }
     None
-}
-
-/// Trapezoid rule over `x` of the values `y(i)`.
-fn integral(x: &[f64], y: impl Fn(usize) -> f64) -> f64 {
-    x.windows(2).enumerate().map(|(i, pair)| 0.5 * (y(i) + y(i + 1)) * (pair[1] - pair[0])).sum()
 }
 
 #[cfg(test)]
@@ -242,19 +206,5 @@ mod tests {
         let condition = condition(&[("top", 1.7, 16.0)], "top", &[("top", 300.0, 700.0)]);
         let gap = gap_for(&condition, "top", 8.0).expect("inside");
         assert!((gap - 2.479_68).abs() < 5e-3, "{gap}");
-    }
-
-    #[test]
-    fn thickness_by_the_law_of_beer_and_lambert() {
-        // One wavelength band, depth 2: absorbs 1 − e^−2. For ratio r the depth is
-        // −ln(1 − r(1 − e^−2)).
-        let point = || Point { main: 2.0, others: 0.0, eqe: 0.5, flux: 1.0 };
-        let wavelengths = [500.0, 501.0];
-        for ratio in [0.5, 0.9, 1.1] {
-            let scale = scale_for(&wavelengths, &[point(), point()], ratio).expect("reachable");
-            let exact = -(1.0 - ratio * (1.0 - f64::exp(-2.0))).ln() / 2.0;
-            assert!((scale - exact).abs() < 1e-8, "{scale} against {exact}");
-        }
-        assert!(scale_for(&wavelengths, &[point(), point()], 1.3).is_none(), "more than all of it");
     }
 }
