@@ -8,6 +8,7 @@ use crate::design::Design;
 use crate::finding::{Finding, Findings, Severity};
 use crate::growth::{self, LayerGrowth};
 use crate::results::Results;
+use crate::source::Span;
 use crate::units::{self, Dimension};
 
 mod absorption;
@@ -107,12 +108,27 @@ pub struct Context<'a> {
     pub(crate) junctions: Vec<JunctionFacts<'a>>,
     /// Lattice state of each of [`Design::layers`], same order.
     pub lattice: Vec<Option<LayerGrowth>>,
+    /// Where earlier passes found errors: what stands there may be missing from the design.
+    faults: Vec<Span>,
 }
 
 impl<'a> Context<'a> {
-    fn new(design: &'a Design, results: Option<&'a Results>) -> Self {
+    fn new(design: &'a Design, results: Option<&'a Results>, before: &Findings) -> Self {
+        let errors = before.iter().filter(|finding| finding.severity == Severity::Error);
+        let faults = errors.filter_map(|finding| finding.primary.as_ref()).map(|label| label.span).collect();
         let junctions = (0..design.junctions.len()).map(|index| JunctionFacts::new(design, index)).collect();
-        Self { design, results, junctions, lattice: growth::lattice_states(design) }
+        Self { design, results, junctions, lattice: growth::lattice_states(design), faults }
+    }
+
+    /// Whether an error was found within `place` already, so that what seems to be missing there
+    /// may only have been misread.
+    pub fn is_spoilt(&self, place: Span) -> bool {
+        self.faults.iter().any(|fault| place.contains(*fault))
+    }
+
+    /// Whether any error was found already.
+    pub fn has_faults(&self) -> bool {
+        !self.faults.is_empty()
     }
 
     /// The threshold in force for `rule`, SI: the one set by `limit`, else its default.
@@ -161,12 +177,15 @@ pub struct Checked {
 
 /// Runs every rule on `design`; rules that need figures are left out without `results`.
 ///
-/// `evaluated` are the findings of evaluation about the same design: they come back among the
-/// others, and `accept` reaches them too.
-pub fn check(design: &Design, results: Option<&Results>, evaluated: Findings) -> Checked {
-    let context = Context::new(design, results);
+/// `before` are the findings of other passes about the same design: they come back among the
+/// others, and `accept` reaches them too unless they are errors, which left a hole in the design.
+/// Where such a hole is, rules about what is missing keep silent.
+pub fn check(design: &Design, results: Option<&Results>, before: Findings) -> Checked {
+    let context = Context::new(design, results, &before);
+    let (errors, milder): (Vec<_>, Vec<_>) =
+        before.0.into_iter().partition(|finding| finding.severity == Severity::Error);
     let mut report = Report::default();
-    for finding in evaluated.0 {
+    for finding in milder {
         report.push(Vec::<String>::new(), finding);
     }
     for rule in RULES.iter().filter(|rule| results.is_some() || !rule.needs_results) {
@@ -174,6 +193,7 @@ pub fn check(design: &Design, results: Option<&Results>, evaluated: Findings) ->
     }
     let mut checked = accept::sort_out(&context, report);
     checked.findings.extend(limits::check(design));
+    checked.findings.extend(Findings(errors));
     checked
 }
 

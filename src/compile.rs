@@ -13,7 +13,7 @@ use crate::evaluate;
 use crate::finding::{Findings, Severity};
 use crate::resolve::{self, Overrides};
 use crate::results::Results;
-use crate::source::{Sources, Span, shown};
+use crate::source::{Sources, shown};
 use crate::world::{ReadError, World};
 
 /// What a run may be told.
@@ -107,24 +107,18 @@ pub fn compile(world: &dyn World, path: &Path, options: &Options) -> Compiled {
 
 /// Checks, evaluates where nothing stands against it, checks again with figures, and accepts.
 fn finish(design: Design, early: Findings, source: &str, no_evaluation: bool) -> Stack {
-    // An error of an earlier pass left a hole in the design: it cannot be accepted away.
-    let (errors, milder): (Vec<_>, Vec<_>) =
-        early.0.into_iter().partition(|finding| finding.severity == Severity::Error);
-    let mut findings = Findings(errors);
-    let mut milder = Findings(milder);
-
-    let mut checked = check::check(&design, None, milder.clone());
+    let mut before = early;
+    let mut checked = check::check(&design, None, before.clone());
     let mut results = None;
     // A stack made like another may inherit a layer whose fault was reported over there.
     let hole = design.layers.iter().any(|layer| layer.material.is_none());
-    if !(no_evaluation || hole || findings.has_errors() || checked.findings.has_errors()) {
+    if !(no_evaluation || hole || checked.findings.has_errors()) {
         let evaluated = evaluate::evaluate(&design, source);
         results = evaluated.value;
-        milder.extend(evaluated.findings);
-        checked = check::check(&design, results.as_ref(), milder);
+        before.extend(evaluated.findings);
+        checked = check::check(&design, results.as_ref(), before);
     }
-    findings.extend(checked.findings);
-    Stack { design, results, findings: findings.sorted(), accepted: checked.accepted }
+    Stack { design, results, findings: checked.findings.sorted(), accepted: checked.accepted }
 }
 
 /// Sorts findings of the shared passes to the stack whose text they lie in; the rest is shared.
@@ -133,15 +127,11 @@ fn by_stack(designs: &[Design], findings: Findings) -> (Vec<Findings>, Findings)
     let mut shared = Findings::new();
     for finding in findings.0 {
         let place = finding.primary.as_ref().map(|label| label.span);
-        let home = place.and_then(|place| designs.iter().position(|design| inside(place, design.span)));
+        let home = place.and_then(|place| designs.iter().position(|design| design.span.contains(place)));
         match home {
             Some(index) => own[index].push(finding),
             None => shared.push(finding),
         }
     }
     (own, shared)
-}
-
-fn inside(inner: Span, outer: Span) -> bool {
-    inner.source == outer.source && outer.start <= inner.start && inner.end <= outer.end
 }

@@ -37,6 +37,11 @@ impl Span {
         Self { source: self.source, start: self.start.min(other.start), end: self.end.max(other.end) }
     }
 
+    /// Whether `inner` lies within this span.
+    pub fn contains(self, inner: Self) -> bool {
+        self.source == inner.source && self.start <= inner.start && inner.end <= self.end
+    }
+
     /// The byte range as `usize`.
     pub fn range(self) -> std::ops::Range<usize> {
         self.start as usize..self.end as usize

@@ -46,12 +46,8 @@ fn covers(design: &Design, accept: &Accept, found: &Found) -> bool {
     // Findings of other passes carry no path: the place decides.
     found.about.is_empty()
         && place_of(design, &on.value).is_some_and(|place| {
-            found.finding.primary.as_ref().is_some_and(|label| contains(place, label.span))
+            found.finding.primary.as_ref().is_some_and(|label| place.contains(label.span))
         })
-}
-
-fn contains(outer: Span, inner: Span) -> bool {
-    outer.source == inner.source && outer.start <= inner.start && inner.end <= outer.end
 }
 
 /// Where what `path` names was written.
@@ -75,6 +71,10 @@ fn unused(context: &Context, used: &[bool]) -> Findings {
         let code = &accept.code.value;
         if !super::limits::is_known(code) {
             findings.push(super::limits::unknown_code(&accept.code));
+            continue;
+        }
+        // What would have been found may lie where something could not be read.
+        if context.has_faults() {
             continue;
         }
         // Without figures, what only evaluation can find is still to come.

@@ -28,7 +28,7 @@ fn junctions(context: &Context, report: &mut Report) {
         if !needed || facts.is_gap_model() {
             continue;
         }
-        for (_, layer) in facts.layers.iter().filter(|(_, layer)| is_bare(layer)) {
+        for (_, layer) in facts.layers.iter().filter(|(_, layer)| is_bare(context, layer)) {
             let (usual, partner) = match layer.duty {
                 Duty::Emitter => ("2e18", Duty::Base),
                 Duty::Base => ("1e17", Duty::Emitter),
@@ -50,7 +50,7 @@ fn tunnels(context: &Context, report: &mut Report) {
         let layers: Vec<&Layer> =
             context.design.layers.get(tunnel.layers.clone()).unwrap_or_default().iter().collect();
         let doped: Vec<Polarity> = layers.iter().filter_map(|layer| sign(layer)).collect();
-        let bare: Vec<&&Layer> = layers.iter().filter(|layer| is_bare(layer)).collect();
+        let bare: Vec<&&Layer> = layers.iter().filter(|layer| is_bare(context, layer)).collect();
         // With both sides doped, a further layer may well be an undoped spacer.
         if doped.contains(&Polarity::N) && doped.contains(&Polarity::P) {
             continue;
@@ -69,9 +69,10 @@ fn tunnels(context: &Context, report: &mut Report) {
     }
 }
 
-/// A semiconductor that is there everywhere and says no doping.
-fn is_bare(layer: &Layer) -> bool {
+/// A semiconductor that is there everywhere and says no doping that could be read.
+fn is_bare(context: &Context, layer: &Layer) -> bool {
     layer.doping.is_none()
+        && !context.is_spoilt(layer.spans.statement)
         && layer.extent == Extent::Everywhere
         && layer.material.as_ref().is_some_and(|material| material.class == MaterialClass::Semiconductor)
 }

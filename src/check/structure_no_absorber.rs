@@ -52,7 +52,7 @@ fn run(context: &Context, report: &mut Report) {
                 );
             }
         }
-        if !any {
+        if !any && !context.is_spoilt(facts.junction.span) {
             let what = match facts.layers.len() {
                 0 => "holds no layer".to_string(),
                 _ => "holds no emitter, base, intrinsic or absorber".to_string(),

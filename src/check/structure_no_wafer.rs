@@ -17,7 +17,7 @@ pub(super) static RULE: Rule = Rule {
 
 fn run(context: &Context, report: &mut Report) {
     let design = context.design;
-    if growth::wafer(design).is_some() {
+    if growth::wafer(design).is_some() || context.has_faults() {
         return;
     }
     let crystals: Vec<_> = context

@@ -4,6 +4,7 @@ use super::junctions::{JunctionFacts, letter, opposite};
 use super::{Context, Report, Rule};
 use crate::design::{Polarity, Terminals};
 use crate::finding::{Finding, Severity};
+use crate::source::Span;
 
 pub(super) static RULE: Rule = Rule {
     code: "tunnel.missing",
@@ -24,6 +25,11 @@ fn run(context: &Context, report: &mut Report) {
         let joined = design.interconnects.iter().any(|it| it.below_junctions == index + 1);
         // A limit study with bare gaps speaks of no layers at all.
         if joined || !is_layered(upper) || !is_layered(lower) {
+            continue;
+        }
+        // What joins them may stand there, misread.
+        let (above, below) = (upper.junction.span, lower.junction.span);
+        if context.is_spoilt(Span { start: above.end, end: below.start, ..below }) {
             continue;
         }
         let rear = upper.rear_sign().unwrap_or(Polarity::P);
