@@ -1,7 +1,9 @@
 //! What a user waits for, each beside its target: `cargo bench`.
 //!
 //! Plain clocks, medians of repeated runs, whole processes where the user starts one. Times hold
-//! for the machine they were taken on; the table says how many cores it has.
+//! for the machine they were taken on; the table says how many cores it has. Beside the clock
+//! stands the processor time a run took (Linux only): on a busy machine the clock says more about
+//! the others.
 
 #![expect(
     clippy::print_stdout,
@@ -34,25 +36,21 @@ fn main() {
 
     let mut table = Table::default();
     let source = Source::new(SourceId(0), "long.stack", &long);
-    let parsed = median(RUNS, || {
+    let parsed = time(RUNS, || {
         let outcome = parse(&source);
         assert!(outcome.findings.is_empty(), "{:?}", outcome.findings.iter().next());
     });
     table.time("parse 10,000 lines, in process", parsed, Some(22));
-    let static_check = median(RUNS, || run(&["check", "--static"], &path, folder.path()));
+    let static_check = time(RUNS, || run(&["check", "--static"], &path, folder.path()));
     table.time("check --static 10,000 lines, whole process", static_check, Some(80));
-    let check = median(3, || run(&["check"], &path, folder.path()));
+    let check = time(3, || run(&["check"], &path, folder.path()));
     let stacks = long.matches("stack \"").count();
     table.time(&format!("check 10,000 lines, {stacks} stacks evaluated"), check, None);
 
     let demo = Path::new(DEMO);
-    table.time(
-        "check of the three-junction demo",
-        median(RUNS, || run(&["check"], demo, folder.path())),
-        None,
-    );
+    table.time("check of the three-junction demo", time(RUNS, || run(&["check"], demo, folder.path())), None);
     let mut into = 0;
-    let build = median(RUNS, || {
+    let build = time(RUNS, || {
         into += 1;
         run(&["build", "--into", &format!("out{into}")], demo, folder.path());
     });
@@ -123,8 +121,18 @@ fn one(number: usize) -> String {
     )
 }
 
-fn median(runs: usize, mut work: impl FnMut()) -> Duration {
+/// What one run took.
+#[derive(Clone, Copy)]
+struct Spent {
+    /// By the clock, the median.
+    clock: Duration,
+    /// Of the processors, the mean; `None` where the system does not say.
+    processor: Option<Duration>,
+}
+
+fn time(runs: usize, mut work: impl FnMut()) -> Spent {
     work();
+    let before = processor_time();
     let mut times: Vec<Duration> = (0..runs)
         .map(|_| {
             let start = Instant::now();
@@ -133,7 +141,18 @@ fn median(runs: usize, mut work: impl FnMut()) -> Duration {
         })
         .collect();
     times.sort();
-    times[runs / 2]
+    let processor = before.zip(processor_time()).map(|(before, after)| (after - before) / runs as u32);
+    Spent { clock: times[runs / 2], processor }
+}
+
+/// Of this process and of the children that have ended, in the system's ticks of 10 ms.
+fn processor_time() -> Option<Duration> {
+    let stat = std::fs::read_to_string("/proc/self/stat").ok()?;
+    let fields = stat.rsplit_once(") ")?.1;
+    // proc(5): utime, stime, cutime, cstime are fields 14 to 17; the first here is field 3.
+    let ticks = fields.split(' ').skip(11).take(4).map(|field| field.parse::<u64>().ok());
+    let ticks: u64 = ticks.collect::<Option<Vec<_>>>()?.iter().sum();
+    Some(Duration::from_millis(ticks * 10))
 }
 
 fn command(arguments: &[&str], file: &Path, here: &Path) -> Command {
@@ -169,7 +188,7 @@ fn peak(arguments: &[&str], file: &Path, here: &Path) -> u64 {
 
 /// Saves the demo again and again under `watch`; the time from before the save to the status
 /// line, which is written after the files, and the memory the process ended with.
-fn watching(here: &Path) -> (Duration, u64) {
+fn watching(here: &Path) -> (Spent, u64) {
     let file: PathBuf = here.join("demo.stack");
     let text = std::fs::read_to_string(DEMO).unwrap();
     std::fs::write(&file, &text).unwrap();
@@ -179,7 +198,7 @@ fn watching(here: &Path) -> (Duration, u64) {
     let mut next = || while !lines.next().unwrap().unwrap().starts_with('[') {};
     next();
     let mut number = 0;
-    let latency = median(RUNS, || {
+    let latency = time(RUNS, || {
         number += 1;
         std::fs::write(&file, format!("{text}\n// {number}\n")).unwrap();
         next();
@@ -187,7 +206,8 @@ fn watching(here: &Path) -> (Duration, u64) {
     let memory = high_water(&child);
     child.kill().unwrap();
     child.wait().unwrap();
-    (latency, memory)
+    // The processor time of a child that runs on is not ours to see.
+    (Spent { processor: None, ..latency }, memory)
 }
 
 #[derive(Default)]
@@ -202,11 +222,13 @@ impl Table {
         self.rows.push([what, value, target, verdict].map(str::to_owned));
     }
 
-    fn time(&mut self, what: &str, time: Duration, target: Option<u64>) {
-        let value = format!("{:.1} ms", time.as_secs_f64() * 1e3);
+    fn time(&mut self, what: &str, spent: Spent, target: Option<u64>) {
+        let milliseconds = |time: Duration| time.as_secs_f64() * 1e3;
+        let processor = spent.processor.map_or(String::new(), |time| format!("{:.0}", milliseconds(time)));
+        let value = format!("{processor:>5} {:>8.1} ms", milliseconds(spent.clock));
         match target {
             Some(target) => {
-                let met = time < Duration::from_millis(target);
+                let met = spent.clock < Duration::from_millis(target);
                 self.row(what, &value, Some((&format!("{target} ms"), met)));
             }
             None => self.row(what, &value, None),
@@ -220,10 +242,13 @@ impl Table {
 
     fn print(&self) {
         let cores = std::thread::available_parallelism().map_or(0, usize::from);
-        println!("\nmedian of {RUNS} runs, {cores} cores\n");
+        let load = std::fs::read_to_string("/proc/loadavg").unwrap_or_default();
+        let load = load.split(' ').next().unwrap_or("unknown");
+        println!("\n{RUNS} runs each, {cores} cores, load {load}\n");
+        println!("{:<48}{:>5}{:>12}", "", "cpu", "clock");
         for [what, value, target, verdict] in &self.rows {
             println!(
-                "{what:<48}{value:>12}   under {target:>6}  {verdict}",
+                "{what:<48}{value:>17}   under {target:>6}  {verdict}",
                 target = if target.is_empty() { "-" } else { target }
             );
         }

@@ -71,14 +71,17 @@ fn missing(light: &Spectrum, from: f64, to: f64) -> Option<f64> {
     let (start, end) = light.range_m()?;
     let peak = light.irradiance.iter().copied().fold(0.0, f64::max);
     let ends = |value: Option<&f64>| value.is_some_and(|value| *value > FADED * peak);
+    let before =
+        if start > from && ends(light.irradiance.first()) { (from, start.min(to)) } else { (from, from) };
+    let after = if end < to && ends(light.irradiance.last()) { (end.max(from), to) } else { (to, to) };
+    if before.0 >= before.1 && after.0 >= after.1 {
+        return None;
+    }
     let model = blackbody(SUN_K, 1.0);
     let scale = light.photon_current(start, end) / model.photon_current(start, end);
     if !scale.is_finite() || scale <= 0.0 {
         return None;
     }
-    let before =
-        if start > from && ends(light.irradiance.first()) { (from, start.min(to)) } else { (from, from) };
-    let after = if end < to && ends(light.irradiance.last()) { (end.max(from), to) } else { (to, to) };
     let lost = scale * (model.photon_current(before.0, before.1) + model.photon_current(after.0, after.1));
     let held = light.photon_current(from.max(start).min(to), to.min(end).max(from));
     (lost > 0.0).then(|| lost / (lost + held.max(0.0)))

@@ -3,6 +3,8 @@
 use std::fmt::Write;
 use std::ops::Range;
 
+use crate::source::Source;
+
 /// Characters of a line that are shown before it is cut.
 const LINE_LIMIT: usize = 160;
 /// Characters left and right of the labels that stay when a line is cut.
@@ -39,9 +41,10 @@ pub(crate) struct View<'a> {
 }
 
 impl Excerpt {
-    /// The lines of `text` that hold `labels`, byte ranges of it; ranges that do not fit are
+    /// The lines of `source` that hold `labels`, byte ranges of it; ranges that do not fit are
     /// fitted.
-    pub(crate) fn new(name: &str, text: &str, labels: &[Range<usize>]) -> Self {
+    pub(crate) fn new(name: &str, source: &Source, labels: &[Range<usize>]) -> Self {
+        let text: &str = &source.text;
         let labels: Vec<Range<usize>> = labels.iter().map(|label| fitted(text, label)).collect();
         let from = labels.iter().map(|label| line_start(text, label.start)).min().unwrap_or(0);
         let to = labels.iter().map(|label| line_end(text, label.end)).max().unwrap_or(0);
@@ -49,7 +52,7 @@ impl Excerpt {
             name: name.to_owned(),
             text: String::new(),
             starts: Vec::new(),
-            first_line: text[..from].bytes().filter(|&byte| byte == b'\n').count(),
+            first_line: source.position(from).line - 1,
             columns: labels
                 .iter()
                 .map(|label| text[line_start(text, label.start)..label.start].chars().count())
@@ -211,10 +214,15 @@ fn push_visible(out: &mut String, c: char, tabs_stay: bool) {
 #[cfg(test)]
 mod tests {
     use super::*;
+    use crate::source::SourceId;
 
     fn label(text: &str, word: &str) -> Range<usize> {
         let start = text.find(word).expect("planted");
         start..start + word.len()
+    }
+
+    fn excerpt(text: &str, labels: &[Range<usize>]) -> Excerpt {
+        Excerpt::new("a", &Source::new(SourceId(0), "a", text), labels)
     }
 
     fn shown(excerpt: &Excerpt, index: usize) -> &str {
@@ -224,50 +232,50 @@ mod tests {
     #[test]
     fn columns_count_characters_and_lines_from_the_whole_text() {
         let text = "one\ntwo µ² here\nthree\n";
-        let excerpt = Excerpt::new("a", text, &[label(text, "here")]);
-        assert_eq!(excerpt.text, "two µ² here\n");
-        assert_eq!(shown(&excerpt, 0), "here");
-        let view = excerpt.view(excerpt.spans[0].clone());
+        let drawn = excerpt(text, &[label(text, "here")]);
+        assert_eq!(drawn.text, "two µ² here\n");
+        assert_eq!(shown(&drawn, 0), "here");
+        let view = drawn.view(drawn.spans[0].clone());
         assert_eq!((view.line, view.column, view.lines), (1, 7, 1));
     }
 
     #[test]
     fn what_acts_on_a_terminal_is_shown() {
         let text = "a\u{1b}[31mred\u{0} \u{202e}x\u{7f}\r\nb";
-        let excerpt = Excerpt::new("a", text, &[label(text, "red"), label(text, "x")]);
-        assert_eq!(excerpt.text, "a␛[31mred␀ <U+202E>x␡\n");
-        assert_eq!((shown(&excerpt, 0), shown(&excerpt, 1)), ("red", "x"));
+        let drawn = excerpt(text, &[label(text, "red"), label(text, "x")]);
+        assert_eq!(drawn.text, "a␛[31mred␀ <U+202E>x␡\n");
+        assert_eq!((shown(&drawn, 0), shown(&drawn, 1)), ("red", "x"));
         assert_eq!(visible("tab\tend\n"), "tab␉end␊");
     }
 
     #[test]
     fn a_long_line_is_cut_around_its_label() {
         let text = format!("{}here{}", "µ(".repeat(5_000), "]".repeat(9_000));
-        let excerpt = Excerpt::new("a", &text, &[label(&text, "here")]);
-        assert!(excerpt.text.chars().count() < LINE_LIMIT + 3, "{}", excerpt.text);
-        assert!(excerpt.text.starts_with('…') && excerpt.text.ends_with("…\n"));
-        assert_eq!(shown(&excerpt, 0), "here");
-        assert_eq!(excerpt.view(excerpt.spans[0].clone()).column, 10_000);
+        let drawn = excerpt(&text, &[label(&text, "here")]);
+        assert!(drawn.text.chars().count() < LINE_LIMIT + 3, "{}", drawn.text);
+        assert!(drawn.text.starts_with('…') && drawn.text.ends_with("…\n"));
+        assert_eq!(shown(&drawn, 0), "here");
+        assert_eq!(drawn.view(drawn.spans[0].clone()).column, 10_000);
     }
 
     #[test]
     fn a_label_of_many_lines_is_shown_by_its_first() {
         let text = "stack {\n".to_owned() + &"x\n".repeat(50) + "}";
         let whole = 0..text.len();
-        let excerpt = Excerpt::new("a", &text, &[whole]);
-        assert_eq!(excerpt.text, "stack {\n");
-        assert_eq!(shown(&excerpt, 0), "stack {");
+        let drawn = excerpt(&text, &[whole]);
+        assert_eq!(drawn.text, "stack {\n");
+        assert_eq!(shown(&drawn, 0), "stack {");
     }
 
     #[test]
     fn the_end_of_a_text_is_a_place() {
         for text in ["", "a\n", "a"] {
-            let excerpt = Excerpt::new("a", text, &[text.len()..text.len()]);
-            assert!(excerpt.text.ends_with('\n'));
-            let view = excerpt.view(excerpt.spans[0].clone());
+            let drawn = excerpt(text, &[text.len()..text.len()]);
+            assert!(drawn.text.ends_with('\n'));
+            let view = drawn.view(drawn.spans[0].clone());
             assert_eq!(view.lines, 1, "{text:?}");
         }
-        let past = Excerpt::new("a", "µ", &[1..99]);
+        let past = excerpt("µ", &[1..99]);
         assert_eq!(shown(&past, 0), "µ");
     }
 }

@@ -193,7 +193,7 @@ impl Framed {
     fn new(finding: &Finding, sources: &Sources, labels: &[(&Label, bool)]) -> Self {
         let source = labels.first().map(|(label, _)| sources.get(label.span.source));
         let spans: Vec<_> = labels.iter().map(|(label, _)| label.span.range()).collect();
-        let excerpt = source.map(|source| Excerpt::new(&visible(&shown(&source.path)), &source.text, &spans));
+        let excerpt = source.map(|source| Excerpt::new(&visible(&shown(&source.path)), source, &spans));
         let labels = excerpt.iter().flat_map(|excerpt| {
             labels.iter().zip(excerpt.spans()).map(|((label, primary), range)| {
                 let text = (!label.text.is_empty()).then(|| visible(&label.text));
