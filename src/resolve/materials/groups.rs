@@ -129,7 +129,16 @@ impl Reader<'_> {
             }
         }
         self.origin(group, "critical points");
-        Some((e1?, e2?))
+        let (e1, e2) = (e1?, e2?);
+        if e1 < e2 {
+            return Some((e1, e2));
+        }
+        self.scope.report(
+            Finding::error("material.statement", "the critical point `e2` lies above `e1`")
+                .at(group.span, "out of order")
+                .help("write the lower one as `e1`"),
+        );
+        None
     }
 }
 

@@ -1,13 +1,18 @@
 //! The library as a list, for people who look for a material.
 
-use crate::finding::Outcome;
+use crate::finding::{Finding, Outcome};
 use crate::materials::alloy::solve::{Wanted, gap_reach, solve};
+use crate::materials::alloy::{Composition, Family};
 use crate::materials::{Material, ROOM_TEMPERATURE_K, SharedMaterial};
 use crate::resolve::materials::phrases::{Phrase, Reference, materials_of};
 use crate::resolve::materials::{Definition, Library};
 use crate::resolve::quantities::Scope;
 use crate::source::{Source, Span};
 use crate::syntax::{Item, MaterialPhrase, Statement};
+
+/// What makes a phrase a file.
+const BEFORE: &str = "part it { layer ";
+const AFTER: &str = " }";
 
 /// One line of the list.
 #[derive(Clone, Debug, PartialEq)]
@@ -60,7 +65,7 @@ fn entry(name: &str, found: &Definition) -> Entry {
 /// Findings point into the sources given back: the phrase first, then the substrate.
 pub fn look_up(phrase: &str, substrate: Option<&str>) -> (Outcome<SharedMaterial>, [Source; 2]) {
     let wrap = |at: u32, text: &str| {
-        Source::new(crate::source::SourceId(at), "material", &format!("part it {{ layer {text} }}"))
+        Source::new(crate::source::SourceId(at), "material", &format!("{BEFORE}{text}{AFTER}"))
     };
     let sources = [wrap(0, phrase), wrap(1, substrate.unwrap_or("GaAs"))];
     let mut library = Library::new();
@@ -84,7 +89,16 @@ fn read(
     for finding in parsed.findings.0 {
         scope.report(finding);
     }
-    let phrase = phrase_of(&parsed.value?.items)?;
+    let Some(phrase) = phrase_of(&parsed.value?.items) else {
+        let text = source.slice(source.span());
+        let text = text.trim_start_matches(BEFORE).trim_end_matches(AFTER);
+        scope.report(
+            Finding::error("name.unknown", format!("`{text}` is no material"))
+                .at(source.span(), "neither a name nor a formula")
+                .help("write a name or a formula, such as `GaAs` or `Ga0.51In0.49P`"),
+        );
+        return None;
+    };
     let named = std::collections::BTreeMap::new();
     let request = Phrase {
         phrase: &phrase,
@@ -110,44 +124,49 @@ fn phrase_of(items: &[Item]) -> Option<MaterialPhrase> {
     })
 }
 
-/// Materials with a gap at 300 K within `tolerance_ev` of `gap_ev`: compounds, and compositions of
-/// families, those matched to `substrate` where one is given.
+/// Materials with a gap at 300 K within `tolerance_ev` of `gap_ev`: compounds, and of each family
+/// the composition that comes nearest to it. With a substrate only what fits its lattice: matched
+/// exactly where the family can, else within 0.1 %, which the trade calls matched.
 pub fn with_gap(gap_ev: f64, tolerance_ev: f64, substrate: Option<&Material>) -> Vec<Material> {
     let mut library = Library::new();
     let mut scope = Scope::new();
     let names: Vec<String> = library.names().into_iter().map(str::to_owned).collect();
     let lattice = substrate.and_then(|material| material.lattice_constant(ROOM_TEMPERATURE_K));
+    let suits = |material: &Material| {
+        let gap = material.gap(ROOM_TEMPERATURE_K);
+        let own = material.lattice_constant(ROOM_TEMPERATURE_K);
+        gap.is_some_and(|gap| (gap.ev - gap_ev).abs() <= tolerance_ev)
+            && lattice.is_none_or(|a| own.is_some_and(|own| (own / a - 1.0).abs() <= 1e-3))
+    };
     let mut found = Vec::new();
     for name in names {
         match library.find(&name, &mut scope) {
             Some(Definition::Compound(compound)) => {
-                let material = &compound.material;
-                let near = material
-                    .gap(ROOM_TEMPERATURE_K)
-                    .is_some_and(|gap| (gap.ev - gap_ev).abs() <= tolerance_ev);
-                let own = material.lattice_constant(ROOM_TEMPERATURE_K);
-                // 0.1 % is what the trade calls matched.
-                let fits = lattice.is_none_or(|a| own.is_some_and(|own| (own / a - 1.0).abs() <= 1e-3));
-                if near && fits {
-                    found.push((**material).clone());
-                }
+                found.extend(Some((*compound.material).clone()).filter(|material| suits(material)));
             }
             Some(Definition::Family(family)) => {
-                let matched =
-                    lattice.map(|angstrom| Wanted::Lattice { angstrom, temperature_k: ROOM_TEMPERATURE_K });
-                let wanted: Vec<Wanted> = match family.freedom() {
-                    1 => vec![matched.unwrap_or(Wanted::Gap(gap_ev))],
-                    _ => matched.into_iter().chain([Wanted::Gap(gap_ev)]).collect(),
-                };
-                let Ok(composition) = solve(&family, &wanted) else { continue };
-                let material = family.at(&composition, None);
-                if material.gap(ROOM_TEMPERATURE_K).is_some_and(|gap| (gap.ev - gap_ev).abs() <= tolerance_ev)
-                {
-                    found.push(material);
-                }
+                let candidates = nearest(&family, gap_ev, lattice);
+                let mut materials = candidates.into_iter().map(|composition| family.at(&composition, None));
+                found.extend(materials.find(|material| suits(material)));
             }
             None => {}
         }
     }
     found
+}
+
+/// Compositions of a family worth a look for a gap on a lattice, the best first.
+fn nearest(family: &Family, gap_ev: f64, lattice: Option<f64>) -> Vec<Composition> {
+    let matched = lattice.map(|angstrom| Wanted::Lattice { angstrom, temperature_k: ROOM_TEMPERATURE_K });
+    let within = lattice.map(|angstrom| (angstrom, ROOM_TEMPERATURE_K)).filter(|_| family.freedom() > 1);
+    let Some(reach) = gap_reach(family, within) else { return Vec::new() };
+    let gap = Wanted::Gap(gap_ev.clamp(reach.low.0.ev, reach.high.0.ev));
+    let wishes = match (family.freedom(), matched) {
+        (1, Some(matched)) => vec![vec![matched], vec![gap]],
+        (1, None) => vec![vec![gap]],
+        (_, Some(matched)) => vec![vec![matched, gap]],
+        // Two open fractions and one wish: nothing to choose by.
+        (_, None) => Vec::new(),
+    };
+    wishes.iter().filter_map(|wishes| solve(family, wishes).ok()).collect()
 }

@@ -147,7 +147,15 @@ impl Reader<'_> {
         }
         let [gap, e1, e2] = points;
         if let (Some(e1), Some(e2)) = (e1, e2) {
-            return Some((gap, (e1, e2)));
+            if gap.unwrap_or(0.0) < e1 && e1 < e2 {
+                return Some((gap, (e1, e2)));
+            }
+            self.scope.report(
+                Finding::error("material.statement", "critical points rise from the gap to `e1` to `e2`")
+                    .at(property.span, "out of order")
+                    .help("check them against the maxima of the absorption, such as `{ gap 1.88 eV; e1 3.40 eV; e2 4.80 eV }`"),
+            );
+            return None;
         }
         self.scope.report(
             Finding::error("material.incomplete", "a sample needs its critical points `e1` and `e2`")
