@@ -1,6 +1,8 @@
 //! Everything that is not a stack file under test: the command, the physics against outside
 //! sources, the sheet, and the rules of the house.
 
+#![expect(clippy::disallowed_methods, reason = "tests prepare and read their files themselves")]
+
 mod integration {
     mod cli;
     mod designs;

@@ -3,6 +3,8 @@
 //!
 //! `BANDLOOM_UPDATE=1` rewrites the `//~` lines of fixtures, and nothing else.
 
+#![expect(clippy::disallowed_methods, reason = "the harness reads and rewrites fixtures itself")]
+
 #[path = "suite/expect.rs"]
 mod expect;
 #[path = "suite/files.rs"]

@@ -125,7 +125,8 @@ mod tests {
 
     #[test]
     fn the_flag_beats_the_environment_and_the_environment_the_terminal() {
-        let rows: &[(ColorWish, bool, &[(&str, &str)], bool)] = &[
+        type Row = (ColorWish, bool, &'static [(&'static str, &'static str)], bool);
+        let rows: &[Row] = &[
             (ColorWish::Auto, true, &[], true),
             (ColorWish::Auto, false, &[], false),
             (ColorWish::Auto, true, &[("NO_COLOR", "0")], false),

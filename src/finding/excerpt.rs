@@ -270,12 +270,12 @@ mod tests {
     #[test]
     fn the_end_of_a_text_is_a_place() {
         for text in ["", "a\n", "a"] {
-            let drawn = excerpt(text, &[text.len()..text.len()]);
+            let drawn = excerpt(text, std::slice::from_ref(&(text.len()..text.len())));
             assert!(drawn.text.ends_with('\n'));
             let view = drawn.view(drawn.spans[0].clone());
             assert_eq!(view.lines, 1, "{text:?}");
         }
-        let past = excerpt("µ", &[1..99]);
+        let past = excerpt("µ", std::slice::from_ref(&(1..99)));
         assert_eq!(shown(&past, 0), "µ");
     }
 }

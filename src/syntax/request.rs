@@ -74,6 +74,7 @@ pub struct Seek {
 }
 
 /// What is sought of a metric.
+#[expect(clippy::large_enum_variant, reason = "a stack holds one or two of them")]
 #[derive(Clone, Debug, PartialEq)]
 pub enum SeekTarget {
     /// `highest`

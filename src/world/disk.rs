@@ -51,7 +51,7 @@ impl Disk {
 
     /// A missing file beyond the root is outside, not missing: nothing is told of what is there.
     fn refusal(&self, path: &Path, why: &std::io::Error) -> ReadError {
-        let folder = path.ancestors().skip(1).find_map(|folder| existing(folder));
+        let folder = path.ancestors().skip(1).find_map(existing);
         let outside = folder.is_some_and(|folder| !folder.starts_with(&self.root));
         if outside && !self.named.iter().any(|named| named == path) {
             return ReadError::Outside;
