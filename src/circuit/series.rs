@@ -63,17 +63,37 @@ impl Series<'_> {
         } else {
             self.bracket(voltage, 1.0)
         };
-        let low = self.bracket(voltage, -1.0);
-        let current = newton_bracketed(
-            |current| {
-                let (sum, slope) = self.voltage(current);
-                (sum - voltage, slope)
+        self.at_current(self.current_between(voltage, self.bracket(voltage, -1.0), high))
+    }
+
+    /// The current at `voltage`, known to lie between `low` and `high`. Solved in the voltage of
+    /// the junction that carries least: near saturation the current hardly moves with it, but the
+    /// terminal voltage always moves at least as much as that junction's.
+    fn current_between(&self, voltage: f64, low: f64, high: f64) -> f64 {
+        let carries = |diode: &Diode| (diode.ceiling(), diode.photocurrent);
+        let least = self.diodes.iter().enumerate().min_by(|a, b| {
+            let (a, b) = (carries(a.1), carries(b.1));
+            a.0.total_cmp(&b.0).then(a.1.total_cmp(&b.1))
+        });
+        let Some((least, own)) = least else { return 0.0 };
+        let rest = |current: f64| {
+            let others = self.diodes.iter().enumerate().filter(|(index, _)| *index != least);
+            others.fold((-current * self.resistance_ohm_m2, -self.resistance_ohm_m2), |sum, (_, diode)| {
+                let (voltage, slope) = diode.voltage(current);
+                (sum.0 + voltage, sum.1 + slope)
+            })
+        };
+        let own_voltage = newton_bracketed(
+            |own_voltage| {
+                let (dark, slope) = own.dark(own_voltage);
+                let (others, others_slope) = rest(own.photocurrent - dark);
+                (own_voltage + others - voltage, 1.0 - others_slope * slope)
             },
-            low,
-            high,
-            0.0,
+            own.voltage(high).0,
+            own.voltage(low).0,
+            1e-13,
         );
-        self.at_current(current)
+        own.current(own_voltage)
     }
 
     fn saturated(&self, current: f64, ceiling: f64, voltage: f64) -> Point {

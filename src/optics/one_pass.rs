@@ -274,9 +274,16 @@ impl OnePass {
     }
 }
 
-/// `1 − exp(−x)`; most of a spectrum lies beyond a layer's edge, where nothing is to be done.
+/// `1 − exp(−x)`; most of a spectrum lies beyond a layer's edge or is wholly absorbed, where there
+/// is nothing to work out (`exp(−40)` is below the rounding of 1).
 fn taken_by(depth: f64) -> f64 {
-    if depth == 0.0 { 0.0 } else { -(-depth).exp_m1() }
+    if depth == 0.0 {
+        0.0
+    } else if depth > 40.0 {
+        1.0
+    } else {
+        -(-depth).exp_m1()
+    }
 }
 
 /// Takes the shares `taken` from `left` and returns what was absorbed.
