@@ -191,7 +191,7 @@ pub fn render(
             files.push(OutputFile { name: "sheet.md".into(), bytes: markdown.into_bytes() });
             files.extend(sheet.figures().map(|figure| OutputFile {
                 name: figure.file.clone(),
-                bytes: figure.standalone.clone().into_bytes(),
+                bytes: figure.standalone().into_bytes(),
             }));
         }
     }

@@ -54,8 +54,6 @@ pub struct Figure {
     pub half: bool,
     /// `figure-stack.svg`
     pub file: String,
-    /// The full drawing as a file of its own.
-    pub standalone: String,
 }
 
 impl Figure {
@@ -72,14 +70,17 @@ impl Figure {
             slim: None,
             half: false,
             file: format!("figure-{file}.svg"),
-            standalone: String::new(),
         }
     }
 
-    /// Sets the drawings and writes the standalone file.
+    /// The full drawing as a file of its own.
+    pub fn standalone(&self) -> String {
+        self.wide.standalone(self)
+    }
+
+    /// Sets the drawings.
     #[must_use]
     pub fn drawn(mut self, wide: Drawing, slim: Option<Drawing>) -> Self {
-        self.standalone = wide.standalone(&self);
         self.wide = wide;
         self.slim = slim;
         self

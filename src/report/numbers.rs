@@ -1,15 +1,16 @@
 //! The numbers file and the curves, for other programs.
 
-use serde::Serialize;
-use serde_json::{Map, Number, Value};
+use std::io::{self, Write};
 
-use crate::report::number::round_significant;
+use serde::Serialize;
+use serde_json::ser::Formatter;
+
 use crate::report::{FindingRow, ReportError};
 use crate::results::{ConditionResult, Results};
 
 /// Digits that are written: more than any model holds, few enough that the last bits of a sum
 /// do not show as a change.
-const DIGITS: i32 = 10;
+const DIGITS: usize = 10;
 
 /// The numbers file: [`Results`] and `findings`, keys in the order of the structs, floats with
 /// ten significant digits, arrays of numbers on one line each.
@@ -24,15 +25,12 @@ pub fn json(results: &Results, findings: &[FindingRow]) -> Result<String, Report
         findings: &'a [FindingRow],
     }
     finite(results)?;
-    let value = serde_json::to_value(File { results, findings }).map_err(|error| ReportError {
-        template: None,
-        line: None,
-        message: error.to_string(),
-    })?;
-    let mut out = String::new();
-    write(&value, 0, &mut out);
-    out.push('\n');
-    Ok(out)
+    let mut bytes = Vec::new();
+    let mut serializer = serde_json::Serializer::with_formatter(&mut bytes, Layout::default());
+    let fault = |message: String| ReportError { template: None, line: None, message };
+    File { results, findings }.serialize(&mut serializer).map_err(|error| fault(error.to_string()))?;
+    bytes.push(b'\n');
+    String::from_utf8(bytes).map_err(|error| fault(error.to_string()))
 }
 
 /// `serde_json` turns what is not finite into `null`; this says so instead.
@@ -98,65 +96,85 @@ fn finite(results: &Results) -> Result<(), ReportError> {
     Ok(())
 }
 
-/// The only place where a float becomes text in the numbers file.
-fn number(value: &Number) -> String {
-    match value.as_f64() {
-        Some(float) if !(value.is_i64() || value.is_u64()) => {
-            let rounded = round_significant(float, DIGITS);
-            Number::from_f64(if rounded == 0.0 { 0.0 } else { rounded })
-                .unwrap_or_else(|| Number::from(0))
-                .to_string()
-        }
-        _ => value.to_string(),
+/// One key a line; arrays stay on the line of their key, so that a curve is one line of a diff.
+#[derive(Default)]
+struct Layout {
+    depth: usize,
+    has_value: bool,
+}
+
+impl Layout {
+    fn new_line<W: ?Sized + Write>(&self, out: &mut W) -> io::Result<()> {
+        out.write_all(b"\n")?;
+        (0..self.depth).try_for_each(|_| out.write_all(b"  "))
     }
 }
 
-fn write(value: &Value, depth: usize, out: &mut String) {
-    match value {
-        Value::Number(n) => out.push_str(&number(n)),
-        Value::Array(items) if items.iter().all(|item| !item.is_object() && !item.is_array()) => {
-            out.push('[');
-            for (index, item) in items.iter().enumerate() {
-                if index > 0 {
-                    out.push_str(", ");
-                }
-                write(item, depth, out);
+impl Formatter for Layout {
+    fn begin_array_value<W: ?Sized + Write>(&mut self, out: &mut W, first: bool) -> io::Result<()> {
+        if first { Ok(()) } else { out.write_all(b", ") }
+    }
+
+    fn begin_object<W: ?Sized + Write>(&mut self, out: &mut W) -> io::Result<()> {
+        self.depth += 1;
+        self.has_value = false;
+        out.write_all(b"{")
+    }
+
+    fn begin_object_key<W: ?Sized + Write>(&mut self, out: &mut W, first: bool) -> io::Result<()> {
+        if !first {
+            out.write_all(b",")?;
+        }
+        self.new_line(out)
+    }
+
+    fn begin_object_value<W: ?Sized + Write>(&mut self, out: &mut W) -> io::Result<()> {
+        out.write_all(b": ")
+    }
+
+    fn end_object_value<W: ?Sized + Write>(&mut self, _out: &mut W) -> io::Result<()> {
+        self.has_value = true;
+        Ok(())
+    }
+
+    fn end_object<W: ?Sized + Write>(&mut self, out: &mut W) -> io::Result<()> {
+        self.depth -= 1;
+        if self.has_value {
+            self.new_line(out)?;
+        }
+        out.write_all(b"}")
+    }
+
+    fn write_f64<W: ?Sized + Write>(&mut self, out: &mut W, value: f64) -> io::Result<()> {
+        out.write_all(float(value).as_bytes())
+    }
+}
+
+/// The only place where a float becomes text in the files for programs: ten significant digits,
+/// no trailing zeros, a fraction or an exponent so that it reads as a float again.
+fn float(value: f64) -> String {
+    let text = format!("{value:.*e}", DIGITS - 1);
+    let (mantissa, exponent) = text.split_once('e').unwrap_or((&text, "0"));
+    let (sign, mantissa) = mantissa.strip_prefix('-').map_or(("", mantissa), |rest| ("-", rest));
+    let digits: String = mantissa.chars().filter(|c| *c != '.').collect();
+    let digits = digits.trim_end_matches('0');
+    if digits.is_empty() {
+        return "0.0".into();
+    }
+    let exponent: i32 = exponent.parse().unwrap_or(0);
+    match exponent {
+        0..=14 => {
+            let whole = exponent as usize + 1;
+            if digits.len() <= whole {
+                format!("{sign}{digits}{}.0", "0".repeat(whole - digits.len()))
+            } else {
+                format!("{sign}{}.{}", &digits[..whole], &digits[whole..])
             }
-            out.push(']');
         }
-        Value::Array(items) => {
-            out.push('[');
-            for (index, item) in items.iter().enumerate() {
-                out.push_str(if index > 0 { ",\n" } else { "\n" });
-                indent(depth + 1, out);
-                write(item, depth + 1, out);
-            }
-            out.push('\n');
-            indent(depth, out);
-            out.push(']');
-        }
-        Value::Object(map) if map.is_empty() => out.push_str("{}"),
-        Value::Object(map) => object(map, depth, out),
-        other => out.push_str(&other.to_string()),
+        -4..=-1 => format!("{sign}0.{}{digits}", "0".repeat((-exponent) as usize - 1)),
+        _ if digits.len() == 1 => format!("{sign}{digits}.0e{exponent}"),
+        _ => format!("{sign}{}.{}e{exponent}", &digits[..1], &digits[1..]),
     }
-}
-
-fn object(map: &Map<String, Value>, depth: usize, out: &mut String) {
-    out.push('{');
-    for (index, (key, value)) in map.iter().enumerate() {
-        out.push_str(if index > 0 { ",\n" } else { "\n" });
-        indent(depth + 1, out);
-        out.push_str(&Value::String(key.clone()).to_string());
-        out.push_str(": ");
-        write(value, depth + 1, out);
-    }
-    out.push('\n');
-    indent(depth, out);
-    out.push('}');
-}
-
-fn indent(depth: usize, out: &mut String) {
-    out.extend(std::iter::repeat_n("  ", depth));
 }
 
 /// Every curve, one point a row: condition, which curve (`stack` or a junction by itself),
@@ -171,18 +189,13 @@ pub fn csv(results: &Results) -> String {
             condition.junction_curves.iter().map(|j| (j.name.as_str(), &j.voltage_v, &j.current_ma_per_cm2));
         for (name, voltages, currents) in stack.chain(junctions) {
             for (v, j) in voltages.iter().zip(currents) {
-                let row = [field(&condition.name), field(name), plain(*v), plain(*j)];
+                let row = [field(&condition.name), field(name), float(*v), float(*j)];
                 out.push_str(&row.join(","));
                 out.push('\n');
             }
         }
     }
     out
-}
-
-fn plain(value: f64) -> String {
-    let rounded = round_significant(value, DIGITS);
-    if rounded == 0.0 { "0".into() } else { format!("{rounded}") }
 }
 
 fn field(name: &str) -> String {
@@ -195,14 +208,29 @@ mod tests {
     use super::*;
 
     #[test]
-    fn floats_keep_ten_digits_and_integers_stay_integers() {
-        let mut out = String::new();
-        write(
-            &serde_json::json!({"a": 0.1 + 0.2, "b": 1, "c": [1.0, -0.0, 1.23456789012345e-20]}),
-            0,
-            &mut out,
-        );
-        assert_eq!(out, "{\n  \"a\": 0.3,\n  \"b\": 1,\n  \"c\": [1.0, 0.0, 1.23456789e-20]\n}");
+    fn floats_keep_ten_digits_and_read_as_floats() {
+        for (value, text) in [
+            (0.1 + 0.2, "0.3"),
+            (1.0, "1.0"),
+            (-0.0, "0.0"),
+            (1366.09, "1366.09"),
+            (450_070.0, "450070.0"),
+            (0.00012, "0.00012"),
+            (1.23456789012345e-20, "1.23456789e-20"),
+            (-2e18, "-2.0e18"),
+        ] {
+            assert_eq!(float(value), text);
+        }
+    }
+
+    #[test]
+    fn ten_digits_are_never_further_off_than_half_of_the_last() {
+        let mut value = 1.0e-30;
+        while value < 1e30 {
+            let back: f64 = float(value).parse().expect("a number");
+            assert!((back / value - 1.0).abs() <= 0.5e-9, "{value}");
+            value *= 7.3;
+        }
     }
 
     #[test]

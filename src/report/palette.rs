@@ -5,6 +5,7 @@
 //! makes current or power, hatched serves or is lost: colour is never the only mark. Neighbouring
 //! junctions alternate dark and light fills so that greyscale keeps them apart.
 
+use std::collections::BTreeSet;
 use std::fmt::Write as _;
 
 /// Colours of one junction on paper and on dark.
@@ -191,14 +192,15 @@ fn rules() -> Vec<Rule> {
 
 /// The style of the figures: all classes, or those that occur in `used` (a drawing's text).
 pub fn figure_css(used: Option<&str>) -> String {
-    let wanted = |class: &str| {
-        used.is_none_or(|body| {
-            // Class lists are written by this crate with single spaces.
-            body.split("class=\"").skip(1).any(|rest| {
-                rest.split('"').next().is_some_and(|list| list.split(' ').any(|one| one == class))
-            })
-        })
-    };
+    // Class lists are written by this crate with single spaces.
+    let used: Option<BTreeSet<&str>> = used.map(|body| {
+        body.split("class=\"")
+            .skip(1)
+            .filter_map(|rest| rest.split('"').next())
+            .flat_map(|list| list.split(' '))
+            .collect()
+    });
+    let wanted = |class: &str| used.as_ref().is_none_or(|used| used.contains(class));
     let rules: Vec<Rule> = rules().into_iter().filter(|rule| wanted(&rule.class)).collect();
     let mut css = format!(
         ".fig text{{font:12.5px {SANS};font-variant-numeric:tabular-nums lining-nums;fill:{}}}\n",

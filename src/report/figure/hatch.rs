@@ -40,6 +40,7 @@ pub fn strokes(hatch: Hatch, shape: &[Point]) -> String {
         }
         Hatch::Dots(distance) => {
             return grid(shape, distance, 1.2)
+                .into_iter()
                 .map(|(x, y)| format!("M{} {}h0", unit(x), unit(y)))
                 .collect::<Vec<_>>()
                 .join("");
@@ -47,6 +48,7 @@ pub fn strokes(hatch: Hatch, shape: &[Point]) -> String {
         Hatch::Plus(distance) => {
             let arm = distance / 4.0;
             grid(shape, distance, 0.0)
+                .into_iter()
                 .flat_map(|(x, y)| [((x - arm, y), (x + arm, y)), ((x, y - arm), (x, y + arm))])
                 .flat_map(|segment| clip(segment, shape))
                 .collect()
@@ -127,8 +129,12 @@ fn clip((a, b): (Point, Point), shape: &[Point]) -> Vec<(Point, Point)> {
     let (dx, dy) = (b.0 - a.0, b.1 - a.1);
     let length = dx.hypot(dy);
     let mut cuts = vec![0.0, 1.0];
+    let (low, high) = ((a.0.min(b.0), a.1.min(b.1)), (a.0.max(b.0), a.1.max(b.1)));
     for (index, p) in shape.iter().enumerate() {
         let q = shape[(index + 1) % shape.len()];
+        if p.0.max(q.0) < low.0 || p.0.min(q.0) > high.0 || p.1.max(q.1) < low.1 || p.1.min(q.1) > high.1 {
+            continue;
+        }
         let (ex, ey) = (q.0 - p.0, q.1 - p.1);
         let cross = dx * ey - dy * ex;
         if cross.abs() < 1e-12 {
@@ -164,41 +170,77 @@ fn inside(p: Point, shape: &[Point]) -> bool {
     odd
 }
 
+/// Where a horizontal line runs inside the shape, from left to right.
+fn runs(shape: &[Point], y: f64) -> Vec<(f64, f64)> {
+    let mut cuts: Vec<f64> = Vec::new();
+    for (index, a) in shape.iter().enumerate() {
+        let b = shape[(index + 1) % shape.len()];
+        if (a.1 > y) != (b.1 > y) {
+            cuts.push((b.0 - a.0) * (y - a.1) / (b.1 - a.1) + a.0);
+        }
+    }
+    cuts.sort_by(f64::total_cmp);
+    cuts.chunks_exact(2).map(|pair| (pair[0], pair[1])).collect()
+}
+
+fn within(runs: &[(f64, f64)], from: f64, to: f64) -> bool {
+    runs.iter().any(|run| run.0 <= from && to <= run.1)
+}
+
 /// Staggered grid points that lie at least `margin` inside the shape.
-fn grid(shape: &[Point], distance: f64, margin: f64) -> impl Iterator<Item = Point> + '_ {
+fn grid(shape: &[Point], distance: f64, margin: f64) -> Vec<Point> {
     let (low, high) = bounds(shape);
     let row_height = distance / 2.0;
     let first_row = (low.1 / row_height).ceil() as i64;
     let last_row = (high.1 / row_height).floor() as i64;
-    (first_row..=last_row).flat_map(move |row| {
+    let mut out = Vec::new();
+    for row in first_row..=last_row {
         let y = row as f64 * row_height;
+        let lines = [runs(shape, y - margin), runs(shape, y), runs(shape, y + margin)];
         let shift = if row.rem_euclid(2) == 0 { 0.0 } else { distance / 2.0 };
         let first = ((low.0 - shift) / distance).ceil() as i64;
         let last = ((high.0 - shift) / distance).floor() as i64;
-        (first..=last).map(move |column| (column as f64 * distance + shift, y)).filter(move |(x, y)| {
-            inside((*x, *y), shape)
-                && (margin == 0.0
-                    || [(margin, 0.0), (-margin, 0.0), (0.0, margin), (0.0, -margin)]
-                        .iter()
-                        .all(|(dx, dy)| inside((x + dx, y + dy), shape)))
+        for column in first..=last {
+            let x = column as f64 * distance + shift;
+            let wide = within(&lines[1], x - margin, x + margin);
+            if wide && within(&lines[0], x, x) && within(&lines[2], x, x) {
+                out.push((x, y));
+            }
+        }
+    }
+    out
+}
+
+/// Segments of one row between two heights, cut to the shape. Those that meet the shape at none of
+/// three heights are passed over without a closer look.
+fn row_of(
+    shape: &[Point],
+    (top, bottom): (f64, f64),
+    segments: impl Iterator<Item = (Point, Point)>,
+) -> Vec<(Point, Point)> {
+    let levels = [0.1, 0.5, 0.9].map(|share| runs(shape, top + (bottom - top) * share));
+    segments
+        .filter(|(a, b)| {
+            let (from, to) = (a.0.min(b.0), a.0.max(b.0));
+            levels.iter().flatten().any(|run| run.0 < to && from < run.1)
         })
-    })
+        .flat_map(|segment| clip(segment, shape))
+        .collect()
 }
 
 fn zigzag(shape: &[Point], distance: f64) -> Vec<(Point, Point)> {
     let (low, high) = bounds(shape);
-    let half = distance;
     let mut out = Vec::new();
     let mut y = (low.1 / distance).floor() * distance;
+    let first = (low.0 / distance).floor() as i64;
+    let last = (high.0 / distance).ceil() as i64;
     while y < high.1 {
-        let mut column = (low.0 / half).floor() as i64;
-        while (column as f64) * half < high.0 {
-            let up = column.rem_euclid(2) == 0;
-            let a = (column as f64 * half, if up { y } else { y + distance * 0.55 });
-            let b = ((column + 1) as f64 * half, if up { y + distance * 0.55 } else { y });
-            out.extend(clip((a, b), shape));
-            column += 1;
-        }
+        let foot = y + distance * 0.55;
+        let teeth = (first..last).map(|column| {
+            let (left, right) = (column as f64 * distance, (column + 1) as f64 * distance);
+            if column.rem_euclid(2) == 0 { ((left, y), (right, foot)) } else { ((left, foot), (right, y)) }
+        });
+        out.extend(row_of(shape, (y, foot), teeth));
         y += distance;
     }
     out
@@ -210,15 +252,16 @@ fn dashes(shape: &[Point], distance: f64) -> Vec<(Point, Point)> {
     let mut out = Vec::new();
     let first_row = (low.1 / distance).floor() as i64 - 1;
     let last_row = (high.1 / distance).ceil() as i64;
+    let first = (low.0 / (2.0 * distance)).floor() as i64 - 1;
+    let last = (high.0 / (2.0 * distance)).ceil() as i64;
     for row in first_row..=last_row {
         let shift = if row.rem_euclid(2) == 0 { 0.0 } else { distance };
-        let mut column = (low.0 / (2.0 * distance)).floor() as i64 - 1;
-        while (column as f64) * 2.0 * distance < high.0 {
+        let y = (row + 1) as f64 * distance;
+        let strokes = (first..last).map(|column| {
             let x = column as f64 * 2.0 * distance + shift;
-            let y = (row + 1) as f64 * distance;
-            out.extend(clip(((x, y), (x + dash, y - dash)), shape));
-            column += 1;
-        }
+            ((x, y), (x + dash, y - dash))
+        });
+        out.extend(row_of(shape, (y - dash, y), strokes));
     }
     out
 }

@@ -63,27 +63,31 @@ pub fn thin(points: &[Point], tolerance: f64) -> Vec<Point> {
     keep[points.len() - 1] = true;
     let mut open = vec![(0, points.len() - 1)];
     while let Some((from, to)) = open.pop() {
-        let far = (from + 1..to)
-            .map(|i| (i, distance(points[i], points[from], points[to])))
-            .max_by(|a, b| a.1.total_cmp(&b.1));
-        if let Some((index, offset)) = far
-            && offset > tolerance
-        {
-            keep[index] = true;
-            open.push((from, index));
-            open.push((index, to));
+        let (a, b) = (points[from], points[to]);
+        let (dx, dy) = (b.0 - a.0, b.1 - a.1);
+        let length = dx.hypot(dy);
+        // Twice the area over the base; where the ends coincide, the distance from them.
+        let offset = |p: Point| {
+            if length < 1e-12 {
+                (p.0 - a.0).hypot(p.1 - a.1)
+            } else {
+                ((p.0 - a.0) * dy - (p.1 - a.1) * dx).abs() / length
+            }
+        };
+        let mut far = (from, tolerance);
+        for (index, point) in points.iter().enumerate().take(to).skip(from + 1) {
+            let off = offset(*point);
+            if off > far.1 {
+                far = (index, off);
+            }
+        }
+        if far.0 > from {
+            keep[far.0] = true;
+            open.push((from, far.0));
+            open.push((far.0, to));
         }
     }
     points.iter().zip(keep).filter(|(_, kept)| *kept).map(|(point, _)| *point).collect()
-}
-
-fn distance(p: Point, a: Point, b: Point) -> f64 {
-    let (dx, dy) = (b.0 - a.0, b.1 - a.1);
-    let length = dx.hypot(dy);
-    if length < 1e-12 {
-        return (p.0 - a.0).hypot(p.1 - a.1);
-    }
-    ((p.0 - a.0) * dy - (p.1 - a.1) * dx).abs() / length
 }
 
 /// The runs of a curve inside the box `low..high`, cut at its edges.
@@ -103,6 +107,17 @@ pub fn cut(points: &[Point], low: Point, high: Point) -> Vec<Vec<Point>> {
         }
     }
     runs
+}
+
+/// Whether a curve has a part inside the box `low..high`.
+pub fn meets(points: &[Point], low: Point, high: Point) -> bool {
+    points.windows(2).any(|pair| {
+        let (a, b) = (pair[0], pair[1]);
+        // Most segments lie wholly on one side.
+        let beside =
+            a.0.max(b.0) < low.0 || a.0.min(b.0) > high.0 || a.1.max(b.1) < low.1 || a.1.min(b.1) > high.1;
+        !beside && cut_segment(a, b, low, high).is_some()
+    })
 }
 
 /// Liang and Barsky, ACM Trans. Graph. 3, 1 (1984).

@@ -22,7 +22,7 @@ pub fn light(context: &Context<'_>) -> Section {
         lost.iter().take(3).map(|band| format!("{} ({})", band.name, scale.number(band.drawn_ma))).collect();
     let mut lede = Text::of(format!(
         "Of the {} of sunlight up to {}, {} become current.",
-        scale.text(light.total_ma.0),
+        scale.text(light.sums_ma.0),
         nm(light.range_nm.1),
         scale.number(made)
     ));
@@ -43,7 +43,7 @@ pub fn light(context: &Context<'_>) -> Section {
             "Every photon between {} and {}, {} in all, divided into what becomes current and what is lost. The axis is stretched so that equal widths are equal photon current and every area reads in {}: {}.",
             nm(light.range_nm.0),
             nm(light.range_nm.1),
-            scale.text(light.total_ma.0),
+            scale.text(light.sums_ma.0),
             scale.unit,
             parts.join(", ")
         ),
@@ -60,7 +60,7 @@ pub fn light(context: &Context<'_>) -> Section {
         caption.push_str(&format!(
             " Beyond {} lie {} that make no current.",
             nm(light.range_nm.1),
-            scale.text(light.total_ma.1 - light.total_ma.0)
+            scale.text(light.sums_ma.1 - light.sums_ma.0)
         ));
     }
     figure.caption = Text::of(caption);
@@ -92,7 +92,7 @@ fn table(context: &Context<'_>, light: &Light) -> Table {
     for band in &light.bands {
         table.row(cells(&band.name, band.drawn_ma, band.whole_ma));
     }
-    table.row(cells("all", light.total_ma.0, light.total_ma.1));
+    table.row(cells("all", light.sums_ma.0, light.sums_ma.1));
     table
 }
 

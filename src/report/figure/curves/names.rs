@@ -1,8 +1,8 @@
 //! Names and values on the curves: where no curve runs, if there is such a place.
 
-use super::{Line, Point};
+use super::Line;
 use crate::report::context::Context;
-use crate::report::figure::plot::{Scale, cut};
+use crate::report::figure::plot::{Scale, meets};
 use crate::report::figure::power::power_words;
 use crate::report::figure::{Drawing, Label, LabelBox};
 use crate::report::number::{fixed, with_unit};
@@ -13,11 +13,12 @@ const CROWD: usize = 4;
 
 /// Whether one of the curves runs through a box.
 fn crossed(lines: &[Line], bounds: &LabelBox, (x, y): (Scale, Scale)) -> bool {
-    let (low, high) = ((bounds.left - 1.0, bounds.top), (bounds.right + 1.0, bounds.bottom));
-    lines.iter().any(|line| {
-        let points: Vec<Point> = line.points.iter().map(|(v, j)| (x.of(*v), y.of(*j))).collect();
-        !cut(&points, low, high).is_empty()
-    })
+    // The box in volts and mA/cm2, so that no curve has to be moved into units first.
+    let (v, j) = (
+        (x.back(bounds.left - 1.0), x.back(bounds.right + 1.0)),
+        (y.back(bounds.bottom), y.back(bounds.top)),
+    );
+    lines.iter().any(|line| meets(&line.points, (v.0, j.0), (v.1, j.1)))
 }
 
 /// Puts the first label that is free of other labels and of curves; else the first that is free

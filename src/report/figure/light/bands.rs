@@ -35,8 +35,11 @@ pub struct Light {
     pub(super) counted_ma: Vec<f64>,
     /// First wavelength, last drawn, last at all, nm.
     pub range_nm: (f64, f64, f64),
-    /// Photon current of the drawn part and of all, mA/cm2.
+    /// Photon current of the drawn part and of all, mA/cm2: the extent of the axis.
     pub total_ma: (f64, f64),
+    /// The sums of the parts as they are printed, which take each junction's current from the
+    /// evaluation's own finer grid.
+    pub sums_ma: (f64, f64),
 }
 
 /// Layers by themselves at most; the others together.
@@ -75,10 +78,13 @@ impl Light {
             bands: Vec::new(),
             range_nm: (wavelength_nm[0], wavelength_nm[cut], wavelength_nm[n - 1]),
             total_ma: (counted_ma[cut], all),
+            sums_ma: (0.0, 0.0),
             wavelength_nm,
             counted_ma,
         };
         light.divide(context, n, cut);
+        light.sums_ma =
+            light.bands.iter().fold((0.0, 0.0), |sum, b| (sum.0 + b.drawn_ma, sum.1 + b.whole_ma));
         Some(light)
     }
 
@@ -94,22 +100,23 @@ impl Light {
         let mut not_collected = vec![0.0; n];
         for (index, junction) in context.first.junctions.iter().enumerate() {
             let eqe = spectral.eqe.get(&junction.name).filter(|eqe| eqe.len() >= n).map_or(&zero, |e| e);
-            let taken: Vec<f64> = (0..n)
-                .map(|i| {
-                    rows.iter()
-                        .filter(|row| row.junction() == Some(index) && row.makes_current())
-                        .map(|row| share_of(row)[i])
-                        .sum::<f64>()
-                        .max(eqe[i])
-                })
-                .collect();
+            let mut taken = vec![0.0; n];
+            for row in rows.iter().filter(|row| row.junction() == Some(index) && row.makes_current()) {
+                for (sum, share) in taken.iter_mut().zip(share_of(row)) {
+                    *sum += share;
+                }
+            }
+            for (sum, quantum) in taken.iter_mut().zip(eqe) {
+                *sum = sum.max(*quantum);
+            }
             for i in 0..n {
                 absorbed[i] += taken[i];
                 not_collected[i] += (taken[i] - eqe[i]) * open;
             }
             let name = visible(&junction.name);
-            self.push(
+            self.push_current(
                 cut,
+                junction.photocurrent_ma_per_cm2,
                 Band {
                     name: format!("{name}, as current"),
                     short: name,
@@ -206,10 +213,20 @@ impl Light {
         }
     }
 
+    /// A junction's current is known better than the sheet's grid can add it up.
+    fn push_current(&mut self, cut: usize, known_ma: f64, band: Band) {
+        let mut band = self.measured(cut, band);
+        if band.whole_ma > 0.0 && (known_ma / band.whole_ma - 1.0).abs() < 0.02 {
+            band.drawn_ma *= known_ma / band.whole_ma;
+            band.whole_ma = known_ma;
+        }
+        self.bands.push(band);
+    }
+
     fn push(&mut self, cut: usize, band: Band) {
         let band = self.measured(cut, band);
         // What is nothing anywhere has no line in the table either.
-        if band.whole_ma > self.total_ma.1 * 1e-5 || band.junction.is_some() {
+        if band.whole_ma > self.total_ma.1 * 1e-5 {
             self.bands.push(band);
         }
     }
