@@ -28,6 +28,7 @@ mod gap_window_absorbs;
 mod junctions;
 mod lattice_critical_thickness;
 mod lattice_mismatch;
+mod lattice_needless_relaxed;
 mod light_range;
 mod limits;
 mod polarity_flipped;
@@ -56,6 +57,7 @@ pub static RULES: &[&Rule] = &[
     &gap_window_absorbs::RULE,
     &lattice_mismatch::RULE,
     &lattice_critical_thickness::RULE,
+    &lattice_needless_relaxed::RULE,
     &polarity_same::RULE,
     &polarity_flipped::RULE,
     &doping_missing::RULE,

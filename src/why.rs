@@ -25,6 +25,7 @@ pub const PAGES: &[(&str, &str)] = &[
     ("gap.window-absorbs", include_str!("why/gap.window-absorbs.md")),
     ("lattice.critical-thickness", include_str!("why/lattice.critical-thickness.md")),
     ("lattice.mismatch", include_str!("why/lattice.mismatch.md")),
+    ("lattice.needless-relaxed", include_str!("why/lattice.needless-relaxed.md")),
     ("lattice.unmatchable", include_str!("why/lattice.unmatchable.md")),
     ("light.range", include_str!("why/light.range.md")),
     ("material.incomplete", include_str!("why/material.incomplete.md")),

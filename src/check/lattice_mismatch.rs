@@ -40,9 +40,12 @@ struct Slab {
 }
 
 /// How thick a slab may be, m; `None` where no thickness keeps it coherent.
-struct Critical {
-    safe_m: Option<f64>,
+pub(super) struct Critical {
+    /// Matthews and Blakeslee.
+    pub(super) safe_m: Option<f64>,
+    /// People and Bean.
     hopeless_m: Option<f64>,
+    /// One step of the lattice.
     step_m: f64,
 }
 
@@ -56,7 +59,9 @@ pub(super) fn judge(context: &Context, report: &mut Report, code: &'static str, 
         let layers: Vec<&Layer> = slab.layers.iter().map(|index| &context.design.layers[*index]).collect();
         let known: Vec<f64> = layers.iter().filter_map(|layer| layer.thickness_m).collect();
         let thickness: f64 = known.iter().sum();
-        let Some(critical) = critical(context, &slab) else { continue };
+        let Some(critical) = slab.layers.first().and_then(|first| critical(context, *first)) else {
+            continue;
+        };
         // Less than a step of the lattice is no layer yet: dots and wetting layers start so.
         if thickness <= critical.safe_m.unwrap_or(0.0).max(critical.step_m) {
             continue;
@@ -97,18 +102,20 @@ fn slabs(context: &Context, speaks: fn(Strain) -> bool) -> Vec<Slab> {
     slabs
 }
 
-fn critical(context: &Context, slab: &Slab) -> Option<Critical> {
-    let layer = &context.design.layers[*slab.layers.first()?];
-    let material = layer.material.as_ref()?;
-    let temperature_k = context.lattice[*slab.layers.first()?]?.growth_temperature_k;
-    let ground = context.design.layers[slab.beneath].material.as_ref()?;
+/// How thick the layer at `index` may be on the layer beneath it before it relaxes.
+pub(super) fn critical(context: &Context, index: usize) -> Option<Critical> {
+    let layer = &context.design.layers[index];
+    let state = context.lattice[index]?;
+    let (material, temperature_k) = (layer.material.as_ref()?, state.growth_temperature_k);
+    let ground = context.design.layers[state.beneath?].material.as_ref()?;
     let burgers = ground.lattice_constant(temperature_k)? / std::f64::consts::SQRT_2;
-    let poisson = material.elastic.map_or(USUAL_POISSON, poisson_ratio);
+    let lattice = material.lattice_constant(temperature_k)?;
+    let (mismatch, poisson) =
+        (state.mismatch_at_growth, material.elastic.map_or(USUAL_POISSON, poisson_ratio));
     let metres = |angstrom: f64| angstrom * 1e-10;
     Some(Critical {
-        safe_m: matthews_blakeslee(slab.mismatch, poisson, burgers, Cover::Free).map(metres),
-        hopeless_m: people_bean(slab.mismatch, poisson, burgers, material.lattice_constant(temperature_k)?)
-            .map(metres),
+        safe_m: matthews_blakeslee(mismatch, poisson, burgers, Cover::Free).map(metres),
+        hopeless_m: people_bean(mismatch, poisson, burgers, lattice).map(metres),
         step_m: metres(burgers),
     })
 }
