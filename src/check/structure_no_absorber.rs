@@ -15,7 +15,7 @@ pub(super) static RULE: Rule = Rule {
 };
 
 fn run(context: &Context, report: &mut Report) {
-    if context.design.junctions.is_empty() {
+    if context.design.junctions.is_empty() && !context.has_faults() {
         let name = &context.design.name;
         report.push(
             Vec::<String>::new(),
