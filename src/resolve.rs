@@ -35,6 +35,7 @@ mod parts;
 mod properties;
 pub mod quantities;
 mod requests;
+mod slots;
 mod stack;
 mod table;
 mod tree;
@@ -270,3 +271,6 @@ fn set(scope: &mut Scope, files: &mut Files<'_>, overrides: &Overrides) {
         }
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -1,11 +1,12 @@
 //! What is said of one layer on its line and in its block.
 
-use crate::design::{Design, Doping, Duty, Extent, FreeValue, Place, Strain, Tolerance};
+use crate::design::{Design, Doping, Duty, Extent, Place, Strain};
 use crate::finding::{Finding, Severity};
 use crate::resolve::layers::{Draft, blank};
 use crate::resolve::materials::MODEL_PROPERTIES;
 use crate::resolve::properties::{self, Kept, conflict, pending};
 use crate::resolve::quantities::{Expected, Role};
+use crate::resolve::slots::slot;
 use crate::resolve::tree::LayerNode;
 use crate::resolve::{Resolver, names};
 use crate::source::{Span, Spanned};
@@ -350,89 +351,4 @@ fn property_of_layer(
         "growth_temperature" => layer.growth_temperature_k = read,
         _ => layer.rate_m_per_s = read,
     }
-}
-
-/// The SI value in force of a slot of a layer; its free range and its tolerance go into the
-/// design under the layer's path and the slot's word.
-pub(super) fn slot(
-    resolver: &mut Resolver<'_, '_>,
-    design: &mut Design,
-    (path, what): (&str, &str),
-    value: &Value,
-    expected: Expected<'_>,
-) -> Option<f64> {
-    let slot = resolver.scope.slot(value, expected);
-    if value.up_to.is_some() && !slot.wrong {
-        // Says that one value is due; the same wording for every such slot.
-        return resolver.scope.quantity(value, expected);
-    }
-    let path = format!("{path}.{what}");
-    if let Some((range, span)) = slot.free {
-        let whole = value.free.as_ref().map_or(span, |_| value.span);
-        let text = resolver.text(span);
-        design.free_values.push(FreeValue {
-            path: path.clone(),
-            range,
-            value: slot.value,
-            text,
-            span: whole,
-        });
-    }
-    if let Some(tolerance) = &slot.tolerance {
-        tolerance_of(resolver, design, (path, slot.value), tolerance, expected);
-    }
-    slot.value
-}
-
-fn tolerance_of(
-    resolver: &mut Resolver<'_, '_>,
-    design: &mut Design,
-    (path, value): (String, Option<f64>),
-    tolerance: &crate::syntax::Tolerance,
-    expected: Expected<'_>,
-) {
-    let text = resolver.text(tolerance.span);
-    let Some(meaning) = &tolerance.meaning else {
-        resolver.scope.report(
-            Finding::error("value.missing", format!("`{text}` does not say what it means"))
-                .at(tolerance.span, "one standard deviation, or limits?")
-                .help(format!("write `{text} sigma` for one standard deviation, or `{text} limits`")),
-        );
-        return;
-    };
-    if design.tolerances.is_empty() {
-        pending(
-            &mut resolver.scope,
-            Severity::Advice,
-            "what tolerances do to the figures is",
-            tolerance.span,
-            "read the figures as those of the nominal design",
-        );
-    }
-    let Some(amount) = tolerance_amount(resolver, tolerance, value, expected) else { return };
-    design.tolerances.push(Tolerance { path, amount, meaning: meaning.value, text, span: tolerance.span });
-}
-
-/// SI amount: a share of the value, or an amount of the same dimension.
-fn tolerance_amount(
-    resolver: &mut Resolver<'_, '_>,
-    tolerance: &crate::syntax::Tolerance,
-    value: Option<f64>,
-    expected: Expected<'_>,
-) -> Option<f64> {
-    let whole = Value {
-        expression: Some(tolerance.amount.clone()),
-        up_to: None,
-        free: None,
-        tolerance: None,
-        span: tolerance.span,
-    };
-    let (dimension, bare) = resolver.scope.dimension(&whole)?;
-    if dimension.is_none() && (!expected.dimension.is_none() || !bare) {
-        let share = Expected::new("tolerance", Dimension::NONE, Role::PositiveShare);
-        let share = resolver.scope.number(&tolerance.amount, share)?;
-        return value.map(|value| (share * value).abs());
-    }
-    let role = if expected.dimension == Dimension::TEMPERATURE { Role::Difference } else { Role::Positive };
-    resolver.scope.number(&tolerance.amount, Expected::new("tolerance", expected.dimension, role))
 }

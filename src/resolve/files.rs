@@ -98,21 +98,18 @@ pub fn unreadable(path: &Spanned<String>, what: &str, error: &ReadError) -> Find
             .at(path.span, format!("a folder, not a {what}"))
             .help(format!("name one file in it, such as `\"{}/tunnels.stack\"`", name.trim_end_matches('/'))),
         ReadError::Outside => outside(path, what),
-        ReadError::TooLarge { size, limit } => Finding::error(
-            "use.unreadable",
-            format!("`{name}` has {size} bytes, and {limit} are read at most"),
-        )
-        .at(path.span, "too large")
-        .help("split it into smaller files"),
+        ReadError::TooLarge { size, limit } => {
+            Finding::error("use.missing", format!("`{name}` has {size} bytes, and {limit} are read at most"))
+                .at(path.span, "too large")
+                .help("split it into smaller files")
+        }
         ReadError::NotUtf8 { at } => {
-            Finding::error("use.unreadable", format!("`{name}` is not UTF-8 text: byte {at} cannot be read"))
+            Finding::error("use.missing", format!("`{name}` is not UTF-8 text: byte {at} cannot be read"))
                 .at(path.span, "not UTF-8")
                 .help("save it as UTF-8")
         }
-        ReadError::Other(words) => {
-            Finding::error("use.unreadable", format!("`{name}` cannot be read: {words}"))
-                .at(path.span, "cannot be read")
-                .help("make the file readable for you")
-        }
+        ReadError::Other(words) => Finding::error("use.missing", format!("`{name}` cannot be read: {words}"))
+            .at(path.span, "cannot be read")
+            .help("make the file readable for you"),
     }
 }

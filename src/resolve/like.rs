@@ -3,7 +3,7 @@
 use crate::finding::Finding;
 use crate::resolve::names;
 use crate::resolve::properties::Kept;
-use crate::resolve::tree::{Body, Expansion, LayerNode, Node, local_names};
+use crate::resolve::tree::{Body, Expansion, LayerNode, Node, local_names, numbered};
 use crate::source::Spanned;
 use crate::syntax::{Attribute, Block, GroupKind, Insert, Property, Replace, Statement};
 
@@ -217,20 +217,29 @@ fn find(expansion: &mut Expansion<'_, '_>, body: &Body<'_>, path: &Spanned<Strin
     None
 }
 
+/// Every path of `nodes` with the way to it. A layer with a name after `as` goes by that name, alone
+/// or behind its junction, and by its duty as well: `thick`, `top.thick`, `top.base`.
 fn list(nodes: &[Node<'_>], prefix: &str, way: &mut Vec<usize>, all: &mut Vec<(String, Vec<usize>)>) {
-    for (at, (node, name)) in nodes.iter().zip(local_names(nodes)).enumerate() {
+    let behind = |name: &str| if prefix.is_empty() { name.to_owned() } else { format!("{prefix}.{name}") };
+    let by_word = numbered(nodes.iter().map(|node| match node {
+        Node::Layer(layer) => Err(layer.duty.value.clone()),
+        Node::Group(_) => Ok(String::new()),
+    }));
+    for (at, ((node, name), word)) in nodes.iter().zip(local_names(nodes)).zip(by_word).enumerate() {
         way.push(at);
-        let aliased = matches!(node, Node::Layer(layer) if layer.alias.is_some());
-        let path = if prefix.is_empty() { name.clone() } else { format!("{prefix}.{name}") };
-        if aliased && !prefix.is_empty() {
-            all.push((name, way.clone()));
+        let path = behind(&name);
+        if matches!(node, Node::Layer(layer) if layer.alias.is_some()) {
+            if !prefix.is_empty() {
+                all.push((name, way.clone()));
+            }
+            all.push((behind(&word), way.clone()));
         }
-        all.push((path.clone(), way.clone()));
         if let Node::Group(group) = node {
             let inner =
                 if group.kind == Some(GroupKind::Repeat) && group.name.is_none() { prefix } else { &path };
             list(&group.nodes, inner, way, all);
         }
+        all.push((path, way.clone()));
         way.pop();
     }
 }

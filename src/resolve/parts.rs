@@ -32,6 +32,10 @@ pub(super) fn place<'s>(expansion: &mut Expansion<'_, 's>, place: &'s Place) -> 
         );
         return Vec::new();
     }
+    // Parts that place parts twice each double at every level, with or without layers in them.
+    if !expansion.room(place.span) {
+        return Vec::new();
+    }
     let caller = expansion.scope.here();
     let outer = expansion.scope.open_part();
     let bound = bind(expansion, part, place, caller);

@@ -4,14 +4,17 @@ use std::collections::{HashMap, HashSet};
 
 use crate::finding::{Finding, Findings};
 use crate::source::{Span, Spanned};
-use crate::syntax::{Expression, Tolerance, Value};
+use crate::syntax::{Expression, Value};
 use crate::units::{Dimension, Quantity, Unit, UnknownUnit};
 
 mod arithmetic;
 mod fit;
 mod roles;
+mod slots;
 
 pub use roles::Role;
+pub use slots::Slot;
+use slots::unit_text;
 
 /// What a slot takes.
 #[derive(Clone, Copy, Debug)]
@@ -43,21 +46,6 @@ impl<'a> Expected<'a> {
         }
         self.dimension.name()
     }
-}
-
-/// What stands in a slot that allows more than a number.
-#[derive(Clone, Debug, PartialEq)]
-pub struct Slot {
-    /// SI value in force; `None` where it is free and not settled, or was wrong (reported).
-    pub value: Option<f64>,
-    /// SI value after `..`.
-    pub up_to: Option<f64>,
-    /// SI bounds of a free value, low then high, and where they were written.
-    pub free: Option<((f64, f64), Span)>,
-    /// The tolerance as written.
-    pub tolerance: Option<Tolerance>,
-    /// Whether something in it was wrong and has been reported.
-    pub wrong: bool,
 }
 
 /// An evaluated expression.
@@ -287,108 +275,6 @@ impl Scope {
         self.fit(evaluated, expression, expected)
     }
 
-    /// The SI value in force of a slot that takes one quantity. `None` where it is wrong, which
-    /// is reported, or where it is free and not settled, which is not.
-    ///
-    /// A free range and a tolerance are dropped: use [`Scope::slot`] where they have a meaning.
-    pub fn quantity(&mut self, value: &Value, expected: Expected<'_>) -> Option<f64> {
-        let slot = self.slot(value, expected);
-        if let (Some(up_to), false) = (&value.up_to, slot.wrong) {
-            self.report(
-                Finding::error("value.range", format!("{} takes one value, not a range", expected.called()))
-                    .at(value.span, "a range")
-                    .beside(up_to.span(), "the second bound")
-                    .help(format!("write one value, or `free {}`", self.text_of_range(value))),
-            );
-            return None;
-        }
-        slot.value
-    }
-
-    /// What a value measures, and whether it has no unit; `None` where it is wrong, which is
-    /// reported, or where it holds no number.
-    pub fn dimension(&mut self, value: &Value) -> Option<(Dimension, bool)> {
-        let whole = self.expanded(value);
-        let value = whole.as_ref().unwrap_or(value);
-        let lent = value.up_to.as_ref().and_then(unit_text);
-        let (expression, lent) = match (&value.expression, &value.free) {
-            (Some(expression), _) => (expression, lent),
-            (None, Some(free)) => (&free.low, unit_text(&free.high)),
-            (None, None) => return None,
-        };
-        let evaluated = self.evaluate(expression, lent.as_ref())?;
-        Some((evaluated.quantity.dimension, evaluated.bare))
-    }
-
-    /// Everything that stands in a slot.
-    pub fn slot(&mut self, value: &Value, expected: Expected<'_>) -> Slot {
-        let whole = self.expanded(value);
-        let value = whole.as_ref().unwrap_or(value);
-        let mut slot = Slot {
-            value: None,
-            up_to: None,
-            free: None,
-            tolerance: value.tolerance.as_deref().cloned(),
-            wrong: false,
-        };
-        let lent = value.up_to.as_ref().and_then(unit_text);
-        if let Some(expression) = &value.expression {
-            slot.value = self.lent(expression, lent, expected);
-            slot.wrong |= slot.value.is_none();
-        }
-        if let Some(up_to) = &value.up_to {
-            slot.up_to = self.lent(up_to, None, expected);
-            slot.wrong |= slot.up_to.is_none();
-        }
-        if let Some(free) = &value.free {
-            let (low_unit, high_unit) = (unit_text(&free.low), unit_text(&free.high));
-            let low = self.lent(&free.low, high_unit, expected);
-            let high = self.lent(&free.high, low_unit, expected);
-            match (low, high) {
-                (Some(low), Some(high)) if low < high => slot.free = Some(((low, high), free.span)),
-                (Some(_), Some(_)) => {
-                    slot.wrong = true;
-                    self.report(
-                        Finding::error(
-                            "value.range",
-                            format!("the free range of {} is empty", expected.called()),
-                        )
-                        .at(free.span, "the lower bound is not below the upper one")
-                        .help("write the smaller bound first, such as `free 300 .. 1200 nm`"),
-                    );
-                }
-                _ => slot.wrong = true,
-            }
-        }
-        slot
-    }
-
-    /// A name alone that stands for a free or toleranced value brings those along.
-    fn expanded(&self, value: &Value) -> Option<Value> {
-        let Some(Expression::Name(name)) = &value.expression else { return None };
-        let bound = &self.binding(&name.value)?.value;
-        let adds = (bound.free.is_some() && value.free.is_none())
-            || (bound.tolerance.is_some() && value.tolerance.is_none())
-            || (bound.up_to.is_some() && value.up_to.is_none());
-        adds.then(|| Value {
-            expression: bound.expression.as_ref().and(value.expression.clone()),
-            up_to: value.up_to.clone().or_else(|| bound.up_to.clone()),
-            free: value.free.clone().or_else(|| bound.free.clone()),
-            tolerance: value.tolerance.clone().or_else(|| bound.tolerance.clone()),
-            span: value.span,
-        })
-    }
-
-    fn lent(
-        &mut self,
-        expression: &Expression,
-        unit: Option<Spanned<String>>,
-        expected: Expected<'_>,
-    ) -> Option<f64> {
-        let evaluated = self.evaluate(expression, unit.as_ref())?;
-        self.fit(evaluated, expression, expected)
-    }
-
     /// The frame that binds a name, from the innermost outwards.
     fn find(&self, name: &str) -> Option<usize> {
         let mut frame = Some(self.current);
@@ -403,26 +289,5 @@ impl Scope {
 
     fn binding(&self, name: &str) -> Option<&Binding> {
         self.frames[self.find(name)?].bindings.get(name)
-    }
-
-    fn text_of_range(&self, value: &Value) -> String {
-        let part = |expression: Option<&Expression>| match expression {
-            Some(Expression::Number(number)) => match &number.unit {
-                Some(unit) => format!("{} {}", number.text.value, unit.value),
-                None => number.text.value.clone(),
-            },
-            Some(Expression::Name(name)) => name.value.clone(),
-            _ => "…".to_owned(),
-        };
-        format!("{} .. {}", part(value.expression.as_ref()), part(value.up_to.as_ref()))
-    }
-}
-
-/// The unit of a number alone, to be lent to a bound that has none.
-fn unit_text(expression: &Expression) -> Option<Spanned<String>> {
-    match expression {
-        Expression::Number(number) => number.unit.clone(),
-        Expression::Negate(inner, _) => unit_text(inner),
-        _ => None,
     }
 }

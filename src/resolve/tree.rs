@@ -71,7 +71,7 @@ pub(super) struct Expansion<'e, 's> {
     pub(super) sources: &'e Sources,
     /// Parts being placed, outermost first.
     pub(super) placing: Vec<&'s str>,
-    /// Layers so far.
+    /// Layers and placed parts so far.
     pub(super) layers: usize,
     pub(super) too_many: bool,
 }
@@ -164,7 +164,7 @@ impl<'s> Expansion<'_, 's> {
         }))
     }
 
-    /// Counts one more layer; reports once where there are too many.
+    /// Counts one more layer or part; reports once where there are too many.
     pub(super) fn room(&mut self, span: Span) -> bool {
         self.layers += 1;
         if self.layers > MOST_LAYERS && !std::mem::replace(&mut self.too_many, true) {
