@@ -3,7 +3,7 @@
 use clap::Args;
 
 use crate::cli::Exit;
-use crate::cli::console::Console;
+use crate::cli::console::{Console, Stream};
 use crate::finding::suggest::near;
 use crate::why::{PAGES, page, summary};
 
@@ -23,8 +23,9 @@ pub(crate) struct Why {
 
 /// Runs the command: the page on standard output.
 pub(crate) fn run(command: &Why, console: &Console) -> Exit {
+    let width = console.look(Stream::Out).width;
     let Some(asked) = &command.code else {
-        return console.result(&list(|_| true));
+        return console.result(&list(width, |_| true));
     };
     // What a report shows may be pasted whole.
     let code = asked
@@ -37,7 +38,7 @@ pub(crate) fn run(command: &Why, console: &Console) -> Exit {
         return console.result(page);
     }
     let family = format!("{}.", code.trim_end_matches('.'));
-    let members = list(|known| known.starts_with(&family));
+    let members = list(width, |known| known.starts_with(&family));
     if !members.is_empty() {
         return console.result(&members);
     }
@@ -48,8 +49,22 @@ pub(crate) fn run(command: &Why, console: &Console) -> Exit {
     console.trouble(&format!("`{asked}` is no code of a finding"), &[&help])
 }
 
-fn list(keep: impl Fn(&str) -> bool) -> String {
-    let width = PAGES.iter().map(|(code, _)| code.len()).max().unwrap_or(0);
-    let kept = PAGES.iter().filter(|(code, _)| keep(code));
-    kept.map(|(code, page)| format!("{code:width$}  {}\n", summary(page))).collect()
+/// One line a code, cut to `width`.
+fn list(width: usize, keep: impl Fn(&str) -> bool) -> String {
+    let column = PAGES.iter().map(|(code, _)| code.len()).max().unwrap_or(0);
+    let room = width.saturating_sub(column + 2).max(20);
+    let mut text = String::new();
+    for (code, page) in PAGES.iter().filter(|(code, _)| keep(code)) {
+        let summary = summary(page);
+        let cut: String = if summary.chars().count() <= room {
+            summary
+        } else {
+            let kept: String = summary.chars().take(room - 1).collect();
+            // Not in the middle of a word.
+            let end = kept.rfind(' ').unwrap_or(kept.len());
+            kept[..end].trim_end_matches([',', ':', ';']).to_owned() + "…"
+        };
+        text.push_str(&format!("{code:column$}  {cut}\n"));
+    }
+    text
 }

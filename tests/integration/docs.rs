@@ -82,6 +82,19 @@ fn every_command_opens_its_help_with_examples() {
 }
 
 #[test]
+fn every_room_is_named_to_developers() {
+    let paper = paper("DEVELOPERS.md");
+    let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("src");
+    for entry in std::fs::read_dir(folder).expect("readable") {
+        let name = entry.expect("an entry").file_name().to_string_lossy().into_owned();
+        let Some(room) = name.strip_suffix(".rs").filter(|room| !["main", "lib"].contains(room)) else {
+            continue;
+        };
+        assert!(paper.contains(&format!("| `{room}` |")), "DEVELOPERS.md has no line for `{room}`");
+    }
+}
+
+#[test]
 fn papers_keep_their_length() {
     assert!(paper("DEVELOPERS.md").lines().count() < 200);
     assert!(
