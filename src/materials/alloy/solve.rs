@@ -52,7 +52,7 @@ struct Path<'a> {
 }
 
 /// Points in which a path is looked at; between two of them a gap is taken as monotonic.
-const STEPS: usize = 400;
+const STEPS: usize = 120;
 
 /// The composition that meets every wish.
 ///
@@ -270,19 +270,21 @@ fn samples(path: &Path<'_>) -> Vec<(f64, Composition)> {
 /// earlier to the later.
 fn on_gap(family: &Family, path: &Path<'_>, wanted: f64) -> Result<Composition, Unsolved> {
     let gap_at = |composition: &Composition| family.bands(composition).gap(ROOM_TEMPERATURE_K);
-    let points = samples(path);
-    let all = points.iter().map(|(_, composition)| composition.clone());
-    let reach = reach(all, family).ok_or(Unsolved::NoData)?;
+    let mut points = Vec::new();
+    for (t, composition) in samples(path) {
+        points.push((t, gap_at(&composition).ok_or(Unsolved::NoData)?, composition));
+    }
+    let reach =
+        spanned(points.iter().map(|(_, gap, composition)| (*gap, composition))).ok_or(Unsolved::NoData)?;
     let mut best: Option<(bool, Composition)> = None;
     for pair in points.windows(2) {
-        let [(start, from), (end, to)] = pair else { continue };
-        let (Some(a), Some(b)) = (gap_at(from), gap_at(to)) else { return Err(Unsolved::NoData) };
+        let [(start, a, from), (end, b, to)] = pair else { continue };
         if (a.ev - wanted) * (b.ev - wanted) > 0.0 {
             continue;
         }
         let (mut low, mut high) = (*start, *end);
-        let mut composition =
-            if (a.ev - wanted).abs() <= (b.ev - wanted).abs() { from.clone() } else { to.clone() };
+        let nearer = (a.ev - wanted).abs() <= (b.ev - wanted).abs();
+        let mut composition = if nearer { from.clone() } else { to.clone() };
         for _ in 0..60 {
             let middle = (low + high) / 2.0;
             let Some(point) = (path.at)(middle) else { break };
@@ -312,20 +314,27 @@ fn on_gap(family: &Family, path: &Path<'_>, wanted: f64) -> Result<Composition, 
 }
 
 fn reach(compositions: impl Iterator<Item = Composition>, family: &Family) -> Option<GapReach> {
-    let mut reach: Option<GapReach> = None;
+    let mut points = Vec::new();
     for composition in compositions {
-        let gap = family.bands(&composition).gap(ROOM_TEMPERATURE_K)?;
-        match &mut reach {
-            None => {
-                let point = (gap, composition);
-                reach = Some(GapReach { low: point.clone(), high: point });
-            }
-            Some(reach) if gap.ev < reach.low.0.ev => reach.low = (gap, composition),
-            Some(reach) if gap.ev > reach.high.0.ev => reach.high = (gap, composition),
-            Some(_) => {}
-        }
+        points.push((family.bands(&composition).gap(ROOM_TEMPERATURE_K)?, composition));
     }
-    reach
+    spanned(points.iter().map(|(gap, composition)| (*gap, composition)))
+}
+
+/// Smallest and largest of some gaps, the first of equals.
+fn spanned<'a>(points: impl Iterator<Item = (Gap, &'a Composition)>) -> Option<GapReach> {
+    let mut reach: Option<((Gap, &Composition), (Gap, &Composition))> = None;
+    for point in points {
+        reach = Some(match reach {
+            None => (point, point),
+            Some((low, high)) => (
+                if point.0.ev < low.0.ev { point } else { low },
+                if point.0.ev > high.0.ev { point } else { high },
+            ),
+        });
+    }
+    let ((low, low_at), (high, high_at)) = reach?;
+    Some(GapReach { low: (low, low_at.clone()), high: (high, high_at.clone()) })
 }
 
 /// The compositions of a family with two free fractions, on a grid.
