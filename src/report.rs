@@ -1,7 +1,7 @@
 //! [`Design`] + [`Results`] + findings → the design sheet, as HTML, Markdown, JSON and CSV.
 //!
 //! The sheet is prepared in three steps: [`view`] turns numbers into words (every number is
-//! formatted there, none in a template), [`figure`] draws, [`render`] fills the templates.
+//! formatted there, none in a template), [`figure`] draws, [`mod@render`] fills the templates.
 //! A user's folder may replace any template; the view model is the contract it is written for.
 
 use serde::Serialize;

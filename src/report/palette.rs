@@ -168,13 +168,12 @@ fn rules() -> Vec<Rule> {
     rule("h", "fill:none;stroke-width:1", &|t| format!("stroke:{}", t.quiet));
     rule("ht", "fill:none;stroke-width:.7", &|t| format!("stroke:{}", t.quiet));
     rule("hd", "fill:none;stroke-width:2;stroke-linecap:round", &|t| format!("stroke:{}", t.quiet));
-    for index in 0..6 {
+    for (index, dash) in DASHES.iter().enumerate() {
         let n = index + 1;
         let colours = move |t: &Theme| t.junctions[index];
         rule(&format!("f{n}"), "stroke-width:.8", &|t| {
             format!("fill:{};stroke:{}", colours(t).fill, colours(t).line)
         });
-        let dash = DASHES[index];
         let dash = if dash.is_empty() { String::new() } else { format!(";stroke-dasharray:{dash}") };
         rule(&format!("c{n}"), &format!("fill:none;stroke-width:2;stroke-linejoin:round{dash}"), &|t| {
             format!("stroke:{}", colours(t).line)

@@ -7,9 +7,12 @@ use sha2::{Digest, Sha256};
 
 use super::sheet_cases::{cases, every_case, hostile};
 
+/// Name, attributes, whether it closes.
+type Element = (String, Vec<(String, String)>, bool);
+
 /// Elements of HTML or SVG in order: name, attributes, whether it closes. Fails on what is not
 /// well formed: a stray `<`, an attribute without quotes, an unknown entity.
-fn elements(text: &str) -> Vec<(String, Vec<(String, String)>, bool)> {
+fn elements(text: &str) -> Vec<Element> {
     let mut out = Vec::new();
     let mut rest = text;
     while let Some(at) = rest.find('<') {

@@ -32,6 +32,17 @@ struct Frame {
     slim: bool,
 }
 
+/// What the parts of one drawing share.
+#[derive(Clone, Copy)]
+struct Stage<'a> {
+    context: &'a Context<'a>,
+    light: &'a Light,
+    frame: &'a Frame,
+    x: Scale,
+    /// Where the plot begins.
+    top: f64,
+}
+
 /// A band in units: its outline, thinned, and its edges for finding room.
 struct Shape<'a> {
     band: &'a Band,
@@ -111,12 +122,13 @@ fn draw_in(context: &Context<'_>, light: &Light, frame: &Frame) -> Drawing {
     let (rows, places) = hang(context, &shapes, frame, &mut hung);
     let row_height = if frame.slim { 17.0 } else { 20.0 };
     let top = 8.0 + row_height * rows as f64 + 8.0;
-    let mut drawing = Drawing::new(frame.width, top + frame.height + if frame.slim { 78.0 } else { 78.0 });
+    let mut drawing = Drawing::new(frame.width, top + frame.height + 78.0);
     let foot = top + frame.height;
     paint(&mut drawing, &shapes, top);
-    let step = grid(&mut drawing, context, light, frame, x, top);
-    labels_inside(&mut drawing, context, &shapes, &inside, frame, top);
-    unit_cell(&mut drawing, context, &shapes, frame, (x, step, top));
+    let stage = Stage { context, light, frame, x, top };
+    let step = grid(&mut drawing, &stage);
+    labels_inside(&mut drawing, &stage, &shapes, &inside);
+    unit_cell(&mut drawing, &stage, &shapes, step);
     for ((index, at, _), (row, rightward)) in hung.iter().zip(places) {
         let shape = &shapes[*index];
         let y = 8.0 + row_height * row as f64;
@@ -239,14 +251,8 @@ fn paint(drawing: &mut Drawing, shapes: &[Shape<'_>], top: f64) {
 }
 
 /// Lines so that each cell is a round amount; returns the width of a cell, mA/cm2.
-fn grid(
-    drawing: &mut Drawing,
-    context: &Context<'_>,
-    light: &Light,
-    frame: &Frame,
-    x: Scale,
-    top: f64,
-) -> f64 {
+fn grid(drawing: &mut Drawing, stage: &Stage<'_>) -> f64 {
+    let Stage { context, light, frame, x, top } = *stage;
     let foot = top + frame.height;
     let step = round_step(light.total_ma.0 / 11.0);
     let mut at = step;
@@ -290,12 +296,11 @@ fn grid(
 
 fn labels_inside(
     drawing: &mut Drawing,
-    context: &Context<'_>,
+    stage: &Stage<'_>,
     shapes: &[Shape<'_>],
     inside: &[(usize, (f64, f64), f64)],
-    frame: &Frame,
-    top: f64,
 ) {
+    let Stage { context, frame, top, .. } = *stage;
     for (index, (x, y), size) in inside {
         let band = shapes[*index].band;
         let junction = band.junction.unwrap_or(0);
@@ -311,13 +316,8 @@ fn labels_inside(
 }
 
 /// One cell of the grid, outlined and named, in the lowest junction that has one free.
-fn unit_cell(
-    drawing: &mut Drawing,
-    context: &Context<'_>,
-    shapes: &[Shape<'_>],
-    frame: &Frame,
-    (x, step, top): (Scale, f64, f64),
-) {
+fn unit_cell(drawing: &mut Drawing, stage: &Stage<'_>, shapes: &[Shape<'_>], step: f64) {
+    let Stage { context, frame, x, top, .. } = *stage;
     let amount = trimmed(context.scale.of(step) * 0.2);
     let cell_height = frame.height / 5.0;
     for shape in shapes.iter().rev() {

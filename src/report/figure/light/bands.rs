@@ -40,6 +40,8 @@ pub struct Light {
     /// The sums of the parts as they are printed, which take each junction's current from the
     /// evaluation's own finer grid.
     pub sums_ma: (f64, f64),
+    /// Index of the last wavelength drawn.
+    cut: usize,
 }
 
 /// Layers by themselves at most; the others together.
@@ -79,16 +81,17 @@ impl Light {
             range_nm: (wavelength_nm[0], wavelength_nm[cut], wavelength_nm[n - 1]),
             total_ma: (counted_ma[cut], all),
             sums_ma: (0.0, 0.0),
+            cut,
             wavelength_nm,
             counted_ma,
         };
-        light.divide(context, n, cut);
+        light.divide(context, n);
         light.sums_ma =
             light.bands.iter().fold((0.0, 0.0), |sum, b| (sum.0 + b.drawn_ma, sum.1 + b.whole_ma));
         Some(light)
     }
 
-    fn divide(&mut self, context: &Context<'_>, n: usize, cut: usize) {
+    fn divide(&mut self, context: &Context<'_>, n: usize) {
         let spectral = &context.first.spectral;
         let open = 1.0 - context.shading();
         let rows: Vec<Row<'_>> = context.layers().collect();
@@ -115,7 +118,6 @@ impl Light {
             }
             let name = visible(&junction.name);
             self.push_current(
-                cut,
                 junction.photocurrent_ma_per_cm2,
                 Band {
                     name: format!("{name}, as current"),
@@ -138,17 +140,17 @@ impl Light {
             whole_ma: 0.0,
         };
         let plus = Style::hatched(Hatch::Plus(8.0), "");
-        self.push(cut, lost("absorbed, not collected", "not collected", plus, not_collected));
-        self.layers(context, cut, &rows, &share_of, &mut absorbed);
+        self.push(lost("absorbed, not collected", "not collected", plus, not_collected));
+        self.layers(context, &rows, &share_of, &mut absorbed);
         let reflected: Vec<f64> = (0..n).map(|i| spectral.reflectance[i] * open).collect();
         let passing: Vec<f64> = (0..n).map(|i| (open - absorbed[i] * open - reflected[i]).max(0.0)).collect();
         let through = Style { class: "thru".into(), hatch: None, key: None };
-        self.push(cut, lost("passing through", "passing through", through, passing));
+        self.push(lost("passing through", "passing through", through, passing));
         let zigzag = Style::hatched(Hatch::Zigzag(5.0), "");
-        self.push(cut, lost("reflected", "reflected", zigzag, reflected));
+        self.push(lost("reflected", "reflected", zigzag, reflected));
         if open < 1.0 {
             let metal = Style { class: "fm".into(), hatch: None, key: None };
-            self.push(cut, lost("under the fingers", "fingers", metal, vec![1.0 - open; n]));
+            self.push(lost("under the fingers", "fingers", metal, vec![1.0 - open; n]));
         }
     }
 
@@ -156,7 +158,6 @@ impl Light {
     fn layers<'r>(
         &mut self,
         context: &Context<'_>,
-        cut: usize,
         rows: &'r [Row<'r>],
         share_of: &dyn Fn(&Row<'_>) -> &'r [f64],
         absorbed: &mut [f64],
@@ -182,7 +183,7 @@ impl Light {
                 drawn_ma: 0.0,
                 whole_ma: 0.0,
             };
-            parts.push((row.index, self.measured(cut, band)));
+            parts.push((row.index, self.measured(band)));
         }
         parts.sort_by(|a, b| b.1.drawn_ma.total_cmp(&a.1.drawn_ma).then(a.0.cmp(&b.0)));
         let small = self.total_ma.0 * 0.002;
@@ -208,14 +209,14 @@ impl Light {
                     *sum += more;
                 }
             }
-            let together = self.measured(cut, together);
+            let together = self.measured(together);
             self.bands.push(together);
         }
     }
 
     /// A junction's current is known better than the sheet's grid can add it up.
-    fn push_current(&mut self, cut: usize, known_ma: f64, band: Band) {
-        let mut band = self.measured(cut, band);
+    fn push_current(&mut self, known_ma: f64, band: Band) {
+        let mut band = self.measured(band);
         if band.whole_ma > 0.0 && (known_ma / band.whole_ma - 1.0).abs() < 0.02 {
             band.drawn_ma *= known_ma / band.whole_ma;
             band.whole_ma = known_ma;
@@ -223,19 +224,19 @@ impl Light {
         self.bands.push(band);
     }
 
-    fn push(&mut self, cut: usize, band: Band) {
-        let band = self.measured(cut, band);
+    fn push(&mut self, band: Band) {
+        let band = self.measured(band);
         // What is nothing anywhere has no line in the table either.
         if band.whole_ma > self.total_ma.1 * 1e-5 {
             self.bands.push(band);
         }
     }
 
-    fn measured(&self, cut: usize, mut band: Band) -> Band {
+    fn measured(&self, mut band: Band) -> Band {
         let counted = &self.counted_ma;
         let part = |i: usize| (counted[i] - counted[i - 1]) * (band.share[i] + band.share[i - 1]) / 2.0;
-        let drawn: f64 = (1..=cut).map(part).sum();
-        let rest: f64 = (cut + 1..counted.len()).map(part).sum();
+        let drawn: f64 = (1..=self.cut).map(part).sum();
+        let rest: f64 = (self.cut + 1..counted.len()).map(part).sum();
         band.drawn_ma = drawn;
         band.whole_ma = drawn + rest;
         band
