@@ -74,6 +74,15 @@ pub fn significant(value: f64, digits: usize) -> String {
     format!("{}×10{}", fixed(mantissa, digits.saturating_sub(1)), superscript(exponent))
 }
 
+/// Three significant digits, without zeros at the end.
+pub fn short(value: f64) -> String {
+    let text = significant(value, 3);
+    if text.contains('.') && !text.contains('×') {
+        return text.trim_end_matches('0').trim_end_matches('.').to_string();
+    }
+    text
+}
+
 fn exponent(value: f64) -> i32 {
     format!("{value:e}").split_once('e').and_then(|(_, e)| e.parse().ok()).unwrap_or(0)
 }
@@ -258,6 +267,13 @@ mod tests {
         assert_eq!(significant(1.2345e-20, 3), "1.23×10⁻²⁰");
         assert_eq!(significant(0.00123, 2), "0.0012");
         assert_eq!(significant(999.96, 4), "1\u{202f}000");
+    }
+
+    #[test]
+    fn short_numbers_have_no_zeros_to_spare() {
+        assert_eq!(short(2.0), "2");
+        assert_eq!(short(5.2), "5.2");
+        assert_eq!(short(500.0), "500");
     }
 
     #[test]

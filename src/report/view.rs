@@ -9,7 +9,7 @@ use serde::Serialize;
 use crate::report::ReportInput;
 use crate::report::context::Context;
 use crate::report::figure::{Figure, section};
-use crate::report::number::celsius;
+use crate::report::number::{celsius, short};
 use crate::report::text::{Text, visible};
 
 pub mod account;
@@ -320,17 +320,17 @@ pub(crate) fn condition_words(context: &Context<'_>, result: &crate::results::Co
     let mut out = format!("{}, {}", visible(&result.light), celsius(result.temperature_k));
     let times = result.concentration;
     if (times - 1.0).abs() > 1e-9 {
-        out.push_str(&format!(", {} times", crate::report::number::significant(times, 3)));
+        out.push_str(&format!(", {} times", short(times)));
     } else {
         out.push_str(", one sun");
     }
     if let Some(condition) = context.condition(result) {
         if condition.incidence_rad > 0.0 {
-            let degrees = crate::report::number::significant(condition.incidence_rad.to_degrees(), 3);
+            let degrees = short(condition.incidence_rad.to_degrees());
             out.push_str(&format!(", at {degrees}° from the normal"));
         }
         if let Some(distance) = condition.distance_au {
-            let au = crate::report::number::significant(distance, 3);
+            let au = short(distance);
             out.push_str(&format!(", {au}\u{a0}au from the sun"));
         }
     }

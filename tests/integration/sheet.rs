@@ -97,6 +97,22 @@ fn the_printed_ledger_closes() {
     }
 }
 
+/// The parts of the light add up to all of it, as printed, within the rounding of each line.
+#[test]
+fn the_printed_light_adds_up() {
+    for case in every_case() {
+        let sheet = case.sheet();
+        let figure = sheet.light.figures.iter().find(|f| f.title == "Where the light goes").expect("drawn");
+        let rows = &figure.data.groups[0].rows;
+        for column in 1..3 {
+            let values: Vec<i64> = rows.iter().map(|row| hundredths(&row[column].plain())).collect();
+            let (all, parts) = values.split_last().expect("a last row");
+            let off = (parts.iter().sum::<i64>() - all).abs();
+            assert!(off <= parts.len() as i64 / 2 + 1, "{}: {off} hundredths off", case.name);
+        }
+    }
+}
+
 /// Numbers become words in one place; a template that got a float could print `0.30000000000000004`.
 #[test]
 fn the_view_holds_no_float() {

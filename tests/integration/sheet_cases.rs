@@ -126,6 +126,64 @@ pub(super) fn hostile() -> String {
     )
 }
 
+/// Every duty, inverted growth, removed layers, five conditions, tolerances.
+const ZOO: &str = r#"condition a { light AM1.5G
+ temperature 25 degC }
+condition b { light AM1.5D
+ temperature 60 degC
+ concentration 2 times }
+condition c { light AM0
+ temperature -20 degC }
+condition d { light AM1.5G
+ temperature 85 degC }
+condition e { light AM1.5G
+ temperature 45 degC
+ incidence 30 deg }
+stack "Zoo of layers, inverted" {
+    note        "Everything that may stand in a stack."
+    growth      inverted
+    conditions  a, b, c, d, e
+    optics      one_pass { front_reflectance 4 % }
+    cover       SiO2 100 um
+    fingers     { shading 5 %; series_resistance 30 mohm cm2 }
+    wafer       GaAs 350 um removed
+    etch_stop   GaInP matched 200 nm removed
+    cap         GaAs 150 nm n 6e18 /cm3 Te only under fingers
+    coat        MgF2  95 nm  ± 2 % sigma
+    coat        TiO2  48 nm  ± 3 % limits
+    junction top {
+        window   AlInP matched 20 nm n 2e18 /cm3 Si
+        emitter  GaInP matched 70 nm n 2e18 /cm3 Si
+        base     GaInP matched 700 nm p 1e17 /cm3 Zn
+        bsf      AlGaInP matched of gap 2.1 eV 50 nm p 1e18 /cm3 Be
+        voltage from ere 0.5 %
+    }
+    tunnel as upper {
+        layer    Al0.3Ga0.7As 15 nm p 8e19 /cm3 C
+        layer    GaInP matched 15 nm n 2e19 /cm3 Te
+        peak 20 A/cm2
+        resistance 1 mohm cm2
+    }
+    junction bottom {
+        window   GaInP matched 50 nm n 2e18 /cm3 Si
+        emitter  GaAs 100 nm n 2e18 /cm3 Si
+        intrinsic GaAs 50 nm
+        base     GaAs 3.5 um ± 3 % sigma p 1e17 /cm3 Zn
+        bsf      GaInP matched 60 nm p 1e18 /cm3 Zn
+        voltage from ere 1 %
+    }
+    buffer   AlGaAs with Al 0.2 1 um p 1e18 /cm3 Zn
+    layer    GaAs 100 nm p 1e19 /cm3 Zn as rear_contact
+    mirror   Ag 200 nm
+    handle   Si 200 um
+    metal    Au
+    require efficiency >= 30 %
+    require top.jsc >= 14 mA/cm2 under a
+    require fill_factor >= 80 %
+    accept current.mismatch because "the dish decides | `later`"
+}
+"#;
+
 /// Made once: evaluation is the slow part.
 pub(super) fn every_case() -> &'static [Case] {
     static ALL_CASES: OnceLock<Vec<Case>> = OnceLock::new();
@@ -141,6 +199,7 @@ fn make_cases() -> Vec<Case> {
         all.extend(cases("limit.stack", &junctions(n)));
     }
     all.extend(cases("sixty.stack", &many_layers()));
+    all.extend(cases("zoo.stack", ZOO));
     all.extend(cases("a<b>|`c`.stack", &hostile()));
     all
 }

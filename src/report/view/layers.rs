@@ -80,12 +80,10 @@ pub fn stack(context: &Context<'_>) -> Section {
     let removed: Vec<Row<'_>> = context.layers().filter(|row| row.layer.extent == Extent::Removed).collect();
     if !removed.is_empty() {
         let names: Vec<String> =
-            removed.iter().map(|row| format!("{} ({})", visible(&row.result.name), row.number())).collect();
-        let verb = if removed.len() == 1 { "is" } else { "are" };
-        out.notes.push(Text::of(format!(
-            "{} {verb} grown and not there in the finished cell.",
-            capital(&joined(&names))
-        )));
+            removed.iter().map(|row| format!("{} ({})", row.number(), row.duty(context.design))).collect();
+        let (noun, verb) = if removed.len() == 1 { ("Layer", "is") } else { ("Layers", "are") };
+        let names = joined(&names);
+        out.notes.push(Text::of(format!("{noun} {names} {verb} grown and not there in the finished cell.")));
     }
     for free in context.design.free_values.iter().take(6) {
         if free.value.is_some() {
@@ -186,7 +184,7 @@ fn table(context: &Context<'_>, mut sources: Option<&mut Sources>) -> Table {
         heads.push("sources");
     }
     let mut table = Table::new(Text::of("As resolved, at 25 °C; currents ").p(under(context.first)), &heads);
-    table.kind = "roomy";
+    table.kind = "layers roomy";
     let mut place = None;
     for row in context.layers() {
         if place != Some(row.layer.place) {
