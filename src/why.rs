@@ -38,6 +38,7 @@ pub const PAGES: &[(&str, &str)] = &[
     ("name.reserved", include_str!("why/name.reserved.md")),
     ("name.unknown", include_str!("why/name.unknown.md")),
     ("number.decimal-comma", include_str!("why/number.decimal-comma.md")),
+    ("optics.data-range", include_str!("why/optics.data-range.md")),
     ("polarity.flipped", include_str!("why/polarity.flipped.md")),
     ("polarity.same", include_str!("why/polarity.same.md")),
     ("require.failed", include_str!("why/require.failed.md")),

@@ -12,6 +12,7 @@ mod integration {
     mod physics;
     mod physics_circuit;
     mod physics_grid;
+    mod physics_language;
     mod physics_properties;
     mod robustness;
     mod sheet;

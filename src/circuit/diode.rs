@@ -96,7 +96,7 @@ impl Diode {
         if let Some((radiative, factor)) = &self.radiative {
             // A hair below the pole of the exact statistics: everything recombines before it.
             let pole = radiative.ceiling_v() - 1e-9 * self.thermal_v;
-            bound = (self.thermal_v * log(factor * radiative.dark_a_per_m2())).min(pole);
+            bound = radiative.voltage_of_first_term(recombines / factor).min(pole);
         }
         bound = bound.min(self.thermal_v * log(self.j01)).min(2.0 * self.thermal_v * log(self.j02));
         if self.shunt_conductance > 0.0 {

@@ -83,6 +83,18 @@ impl Radiative {
         self.terms.first().map_or(0.0, |first| first * (-self.edge_v / self.thermal_v).exp())
     }
 
+    /// The voltage at which the first term of the series alone is `current` (> 0), V.
+    pub fn voltage_of_first_term(&self, current: f64) -> f64 {
+        let dark = self.dark_a_per_m2();
+        if dark > 0.0 {
+            return self.thermal_v * (current / dark).ln_1p();
+        }
+        match self.terms.first() {
+            Some(first) if *first > 0.0 => self.edge_v + self.thermal_v * (current / first).ln(),
+            _ => f64::INFINITY,
+        }
+    }
+
     /// The voltage it can approach but not reach; infinite in the diode form.
     pub fn ceiling_v(&self) -> f64 {
         if self.closure > 0.0 { self.edge_v } else { f64::INFINITY }
@@ -92,9 +104,12 @@ impl Radiative {
     pub fn at(&self, voltage: f64) -> (f64, f64) {
         let u = voltage / self.thermal_v;
         let dark = self.dark_a_per_m2();
-        let (mut current, mut slope) = (dark * u.exp_m1(), dark * u.exp());
+        // Written from the edge, so that a cold junction, dark to the last digit, still has one.
+        let y = ((voltage - self.edge_v) / self.thermal_v).exp();
+        let first = self.terms.first().map_or(0.0, |first| first * y);
+        let mut current = if u < 1.0 { dark * u.exp_m1() } else { first - dark };
+        let mut slope = first;
         if self.closure > 0.0 {
-            let y = ((voltage - self.edge_v) / self.thermal_v).exp();
             // Terms beyond this power are below rounding of the first.
             let needed = ((-40.0 / y.ln()).ceil() as usize).clamp(1, self.terms.len());
             let (mut sum, mut weighted) = (0.0, 0.0);

@@ -20,7 +20,8 @@ pub(super) fn after(design: &Design, results: &Results, lit: &[Arc<Lit>]) -> Fin
     findings
 }
 
-/// Current absorbed where a table's end value is held, worst condition of each layer.
+/// Current absorbed where a table's end value is held, worst condition of each layer. Beyond the
+/// longest edge nothing is made of the light, so nothing is lost there.
 fn held_ends(design: &Design, results: &Results, lit: &[Arc<Lit>]) -> Findings {
     let mut worst: Vec<Option<(f64, String)>> = vec![None; design.layers.len()];
     for (result, lit) in results.conditions.iter().zip(lit) {
@@ -28,7 +29,7 @@ fn held_ends(design: &Design, results: &Results, lit: &[Arc<Lit>]) -> Findings {
         for (row, first, last) in lit.optics.table_ranges_m() {
             let (layer, junction) = lit.rows[row];
             let whole = junction.map_or(useful, |junction| lit.photocurrent(junction));
-            let held: f64 = (0..lit.wavelength_m.len())
+            let held: f64 = (0..lit.useful_points())
                 .filter(|&at| lit.wavelength_m[at] < first || lit.wavelength_m[at] > last)
                 .map(|at| lit.shares.absorbed[row][at] * lit.current_weight[at])
                 .sum();

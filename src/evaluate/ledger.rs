@@ -26,6 +26,9 @@ struct Share {
     voltage: f64,
 }
 
+/// What one line takes of a junction's part, W/m2.
+type Loss<'a> = &'a dyn Fn(&Share) -> f64;
+
 /// The account of one condition, in W/m2, in this order: fingers, reflected, each layer that
 /// collects nothing, passing below every gap, what no data reach, heat above the gap and tail
 /// below it, not collected, mismatch, recombined, voltage — each by junction —, tunnel and series
@@ -81,7 +84,7 @@ pub(super) fn account(
     let shares = shares(lit, enters, strings);
     let gap = |share: &Share| lit.gap_ev[share.junction];
     let carried = |share: &Share| share.photocurrent.min(share.reference);
-    let each: [(&str, &dyn Fn(&Share) -> f64); 4] = [
+    let each: [(&str, Loss); 4] = [
         ("not_collected", &|_| 0.0),
         ("mismatch", &|share| gap(share) * (share.photocurrent - carried(share))),
         ("recombined", &|share| gap(share) * (carried(share) - share.current).max(0.0)),

@@ -97,6 +97,12 @@ impl Lit {
         sum
     }
 
+    /// How many points, from the shortest wavelength on, lie above the lowest gap.
+    pub(super) fn useful_points(&self) -> usize {
+        let lowest = self.gap_ev.iter().copied().fold(f64::INFINITY, f64::min);
+        self.wavelength_m.partition_point(|&wavelength| wavelength <= HC_EV / lowest)
+    }
+
     /// Of what `junction` collects: current and power above its gap, then below it (its tail).
     pub(super) fn split_at_gap(&self, junction: usize) -> [(f64, f64); 2] {
         let edge_m = HC_EV / self.gap_ev[junction];

@@ -7,6 +7,7 @@ use std::sync::Arc;
 use bandloom::design::{Design, DiodeFit, Terminals, VoltageModel};
 use bandloom::evaluate::evaluate;
 use bandloom::light::{SUN_DILUTION, blackbody, builtin};
+use bandloom::numerics::constants::{CHARGE, LIGHT_SPEED, PLANCK, thermal_voltage};
 use bandloom::results::{ConditionResult, Results};
 
 use super::designs::{condition, ideal_stack, limit_stack, under};
@@ -174,4 +175,36 @@ fn concentration_and_external_radiative_efficiency_move_the_voltage() {
     let limit = first(&limit_stack(&[1.42])).voc_v.expect("series");
     let fallen = limit - first(&ideal_stack(&[(1.42, 1.0)], &VoltageModel::Ere(0.01))).voc_v.expect("series");
     close(fallen, 0.118_318, 2e-6);
+}
+
+#[test]
+fn efficiency_under_am0_is_over_the_whole_table() {
+    // ASTM E490-00a: 1366.09 W/m2 in all, 1347.57 W/m2 within 280–4000 nm (numpy 2.4.6 over the
+    // table). Currents start at 280 nm.
+    let light = builtin("AM0").expect("built in");
+    let mut design = limit_stack(&[1.42]);
+    design.conditions = vec![condition("orbit", Arc::clone(&light), 298.15)];
+    let result = first(&design);
+    close(result.incident_w_per_m2, 1366.09, 0.01);
+    let beyond = result.ledger_w_per_m2.iter().find(|line| line.line == "beyond_data").expect("named");
+    close(beyond.value, 1366.09 - 1347.57, 0.1);
+    close(10.0 * result.jsc_ma_per_cm2.expect("series"), light.photon_current(280e-9, 873.128e-9), 0.01);
+    close(result.efficiency, result.power_w_per_m2 / 1366.09, 1e-6);
+}
+
+#[test]
+fn a_cold_junction_approaches_its_gap() {
+    // Radiative limit in closed form: V = E_g/q + kT/q ln(J / (C (kT)³ (g² + 2g + 2))), g = E_g/kT,
+    // C = 2πq⁴/(h³c²). At 4 K the dark current itself underflows any float.
+    let prefactor = 2.0 * std::f64::consts::PI * CHARGE.powi(4) / (PLANCK.powi(3) * LIGHT_SPEED.powi(2));
+    for t in [300.0, 77.0, 4.0] {
+        let mut design = limit_stack(&[1.42]);
+        design.conditions[0].temperature_k = t;
+        let result = first(&design);
+        let kt = thermal_voltage(t);
+        let g = 1.42 / kt;
+        let current = 10.0 * result.jsc_ma_per_cm2.expect("series");
+        let voltage = 1.42 + kt * (current / (prefactor * kt.powi(3) * (g * g + 2.0 * g + 2.0))).ln();
+        close(result.voc_v.expect("series"), voltage, 3e-6);
+    }
 }
