@@ -69,12 +69,14 @@ fn bands<'a, 'b>(gaps: &[(&'b JunctionFacts<'a>, f64)]) -> Vec<(&'b JunctionFact
 /// nothing is missing or the light has faded out before its table ends.
 fn missing(light: &Spectrum, from: f64, to: f64) -> Option<f64> {
     let (start, end) = light.range_m()?;
+    if start <= from && end >= to {
+        return None;
+    }
     let peak = light.irradiance.iter().copied().fold(0.0, f64::max);
-    let ends = |value: Option<&f64>| value.is_some_and(|value| *value > FADED * peak);
-    let before =
-        if start > from && ends(light.irradiance.first()) { (from, start.min(to)) } else { (from, from) };
-    let after = if end < to && ends(light.irradiance.last()) { (end.max(from), to) } else { (to, to) };
-    if before.0 >= before.1 && after.0 >= after.1 {
+    let goes_on = |value: Option<&f64>| value.is_some_and(|value| *value > FADED * peak);
+    let before = (start > from && goes_on(light.irradiance.first())).then(|| (from, start.min(to)));
+    let after = (end < to && goes_on(light.irradiance.last())).then(|| (end.max(from), to));
+    if before.is_none() && after.is_none() {
         return None;
     }
     let model = blackbody(SUN_K, 1.0);
@@ -82,7 +84,8 @@ fn missing(light: &Spectrum, from: f64, to: f64) -> Option<f64> {
     if !scale.is_finite() || scale <= 0.0 {
         return None;
     }
-    let lost = scale * (model.photon_current(before.0, before.1) + model.photon_current(after.0, after.1));
+    let gaps = [before, after];
+    let lost: f64 = gaps.into_iter().flatten().map(|(from, to)| scale * model.photon_current(from, to)).sum();
     let held = light.photon_current(from.max(start).min(to), to.min(end).max(from));
     (lost > 0.0).then(|| lost / (lost + held.max(0.0)))
 }
@@ -118,9 +121,11 @@ fn short(condition: &Condition, facts: &JunctionFacts, edge: f64, share: f64) ->
 /// A light with no photon that some junction could use.
 fn dark(condition: &Condition, gaps: &[(&JunctionFacts, f64)]) -> Option<Finding> {
     let light = &condition.light;
-    let (start, _) = light.range_m()?;
-    let photons = |gap: f64| light.photon_current(start, HC / (gap * CHARGE));
-    let starved: Vec<_> = gaps.iter().filter(|(_, gap)| photons(*gap) <= 0.0).collect();
+    // Linear between points: light begins after the last dark point before the first lit one.
+    let lit = light.irradiance.iter().position(|power| *power > 0.0);
+    let begins = lit.and_then(|lit| light.wavelength_m.get(lit.saturating_sub(1)));
+    let starved: Vec<_> =
+        gaps.iter().filter(|(_, gap)| begins.is_none_or(|from| *from >= HC / (gap * CHARGE))).collect();
     // The narrowest of them says most: the wider ones are dark all the more.
     let (facts, gap) = starved.iter().min_by(|a, b| a.1.total_cmp(&b.1))?;
     let first = light.wavelength_m.iter().zip(&light.irradiance).find(|(_, power)| **power > 0.0);
