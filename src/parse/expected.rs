@@ -142,7 +142,7 @@ impl<'a> Trouble<'a> {
         match names::form(head).or_else(|| names::inner_form(before)) {
             Some(form) => format!("write it as `{form}`"),
             None if self.text.trim() == "{" => {
-                "write before `{` what the block belongs to, such as `junction top {`".to_owned()
+                "put `{` on the line of what the block belongs to, such as `junction top {`".to_owned()
             }
             None if DUTIES.contains(&head) => {
                 "a layer is written as `base GaInP matched 600 nm p 1e17 /cm3 Zn`".to_owned()

@@ -106,11 +106,16 @@ pub(super) fn human(rule: Rule) -> &'static str {
         Rule::end => "the end of the statement",
         Rule::comma | Rule::comma_sp => "`,`",
         Rule::item | Rule::statement | Rule::structured => "a statement",
-        Rule::tail => "a block",
-        Rule::reserved | Rule::phrase_stop | Rule::attribute_stop | Rule::edge => "a word of the language",
+        Rule::tail | Rule::body => "a block",
+        Rule::reserved
+        | Rule::duty_word
+        | Rule::special_word
+        | Rule::phrase_stop
+        | Rule::attribute_stop
+        | Rule::edge => "a word of the language",
         Rule::item_start => "an item of the file",
         Rule::argument => "an argument",
-        Rule::material | Rule::formula_part | Rule::formula_head => "a material",
+        Rule::material | Rule::bracketed => "a material",
         Rule::qualifier => "what narrows a material down",
         Rule::attribute => "a property of the layer",
         Rule::term | Rule::inner_term => "a value",
@@ -121,7 +126,7 @@ pub(super) fn human(rule: Rule) -> &'static str {
         | Rule::unit_dot
         | Rule::unit_power
         | Rule::unit_atom => "a unit",
-        Rule::word_char | Rule::plain_text | Rule::word_text => "a word",
+        Rule::word_char => "a word",
         Rule::junk | Rule::junk_lines | Rule::junk_inside | Rule::open_text => "text that cannot be read",
     }
 }
