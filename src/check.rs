@@ -31,6 +31,7 @@ mod lattice_mismatch;
 mod lattice_needless_relaxed;
 mod light_range;
 mod limits;
+mod optics_no_index;
 mod polarity_flipped;
 mod polarity_same;
 mod require_failed;
@@ -50,6 +51,7 @@ pub static RULES: &[&Rule] = &[
     &structure_no_absorber::RULE,
     &structure_order::RULE,
     &structure_no_wafer::RULE,
+    &optics_no_index::RULE,
     &gap_order::RULE,
     &gap_equal::RULE,
     &gap_indirect_absorber::RULE,

@@ -39,6 +39,7 @@ pub const PAGES: &[(&str, &str)] = &[
     ("name.unknown", include_str!("why/name.unknown.md")),
     ("number.decimal-comma", include_str!("why/number.decimal-comma.md")),
     ("optics.data-range", include_str!("why/optics.data-range.md")),
+    ("optics.no-index", include_str!("why/optics.no-index.md")),
     ("polarity.flipped", include_str!("why/polarity.flipped.md")),
     ("polarity.same", include_str!("why/polarity.same.md")),
     ("require.failed", include_str!("why/require.failed.md")),
