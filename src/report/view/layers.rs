@@ -4,7 +4,7 @@ use crate::design::{Duty, Extent, Growth, InterconnectKind, Place};
 use crate::report::context::{Context, Row, under};
 use crate::report::figure::Figure;
 use crate::report::figure::section::{doping_words, draw};
-use crate::report::number::{counted, fixed, signed, thickness};
+use crate::report::number::{celsius, counted, fixed, signed, thickness};
 use crate::report::text::{Text, visible};
 use crate::report::view::sources::Sources;
 use crate::report::view::{Section, Table};
@@ -119,6 +119,11 @@ fn caption(context: &Context<'_>) -> Text {
         words.push_str(" The heavy line is the p–n plane.");
     }
     words.push_str(&format!(" Currents {}.", under(context.first)));
+    let warm = context.first.temperature_k;
+    if (warm - 298.15).abs() > 0.5 && rows.iter().any(|row| row.result.gap_ev.is_some()) {
+        words
+            .push_str(&format!(" Gaps in the rows at 25\u{a0}°C, beside the brackets at {}.", celsius(warm)));
+    }
     Text::of(words)
 }
 
