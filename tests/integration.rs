@@ -15,6 +15,7 @@ mod integration {
     mod physics_language;
     mod physics_properties;
     mod robustness;
+    mod rooms;
     mod sheet;
     mod sheet_cases;
     mod sheet_page;
