@@ -92,6 +92,11 @@ impl<'a> Trouble<'a> {
         self.rules.iter().copied().filter(|rule| !noise(rule)).collect()
     }
 
+    /// Whether anything that is said of a layer might stand here: a list would be no help.
+    fn anything_said(&self) -> bool {
+        self.rules.contains(&Rule::alias) && self.rules.contains(&Rule::value)
+    }
+
     fn message(&self) -> String {
         let mut wanted: Vec<&str> = Vec::new();
         for name in self.wanted().into_iter().map(names::human) {
@@ -100,6 +105,9 @@ impl<'a> Trouble<'a> {
             }
         }
         let found = self.found();
+        if self.anything_said() {
+            wanted.clear();
+        }
         match wanted.as_slice() {
             [one] => format!("expected {one}, found {found}"),
             [one, other] => format!("expected {one} or {other}, found {found}"),

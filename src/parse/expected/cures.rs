@@ -238,7 +238,10 @@ fn misspelt(trouble: &Trouble<'_>) -> Option<Cure> {
 fn expected_word(trouble: &Trouble<'_>) -> Option<Cure> {
     let due: Vec<&str> = trouble.wanted().iter().flat_map(|rule| names::opening(*rule)).copied().collect();
     let (at, end) = (trouble.at, trouble.token_end());
-    if due.len() > 3 || !trouble.token.starts_with(|c: char| c.is_ascii_alphabetic()) {
+    if due.len() > 3
+        || trouble.anything_said()
+        || !trouble.token.starts_with(|c: char| c.is_ascii_alphabetic())
+    {
         return None;
     }
     due.into_iter().find_map(|word| {
