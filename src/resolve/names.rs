@@ -14,10 +14,15 @@ pub fn unknown<'a>(
 ) -> Finding {
     let finding = Finding::error("name.unknown", format!("no {kind} is called `{}`", name.value));
     match near(&name.value, known) {
-        Some(near) => finding
-            .at(name.span, format!("did you mean `{near}`?"))
-            .help(format!("write `{near}`"))
-            .fix(name.span, near, false),
+        Some(near) => {
+            // A span two bytes longer than its text includes the quotes, which the edit keeps.
+            let quoted = (name.span.end - name.span.start) as usize == name.value.len() + 2;
+            let text = if quoted { format!("\"{near}\"") } else { near };
+            finding
+                .at(name.span, format!("did you mean `{text}`?"))
+                .help(format!("write `{text}`"))
+                .fix(name.span, text, false)
+        }
         None => finding.at(name.span, format!("an unknown {kind}")).help(otherwise),
     }
 }

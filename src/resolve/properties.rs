@@ -150,7 +150,7 @@ pub(super) fn first_value<'s>(
 ) -> Option<Cow<'s, Value>> {
     match property.arguments.as_slice() {
         [] => {
-            missing(scope, property, &format!("write {} after it", expected.dimension.name()));
+            missing(scope, property, &format!("write `{} {}`", property.name.value, expected.example()));
             None
         }
         [Argument::Value(value), Argument::Word(word), ..] if lone_unit(scope, value, word) => None,

@@ -78,21 +78,8 @@ fn require(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Re
 /// What a metric is compared in, and how its bound is written. Shares say `%`; a fill factor is
 /// written either way.
 fn measure(metric: &str) -> Option<(Dimension, Role)> {
+    let dimension = crate::evaluate::metrics::dimension(metric)?;
     let word = metric.rsplit('.').next().unwrap_or(metric);
-    let dimension = match word {
-        "efficiency" | "fill_factor" | "current_mismatch" | "mismatch" | "strain" | "remaining_factor" => {
-            Dimension::NONE
-        }
-        "power" => Dimension::IRRADIANCE,
-        "voc" | "vmp" | "voltage_at_mpp" => Dimension::VOLTAGE,
-        "jsc" | "jmp" | "photocurrent" | "reflected_current" => Dimension::CURRENT_DENSITY,
-        "gap" => Dimension::ENERGY,
-        "thickness" | "grown_thickness" | "lattice_constant" => Dimension::LENGTH,
-        "doping" => Dimension::PER_VOLUME,
-        "areal_mass" => Dimension::AREAL_MASS,
-        "specific_power" => Dimension::SPECIFIC_POWER,
-        _ => return None,
-    };
     let role = match word {
         "efficiency" => Role::Share,
         "current_mismatch" | "mismatch" => Role::Ratio,
@@ -132,8 +119,9 @@ fn conditions(
             );
             continue;
         }
-        let known = design.conditions.iter().map(|condition| condition.name.as_str());
-        let list: Vec<String> = known.clone().map(|name| format!("`{name}`")).collect();
+        let own = design.conditions.iter().map(|condition| condition.name.as_str());
+        let list: Vec<String> = own.clone().map(|name| format!("`{name}`")).collect();
+        let known = own.chain(resolver.items.conditions.all.iter().map(|item| item.name.value.as_str()));
         let finding = names::unknown(
             "condition",
             name,

@@ -60,11 +60,11 @@ const MAY: &[(&str, &[&str])] = &[
             "design",
             "growth",
             "numerics",
-            // The unit of the threshold that `limit` sets, from the static table of rules.
-            "check",
             "why",
-            // `limit CODE value` is read in the unit of its rule.
+            // `limit CODE value` is read in the unit of its rule, the bound of a `require` in the
+            // dimension of its metric: two static tables.
             "check",
+            "evaluate",
         ],
     ),
     (

@@ -19,7 +19,13 @@ impl Scope {
     ) -> Option<Evaluated> {
         match expression {
             Expression::Number(number) => self.literal(number, lent, 1.0),
-            Expression::Name(name) => self.name_value(name),
+            Expression::Name(name) => {
+                let value = self.name_value(name);
+                if value.is_none() {
+                    self.report_unsettled(name);
+                }
+                value
+            }
             Expression::Negate(inner, _) => match &**inner {
                 // `-5 degC` is five degrees below zero, not the negative of 278.15 K.
                 Expression::Number(number) => self.literal(number, lent, -1.0),
@@ -122,6 +128,21 @@ impl Scope {
             binding.state = State::Done(evaluated);
         }
         evaluated
+    }
+
+    /// A name that stands for a free value without a number cannot be reckoned with.
+    fn report_unsettled(&mut self, name: &Spanned<String>) {
+        if !self.binding(&name.value).is_some_and(|it| it.value.expression.is_none()) {
+            return;
+        }
+        let called = &name.value;
+        self.report(
+            Finding::error("value.missing", format!("`{called}` is left free and has no value"))
+                .at(name.span, "no number yet")
+                .help(format!(
+                    "write a number before `free`, such as `let {called} = 700 nm free 300 .. 1200 nm`"
+                )),
+        );
     }
 
     fn report_cycle(&mut self, frame: usize, name: &Spanned<String>) {

@@ -156,12 +156,7 @@ fn mismatch(si: f64, given: Dimension, expression: &Expression, expected: Expect
     if let Some(text) = replacement {
         return finding.help(format!("write `{text}`")).fix(span, text, false);
     }
-    match expected.role.units(wanted).first() {
-        Some(unit) => {
-            finding.help(format!("write {} in `{unit}`, such as `{}`", expected.kind(), example(expected)))
-        }
-        None => finding.help(format!("write {}", wanted.name())),
-    }
+    finding.help(format!("write {}, such as `{}`", expected.kind(), example(expected)))
 }
 
 /// The literal with the factor it lacks, or with the unit that was meant.
@@ -236,7 +231,12 @@ fn out_of_range(si: f64, span: Span, expression: &Expression, expected: Expected
             error(
                 format!("{slot} is {given}, {side}"),
                 &side,
-                format!("write a value from 0 to {most}, such as `{}`", example(expected)),
+                match expected.role {
+                    Role::PositiveShare => {
+                        format!("write a value above 0 and up to {most}, such as `{}`", example(expected))
+                    }
+                    _ => format!("write a value from 0 to {most}, such as `{}`", example(expected)),
+                },
             )
         }
         Role::Count => error(
@@ -246,8 +246,8 @@ fn out_of_range(si: f64, span: Span, expression: &Expression, expected: Expected
         ),
         Role::Incidence => error(
             format!("{slot} of `{text}` is not between 0 and 90 deg"),
-            "light would not reach the face",
-            "write an angle from the normal, such as `30 deg`".to_owned(),
+            "not from 0 to 90 deg",
+            "write an angle such as `30 deg`".to_owned(),
         ),
         _ => {
             let side = if si < 0.0 { "negative" } else { "zero" };
@@ -326,6 +326,13 @@ fn literal_text(number: &Number) -> String {
     match &number.unit {
         Some(unit) => format!("{} {}", number.text.value, unit.value),
         None => number.text.value.clone(),
+    }
+}
+
+impl Expected<'_> {
+    /// A value nobody would stumble over in such a slot.
+    pub(crate) fn example(&self) -> &'static str {
+        example(*self)
     }
 }
 

@@ -114,6 +114,10 @@ impl Role {
             Self::Irradiance => &["W/m2", "kW/m2"],
             Self::Incidence => &["deg"],
             Self::Difference if dimension == Dimension::TEMPERATURE => &["K"],
+            // Dark currents and tunnel peaks are told per A, photocurrents per mA.
+            Self::Positive | Self::NotNegative if dimension == Dimension::CURRENT_DENSITY => {
+                &["A/cm2", "mA/cm2"]
+            }
             _ => usual(dimension),
         }
     }

@@ -25,7 +25,8 @@ impl Scope {
     /// The SI value in force of a slot that takes one quantity. `None` where it is wrong, which
     /// is reported, or where it is free and not settled, which is not.
     ///
-    /// A free range and a tolerance are dropped: use [`Scope::slot`] where they have a meaning.
+    /// A free range and a tolerance have no meaning here, which is said: see [`Scope::slot`] for
+    /// places where they have one.
     pub fn quantity(&mut self, value: &Value, expected: Expected<'_>) -> Option<f64> {
         let slot = self.slot(value, expected);
         if let (Some(up_to), false) = (&value.up_to, slot.wrong) {
@@ -36,6 +37,30 @@ impl Scope {
                     .help(format!("write one value, or `free {}`", self.text_of_range(value))),
             );
             return None;
+        }
+        if slot.wrong {
+            return None;
+        }
+        if let Some((_, span)) = slot.free
+            && slot.value.is_none()
+        {
+            self.report(
+                Finding::error(
+                    "value.missing",
+                    format!("{} is left free and has no value", expected.called()),
+                )
+                .at(span, "no number yet")
+                .help(format!("write a number before `free`, such as `{}`", expected.example())),
+            );
+        } else if slot.free.is_some() || slot.tolerance.is_some() {
+            self.report(
+                Finding::advice(
+                    "feature.pending",
+                    format!("a free range or a tolerance of {} is not evaluated yet", expected.called()),
+                )
+                .at(value.span, "only the number counts")
+                .help("write the number alone"),
+            );
         }
         slot.value
     }
