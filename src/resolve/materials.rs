@@ -62,8 +62,11 @@ struct UserItem {
 #[derive(Debug, Default)]
 pub struct Library {
     user: BTreeMap<String, UserItem>,
-    /// `None` while it is being read, or where it could not be.
-    read: BTreeMap<String, Option<Definition>>,
+    /// By whether it is built in, and name; `None` while it is being read, or where it could not be.
+    read: BTreeMap<(bool, String), Option<Definition>>,
+    /// How many built-in files are being read: those see each other only, so that a user's own
+    /// `GaAs` leaves the built-in `AlGaAs` as it is.
+    depth: usize,
     /// Tables of alloys made so far: layers of one composition share one table.
     tables: BTreeMap<(String, Vec<u64>), Optics>,
 }
@@ -130,22 +133,28 @@ impl Library {
     }
 
     fn named(&mut self, name: &str, scope: &mut Scope) -> Option<Definition> {
-        if let Some(known) = self.read.get(name) {
+        let user = self.user.get(name).filter(|_| self.depth == 0).cloned();
+        let built_in = library::FILES.iter().find(|(known, _)| *known == name);
+        if user.is_none() && built_in.is_none() {
+            return None;
+        }
+        let key = (user.is_none(), name.to_owned());
+        if let Some(known) = self.read.get(&key) {
             return known.clone();
         }
-        let user = self.user.get(name).cloned();
-        let built_in = library::FILES.iter().find(|(known, _)| *known == name);
         // An item that names itself, directly or in a circle, finds nothing here.
-        self.read.insert(name.to_owned(), None);
+        self.read.insert(key.clone(), None);
         let definition = match (user, built_in) {
             (Some(own), _) => Reader::new(self, scope, Texts::User(&own.texts)).item(own.kind, &own.item),
-            (None, Some((name, text))) => self.read_built_in(name, text, &mut Scope::new()),
-            (None, None) => {
-                self.read.remove(name);
-                return None;
+            (None, Some((name, text))) => {
+                self.depth += 1;
+                let definition = self.read_built_in(name, text, &mut Scope::new());
+                self.depth -= 1;
+                definition
             }
+            (None, None) => None,
         };
-        self.read.insert(name.to_owned(), definition.clone());
+        self.read.insert(key, definition.clone());
         definition
     }
 

@@ -12,6 +12,9 @@ use crate::resolve::materials::values::{Arguments, Kind, quantity, single};
 use crate::source::{Span, Spanned};
 use crate::syntax::Property;
 
+/// What gives n and k.
+const LAWS: &[&str] = &["table", "constant", "sellmeier", "cauchy"];
+
 const WORDS: &[&str] = &["table", "constant", "sellmeier", "cauchy", "range", "edge", "at"];
 
 impl Reader<'_> {
@@ -21,9 +24,24 @@ impl Reader<'_> {
     /// table holds at (`at 300 K` unless stated), or from a stated `edge 1.88 eV`.
     pub(super) fn index(&mut self, group: &Property, bands: Option<&Bands>) -> Optics {
         let (mut table, mut edge, mut at_k, mut range) = (None, None, ROOM_TEMPERATURE_K, None);
-        let mut is_stated = false;
+        let mut stated: Option<&Property> = None;
         for property in self.inside(group) {
-            is_stated |= ["table", "constant", "sellmeier", "cauchy"].contains(&property.name.value.as_str());
+            if LAWS.contains(&property.name.value.as_str()) {
+                if let Some(first) = stated {
+                    let (one, other) = (&first.name.value, &property.name.value);
+                    self.scope.report(
+                        Finding::error(
+                            "material.statement",
+                            format!("`{one}` and `{other}` both state the index"),
+                        )
+                        .at(property.span, "one too many")
+                        .beside(first.span, "stated here already")
+                        .help("keep one of them"),
+                    );
+                    continue;
+                }
+                stated = Some(property);
+            }
             match property.name.value.as_str() {
                 "table" => {
                     let mut arguments = Arguments::of(property);
@@ -46,7 +64,7 @@ impl Reader<'_> {
         self.origin(group, "index");
         let Some(mut table) = table else {
             // What is stated and wrong was reported where it stands.
-            if !is_stated {
+            if stated.is_none() {
                 self.nothing_said(group);
             }
             return Optics::None;

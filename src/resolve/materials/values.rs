@@ -6,12 +6,28 @@ use crate::source::{Span, Spanned};
 use crate::syntax::{Argument, Block, Property, Statement, Value};
 use crate::units::{Dimension, ELEMENTARY_CHARGE};
 
+/// Words that may stand several times in one block.
+const REPEATED: &[&str] = &["cite", "sample", "source"];
+
 /// The properties of a block in order. What is no property is a finding.
 pub(super) fn properties<'a>(block: &'a Block, scope: &mut Scope) -> Vec<&'a Property> {
-    let mut all = Vec::new();
+    let mut all: Vec<&Property> = Vec::new();
     for statement in &block.statements {
         match statement {
-            Statement::Property(property) => all.push(property),
+            Statement::Property(property) => {
+                let name = &property.name.value;
+                let first = all.iter().find(|known| known.name.value == *name);
+                if let Some(first) = first.filter(|_| !REPEATED.contains(&name.as_str())) {
+                    scope.report(
+                        Finding::error("material.statement", format!("`{name}` is stated twice"))
+                            .at(property.name.span, "stated again here")
+                            .beside(first.name.span, "first stated here")
+                            .help("keep one of them"),
+                    );
+                    continue;
+                }
+                all.push(property);
+            }
             Statement::Invalid(_) => {}
             other => scope.report(
                 Finding::error("name.unknown", "this statement has no place in a material")
@@ -186,6 +202,15 @@ pub(super) fn quantity(
         );
         return None;
     };
+    let open = value.free.as_ref().map(|free| free.span);
+    if let Some(span) = open.or(value.tolerance.as_ref().map(|tolerance| tolerance.span)) {
+        scope.report(
+            Finding::error("material.statement", format!("`{slot}` of a material is one settled value"))
+                .at(span, "neither a free range nor a tolerance belongs here")
+                .help("state it in the layer instead, such as a thickness `600 nm ± 3 % sigma`"),
+        );
+        return None;
+    }
     scope.quantity(&value, kind.expected(slot)).map(|si| si / kind.unit)
 }
 

@@ -7,7 +7,7 @@ use bandloom::resolve::{Overrides, resolve};
 use bandloom::source::Sources;
 use bandloom::world::memory::Memory;
 
-use super::{fraction, near};
+use super::{found, fraction, near};
 
 /// The findings of a file beside others, as (path, finding).
 fn findings(files: &[(&str, &str)]) -> Vec<(String, Finding)> {
@@ -122,6 +122,21 @@ fn matched_means_at_growth_temperature() {
     let (gaas, gap, inp) = (at(5.65325, 3.88e-5), at(5.4505, 2.92e-5), at(5.8697, 2.79e-5));
     near(base("growth_temperature 650 degC"), (inp - gaas) / (inp - gap), 1e-9, "hot");
     assert!(base("growth_temperature 650 degC") < base("") - 0.01);
+}
+
+#[test]
+fn a_users_own_compound_leaves_built_in_alloys_alone() {
+    let designs = designs(
+        "material GaAs { lattice { constant 5.7 Å; cite \"x\" }; gap { direct 1.3 eV; cite \"x\" }; index { constant 3.5; cite \"x\" } }\n\
+         stack \"Own\" {\n light AM1.5G\n junction only {\n window Al0.8Ga0.2As 20 nm n 1e18 /cm3\n emitter AlGaAs with Al 0.1 60 nm n 1e18 /cm3\n\
+         base GaAs 600 nm p 1e17 /cm3\n voltage from ere 1 % }\n}\n",
+    );
+    let gap = |path: &str| {
+        let layer = designs[0].layers.iter().find(|layer| layer.path == path).expect("a layer");
+        layer.material.as_ref().expect("a material").gap(300.0).expect("a gap").ev
+    };
+    near(gap("only.base"), 1.3, 1e-12, "the user's own");
+    near(gap("only.emitter"), found("AlGaAs with Al 0.1").gap(300.0).expect("a gap").ev, 1e-12, "built in");
 }
 
 mod any_text {
