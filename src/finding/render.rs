@@ -115,34 +115,41 @@ fn wrapped(text: &str, width: usize) -> Vec<String> {
     lines
 }
 
-/// Frames of the same file that follow each other become one, with `⋮` between; the first is
-/// headed by `place`, the primary one, also where a secondary label stands above it.
+/// Frames of the same file that follow each other become one, with `⋮` between; all have the
+/// gutter of the widest; the first is headed by `place`, the primary one, also where a secondary
+/// label stands above it.
 fn joined(report: &str, place: Option<&str>) -> String {
     let lines: Vec<&str> = report.split_inclusive('\n').collect();
+    let gutter = lines.iter().filter(|line| opened(line).is_some()).map(|line| indent(line)).max();
+    let gutter = gutter.unwrap_or(0);
     let mut out = String::with_capacity(report.len());
-    let mut file = None;
-    let mut index = 0;
-    while index < lines.len() {
-        let line = lines[index];
-        let headed;
-        let line = match (opened(line), file.is_none(), place) {
-            (Some((name, own)), first, place) => {
-                file = Some(name);
-                headed = line.replacen(&own, place.filter(|_| first).unwrap_or(&own), 1);
-                headed.as_str()
+    let mut file: Option<String> = None;
+    // Spaces that the frame at hand lacks; `None` outside of frames.
+    let mut lacking: Option<usize> = None;
+    let mut skip = false;
+    for (index, line) in lines.iter().enumerate() {
+        if let Some((name, own)) = opened(line) {
+            let lacks = gutter - indent(line);
+            lacking = Some(lacks);
+            let first = file.is_none();
+            file = Some(name);
+            if !skip {
+                out.push_str(&" ".repeat(lacks));
+                out.push_str(&line.replacen(&own, place.filter(|_| first).unwrap_or(&own), 1));
             }
-            (None, ..) => line,
-        };
-        let next = lines.get(index + 1).and_then(|next| opened(next).map(|(name, _)| (name, indent(next))));
-        match next {
-            Some((name, next)) if closes(line) && Some(&name) == file.as_ref() && next == indent(line) => {
-                out.push_str(&format!("{}⋮\n", " ".repeat(next)));
-                index += 2;
-            }
-            _ => {
-                out.push_str(line);
-                index += 1;
-            }
+            skip = false;
+            continue;
+        }
+        let next = lines.get(index + 1).and_then(|next| opened(next)).map(|(name, _)| name);
+        if lacking.is_some() && closes(line) && next.is_some() && next == file {
+            out.push_str(&format!("{}⋮\n", " ".repeat(gutter)));
+            skip = true;
+            continue;
+        }
+        out.push_str(&" ".repeat(lacking.unwrap_or(0)));
+        out.push_str(line);
+        if closes(line) {
+            lacking = None;
         }
     }
     out
@@ -304,7 +311,7 @@ error: name.unknown
     #[test]
     fn far_lines_of_one_file_share_a_frame_and_another_file_has_its_own() {
         let mut sources = Sources::default();
-        sources.add("a.stack", "one\n2\n3\n4\n5\n6\n7\nsecond\n");
+        sources.add("a.stack", "one\n2\n3\n4\n5\n6\n7\n8\n9\nsecond\n");
         sources.add("b.stack", "\n\nthird\n");
         let finding = Finding::warning("name.duplicate", "twice")
             .at(label(&sources, 0, "second"), "again")
@@ -314,20 +321,20 @@ error: name.unknown
 warning: name.duplicate
 
   ⚠ twice
-   ╭─[a.stack:8:1]
- 1 │ one
-   · ─┬─
-   ·  ╰── first
-   ⋮
- 8 │ second
-   · ───┬──
-   ·    ╰── again
-   ╰────
-   ╭─[b.stack:3:1]
- 3 │ third
-   · ──┬──
-   ·   ╰── and here
-   ╰────
+    ╭─[a.stack:10:1]
+  1 │ one
+    · ─┬─
+    ·  ╰── first
+    ⋮
+ 10 │ second
+    · ───┬──
+    ·    ╰── again
+    ╰────
+    ╭─[b.stack:3:1]
+  3 │ third
+    · ──┬──
+    ·   ╰── and here
+    ╰────
 ";
         assert_eq!(render(&finding, &sources, PLAIN), expected);
     }
