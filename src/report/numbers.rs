@@ -10,7 +10,7 @@ use crate::results::{ConditionResult, Results};
 
 /// Digits that are written: more than any model holds, few enough that the last bits of a sum
 /// do not show as a change.
-const DIGITS: usize = 10;
+const DIGITS: u32 = 10;
 
 /// The numbers file: [`Results`] and `findings`, keys in the order of the structs, floats with
 /// ten significant digits, arrays of numbers on one line each.
@@ -153,15 +153,13 @@ impl Formatter for Layout {
 /// The only place where a float becomes text in the files for programs: ten significant digits,
 /// no trailing zeros, a fraction or an exponent so that it reads as a float again.
 fn float(value: f64) -> String {
-    let text = format!("{value:.*e}", DIGITS - 1);
-    let (mantissa, exponent) = text.split_once('e').unwrap_or((&text, "0"));
-    let (sign, mantissa) = mantissa.strip_prefix('-').map_or(("", mantissa), |rest| ("-", rest));
-    let digits: String = mantissa.chars().filter(|c| *c != '.').collect();
-    let digits = digits.trim_end_matches('0');
-    if digits.is_empty() {
+    let (digits, exponent) = decimal(value.abs());
+    if digits == 0 {
         return "0.0".into();
     }
-    let exponent: i32 = exponent.parse().unwrap_or(0);
+    let sign = if value < 0.0 { "-" } else { "" };
+    let digits = digits.to_string();
+    let digits = digits.trim_end_matches('0');
     match exponent {
         0..=14 => {
             let whole = exponent as usize + 1;
@@ -175,6 +173,32 @@ fn float(value: f64) -> String {
         _ if digits.len() == 1 => format!("{sign}{digits}.0e{exponent}"),
         _ => format!("{sign}{}.{}e{exponent}", &digits[..1], &digits[1..]),
     }
+}
+
+/// `value` ≥ 0 as an integer of ten digits and the power of ten of its first; 0 where it is 0.
+/// Numbers far from one pass through powers of ten that are off by some 1e-16: the last of ten
+/// digits stands.
+fn decimal(value: f64) -> (u64, i32) {
+    if value <= 0.0 || !value.is_finite() {
+        return (0, 0);
+    }
+    let most = 10u64.pow(DIGITS);
+    let scaled = |exponent: i32| {
+        let shift = DIGITS as i32 - 1 - exponent;
+        // In two steps, so that neither power leaves the range of a float.
+        let half = shift / 2;
+        (value * 10f64.powi(half) * 10f64.powi(shift - half)).round() as u64
+    };
+    let mut exponent = value.log10().floor() as i32;
+    let mut digits = scaled(exponent);
+    if digits >= most {
+        exponent += 1;
+        digits = scaled(exponent);
+    } else if digits < most / 10 {
+        exponent -= 1;
+        digits = scaled(exponent);
+    }
+    (digits, exponent)
 }
 
 /// Every curve, one point a row: condition, which curve (`stack` or a junction by itself),
@@ -218,6 +242,10 @@ mod tests {
             (0.00012, "0.00012"),
             (1.23456789012345e-20, "1.23456789e-20"),
             (-2e18, "-2.0e18"),
+            (9.999_999_999_96, "10.0"),
+            (0.1, "0.1"),
+            (1e-300, "1.0e-300"),
+            (123_456_789_012.0, "123456789000.0"),
         ] {
             assert_eq!(float(value), text);
         }
