@@ -321,9 +321,12 @@ fn reach(compositions: impl Iterator<Item = Composition>, family: &Family) -> Op
     spanned(points.iter().map(|(gap, composition)| (*gap, composition)))
 }
 
+/// A gap and where it lies.
+type Point<'a> = (Gap, &'a Composition);
+
 /// Smallest and largest of some gaps, the first of equals.
-fn spanned<'a>(points: impl Iterator<Item = (Gap, &'a Composition)>) -> Option<GapReach> {
-    let mut reach: Option<((Gap, &Composition), (Gap, &Composition))> = None;
+fn spanned<'a>(points: impl Iterator<Item = Point<'a>>) -> Option<GapReach> {
+    let mut reach: Option<(Point<'a>, Point<'a>)> = None;
     for point in points {
         reach = Some(match reach {
             None => (point, point),
