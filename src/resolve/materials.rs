@@ -56,6 +56,8 @@ struct UserItem {
     kind: ItemKind,
     item: Named,
     texts: BTreeMap<String, (SourceId, Arc<str>)>,
+    /// Whether a file it names could not be had, which was reported.
+    lacks_file: bool,
 }
 
 /// Every material and family in sight: the user's items before the built-in ones.
@@ -98,8 +100,10 @@ impl Library {
 
     fn add(&mut self, kind: ItemKind, scope: &mut Scope, files: &mut Files<'_>, item: &Named) {
         let mut texts = BTreeMap::new();
+        let before = scope.error_count();
         read_tables(&item.block.statements, scope, files, &mut texts);
-        let own = UserItem { kind, item: item.clone(), texts };
+        let lacks_file = scope.error_count() > before;
+        let own = UserItem { kind, item: item.clone(), texts, lacks_file };
         self.user.entry(item.name.value.clone()).or_insert(own);
     }
 
@@ -145,7 +149,12 @@ impl Library {
         // An item that names itself, directly or in a circle, finds nothing here.
         self.read.insert(key.clone(), None);
         let definition = match (user, built_in) {
-            (Some(own), _) => Reader::new(self, scope, Texts::User(&own.texts)).item(own.kind, &own.item),
+            (Some(own), _) => {
+                let before = scope.error_count();
+                let read = Reader::new(self, scope, Texts::User(&own.texts)).item(own.kind, &own.item);
+                // What is wrong was reported; layers made of it say nothing more.
+                read.filter(|_| scope.error_count() == before && !own.lacks_file)
+            }
             (None, Some((name, text))) => {
                 self.depth += 1;
                 let definition = self.read_built_in(name, text, &mut Scope::new());

@@ -2,7 +2,7 @@
 
 use std::collections::{HashMap, HashSet};
 
-use crate::finding::{Finding, Findings};
+use crate::finding::{Finding, Findings, Severity};
 use crate::source::{Span, Spanned};
 use crate::syntax::{Expression, Value};
 use crate::units::{Dimension, Quantity, Unit, UnknownUnit};
@@ -160,6 +160,11 @@ impl Scope {
     /// Whether something of error level was found so far.
     pub fn has_errors(&self) -> bool {
         self.findings.has_errors()
+    }
+
+    /// How many errors there are so far.
+    pub fn error_count(&self) -> usize {
+        self.findings.count(Severity::Error)
     }
 
     /// How many findings there are so far.

@@ -134,7 +134,7 @@ impl<'a> Reader<'a> {
         let silent = material.lattice.is_none() && material.bands.is_none();
         if silent && material.optics == Optics::None {
             self.scope.report(
-                Finding::warning(
+                Finding::error(
                     "material.incomplete",
                     format!("`{}` has neither a lattice, nor a gap, nor an index", item.name.value),
                 )

@@ -42,6 +42,23 @@ fn an_unsound_table_is_shown_at_its_own_line() {
 }
 
 #[test]
+fn one_mistake_in_a_material_is_one_finding() {
+    for wrong in [
+        "index { table \"nowhere.csv\"; cite \"x\" }",
+        "index { constant 1.4 }",
+        "index { sellmeier 1.1 600 nm; cite \"x\" }",
+        "index { constant 1.4 nm; cite \"x\" }",
+        "about \"nothing\"",
+    ] {
+        let text = format!(
+            "material Film {{ {wrong} }}\nstack \"S\" {{ light AM1.5G\n coat Film 90 nm\n coat Film 50 nm\n\
+             junction only {{ absorber ideal of gap 1.4 eV absorbs all_above_gap }} }}\n"
+        );
+        assert_eq!(findings(&[("main.stack", &text)]).len(), 1, "{wrong}");
+    }
+}
+
+#[test]
 fn definitions_that_lead_in_a_circle_end() {
     let found = findings(&[(
         "main.stack",
