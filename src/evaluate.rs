@@ -36,6 +36,7 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
         return Outcome::nothing(findings);
     }
     let Some(lit) = lit_by_condition(design) else {
+        findings.extend(findings::too_short_waves(design));
         return Outcome::nothing(findings);
     };
     let conditions: Vec<ConditionResult> = design

@@ -6,11 +6,36 @@ use crate::design::{Design, Junction, VoltageModel};
 use crate::evaluate::junctions::fit_at;
 use crate::evaluate::lit::{Lit, junction_gap};
 use crate::finding::{Finding, Findings};
+use crate::light::DATA_START_M;
 use crate::results::Results;
 use crate::units::number;
 
 /// Share of a current from which held end values are worth a warning.
 const HELD_SHARE: f64 = 1e-3;
+
+/// Lights that end before currents start.
+pub(super) fn too_short_waves(design: &Design) -> Findings {
+    let mut findings = Findings::new();
+    for condition in &design.conditions {
+        let light = &condition.light;
+        let Some((_, last)) = light.range_m().filter(|(_, last)| *last <= DATA_START_M) else { continue };
+        let nm = |metres: f64| number(metres * 1e9);
+        findings.push(
+            Finding::error(
+                "light.range",
+                format!(
+                    "`{}` ends at {} nm, before {} nm where currents start",
+                    light.name,
+                    nm(last),
+                    nm(DATA_START_M)
+                ),
+            )
+            .at(condition.span, format!("light `{}`", light.name))
+            .help("give a spectrum that reaches the edges of the junctions, such as `AM1.5G`"),
+        );
+    }
+    findings
+}
 
 /// What the figures show.
 pub(super) fn after(design: &Design, results: &Results, lit: &[Arc<Lit>]) -> Findings {

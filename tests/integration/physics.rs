@@ -4,11 +4,12 @@
 
 use std::sync::Arc;
 
-use bandloom::design::{Design, DiodeFit, Terminals, VoltageModel};
+use bandloom::design::{Design, DiodeFit, FreeValue, Terminals, VoltageModel};
 use bandloom::evaluate::evaluate;
-use bandloom::light::{SUN_DILUTION, blackbody, builtin};
+use bandloom::light::{SUN_DILUTION, Spectrum, blackbody, builtin};
 use bandloom::numerics::constants::{CHARGE, LIGHT_SPEED, PLANCK, thermal_voltage};
 use bandloom::results::{ConditionResult, Results};
+use bandloom::source::Span;
 
 use super::designs::{condition, ideal_stack, limit_stack, under};
 
@@ -207,4 +208,40 @@ fn a_cold_junction_approaches_its_gap() {
         let voltage = 1.42 + kt * (current / (prefactor * kt.powi(3) * (g * g + 2.0 * g + 2.0))).ln();
         close(result.voc_v.expect("series"), voltage, 3e-6);
     }
+}
+
+#[test]
+fn light_of_short_waves_alone_is_found() {
+    let light = Spectrum::from_table("germicidal", vec![250e-9, 258e-9], vec![1e9, 1e9], "invented");
+    let outcome = evaluate(&under(limit_stack(&[1.42]), light, 1.0, 298.15), "by hand");
+    assert!(outcome.value.is_none());
+    let codes: Vec<&str> = outcome.findings.iter().map(|finding| finding.code).collect();
+    assert_eq!(codes, ["light.range"]);
+}
+
+#[test]
+fn a_design_that_is_not_whole_has_no_figures_and_no_panic() {
+    let mut unresolved = limit_stack(&[1.42]);
+    unresolved.layers[0].material = None;
+    let mut unsettled = limit_stack(&[1.42]);
+    unsettled.free_values.push(FreeValue {
+        path: "j0.absorber.gap".to_owned(),
+        range: (1e-19, 3e-19),
+        value: None,
+        text: "free 1 .. 2 eV".to_owned(),
+        span: Span::default(),
+    });
+    let mut bare = limit_stack(&[1.42]);
+    bare.junctions.clear();
+    let mut timeless = limit_stack(&[1.42]);
+    timeless.conditions.clear();
+    for design in [unresolved, unsettled, bare, timeless] {
+        assert!(evaluate(&design, "by hand").value.is_none());
+    }
+    // Beyond all measure: stopped with a finding, never written as infinity.
+    let mut blinding = limit_stack(&[1.42]);
+    blinding.conditions[0].concentration = 1e308;
+    let outcome = evaluate(&blinding, "by hand");
+    assert!(outcome.value.is_none());
+    assert!(outcome.findings.iter().any(|finding| finding.code == "value.range"));
 }
