@@ -9,7 +9,7 @@ use crate::source::{Span, Spanned};
 pub struct Junction {
     /// `top`
     pub name: Spanned<String>,
-    /// Its layers, as a range of [`Design::layers`].
+    /// Its layers, as a range of [`Design::layers`](crate::design::Design::layers).
     pub layers: Range<usize>,
     /// How it turns light into voltage.
     pub voltage: VoltageModel,
@@ -58,7 +58,7 @@ pub struct Interconnect {
     pub name: Spanned<String>,
     /// Tunnel junction or recombination contact.
     pub kind: InterconnectKind,
-    /// Its layers, as a range of [`Design::layers`]; empty where none are written.
+    /// Its layers, as a range of [`Design::layers`](crate::design::Design::layers); empty where none are written.
     pub layers: Range<usize>,
     /// How many junctions stand sunward of it.
     pub below_junctions: usize,

@@ -54,7 +54,7 @@ struct Mirror {
 /// Shares of the light that enters at the front, by wavelength.
 #[derive(Clone, Debug, Default)]
 pub struct Shares {
-    /// Absorbed, `[slab][wavelength]`, slabs as [`OnePass::slabs`]; the mirror's own absorption
+    /// Absorbed, `[slab][wavelength]`, slabs in the order of the layers; the mirror's own absorption
     /// comes last where there is one.
     pub absorbed: Vec<Vec<f64>>,
     /// Leaves unabsorbed: out of the rear, or back out of the front after a mirror.

@@ -132,7 +132,7 @@ impl Scope {
 
     /// A name that stands for a free value without a number cannot be reckoned with.
     fn report_unsettled(&mut self, name: &Spanned<String>) {
-        if !self.binding(&name.value).is_some_and(|it| it.value.expression.is_none()) {
+        if self.binding(&name.value).is_none_or(|it| it.value.expression.is_some()) {
             return;
         }
         let called = &name.value;
