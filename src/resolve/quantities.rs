@@ -65,6 +65,8 @@ struct Binding {
     value: Value,
     /// The frame its own names are looked up in.
     home: usize,
+    /// Whether it is a parameter with the value given where the part is placed.
+    argument: bool,
     state: State,
 }
 
@@ -80,6 +82,9 @@ struct Frame {
     bindings: HashMap<String, Binding>,
     parent: Option<usize>,
 }
+
+/// Names that stand for names, followed to find where a value was written.
+const LONGEST: usize = 64;
 
 /// Words that open something else on a layer's line, where a name would be read as one of them.
 const RESERVED: &[&str] = &[
@@ -175,17 +180,18 @@ impl Scope {
     /// Binds a name in the innermost block. A second binding of the same block is a finding.
     pub fn define(&mut self, name: &Spanned<String>, value: &Value) {
         let home = self.current;
-        self.define_at(home, name, value);
+        self.define_at(home, name, value, false);
     }
 
     /// Binds a name in the innermost block to a value whose own names belong to the block
     /// around the part: an argument of `place`.
     pub fn define_argument(&mut self, name: &Spanned<String>, value: &Value, caller: usize) {
-        self.define_at(caller, name, value);
+        self.define_at(caller, name, value, true);
     }
 
-    fn define_at(&mut self, home: usize, name: &Spanned<String>, value: &Value) {
-        let binding = Binding { name: name.clone(), value: value.clone(), home, state: State::Waiting };
+    fn define_at(&mut self, home: usize, name: &Spanned<String>, value: &Value, argument: bool) {
+        let binding =
+            Binding { name: name.clone(), value: value.clone(), home, argument, state: State::Waiting };
         if RESERVED.contains(&name.value.as_str()) {
             self.report(
                 Finding::error(
@@ -282,7 +288,11 @@ impl Scope {
 
     /// The frame that binds a name, from the innermost outwards.
     fn find(&self, name: &str) -> Option<usize> {
-        let mut frame = Some(self.current);
+        self.find_from(self.current, name)
+    }
+
+    fn find_from(&self, frame: usize, name: &str) -> Option<usize> {
+        let mut frame = Some(frame);
         while let Some(at) = frame {
             if self.frames[at].bindings.contains_key(name) {
                 return Some(at);
@@ -290,6 +300,22 @@ impl Scope {
             frame = self.frames[at].parent;
         }
         None
+    }
+
+    /// The bindings behind an expression that is a name, and behind that one where it is a name
+    /// again, each looked up where it was written. Ends after [`LONGEST`] of them: a circle is told
+    /// where names are evaluated.
+    fn trace(&self, expression: &Expression) -> Vec<&Binding> {
+        let mut found: Vec<&Binding> = Vec::new();
+        let (mut frame, mut at) = (self.current, Some(expression));
+        while let Some(Expression::Name(name)) = at {
+            let binding =
+                self.find_from(frame, &name.value).and_then(|it| self.frames[it].bindings.get(&name.value));
+            let Some(binding) = binding.filter(|_| found.len() < LONGEST) else { break };
+            found.push(binding);
+            (frame, at) = (binding.home, binding.value.expression.as_ref());
+        }
+        found
     }
 
     fn binding(&self, name: &str) -> Option<&Binding> {

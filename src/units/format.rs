@@ -139,4 +139,26 @@ mod tests {
         assert_eq!(number(-1234.56), "-1235");
         assert_eq!(number(1e5), "1e5");
     }
+
+    proptest::proptest! {
+        #![proptest_config(proptest::test_runner::Config { cases: 256, failure_persistence: None, ..Default::default() })]
+
+        /// What is shown reads back as the same value to the four digits shown.
+        #[test]
+        fn shown_values_read_back(mantissa in 1.0..10.0_f64, exponent in -30_i32..30, at in 0..USUAL.len()) {
+            let (dimension, [unit]) = USUAL[at];
+            let si = mantissa * 10_f64.powi(exponent);
+            for text in [trade(si, dimension), in_unit(si, unit)] {
+                let (digits, unit) = text.split_once(' ').expect("a number and a unit");
+                let read = crate::units::Quantity::of(
+                    digits.parse().expect("a number"),
+                    &parse(unit).expect("a unit"),
+                );
+                proptest::prop_assert_eq!(read.dimension, dimension);
+                // A reading in degC keeps four digits of the reading, not of its distance from 0 K.
+                let shown = if unit == "degC" { (si - ZERO_CELSIUS).abs().max(1.0) } else { si };
+                proptest::prop_assert!((read.si - si).abs() <= 5.1e-4 * shown + 1e-12 * si, "{text}: {} against {si}", read.si);
+            }
+        }
+    }
 }

@@ -189,4 +189,30 @@ mod tests {
         assert_eq!(meant("ev").as_deref(), Some("eV"));
         assert_eq!(meant("furlong"), None);
     }
+
+    #[test]
+    fn every_symbol_reads_with_every_prefix_and_exponent() {
+        use crate::units::table::{PREFIXES, SYMBOLS};
+        for symbol in SYMBOLS {
+            let plain = std::iter::once((String::new(), 1.0));
+            let prefixed = PREFIXES
+                .iter()
+                .filter(|(letter, _)| symbol.prefixes.contains(*letter))
+                .map(|(letter, multiple)| (letter.to_string(), *multiple));
+            for (prefix, multiple) in plain.chain(prefixed) {
+                let one = multiple * symbol.factor;
+                for (text, exponent) in [("", 1), ("2", 2), ("^-3", -3), ("-1", -1)] {
+                    if symbol.text == "%" && !text.is_empty() {
+                        continue;
+                    }
+                    let written = format!("{prefix}{}{text}", symbol.text);
+                    let unit = parse(&written).unwrap_or_else(|e| panic!("{written}: {e:?}"));
+                    assert!(close(unit.factor, one.powi(exponent)), "{written}");
+                    let over = parse(&format!("W/{written}")).expect("a unit");
+                    assert!(close(over.factor * unit.factor, 1.0), "W/{written}");
+                    assert_eq!(over.dimension * unit.dimension, Dimension::POWER, "W/{written}");
+                }
+            }
+        }
+    }
 }

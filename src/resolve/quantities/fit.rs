@@ -14,18 +14,23 @@ impl Scope {
         expression: &Expression,
         expected: Expected<'_>,
     ) -> Option<f64> {
-        let (si, span) = (evaluated.quantity.si, expression.span());
+        let (si, used) = (evaluated.quantity.si, expression.span());
         let given = evaluated.quantity.dimension;
         if evaluated.bare && (!expected.dimension.is_none() || expected.role.needs_word()) {
             let (place, literal) = self.origin(expression);
             let finding = bare(si, place, literal, expected);
-            let finding = if place == span { finding } else { finding.beside(span, "used here") };
+            let finding = if place == used { finding } else { finding.beside(used, "used here") };
             self.report(finding);
             return None;
         }
+        let problem = |this: &mut Self, made: &dyn Fn(&Expression) -> Finding| {
+            let blamed = this.blamed(expression);
+            let finding = made(&blamed);
+            let elsewhere = blamed.span() != used;
+            this.report(if elsewhere { finding.beside(used, "used here") } else { finding });
+        };
         if given != expected.dimension {
-            let finding = mismatch(si, given, expression, expected);
-            self.report(finding);
+            problem(self, &|blamed| mismatch(si, given, blamed, expected));
             return None;
         }
         // A Celsius reading where a difference is due counts its degrees only.
@@ -35,45 +40,42 @@ impl Scope {
             si
         };
         if !expected.role.possible(si) {
-            let finding = out_of_range(si, span, expression, expected);
-            self.report(finding);
+            problem(self, &|blamed| out_of_range(si, blamed, expected));
             return None;
         }
         if expected.role == Role::Count && si.fract() != 0.0 {
-            self.report(
+            problem(self, &|blamed| {
                 Finding::error(
                     "value.range",
                     format!("{} takes a whole number, not {}", expected.called(), number(si)),
                 )
-                .at(span, "not a whole number")
-                .help(format!("write `{}`", number(si.round().max(1.0)))),
-            );
+                .at(blamed.span(), "not a whole number")
+                .help(format!("write `{}`", number(si.round().max(1.0))))
+            });
             return None;
         }
         if expected.role.likely().is_some_and(|(low, high)| !(low..=high).contains(&si)) {
-            let finding = unlikely(si, span, expression, expected);
-            self.report(finding);
+            problem(self, &|blamed| unlikely(si, blamed, expected));
         }
         Some(si)
     }
 
     /// Where a bare number was written: through names, to the literal behind them.
-    fn origin<'e>(&self, expression: &'e Expression) -> (Span, Option<Number>) {
-        let mut at: std::borrow::Cow<'e, Expression> = std::borrow::Cow::Borrowed(expression);
-        for _ in 0..64 {
-            let next = match &*at {
-                Expression::Number(number) => return (number.span, Some(number.clone())),
-                Expression::Name(name) => {
-                    self.binding(&name.value).and_then(|binding| binding.value.expression.clone())
-                }
-                _ => None,
-            };
-            match next {
-                Some(next) => at = std::borrow::Cow::Owned(next),
-                None => break,
-            }
+    fn origin(&self, expression: &Expression) -> (Span, Option<Number>) {
+        let behind = self.trace(expression);
+        let last = behind.last().and_then(|binding| binding.value.expression.as_ref()).unwrap_or(expression);
+        match last {
+            Expression::Number(number) => (number.span, Some(number.clone())),
+            _ => (expression.span(), None),
         }
-        (expression.span(), None)
+    }
+
+    /// What is to blame for a wrong value: the expression itself, but for a parameter of a placed
+    /// part the value given there.
+    fn blamed(&self, expression: &Expression) -> Expression {
+        let behind = self.trace(expression);
+        let given = behind.iter().take_while(|binding| binding.argument).last();
+        given.and_then(|binding| binding.value.expression.as_ref()).unwrap_or(expression).clone()
     }
 }
 
@@ -204,7 +206,8 @@ fn mended(literal: &Number, given: Dimension, expected: Expected<'_>) -> Option<
     (!given.is_none()).then(|| format!("{digits} {unit}{factor}"))
 }
 
-fn out_of_range(si: f64, span: Span, expression: &Expression, expected: Expected<'_>) -> Finding {
+fn out_of_range(si: f64, expression: &Expression, expected: Expected<'_>) -> Finding {
+    let span = expression.span();
     let (slot, text) = (expected.called(), written(si, expected.dimension, expression));
     let error = |message: String, label: &str, help: String| {
         Finding::error("value.range", message).at(span, label).help(help)
@@ -275,7 +278,8 @@ fn nearest_temperature(expression: &Expression, expected: Expected<'_>) -> Strin
     format!("a temperature such as `{}`", example(expected))
 }
 
-fn unlikely(si: f64, span: Span, expression: &Expression, expected: Expected<'_>) -> Finding {
+fn unlikely(si: f64, expression: &Expression, expected: Expected<'_>) -> Finding {
+    let span = expression.span();
     let (slot, text) = (expected.called(), written(si, expected.dimension, expression));
     let size = match expected.role.likely() {
         Some((_, high)) if si > high => "larger",

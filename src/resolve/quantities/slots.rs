@@ -125,18 +125,22 @@ impl Scope {
 
     /// A name alone that stands for a free or toleranced value brings those along.
     fn expanded(&self, value: &Value) -> Option<Value> {
-        let Some(Expression::Name(name)) = &value.expression else { return None };
-        let bound = &self.binding(&name.value)?.value;
-        let adds = (bound.free.is_some() && value.free.is_none())
-            || (bound.tolerance.is_some() && value.tolerance.is_none())
-            || (bound.up_to.is_some() && value.up_to.is_none());
-        adds.then(|| Value {
-            expression: bound.expression.as_ref().and(value.expression.clone()),
-            up_to: value.up_to.clone().or_else(|| bound.up_to.clone()),
-            free: value.free.clone().or_else(|| bound.free.clone()),
-            tolerance: value.tolerance.clone().or_else(|| bound.tolerance.clone()),
-            span: value.span,
-        })
+        let expression = value.expression.as_ref()?;
+        let behind = self.trace(expression);
+        if behind.is_empty() {
+            return None;
+        }
+        let mut whole = value.clone();
+        for binding in &behind {
+            let bound = &binding.value;
+            whole.up_to = whole.up_to.or_else(|| bound.up_to.clone());
+            whole.free = whole.free.or_else(|| bound.free.clone());
+            whole.tolerance = whole.tolerance.or_else(|| bound.tolerance.clone());
+            if bound.expression.is_none() {
+                whole.expression = None;
+            }
+        }
+        (whole != *value).then_some(whole)
     }
 
     fn lent(
