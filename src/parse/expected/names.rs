@@ -118,7 +118,7 @@ pub(super) fn human(rule: Rule) -> &'static str {
         Rule::material | Rule::bracketed => "a material",
         Rule::qualifier => "what narrows a material down",
         Rule::attribute => "a property of the layer",
-        Rule::term | Rule::inner_term => "a value",
+        Rule::term | Rule::inner_term | Rule::arithmetic => "a value",
         Rule::digits | Rule::exponent => "digits",
         Rule::over_unit
         | Rule::unit_factor
