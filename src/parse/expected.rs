@@ -94,7 +94,8 @@ impl<'a> Trouble<'a> {
 
     /// Whether anything that is said of a layer might stand here: a list would be no help.
     fn anything_said(&self) -> bool {
-        self.rules.contains(&Rule::alias) && self.rules.contains(&Rule::value)
+        let head = first_word(self.text);
+        self.rules.contains(&Rule::alias) && (DUTIES.contains(&head) || head.contains('.'))
     }
 
     fn message(&self) -> String {
