@@ -47,7 +47,7 @@ pub enum Item {
     Stack(Stack),
     /// A statement that belongs inside a block, or a word that is no item.
     Stray(Statement),
-    /// Text that could not be read; already reported.
+    /// Text that could not be read, or an item whose braces do not pair; already reported.
     Invalid(Span),
 }
 
