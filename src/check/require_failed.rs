@@ -131,3 +131,49 @@ fn largest_loss(condition: &ConditionResult) -> Option<String> {
         )
     })
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::source::{Span, Spanned};
+
+    fn asked(comparison: Comparison, bound_text: &str) -> Requirement {
+        Requirement {
+            metric: Spanned::new("metric".into(), Span::default()),
+            comparison,
+            bound: 0.0,
+            bound_text: bound_text.into(),
+            under: Vec::new(),
+            at_yield: None,
+            text: String::new(),
+            span: Span::default(),
+        }
+    }
+
+    fn came_out(value: f64, unit: &str) -> RequirementResult {
+        RequirementResult {
+            text: String::new(),
+            condition: None,
+            value,
+            bound: 0.0,
+            unit: unit.into(),
+            met: false,
+            margin: 0.0,
+        }
+    }
+
+    #[test]
+    fn the_bound_offered_holds() {
+        // Rounded towards the side on which the value lies, three digits.
+        for (comparison, bound, value, unit, offered) in [
+            (Comparison::AtLeast, "40 %", 0.320_47, "1", "32 %"),
+            (Comparison::AtMost, "3 %", 0.058_81, "1", "5.89 %"),
+            (Comparison::AtLeast, "1.05 V", 1.045_3, "V", "1.04 V"),
+            (Comparison::AtLeast, "0.9", 0.854_9, "1", "0.854"),
+            // A value on a whole step goes one down: `>` would not hold on it.
+            (Comparison::Above, "30 %", 0.28, "1", "27.9 %"),
+        ] {
+            assert_eq!(holding(&asked(comparison, bound), &came_out(value, unit)), offered);
+        }
+    }
+}
