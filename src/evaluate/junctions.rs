@@ -5,6 +5,10 @@ use crate::design::{Condition, Design, DiodeFit, Junction, Terminals, VoltageMod
 use crate::evaluate::lit::{Lit, junction_gap};
 use crate::numerics::constants::thermal_voltage;
 
+/// Photocurrents below this are dark, A/m2: one electron in five thousand years over a square
+/// metre. What a tail absorbs by rounding has no voltage.
+const DARK_A_PER_M2: f64 = 1e-30;
+
 /// The diode of each junction under `condition`, sunward first.
 ///
 /// `factor` is what multiplies the light that enters: concentration, obliquity, what fingers and
@@ -17,8 +21,9 @@ pub(super) fn diodes(design: &Design, condition: &Condition, lit: &Lit, factor: 
         .map(|(index, junction)| {
             let thermal_v = thermal_voltage(condition.temperature_k);
             let radiative = &lit.emission[index];
+            let photocurrent = factor * lit.photocurrent(index);
             let mut diode = Diode {
-                photocurrent: factor * lit.photocurrent(index),
+                photocurrent: if photocurrent < DARK_A_PER_M2 { 0.0 } else { photocurrent },
                 thermal_v,
                 radiative: Some((radiative.clone(), 1.0)),
                 j01: 0.0,
