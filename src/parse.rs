@@ -10,6 +10,7 @@ use crate::syntax;
 mod build;
 mod expected;
 mod grammar;
+mod pieces;
 mod recover;
 
 /// The largest text that is read, in bytes.
@@ -34,9 +35,12 @@ pub fn parse(source: &Source) -> Outcome<syntax::File> {
         findings.push(finding);
         return Outcome::nothing(findings);
     }
+    if let Some(items) = pieces::items(source, &scan) {
+        return Outcome::of(syntax::File { items, comments: scan.comments });
+    }
     match grammar::read(&source.text) {
         Ok(pairs) => {
-            let items = build::items(source, pairs, &scan, &mut findings);
+            let items = build::items((source, 0), pairs, &scan, &mut findings);
             Outcome::with(syntax::File { items, comments: scan.comments }, findings)
         }
         Err(_) => {

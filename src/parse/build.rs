@@ -23,6 +23,8 @@ const CURES: usize = 200;
 /// What the builders share.
 pub(super) struct Builder<'a> {
     source: &'a Source,
+    /// Where the text that pest saw begins in the source.
+    start: usize,
     scan: &'a Scan,
     findings: &'a mut Findings,
     /// Arithmetic signs met since the outermost value began.
@@ -33,14 +35,15 @@ pub(super) struct Builder<'a> {
     unclosed: bool,
 }
 
-/// Builds the whole file; what the grammar could not place is reported here.
+/// Builds the items of a text that begins at an offset of a source; what the grammar could not
+/// place is reported here.
 pub(super) fn items(
-    source: &Source,
+    (source, start): (&Source, usize),
     pairs: Pairs<'_, Rule>,
     scan: &Scan,
     findings: &mut Findings,
 ) -> Vec<Item> {
-    let mut builder = Builder { source, scan, findings, operators: 0, broken: false, unclosed: false };
+    let mut builder = Builder { source, start, scan, findings, operators: 0, broken: false, unclosed: false };
     let mut items = Vec::new();
     // Where the last item with a body ended: a `}` too many closes it early, and what follows up
     // to the stray `}` was meant to stand inside.
@@ -73,7 +76,7 @@ pub(super) fn items(
 impl<'a> Builder<'a> {
     fn span(&self, node: &Node<'_>) -> Span {
         let span = node.as_span();
-        Span::new(self.source.id, span.start(), span.end())
+        Span::new(self.source.id, self.start + span.start(), self.start + span.end())
     }
 
     fn word(&self, node: &Node<'_>) -> Spanned<String> {

@@ -145,7 +145,8 @@ impl Line {
     }
 }
 
-fn starts_item(line: &str) -> bool {
+/// Whether a line opens an item in its first column.
+pub(super) fn starts_item(line: &str) -> bool {
     ITEM_STARTS.iter().any(|word| {
         line.strip_prefix(word)
             .is_some_and(|rest| !rest.starts_with(|c: char| c.is_ascii_alphanumeric() || c == '_'))

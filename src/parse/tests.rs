@@ -112,4 +112,5 @@ mod forms;
 mod limits;
 mod mistakes;
 mod numbers;
+mod pieces;
 mod properties;
