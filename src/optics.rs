@@ -2,3 +2,4 @@
 
 pub mod grid;
 pub mod one_pass;
+pub mod wave;

@@ -9,6 +9,7 @@ mod integration {
     mod docs;
     mod house_rules;
     mod materials;
+    mod optics;
     mod physics;
     mod physics_circuit;
     mod physics_grid;
