@@ -79,7 +79,7 @@ fn is_whole(design: &Design) -> bool {
     resolved && settled && thick && !design.junctions.is_empty() && !design.conditions.is_empty()
 }
 
-/// One [`Lit`] per condition; conditions that share light and temperature share the work.
+/// One [`Lit`] per condition; conditions that share light, angle and temperature share the work.
 fn lit_by_condition(design: &Design) -> Option<Vec<std::sync::Arc<Lit>>> {
     let first_of = |condition: &Condition| {
         design.conditions.iter().position(|other| lit::same_light(other, condition)).unwrap_or(0)
@@ -90,10 +90,7 @@ fn lit_by_condition(design: &Design) -> Option<Vec<std::sync::Arc<Lit>>> {
         .par_iter()
         .enumerate()
         .map(|(index, condition)| {
-            (firsts[index] == index)
-                .then(|| Lit::new(design, &condition.light, condition.temperature_k))
-                .flatten()
-                .map(std::sync::Arc::new)
+            (firsts[index] == index).then(|| Lit::new(design, condition)).flatten().map(std::sync::Arc::new)
         })
         .collect();
     firsts.iter().map(|&first| made[first].clone()).collect()

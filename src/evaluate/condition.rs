@@ -27,8 +27,7 @@ pub(super) fn condition_result(design: &Design, condition: &Condition, lit: &Lit
     let shading = design.fingers.as_ref().map_or(0.0, |fingers| fingers.shading);
     let received = condition.concentration * condition.incidence_rad.cos();
     let open = received * (1.0 - shading);
-    let enters = open * (1.0 - lit.optics.front_reflectance);
-    let diodes = diodes(design, condition, lit, enters);
+    let diodes = diodes(design, condition, lit, open);
 
     let mut operating = Vec::new();
     let mut whole = None;
@@ -81,9 +80,9 @@ pub(super) fn condition_result(design: &Design, condition: &Condition, lit: &Lit
         jmp_ma_per_cm2: figures.map(|(_, _, best, _)| MA_PER_CM2 * best.current),
         limiting_junction: figures.and_then(|_| limiting(design, &photocurrents)),
         current_mismatch: mismatch(&photocurrents),
-        reflected_ma_per_cm2: MA_PER_CM2 * open * reflected(condition, lit),
+        reflected_ma_per_cm2: MA_PER_CM2 * open * reflected(lit),
         junctions: junction_results(design, lit, &operating, &alone, &photocurrents),
-        layers: layer_light(design, lit, enters),
+        layers: layer_light(design, lit, open),
         ledger_w_per_m2: account(design, condition, lit, &operating),
         spectral: spectral(design, condition, lit, received),
         curve: figures.map_or_else(Curve::default, |(.., points)| curve(design, points)),
@@ -147,7 +146,7 @@ fn junction_results(
         .collect()
 }
 
-fn layer_light(design: &Design, lit: &Lit, enters: f64) -> Vec<LayerLight> {
+fn layer_light(design: &Design, lit: &Lit, open: f64) -> Vec<LayerLight> {
     let mut layers: Vec<LayerLight> = design
         .layers
         .iter()
@@ -158,7 +157,7 @@ fn layer_light(design: &Design, lit: &Lit, enters: f64) -> Vec<LayerLight> {
         })
         .collect();
     for (row, (layer, junction)) in lit.rows.iter().enumerate() {
-        let current = MA_PER_CM2 * enters * lit.row_current[row];
+        let current = MA_PER_CM2 * open * lit.row_current[row];
         layers[*layer].absorbed_ma_per_cm2 += current;
         if junction.is_some() {
             layers[*layer].collected_ma_per_cm2 += current;
@@ -168,9 +167,9 @@ fn layer_light(design: &Design, lit: &Lit, enters: f64) -> Vec<LayerLight> {
 }
 
 /// Photon current reflected up to the longest edge, A/m2, at one times.
-fn reflected(condition: &Condition, lit: &Lit) -> f64 {
+fn reflected(lit: &Lit) -> f64 {
     let lowest_gap = lit.gap_ev.iter().copied().fold(f64::INFINITY, f64::min);
-    lit.optics.front_reflectance * lit.photons_to(&condition.light, HC_EV / lowest_gap)
+    lit.reflected_current(HC_EV / lowest_gap)
 }
 
 fn curve(design: &Design, points: &[Point]) -> Curve {

@@ -2,11 +2,13 @@
 
 use std::sync::Arc;
 
-use crate::design::{Design, Junction, VoltageModel};
+use crate::design::{Design, Junction, OpticsModel, VoltageModel};
 use crate::evaluate::junctions::fit_at;
 use crate::evaluate::lit::{Lit, junction_gap};
 use crate::finding::{Finding, Findings};
 use crate::light::DATA_START_M;
+use crate::materials::optics::Optics;
+use crate::optics::model::layers_without_index;
 use crate::results::Results;
 use crate::units::number;
 
@@ -40,8 +42,37 @@ pub(super) fn too_short_waves(design: &Design) -> Findings {
 /// What the figures show.
 pub(super) fn after(design: &Design, results: &Results, lit: &[Arc<Lit>]) -> Findings {
     let mut findings = Findings::new();
+    findings.extend(no_index(design));
     findings.extend(held_ends(design, results, lit));
     findings.extend(fits_below_the_limit(design, lit));
+    findings
+}
+
+/// Waves asked for where a lit layer has no index to follow them by.
+fn no_index(design: &Design) -> Findings {
+    let mut findings = Findings::new();
+    let OpticsModel::Interference { stated: Some(stated) } = design.optics else { return findings };
+    let last = design.lit_layers().filter(|(_, layer)| layer.collects()).map(|(index, _)| index).last();
+    for index in layers_without_index(design) {
+        let layer = &design.layers[index];
+        let Some(material) = &layer.material else { continue };
+        // Without any optical data down to the last absorber a layer is reported in any case.
+        if material.optics == Optics::None && Some(index) <= last {
+            continue;
+        }
+        findings.push(
+            Finding::warning(
+                "optics.no-index",
+                format!(
+                    "`{}` has no refractive index for `{}`: one pass without reflection stands in for interference",
+                    material.label, layer.path
+                ),
+            )
+            .at(layer.spans.material, "nothing tells how this reflects")
+            .beside(stated, "interference is asked for here")
+            .help("give it `n` and `k`, or write `optics one_pass { front_reflectance 3 % }`"),
+        );
+    }
     findings
 }
 

@@ -11,8 +11,8 @@ const DARK_A_PER_M2: f64 = 1e-30;
 
 /// The diode of each junction under `condition`, sunward first.
 ///
-/// `factor` is what multiplies the light that enters: concentration, obliquity, what fingers and
-/// the front leave.
+/// `factor` is what multiplies the light on the open front: concentration, obliquity, what fingers
+/// leave.
 pub(super) fn diodes(design: &Design, condition: &Condition, lit: &Lit, factor: f64) -> Vec<Diode> {
     design
         .junctions

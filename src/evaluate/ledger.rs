@@ -46,23 +46,20 @@ pub(super) fn account(
     let received = condition.concentration * condition.incidence_rad.cos();
     let shading = design.fingers.as_ref().map_or(0.0, |fingers| fingers.shading);
     let open = received * (1.0 - shading);
-    let front = lit.optics.front_reflectance;
-    let enters = open * (1.0 - front);
-    let inside: f64 = lit.power_weight.iter().sum();
 
+    let (reflected, passing) = lit.leaving_power();
     let mut lines = vec![
         line("fingers", received * condition.light.total_w_per_m2 * shading),
-        line("reflected", open * front * inside),
+        line("reflected", open * reflected),
     ];
     for (row, (layer, junction)) in lit.rows.iter().enumerate() {
-        let power = enters * lit.row_power[row];
+        let power = open * lit.row_power[row];
         if junction.is_none() && power > 0.0 {
             let path = design.layers[*layer].path.clone();
             lines.push(LedgerLine { layer: Some(path), ..line("absorbed", power) });
         }
     }
-    let passing: f64 = lit.shares.passing.iter().zip(&lit.power_weight).map(|(s, w)| s * w).sum();
-    lines.push(line("passing", enters * passing));
+    lines.push(line("passing", open * passing));
     let beyond = open * lit.beyond_w_per_m2;
     if beyond.abs() > 1e-9 * condition.incident_w_per_m2() {
         lines.push(line("beyond_data", beyond));
@@ -75,13 +72,13 @@ pub(super) fn account(
     for junction in 0..design.junctions.len() {
         let gap = lit.gap_ev[junction];
         let [above, below] =
-            lit.split_at_gap(junction).map(|(current, power)| enters * (power - gap * current));
+            lit.split_at_gap(junction).map(|(current, power)| open * (power - gap * current));
         lines.push(named("heat", junction, above));
         if below != 0.0 {
             lines.push(named("tail", junction, below));
         }
     }
-    let shares = shares(lit, enters, strings);
+    let shares = shares(lit, open, strings);
     let gap = |share: &Share| lit.gap_ev[share.junction];
     let carried = |share: &Share| share.photocurrent.min(share.reference);
     let each: [(&str, Loss); 4] = [
@@ -104,11 +101,11 @@ pub(super) fn account(
     lines
 }
 
-fn shares(lit: &Lit, enters: f64, strings: &[Operating]) -> Vec<Share> {
+fn shares(lit: &Lit, open: f64, strings: &[Operating]) -> Vec<Share> {
     let mut shares = Vec::new();
     for string in strings {
         let photocurrents: Vec<f64> =
-            string.wiring.junctions.iter().map(|&junction| enters * lit.photocurrent(junction)).collect();
+            string.wiring.junctions.iter().map(|&junction| open * lit.photocurrent(junction)).collect();
         let smallest = photocurrents.iter().copied().fold(f64::INFINITY, f64::min);
         for (at, &junction) in string.wiring.junctions.iter().enumerate() {
             shares.push(Share {

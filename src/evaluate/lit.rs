@@ -4,9 +4,9 @@ use crate::circuit::radiative::{Radiative, Statistics};
 use crate::design::{Condition, Design, Place};
 use crate::light::{DATA_START_M, Spectrum};
 use crate::numerics::constants::{CHARGE, HC_EV};
-use crate::numerics::quadrature::{integral_between, linear_along};
+use crate::numerics::quadrature::linear_along;
 use crate::optics::grid::{Features, spectral_grid};
-use crate::optics::one_pass::{OnePass, Shares};
+use crate::optics::model::{LightModel, Shares};
 
 /// How far material data are asked for where no edge lies further out, m: the end of the
 /// terrestrial tables.
@@ -16,27 +16,27 @@ const DATA_END_M: f64 = 4000e-9;
 /// weight there; what a table holds further down is noise, not a band edge.
 const TABLE_TAIL_EV: f64 = 0.4;
 
-/// Absorption, photon currents and powers at one times, normal incidence, without fingers.
+/// Absorption, photon currents and powers at one times and one angle, without fingers.
 ///
 /// Integrals over wavelength are weighted sums over [`Lit::wavelength_m`]: the weights hold the
 /// exact integral of a share that is linear between points against a photon flux (or an
 /// irradiance) that is linear between them.
 #[derive(Clone, Debug)]
 pub(super) struct Lit {
-    pub(super) optics: OnePass,
+    pub(super) optics: LightModel,
     /// Layer and junction of each row of `shares.absorbed`.
     pub(super) rows: Vec<(usize, Option<usize>)>,
     /// Ascending, m.
     pub(super) wavelength_m: Vec<f64>,
-    /// Of the light that enters at the front.
+    /// Of the light that falls on the open front.
     pub(super) shares: Shares,
     /// A/m2 per unit share.
     pub(super) current_weight: Vec<f64>,
     /// W/m2 per unit share.
     pub(super) power_weight: Vec<f64>,
-    /// Photon current absorbed in each row, A/m2, of the light that enters.
+    /// Photon current absorbed in each row, A/m2, of the light that falls on the open front.
     pub(super) row_current: Vec<f64>,
-    /// Power absorbed in each row, W/m2, of the light that enters.
+    /// Power absorbed in each row, W/m2, of the light that falls on the open front.
     pub(super) row_power: Vec<f64>,
     /// Of each junction at this temperature, eV.
     pub(super) gap_ev: Vec<f64>,
@@ -48,9 +48,10 @@ pub(super) struct Lit {
 
 impl Lit {
     /// `None` where a junction has no layer with a gap that collects.
-    pub(super) fn new(design: &Design, light: &Spectrum, temperature_k: f64) -> Option<Self> {
+    pub(super) fn new(design: &Design, condition: &Condition) -> Option<Self> {
+        let (light, temperature_k) = (&*condition.light, condition.temperature_k);
         let gap_ev = junction_gaps(design, temperature_k)?;
-        let optics = OnePass::new(design, temperature_k);
+        let optics = LightModel::new(design, temperature_k, condition.incidence_rad);
         let rows = optics.rows();
         let features = features(light, &optics, &gap_ev)?;
         let (wavelength_m, shares) = spectral_grid(light, &features, &optics, gap_ev.len());
@@ -82,13 +83,13 @@ impl Lit {
         self.rows.iter().enumerate().filter(move |(_, row)| row.1 == Some(junction)).map(|(index, _)| index)
     }
 
-    /// Photocurrent of `junction`, A/m2, of the light that enters: every photon absorbed where it
-    /// is collected gives one electron.
+    /// Photocurrent of `junction`, A/m2, of the light that falls on the open front: every photon
+    /// absorbed where it is collected gives one electron.
     pub(super) fn photocurrent(&self, junction: usize) -> f64 {
         self.collected(junction).map(|row| self.row_current[row]).sum()
     }
 
-    /// Share `junction` collects of the light that enters, by wavelength.
+    /// Share `junction` collects of the light that falls on the open front, by wavelength.
     pub(super) fn collected_share(&self, junction: usize) -> Vec<f64> {
         let mut sum = vec![0.0; self.wavelength_m.len()];
         for row in self.collected(junction) {
@@ -118,16 +119,31 @@ impl Lit {
         parts
     }
 
-    /// Photon current of the light up to `edge_m`, A/m2.
-    pub(super) fn photons_to(&self, light: &Spectrum, edge_m: f64) -> f64 {
-        let Some(&first) = self.wavelength_m.first() else { return 0.0 };
-        CHARGE * integral_between(&light.wavelength_m, &light.photon_flux(), first, edge_m)
+    /// Photon current reflected up to `edge_m`, A/m2.
+    pub(super) fn reflected_current(&self, edge_m: f64) -> f64 {
+        let cut = self.wavelength_m.partition_point(|&wavelength| wavelength <= edge_m);
+        dot(&self.shares.reflected[..cut], &self.current_weight[..cut])
+    }
+
+    /// Power that is reflected and power that passes, W/m2. By waves, light below every gap that
+    /// comes back from the rear counts as passing, and cannot be told from what the front returns
+    /// at once; so all light beyond the longest edge that leaves is passing.
+    pub(super) fn leaving_power(&self) -> (f64, f64) {
+        let cut = match self.optics {
+            LightModel::OnePass(_) => self.wavelength_m.len(),
+            LightModel::Interference(_) => self.useful_points(),
+        };
+        let (near, far) = self.shares.reflected.split_at(cut);
+        let (near_weight, far_weight) = self.power_weight.split_at(cut);
+        let passing = dot(&self.shares.passing, &self.power_weight);
+        (dot(near, near_weight), passing + dot(far, far_weight))
     }
 }
 
-/// Conditions that share light and temperature share a [`Lit`].
+/// Conditions that share light, angle and temperature share a [`Lit`].
 pub(super) fn same_light(a: &Condition, b: &Condition) -> bool {
-    a.temperature_k == b.temperature_k && (std::sync::Arc::ptr_eq(&a.light, &b.light) || a.light == b.light)
+    let same = a.temperature_k == b.temperature_k && a.incidence_rad == b.incidence_rad;
+    same && (std::sync::Arc::ptr_eq(&a.light, &b.light) || a.light == b.light)
 }
 
 fn junction_gaps(design: &Design, temperature_k: f64) -> Option<Vec<f64>> {
@@ -145,7 +161,7 @@ pub(super) fn junction_gap(design: &Design, junction: usize, temperature_k: f64)
         .filter(|gap| *gap > 0.0)
 }
 
-fn features(light: &Spectrum, optics: &OnePass, gap_ev: &[f64]) -> Option<Features> {
+fn features(light: &Spectrum, optics: &LightModel, gap_ev: &[f64]) -> Option<Features> {
     let (first, last) = light.range_m()?;
     let edges: Vec<f64> = gap_ev.iter().map(|gap| HC_EV / gap).collect();
     let longest = edges.iter().copied().fold(0.0, f64::max);
@@ -158,7 +174,7 @@ fn features(light: &Spectrum, optics: &OnePass, gap_ev: &[f64]) -> Option<Featur
     (range_m.0 < range_m.1).then(|| Features { range_m, jumps_m, knots_m: optics.knots_m() })
 }
 
-fn emission(optics: &OnePass, gap_ev: &[f64], temperature_k: f64) -> Vec<Radiative> {
+fn emission(optics: &LightModel, gap_ev: &[f64], temperature_k: f64) -> Vec<Radiative> {
     let jumps: Vec<f64> = optics.jumps_m().iter().map(|edge| HC_EV / edge).collect();
     let rows = optics.rows();
     let tables = optics.table_ranges_m();
@@ -180,7 +196,7 @@ fn emission(optics: &OnePass, gap_ev: &[f64], temperature_k: f64) -> Vec<Radiati
                 if optics.is_model(junction) { Statistics::BoseEinstein } else { Statistics::Diode };
             Radiative::new(gap, temperature_k, statistics, (&jumps, lowest(junction, gap)), |energy| {
                 let wavelength: Vec<f64> = energy.iter().map(|energy| HC_EV / energy).collect();
-                optics.junction_share(junction, &wavelength)
+                optics.emissivity(junction, &wavelength)
             })
         })
         .collect()

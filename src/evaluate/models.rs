@@ -3,6 +3,7 @@
 use crate::design::{Design, Duty, OpticsModel, VoltageModel};
 use crate::evaluate::junctions::strings;
 use crate::materials::optics::Optics;
+use crate::optics::model::layers_without_index;
 use crate::results::ModelNote;
 
 /// The models behind the numbers of `design`, in the order of the calculation.
@@ -20,7 +21,11 @@ pub(super) fn model_notes(design: &Design) -> Vec<ModelNote> {
         notes.push(note(
             "oblique light",
             "The cell receives cos θ of the irradiance across the beam, and efficiency is over what it receives.",
-            "The change of reflectance and of the path inside with the angle.",
+            if by_waves(design) {
+                "Light from other directions at the same time."
+            } else {
+                "The change of reflectance and of the path inside with the angle."
+            },
             "Lambert's cosine law",
         ));
     }
@@ -81,7 +86,38 @@ fn light() -> ModelNote {
     )
 }
 
+fn by_waves(design: &Design) -> bool {
+    matches!(design.optics, OpticsModel::Interference { .. }) && layers_without_index(design).is_empty()
+}
+
+fn interference(design: &Design) -> ModelNote {
+    let ends = design
+        .lit_layers()
+        .find(|(_, layer)| matches!(layer.duty, Duty::Metal | Duty::Mirror) && layer.thickness_m.is_none());
+    let rear = match ends {
+        Some((_, layer)) => format!("behind the last layer stands `{}` without end", layer.path),
+        None => "behind the last layer is air".to_owned(),
+    };
+    ModelNote {
+        name: "optics interference".to_owned(),
+        does: format!(
+            "Plane waves through all lit layers between faces that are flat, s and p in equal parts; the wafer and \
+             layers over 10 um add fluxes instead of waves; {rear}; each layer absorbs what enters its faces less \
+             what leaves them."
+        ),
+        blind_to:
+            "Rough and textured faces, scattering, light that the front metal sends back, layers whose \
+                   thickness varies across the cell."
+                .to_owned(),
+        cite: "Macleod, Thin-Film Optical Filters (2010); Katsidis and Siapkas, Appl. Opt. 41, 3978 (2002)"
+            .to_owned(),
+    }
+}
+
 fn optics(design: &Design) -> ModelNote {
+    if by_waves(design) {
+        return interference(design);
+    }
     let front = match design.optics {
         OpticsModel::OnePass { front_reflectance, stated: true } => {
             format!("{} % of the light is reflected at the front, as stated", percent(front_reflectance))
@@ -89,8 +125,12 @@ fn optics(design: &Design) -> ModelNote {
         _ => "no reflectance is stated, so none is taken".to_owned(),
     };
     let instead = match design.optics {
-        OpticsModel::Interference { .. } => "Stands in for interference, which is not evaluated yet. ",
-        OpticsModel::OnePass { .. } => "",
+        OpticsModel::Interference { .. } => {
+            let without = layers_without_index(design);
+            let first = without.first().map_or("a layer", |&index| design.layers[index].path.as_str());
+            format!("Stands in for interference, as `{first}` has no refractive index. ")
+        }
+        OpticsModel::OnePass { .. } => String::new(),
     };
     let mirror = design.lit_layers().any(|(_, layer)| layer.duty == Duty::Mirror);
     let rear = if mirror {
@@ -119,9 +159,15 @@ fn voltage(design: &Design) -> Vec<ModelNote> {
     if uses(|model| !matches!(model, VoltageModel::Fit(_))) {
         notes.push(note(
             "voltage from radiative_limit",
-            "Each junction emits through the front hemisphere only, index 1, with the share it absorbs of light entering \
-             the front; ideal and direct edges with exact Bose–Einstein statistics at the junction's voltage, tables \
-             and tails in the diode form.",
+            if by_waves(design) {
+                "Each junction emits through the front hemisphere only, index 1, with its absorptance from every \
+                 direction of it by the optics of the stack; direct edges with exact Bose–Einstein statistics at the \
+                 junction's voltage, tables and tails in the diode form."
+            } else {
+                "Each junction emits through the front hemisphere only, index 1, with the share it absorbs of light entering \
+                 the front; ideal and direct edges with exact Bose–Einstein statistics at the junction's voltage, tables \
+                 and tails in the diode form."
+            },
             "Emission into the layers below, re-absorption, and all recombination without light: an upper bound.",
             "Shockley and Queisser, J. Appl. Phys. 32, 510 (1961); Rau, Phys. Rev. B 76, 085303 (2007)",
         ));

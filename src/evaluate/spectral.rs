@@ -23,8 +23,7 @@ const STEPS: f64 = 1e7;
 pub(super) fn spectral(design: &Design, condition: &Condition, lit: &Lit, received: f64) -> Spectral {
     let kept = kept(lit);
     let wavelength_m: Vec<f64> = kept.iter().map(|&at| lit.wavelength_m[at]).collect();
-    let enters = 1.0 - lit.optics.front_reflectance;
-    let pick = |share: &[f64]| -> Vec<f64> { kept.iter().map(|&at| rounded(enters * share[at])).collect() };
+    let pick = |share: &[f64]| -> Vec<f64> { kept.iter().map(|&at| rounded(share[at])).collect() };
 
     let flux = condition.light.photon_flux();
     let photon_current_ma_per_cm2_per_nm = (0..kept.len())
@@ -56,7 +55,7 @@ pub(super) fn spectral(design: &Design, condition: &Condition, lit: &Lit, receiv
     Spectral {
         wavelength_nm: wavelength_m.iter().map(|wavelength| rounded(wavelength * 1e9)).collect(),
         photon_current_ma_per_cm2_per_nm,
-        reflectance: vec![lit.optics.front_reflectance; kept.len()],
+        reflectance: pick(&lit.shares.reflected),
         eqe,
         absorptance,
     }

@@ -3,7 +3,7 @@
 use crate::light::Spectrum;
 use crate::numerics::constants::CHARGE;
 use crate::numerics::quadrature::{linear_along, product_integral};
-use crate::optics::one_pass::{OnePass, Shares};
+use crate::optics::model::{LightModel, Shares};
 
 /// How far apart the two sides of a jump stand, relative: far below what any current could show,
 /// far above rounding.
@@ -46,7 +46,7 @@ pub struct Features {
 pub fn spectral_grid(
     light: &Spectrum,
     features: &Features,
-    optics: &OnePass,
+    optics: &LightModel,
     junctions: usize,
 ) -> (Vec<f64>, Shares) {
     let points = union(light, features);
@@ -147,6 +147,7 @@ impl Batch {
             own.push(row[at]);
         }
         self.shares.passing.push(shares.passing[at]);
+        self.shares.reflected.push(shares.reflected[at]);
     }
 
     /// Both together in ascending order.
@@ -168,7 +169,8 @@ impl Batch {
             .map(|(base, added)| pick(base, added))
             .collect();
         let passing = pick(&shares.passing, &self.shares.passing);
-        (order.iter().map(|&at| all[at]).collect(), Shares { absorbed, passing })
+        let reflected = pick(&shares.reflected, &self.shares.reflected);
+        (order.iter().map(|&at| all[at]).collect(), Shares { reflected, absorbed, passing })
     }
 }
 

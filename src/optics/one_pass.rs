@@ -7,22 +7,17 @@ use crate::design::{Design, Duty, OpticsModel, Place};
 use crate::materials::optics::Optics;
 use crate::materials::{MaterialClass, SharedMaterial};
 use crate::numerics::constants::HC_EV;
+use crate::optics::media::{Media, Medium};
+use crate::optics::model::Shares;
 
 /// The lit layers of a design at one temperature, ready to be asked at any wavelength.
 #[derive(Clone, Debug)]
 pub struct OnePass {
     /// Share of the light that is reflected at the front, at every wavelength.
     pub front_reflectance: f64,
-    media: Vec<Medium>,
+    media: Media,
     slabs: Vec<Slab>,
     mirror: Option<Mirror>,
-}
-
-/// A material with its edge where the temperature puts it.
-#[derive(Clone, Debug)]
-struct Medium {
-    material: SharedMaterial,
-    edge_shift_ev: f64,
 }
 
 /// One layer that may absorb.
@@ -51,16 +46,6 @@ struct Mirror {
     face: Option<(usize, usize)>,
 }
 
-/// Shares of the light that enters at the front, by wavelength.
-#[derive(Clone, Debug, Default)]
-pub struct Shares {
-    /// Absorbed, `[slab][wavelength]`, slabs in the order of the layers; the mirror's own absorption
-    /// comes last where there is one.
-    pub absorbed: Vec<Vec<f64>>,
-    /// Leaves unabsorbed: out of the rear, or back out of the front after a mirror.
-    pub passing: Vec<f64>,
-}
-
 impl OnePass {
     /// The lit layers of `design` at `temperature_k`. Layers without material or thickness do
     /// nothing here; whether they should have had one is decided before.
@@ -69,7 +54,7 @@ impl OnePass {
             OpticsModel::OnePass { front_reflectance, .. } => front_reflectance,
             OpticsModel::Interference { .. } => 0.0,
         };
-        let mut model = Self { front_reflectance, media: Vec::new(), slabs: Vec::new(), mirror: None };
+        let mut model = Self { front_reflectance, media: Media::default(), slabs: Vec::new(), mirror: None };
         for (index, layer) in design.lit_layers() {
             let Some(material) = &layer.material else { continue };
             if layer.duty == Duty::Mirror {
@@ -90,7 +75,7 @@ impl OnePass {
                 },
                 (Optics::None, _) | (_, None) => continue,
                 (_, Some(thickness_m)) => {
-                    Law::Bulk { medium: model.medium(material, temperature_k), thickness_m }
+                    Law::Bulk { medium: model.media.find_or_add(material, temperature_k), thickness_m }
                 }
             };
             model.slabs.push(Slab { layer: index, junction, law });
@@ -103,22 +88,9 @@ impl OnePass {
             Law::Bulk { medium, .. } => Some(medium),
             Law::Share { .. } => None,
         });
-        let own = self.medium(material, temperature_k);
+        let own = self.media.find_or_add(material, temperature_k);
         let metal = material.class == MaterialClass::Metal && material.optics != Optics::None;
         self.mirror = Some(Mirror { layer, face: above.filter(|_| metal).map(|above| (above, own)) });
-    }
-
-    fn medium(&mut self, material: &SharedMaterial, temperature_k: f64) -> usize {
-        let known = self.media.iter().position(|medium| {
-            std::sync::Arc::ptr_eq(&medium.material, material) || medium.material == *material
-        });
-        known.unwrap_or_else(|| {
-            self.media.push(Medium {
-                material: material.clone(),
-                edge_shift_ev: material.edge_shift_ev(temperature_k),
-            });
-            self.media.len() - 1
-        })
     }
 
     /// Layer and junction of each row of [`Shares::absorbed`].
@@ -140,8 +112,7 @@ impl OnePass {
 
     /// Wavelengths at which a slope may change, m, edges shifted; unsorted.
     pub fn knots_m(&self) -> Vec<f64> {
-        let knots = |medium: &Medium| medium.material.optics.wavelengths(medium.edge_shift_ev);
-        self.media.iter().flat_map(knots).collect()
+        self.media.knots_m()
     }
 
     /// First and last wavelength of each table that can absorb, edges shifted, with the row of
@@ -149,7 +120,7 @@ impl OnePass {
     pub fn table_ranges_m(&self) -> Vec<(usize, f64, f64)> {
         let range = |(row, slab): (usize, &Slab)| match slab.law {
             Law::Bulk { medium, .. } => {
-                let Medium { material, edge_shift_ev } = &self.media[medium];
+                let Medium { material, edge_shift_ev } = self.media.at(medium);
                 material.optics.range(*edge_shift_ev).map(|(first, last)| (row, first, last))
             }
             Law::Share { .. } => None,
@@ -170,18 +141,18 @@ impl OnePass {
             && own.all(|slab| match slab.law {
                 Law::Share { .. } => true,
                 Law::Bulk { medium, .. } => {
-                    matches!(self.media[medium].material.optics, Optics::Direct(_))
+                    matches!(self.media.at(medium).material.optics, Optics::Direct(_))
                 }
             })
     }
 
-    /// Shares of the light that enters at the front, at vacuum wavelengths in m.
+    /// Shares of the light that falls on the front, at vacuum wavelengths in m.
     ///
     /// For each layer in turn `a = t (1 − exp(−α d))` of what is left, `t` (Beer–Lambert); an
-    /// ideal layer takes its share. At every wavelength absorbed and passing sum to 1.
+    /// ideal layer takes its share. At every wavelength reflected, absorbed and passing sum to 1.
     pub fn shares(&self, wavelength_m: &[f64]) -> Shares {
         let taken = self.taken(wavelength_m, self.slabs.len());
-        let mut left = vec![1.0; wavelength_m.len()];
+        let mut left = vec![1.0 - self.front_reflectance; wavelength_m.len()];
         let mut absorbed: Vec<Vec<f64>> = taken.iter().map(|taken| absorb(&mut left, taken)).collect();
         if let Some(mirror) = &self.mirror {
             let kept = self.mirror_absorbs(mirror, wavelength_m);
@@ -193,18 +164,7 @@ impl OnePass {
             }
             absorbed.push(own);
         }
-        Shares { absorbed, passing: left }
-    }
-
-    /// Share each of the first `junctions` junctions collects, `[junction][wavelength]`.
-    pub fn by_junction(&self, shares: &Shares, junctions: usize) -> Vec<Vec<f64>> {
-        let mut sums = vec![vec![0.0; shares.passing.len()]; junctions];
-        for (slab, share) in self.slabs.iter().zip(&shares.absorbed) {
-            if let Some(sum) = slab.junction.and_then(|junction| sums.get_mut(junction)) {
-                sum.iter_mut().zip(share).for_each(|(sum, part)| *sum += part);
-            }
-        }
-        sums
+        Shares { reflected: vec![self.front_reflectance; wavelength_m.len()], absorbed, passing: left }
     }
 
     /// Share of the light entering at the front that `junction` collects, at wavelengths in m.
@@ -212,7 +172,7 @@ impl OnePass {
         let mut sum = vec![0.0; wavelength_m.len()];
         let mut add = |row: &[f64]| sum.iter_mut().zip(row).for_each(|(sum, part)| *sum += part);
         if self.mirror.is_some() {
-            let shares = self.shares(wavelength_m);
+            let shares = Self { front_reflectance: 0.0, ..self.clone() }.shares(wavelength_m);
             for (slab, row) in self.slabs.iter().zip(&shares.absorbed) {
                 if slab.junction == Some(junction) {
                     add(row);
@@ -245,7 +205,7 @@ impl OnePass {
                     .collect(),
                 Law::Bulk { medium, thickness_m } => {
                     let medium_absorption = absorption[medium].get_or_insert_with(|| {
-                        let Medium { material, edge_shift_ev } = &self.media[medium];
+                        let Medium { material, edge_shift_ev } = self.media.at(medium);
                         material.optics.absorption_along(wavelength_m, *edge_shift_ev)
                     });
                     medium_absorption.iter().map(|&alpha| taken_by(alpha * thickness_m)).collect()
@@ -258,7 +218,7 @@ impl OnePass {
     fn mirror_absorbs(&self, mirror: &Mirror, wavelength_m: &[f64]) -> Vec<f64> {
         let Some((above, own)) = mirror.face else { return vec![0.0; wavelength_m.len()] };
         let index = |medium: usize, wavelength: f64| {
-            let Medium { material, edge_shift_ev } = &self.media[medium];
+            let Medium { material, edge_shift_ev } = self.media.at(medium);
             material.optics.index(wavelength, *edge_shift_ev)
         };
         wavelength_m

@@ -147,13 +147,6 @@ fn optics(resolver: &mut Resolver<'_, '_>, design: &mut Design, property: &Prope
         Some(_) => {
             properties::no_more(&mut resolver.scope, property, 1);
             design.optics = OpticsModel::Interference { stated: Some(property.span) };
-            pending(
-                &mut resolver.scope,
-                Severity::Warning,
-                "interference is",
-                property.span,
-                "write `optics one_pass { front_reflectance 3 % }`",
-            );
         }
         None => {}
     }

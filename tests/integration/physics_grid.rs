@@ -2,14 +2,14 @@
 
 use std::sync::Arc;
 
-use bandloom::design::{Design, Duty, Place, VoltageModel};
+use bandloom::design::{Design, Duty, OpticsModel, Place, VoltageModel};
 use bandloom::light::{SUN_DILUTION, Spectrum, blackbody, builtin};
 use bandloom::materials::SharedMaterial;
 use bandloom::materials::optics::{DirectEdge, IndexTable, Optics};
 use bandloom::numerics::constants::HC_EV;
 use bandloom::numerics::quadrature::{linear_along, product_integral};
 use bandloom::optics::grid::{Features, spectral_grid};
-use bandloom::optics::one_pass::OnePass;
+use bandloom::optics::model::LightModel;
 
 use super::designs::{empty, ideal, junction, layer, material};
 
@@ -45,7 +45,7 @@ fn film_over_rest(film: SharedMaterial, thickness_m: f64, mirror: bool) -> Desig
     design
 }
 
-fn currents(light: &Spectrum, optics: &OnePass, points: &[f64]) -> Vec<f64> {
+fn currents(light: &Spectrum, optics: &LightModel, points: &[f64]) -> Vec<f64> {
     let flux = linear_along(&light.wavelength_m, &light.photon_flux(), points);
     let shares = optics.by_junction(&optics.shares(points), 2);
     shares.iter().map(|share| product_integral(points, share, &flux)).collect()
@@ -76,7 +76,8 @@ fn halving_every_interval_moves_no_current_by_a_hundredth_of_a_percent() {
         for film in [direct(1.42, 0.0), direct(1.42, 0.007), direct(1.8, 0.015), coarse_table(1.42)] {
             for thickness in [20e-9, 300e-9, 4e-6] {
                 for mirror in [false, true] {
-                    let optics = OnePass::new(&film_over_rest(film.clone(), thickness, mirror), 298.15);
+                    let design = film_over_rest(film.clone(), thickness, mirror);
+                    let optics = LightModel::new(&design, 298.15, 0.0);
                     let features = Features {
                         range_m: light.range_m().expect("has points"),
                         jumps_m: optics.jumps_m(),
@@ -99,6 +100,39 @@ fn halving_every_interval_moves_no_current_by_a_hundredth_of_a_percent() {
                             );
                         }
                     }
+                }
+            }
+        }
+    }
+}
+
+#[test]
+fn halving_every_interval_resolves_fringes_too() {
+    let light = builtin("AM1.5G").expect("built in");
+    for film in [coarse_table(1.42), coarse_table(1.8)] {
+        for thickness in [20e-9, 300e-9, 4e-6] {
+            for behind in [20e-9, 300e-6] {
+                let mut design = film_over_rest(film.clone(), thickness, false);
+                design.layers[1].material = Some(coarse_table(0.9));
+                design.layers[1].thickness_m = Some(behind);
+                design.optics = OpticsModel::Interference { stated: None };
+                let optics = LightModel::new(&design, 298.15, 0.4);
+                assert!(matches!(optics, LightModel::Interference(_)));
+                let features = Features {
+                    range_m: light.range_m().expect("has points"),
+                    jumps_m: vec![HC_EV / 1.42, HC_EV / 1.8, HC_EV / 0.9],
+                    knots_m: optics.knots_m(),
+                };
+                let (points, _) = spectral_grid(&light, &features, &optics, 2);
+                let here = currents(&light, &optics, &points);
+                let often = halved(&halved(&halved(&points)));
+                for (a, b) in here.iter().zip(currents(&light, &optics, &often)) {
+                    assert!((b / a - 1.0).abs() < 1e-4, "{thickness} {behind} {}", b / a - 1.0);
+                }
+                let shares = optics.shares(&points);
+                for at in 0..points.len() {
+                    let absorbed: f64 = shares.absorbed.iter().map(|row| row[at]).sum();
+                    assert!((shares.reflected[at] + absorbed + shares.passing[at] - 1.0).abs() < 1e-10);
                 }
             }
         }

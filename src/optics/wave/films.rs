@@ -126,11 +126,17 @@ pub(super) fn solve(run: Run<'_>, fields: &mut Fields) -> Faces {
     faces
 }
 
+/// The widest registers the machine has; the first that fits is taken.
 #[multiversion::multiversion(targets(
     "x86_64+avx512f+avx512bw+avx512cd+avx512dq+avx512vl+avx2",
     "x86_64+avx2"
 ))]
 fn solve_block(run: Run<'_>, fields: &mut Fields, faces: &mut Faces) {
+    up_and_down(run, fields, faces);
+}
+
+#[inline(always)]
+fn up_and_down(run: Run<'_>, fields: &mut Fields, faces: &mut Faces) {
     let rear = run.films.len();
     let (mut er, mut ei) = ([1.0; LANES], [0.0; LANES]);
     let (mut hr, mut hi) = (*run.rear.y.re, *run.rear.y.im);
@@ -225,5 +231,43 @@ pub(super) fn tilt(index: Pair<'_>, along: f64, q: &mut [Lane; 2], y: &mut [Lane
         q_im[l] = qi;
         y_re[l] = (sr * qr + si * qi) * inverse;
         y_im[l] = (si * qr - sr * qi) * inverse;
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn every_width_of_register_gives_the_same_bits() {
+        // Outside of its dispatch the same source is compiled for the narrowest machine.
+        let lane = |from: f64, step: f64| -> Lane { std::array::from_fn(|l| from + step * l as f64) };
+        let k0 = lane(3.7e6, 0.9e6);
+        let indices: Vec<[Lane; 2]> = (0..14)
+            .map(|j| {
+                let j = f64::from(j);
+                [lane(1.3 + 0.21 * j, 0.011 * j), lane(0.0007 * j * j, 0.0013 * j)]
+            })
+            .collect();
+        let media: Vec<Medium<'_>> =
+            indices.iter().map(|[re, im]| Medium { y: Pair { re, im }, q: Pair { re, im } }).collect();
+        let film = |j: usize| Film { medium: media[j], thickness_m: 37e-9 * j as f64 };
+        let films: Vec<Film<'_>> = (1..13).map(film).collect();
+        let run = Run { front: media[0], films: &films, rear: media[13], k0: &k0 };
+        let (mut wide, mut narrow) = (Fields::default(), Fields::default());
+        let faces = solve(run, &mut wide);
+        narrow.make_room(films.len());
+        narrow.scale.clone_from(&wide.scale);
+        let mut plain = Faces::default();
+        up_and_down(run, &mut narrow, &mut plain);
+        let bits = |lanes: &[Lane]| -> Vec<u64> {
+            lanes.as_flattened().iter().map(|value| value.to_bits()).collect()
+        };
+        let all = |fields: &Fields, faces: &Faces| {
+            let rows = [&fields.e_re, &fields.e_im, &fields.h_re, &fields.h_im, &fields.flux, &fields.weight];
+            let own = [faces.reflected, faces.transmitted, faces.entering];
+            rows.iter().map(|rows| bits(rows)).chain([bits(&own)]).collect::<Vec<_>>()
+        };
+        assert_eq!(all(&wide, &faces), all(&narrow, &plain));
     }
 }

@@ -1,0 +1,126 @@
+//! Which optics a stack gets, and what both kinds answer.
+
+use crate::design::{Design, OpticsModel};
+use crate::optics::interference::Interference;
+use crate::optics::one_pass::OnePass;
+
+/// Shares of the light that falls on the front, by wavelength.
+#[derive(Clone, Debug, Default)]
+pub struct Shares {
+    /// Goes back out of the front without having been inside, or after.
+    pub reflected: Vec<f64>,
+    /// Absorbed, `[row][wavelength]`, rows as [`LightModel::rows`].
+    pub absorbed: Vec<Vec<f64>>,
+    /// Leaves through the rear (in one pass over a mirror: back out of the front).
+    pub passing: Vec<f64>,
+}
+
+/// The lit layers of a design at one temperature and angle, ready to be asked at any wavelength.
+#[derive(Clone, Debug)]
+pub enum LightModel {
+    /// Beer–Lambert.
+    OnePass(OnePass),
+    /// Waves.
+    Interference(Box<Interference>),
+}
+
+impl LightModel {
+    /// The model `design` asks for: waves, unless one pass is stated or a lit layer has no index
+    /// ([`layers_without_index`]), where one pass without reflection stands in.
+    pub fn new(design: &Design, temperature_k: f64, incidence_rad: f64) -> Self {
+        match design.optics {
+            OpticsModel::Interference { .. } if layers_without_index(design).is_empty() => {
+                Self::Interference(Box::new(Interference::new(design, temperature_k, incidence_rad)))
+            }
+            _ => Self::OnePass(OnePass::new(design, temperature_k)),
+        }
+    }
+
+    /// Layer and junction of each row of [`Shares::absorbed`].
+    pub fn rows(&self) -> Vec<(usize, Option<usize>)> {
+        match self {
+            Self::OnePass(model) => model.rows(),
+            Self::Interference(model) => model.rows(),
+        }
+    }
+
+    /// Wavelengths at which absorption jumps, m.
+    pub fn jumps_m(&self) -> Vec<f64> {
+        match self {
+            Self::OnePass(model) => model.jumps_m(),
+            Self::Interference(_) => Vec::new(),
+        }
+    }
+
+    /// Wavelengths at which a slope may change, m; unsorted.
+    pub fn knots_m(&self) -> Vec<f64> {
+        match self {
+            Self::OnePass(model) => model.knots_m(),
+            Self::Interference(model) => model.knots_m(),
+        }
+    }
+
+    /// First and last wavelength of each table that can absorb, m, with its row.
+    pub fn table_ranges_m(&self) -> Vec<(usize, f64, f64)> {
+        match self {
+            Self::OnePass(model) => model.table_ranges_m(),
+            Self::Interference(model) => model.table_ranges_m(),
+        }
+    }
+
+    /// Whether `junction` absorbs nothing below its edge.
+    pub fn is_sharp(&self, junction: usize) -> bool {
+        match self {
+            Self::OnePass(model) => model.is_sharp(junction),
+            Self::Interference(_) => false,
+        }
+    }
+
+    /// Whether every layer of `junction` that collects is a model without a chemistry.
+    pub fn is_model(&self, junction: usize) -> bool {
+        match self {
+            Self::OnePass(model) => model.is_model(junction),
+            Self::Interference(model) => model.is_model(junction),
+        }
+    }
+
+    /// Shares at vacuum wavelengths in m.
+    pub fn shares(&self, wavelength_m: &[f64]) -> Shares {
+        match self {
+            Self::OnePass(model) => model.shares(wavelength_m),
+            Self::Interference(model) => model.shares(wavelength_m),
+        }
+    }
+
+    /// Share each of the first `junctions` junctions collects, `[junction][wavelength]`.
+    pub fn by_junction(&self, shares: &Shares, junctions: usize) -> Vec<Vec<f64>> {
+        let mut sums = vec![vec![0.0; shares.passing.len()]; junctions];
+        for ((_, junction), share) in self.rows().iter().zip(&shares.absorbed) {
+            if let Some(sum) = junction.and_then(|junction| sums.get_mut(junction)) {
+                sum.iter_mut().zip(share).for_each(|(sum, part)| *sum += part);
+            }
+        }
+        sums
+    }
+
+    /// Share of light from the front hemisphere that `junction` absorbs, which is what it emits by
+    /// detailed balance, at vacuum wavelengths in m. In one pass: of the light that enters,
+    /// straight down.
+    pub fn emissivity(&self, junction: usize, wavelength_m: &[f64]) -> Vec<f64> {
+        match self {
+            Self::OnePass(model) => model.junction_share(junction, wavelength_m),
+            Self::Interference(model) => model.emissivity(junction, wavelength_m),
+        }
+    }
+}
+
+/// Lit layers light cannot be followed through as a wave, as their material has no refractive
+/// index; indices in [`Design::layers`].
+pub fn layers_without_index(design: &Design) -> Vec<usize> {
+    // Any wavelength tells: an index is there for all or for none.
+    let lacks = |optics: &crate::materials::optics::Optics| optics.index(600e-9, 0.0).is_none();
+    crate::optics::interference::passed(design)
+        .filter(|(_, layer)| layer.material.as_ref().is_some_and(|material| lacks(&material.optics)))
+        .map(|(index, _)| index)
+        .collect()
+}
