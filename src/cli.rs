@@ -44,11 +44,11 @@ impl From<Exit> for ExitCode {
 
 const EXAMPLES: &str = "\
 Examples:
-  bandloom check stacks/sandpiper.stack        what is wrong with it, and the way out
-  bandloom build stacks/sandpiper.stack        its design sheet, into design-sheets/
-  bandloom watch stacks/sandpiper.stack        the same again at every save
+  bandloom check stacks/sandpiper.stack    what is wrong, and the way out
+  bandloom build stacks/sandpiper.stack    design sheet, into design-sheets/
+  bandloom watch stacks/sandpiper.stack    the same at every save
   bandloom build a.stack --set d=650nm --as json --into -
-  bandloom why lattice.mismatch                what a finding means";
+  bandloom why lattice.mismatch            what a finding means";
 
 const TEMPLATE: &str = "{about-with-newline}\n{before-help}{usage-heading} {usage}\n\n{all-args}{after-help}";
 

@@ -13,7 +13,7 @@ const EXAMPLES: &str = "\
 Examples:
   bandloom check stacks/*.stack
   bandloom check design.stack --format json
-  git show HEAD:stacks/sandpiper.stack | bandloom check - --read-as stacks/sandpiper.stack";
+  git show HEAD:stacks/sandpiper.stack | bandloom check -";
 
 /// Read, resolve and evaluate stack files, and report what is wrong with them
 #[derive(Args, Clone, Debug)]

@@ -16,8 +16,8 @@ use crate::watch::{Rhythm, Seen, stacks_in, watch};
 const EXAMPLES: &str = "\
 Examples:
   bandloom watch stacks/sandpiper.stack
-  bandloom watch stacks/                       every stack file in a folder
-  bandloom watch design.stack --poll 500       where the system sends no file events";
+  bandloom watch stacks/                    every stack file in a folder
+  bandloom watch design.stack --poll 500    where the system sends no events";
 
 /// Build, then again at every save
 #[derive(Args, Clone, Debug)]

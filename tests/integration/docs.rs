@@ -78,6 +78,13 @@ fn every_command_opens_its_help_with_examples() {
         let (examples, usage) = (help.find("Examples:"), help.find("Usage:"));
         assert!(examples.is_some() && examples < usage, "{command}\n{help}");
         assert!(help.lines().all(|line| line.chars().count() <= 100), "{command}\n{help}");
+        // A broken example cannot be copied.
+        let examples: Vec<&str> = help.lines().skip_while(|line| *line != "Examples:").skip(1).collect();
+        let examples = examples.iter().take_while(|line| !line.is_empty());
+        for line in examples {
+            assert!(line.starts_with("  ") && line.contains("bandloom "), "{command}: {line}");
+            assert!(line.chars().count() <= 80, "{command}: {line}");
+        }
     }
 }
 
