@@ -1,10 +1,10 @@
 //! `require.failed`: what the designer asked for does not hold.
 
-use super::show::significant;
+use super::show::{current, ev, significant};
 use super::{Context, Report, Rule};
 use crate::design::{Comparison, Requirement};
 use crate::finding::{Finding, Severity};
-use crate::results::{ConditionResult, RequirementResult};
+use crate::results::{ConditionResult, JunctionResult, RequirementResult};
 
 pub(super) static RULE: Rule = Rule {
     code: "require.failed",
@@ -31,22 +31,20 @@ fn run(context: &Context, report: &mut Report) {
             .condition
             .as_ref()
             .and_then(|name| results.conditions.iter().find(|condition| condition.name == *name));
-        let help = condition
-            .and_then(|condition| match requirement.metric.value.as_str() {
-                "efficiency" | "power" => largest_loss(condition),
-                "current_mismatch" => super::current_mismatch::balance_help(context, condition),
-                _ => None,
-            })
-            .unwrap_or_else(|| {
-                format!(
-                    "change the design, or write `{} {} {}`, which holds",
-                    requirement.metric.value,
-                    requirement.comparison.sign(),
-                    holding(requirement, worst)
-                )
-            });
-        let finding = finding.help(help);
-        report.push([requirement.metric.value.as_str()], finding);
+        let help =
+            condition
+                .and_then(|condition| match requirement.metric.value.as_str() {
+                    "efficiency" | "power" => largest_loss(condition),
+                    "current_mismatch" => super::current_mismatch::balance_help(context, condition)
+                        .or_else(|| extremes(condition)),
+                    "jsc" | "jmp" => super::current_mismatch::balance_help(context, condition)
+                        .or_else(|| limiting(condition)),
+                    "voc" | "vmp" => largest_deficit(condition),
+                    "fill_factor" => resistance(condition),
+                    _ => None,
+                })
+                .unwrap_or_else(|| margin_help(requirement, worst));
+        report.push([requirement.metric.value.as_str()], finding.help(help));
     }
 }
 
@@ -58,15 +56,86 @@ fn message(requirement: &Requirement, worst: &RequirementResult, others: &[&Requ
         .iter()
         .map(|other| format!("{}{}", in_unit(other.value, requirement, other), under(other)))
         .collect();
-    let others = if others.is_empty() { String::new() } else { format!(", and {}", others.join(", ")) };
+    let others = if others.is_empty() { String::new() } else { format!("; {}", others.join(", ")) };
+    let off = worst.margin.abs();
+    // Exactly on a bound that has to be passed, there is no distance to tell.
+    let off = if off > 0.0 {
+        format!("{} {} ", difference(off, requirement, worst), side(requirement))
+    } else {
+        "not ".to_owned()
+    };
     format!(
-        "`{}` is {}{}, not {} {}{others}",
+        "`{}`{} is {}, {off}`{} {}`{others}",
         requirement.metric.value,
-        in_unit(worst.value, requirement, worst),
         under(worst),
+        in_unit(worst.value, requirement, worst),
         requirement.comparison.sign(),
         requirement.bound_text,
     )
+}
+
+/// On which side of its bound a value that fails lies.
+fn side(requirement: &Requirement) -> &'static str {
+    match requirement.comparison {
+        Comparison::AtLeast | Comparison::Above => "below",
+        Comparison::AtMost | Comparison::Below => "above",
+    }
+}
+
+/// What is left to do where no cause is known: the margin, and the bound that the design meets.
+fn margin_help(requirement: &Requirement, worst: &RequirementResult) -> String {
+    let verb = match requirement.comparison {
+        Comparison::AtLeast | Comparison::Above => "raise",
+        Comparison::AtMost | Comparison::Below => "lower",
+    };
+    let bound = holding(requirement, worst);
+    if worst.margin == 0.0 {
+        return format!("{verb} `{}`, or require {bound}", requirement.metric.value);
+    }
+    format!(
+        "{verb} `{}` by {}, or require {bound}",
+        requirement.metric.value,
+        difference(worst.margin.abs(), requirement, worst)
+    )
+}
+
+/// The junctions of the smallest and the largest photocurrent, where no light can be moved.
+fn extremes(condition: &ConditionResult) -> Option<String> {
+    let by = |a: &&JunctionResult, b: &&JunctionResult| {
+        a.photocurrent_ma_per_cm2.total_cmp(&b.photocurrent_ma_per_cm2)
+    };
+    let low = condition.junctions.iter().min_by(by)?;
+    let high = condition.junctions.iter().max_by(by)?;
+    (low.name != high.name).then(|| {
+        format!(
+            "narrow the gap of `{}`, which limits with {}, or widen that of `{}`, which makes {}",
+            low.name,
+            current(low.photocurrent_ma_per_cm2),
+            high.name,
+            current(high.photocurrent_ma_per_cm2)
+        )
+    })
+}
+
+/// The junction that limits the current.
+fn limiting(condition: &ConditionResult) -> Option<String> {
+    let name = condition.limiting_junction.as_ref()?;
+    let junction = condition.junctions.iter().find(|junction| junction.name == *name)?;
+    let makes = current(junction.photocurrent_ma_per_cm2);
+    Some(format!("let `{name}` absorb more, it limits with {makes}"))
+}
+
+/// The junction whose voltage lies furthest below its gap.
+fn largest_deficit(condition: &ConditionResult) -> Option<String> {
+    let deficit = |junction: &JunctionResult| junction.gap_ev - junction.voc_v;
+    let worst = condition.junctions.iter().max_by(|a, b| deficit(a).total_cmp(&deficit(b)))?;
+    Some(format!(
+        "start with `{}`: its {} V are {} V below its gap of {}",
+        worst.name,
+        significant(worst.voc_v, 4),
+        significant(deficit(worst), 3),
+        ev(worst.gap_ev)
+    ))
 }
 
 /// A value of a requirement in the unit people read it in.
@@ -116,7 +185,24 @@ const AVOIDABLE: &[(&str, &str)] = &[
 
 /// The largest loss that a design can act on.
 fn largest_loss(condition: &ConditionResult) -> Option<String> {
-    let avoidable = condition.ledger_w_per_m2.iter().filter_map(|line| {
+    let names: Vec<&str> = AVOIDABLE.iter().map(|(name, _)| *name).collect();
+    largest_of(condition, &names)
+}
+
+/// The larger resistance, where it takes more than a thousandth of what is delivered.
+fn resistance(condition: &ConditionResult) -> Option<String> {
+    let of = |line: &str| -> f64 {
+        let same = condition.ledger_w_per_m2.iter().filter(|known| known.line == line);
+        same.map(|known| known.value).sum()
+    };
+    let matters = of("tunnel").max(of("series")) > 1e-3 * condition.power_w_per_m2;
+    matters.then(|| largest_of(condition, &["tunnel", "series"])).flatten()
+}
+
+/// The largest of some lines of the ledger.
+fn largest_of(condition: &ConditionResult, names: &[&str]) -> Option<String> {
+    let avoidable = condition.ledger_w_per_m2.iter().filter(|line| names.contains(&line.line.as_str()));
+    let avoidable = avoidable.filter_map(|line| {
         AVOIDABLE.iter().find(|(name, _)| *name == line.line).map(|(_, words)| (line, *words))
     });
     let (line, words) =
