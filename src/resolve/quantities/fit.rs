@@ -155,6 +155,14 @@ fn mismatch(si: f64, given: Dimension, expression: &Expression, expected: Expect
         Expression::Number(literal) => mended(literal, given, expected),
         _ => None,
     };
+    // A percentage in disguise keeps its digits.
+    let share = matches!(expected.role, Role::Share | Role::PositiveShare);
+    let replacement = replacement.or_else(|| match expression {
+        Expression::Number(literal) if share && literal.value > 1.0 && literal.value <= 100.0 => {
+            Some(format!("{} %", literal.text.value.replace(',', ".")))
+        }
+        _ => None,
+    });
     if let Some(text) = replacement {
         return finding.help(format!("write `{text}`")).fix(span, text, false);
     }
