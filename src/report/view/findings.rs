@@ -106,6 +106,7 @@ fn accepted(context: &Context<'_>) -> (Table, bool) {
         Text::of("Accepted in the file, with the reason given there"),
         &["finding", "where", "what it reports", "reason"],
     );
+    table.kind = "roomy";
     let quoted = |reason: &str| {
         if reason.is_empty() { Text::of("none given") } else { Text::of(format!("“{reason}”")) }
     };
