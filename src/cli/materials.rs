@@ -4,15 +4,18 @@ use clap::Args;
 
 use crate::cli::Exit;
 use crate::cli::console::{Console, Stream};
-use crate::materials::{Material, OriginKind, ROOM_TEMPERATURE_K};
+use crate::materials::{Material, Origin, OriginKind, ROOM_TEMPERATURE_K};
 use crate::resolve::materials::{Entry, entries, look_up, with_gap};
+
+mod family;
 
 const EXAMPLES: &str = "\
 Examples:
-  bandloom materials                                  the whole library, a line each
-  bandloom materials GaAs Ga0.51In0.49P               gap, lattice, index and sources
+  bandloom materials                           the whole library, a line each
+  bandloom materials GaAs Ga0.51In0.49P        gap, lattice, index, sources
+  bandloom materials GaInP                     what a family reaches
   bandloom materials \"AlGaInP matched of gap 2.1 eV\" --on GaAs
-  bandloom materials --gap 1.7..1.9 --on GaAs         what has that gap and fits the wafer";
+  bandloom materials --gap 1.7..1.9 --on GaAs  what has that gap and fits";
 
 /// Show what the material library holds
 #[derive(Args, Clone, Debug)]
@@ -71,16 +74,20 @@ pub(crate) fn run(command: &Materials, console: &Console) -> Exit {
     let mut exit = Exit::Fine;
     let mut text = String::new();
     for phrase in &command.phrases {
-        match found(phrase, command.on.as_deref(), console) {
-            Some(material) => {
-                if !text.is_empty() {
-                    text.push('\n');
-                }
-                let on = wafer.as_ref().map(|(_, wafer)| wafer);
-                text.push_str(&sheet(&material, on, command.at, console.look(Stream::Out).width));
-            }
-            None => exit = Exit::Trouble,
+        let width = console.look(Stream::Out).width;
+        let shown = match crate::resolve::materials::family(phrase) {
+            Some(family) => Some(family::sheet(&family, on, width)),
+            None => found(phrase, command.on.as_deref(), console)
+                .map(|material| sheet(&material, on, command.at, width)),
+        };
+        let Some(shown) = shown else {
+            exit = Exit::Trouble;
+            continue;
+        };
+        if !text.is_empty() {
+            text.push('\n');
         }
+        text.push_str(&shown);
     }
     exit.max(console.result(&text))
 }
@@ -170,13 +177,18 @@ fn sheet(material: &Material, on: Option<&Material>, at_nm: f64, width: usize) -
     if !material.cautions.is_empty() {
         rows.push(("caution", material.cautions.join(", ")));
     }
-    let mut text = format!("{}\n", material.label);
+    written(&material.label, &rows, &material.origins, width)
+}
+
+/// A heading, rows of two columns, and the sources.
+fn written(label: &str, rows: &[(&str, String)], origins: &[Origin], width: usize) -> String {
+    let mut text = format!("{label}\n");
     for (what, value) in rows {
         text.push_str(&format!("  {what:<10}{value}\n"));
     }
     // What comes from one publication stands in one entry.
     let mut cited: Vec<(String, Vec<&str>)> = Vec::new();
-    for origin in &material.origins {
+    for origin in origins {
         let kind = match origin.kind {
             OriginKind::Published => String::new(),
             kind => format!(" [{}]", kind.word()),

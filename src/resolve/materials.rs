@@ -30,7 +30,7 @@ mod samples;
 mod unsolved;
 mod values;
 
-pub use listing::{Entry, entries, look_up, with_gap};
+pub use listing::{Entry, entries, family, look_up, with_gap};
 pub use models::MODEL_PROPERTIES;
 pub use phrases::{FreePart, Phrase, Reference, Resolved, materials_of};
 

@@ -1,5 +1,7 @@
 //! The library as a list, for people who look for a material.
 
+use std::sync::Arc;
+
 use crate::finding::{Finding, Outcome};
 use crate::materials::alloy::solve::{Wanted, gap_reach, solve};
 use crate::materials::alloy::{Composition, Family};
@@ -122,6 +124,14 @@ fn phrase_of(items: &[Item]) -> Option<MaterialPhrase> {
         }),
         _ => None,
     })
+}
+
+/// The built-in family of a name without a composition, its elements in any order.
+pub fn family(name: &str) -> Option<Arc<Family>> {
+    match Library::new().find(name.trim(), &mut Scope::new()) {
+        Some(Definition::Family(family)) => Some(family),
+        _ => None,
+    }
 }
 
 /// Materials with a gap at 300 K within `tolerance_ev` of `gap_ev`: compounds, and of each family
