@@ -4,6 +4,7 @@
 #![expect(clippy::disallowed_methods, reason = "tests prepare and read their files themselves")]
 
 mod integration {
+    mod browser;
     mod cli;
     mod designs;
     mod docs;
