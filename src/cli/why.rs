@@ -35,7 +35,7 @@ pub(crate) fn run(command: &Why, console: &Console) -> Exit {
         .trim_start_matches("advice:");
     let code = code.trim().trim_matches('`').to_lowercase();
     if let Some(page) = page(&code) {
-        return console.result(page);
+        return console.result(&reflowed(page, width));
     }
     let family = format!("{}.", code.trim_end_matches('.'));
     let members = list(width, |known| known.starts_with(&family));
@@ -47,6 +47,45 @@ pub(crate) fn run(command: &Why, console: &Console) -> Exit {
         None => "`bandloom why` lists every code".to_owned(),
     };
     console.trouble(&format!("`{asked}` is no code of a finding"), &[&help])
+}
+
+/// The page with its paragraphs broken to `width`; headings, tables and code stay as they are.
+fn reflowed(page: &str, width: usize) -> String {
+    let mut text = String::new();
+    let mut used = 0;
+    let mut code = false;
+    for line in page.lines() {
+        let fence = line.starts_with("```");
+        if fence || code || line.is_empty() || line.starts_with(['#', '|']) {
+            text.push_str(if used > 0 { "\n" } else { "" });
+            text.push_str(line);
+            text.push('\n');
+            used = 0;
+            code ^= fence;
+            continue;
+        }
+        if used > 0 && line.starts_with("- ") {
+            text.push('\n');
+            used = 0;
+        }
+        for word in line.split_whitespace() {
+            let length = word.chars().count();
+            if used > 0 && used + 1 + length > width.max(40) {
+                text.push('\n');
+                used = 0;
+            }
+            if used > 0 {
+                text.push(' ');
+                used += 1;
+            }
+            text.push_str(word);
+            used += length;
+        }
+    }
+    if used > 0 {
+        text.push('\n');
+    }
+    text
 }
 
 /// One line a code, cut to `width`.
@@ -67,4 +106,26 @@ fn list(width: usize, keep: impl Fn(&str) -> bool) -> String {
         text.push_str(&format!("{code:column$}  {cut}\n"));
     }
     text
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn pages_keep_their_words_and_code_at_any_width() {
+        for (code, page) in PAGES {
+            let shown = reflowed(page, 60);
+            let words = |text: &str| text.split_whitespace().map(str::to_owned).collect::<Vec<_>>();
+            assert_eq!(words(page), words(&shown), "{code}");
+            let stacks = |text: &str| -> Vec<String> {
+                text.split("```").skip(1).step_by(2).map(str::to_owned).collect()
+            };
+            assert_eq!(stacks(page), stacks(&shown), "{code}");
+            let prose = shown.split("```").step_by(2).flat_map(str::lines);
+            for line in prose.filter(|line| !line.starts_with(['#', '|']) && line.contains(' ')) {
+                assert!(line.chars().count() <= 60, "{code}: {line}");
+            }
+        }
+    }
 }
