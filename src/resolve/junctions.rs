@@ -9,6 +9,7 @@ use crate::resolve::layers::Placed;
 use crate::resolve::properties::{self, Kept, pending, quantity};
 use crate::resolve::quantities::{Expected, Role};
 use crate::resolve::tree::{GroupNode, OF_INTERCONNECT, OF_JUNCTION, near_or};
+use crate::source::Span;
 use crate::syntax::{Argument, Property};
 use crate::units::Dimension;
 
@@ -266,11 +267,20 @@ fn fit(resolver: &mut Resolver<'_, '_>, property: &Property) -> Option<VoltageMo
 }
 
 /// A junction with terminals of its own in a stack that is wired in series.
-pub(super) fn separate(resolver: &mut Resolver<'_, '_>, design: &Design) {
+pub(super) fn separate(resolver: &mut Resolver<'_, '_>, design: &Design, terminals: Option<Span>) {
+    let marked = design.junctions.iter().find(|junction| junction.separate);
+    if let (Terminals::Three, None, Some(span)) = (design.terminals, marked, terminals) {
+        let first = design.junctions.first().map_or("top", |junction| junction.name.value.as_str());
+        resolver.scope.report(
+            Finding::error("value.missing", "`terminals three` does not say which junction stands apart")
+                .at(span, "no junction is `separate`")
+                .help(format!("write `junction {first} separate {{ … }}`, or `terminals two`")),
+        );
+    }
     if design.terminals != Terminals::Two {
         return;
     }
-    if let Some(junction) = design.junctions.iter().find(|junction| junction.separate) {
+    if let Some(junction) = marked {
         pending(
             &mut resolver.scope,
             Severity::Warning,

@@ -26,7 +26,8 @@ pub(super) fn design<'s>(
     body_properties(resolver, &mut design, body);
     let conditions_whole = conditions(resolver, &mut design, body);
     let mut drafts = layers::drafts(resolver, &mut design, body);
-    junctions::separate(resolver, &design);
+    let terminals = body.properties.iter().find(|(property, _)| property.name.value == "terminals");
+    junctions::separate(resolver, &design, terminals.map(|(property, _)| property.span));
     chemistry::materials(resolver, &mut design, &mut drafts);
     layers::finish(resolver, &mut design, drafts);
     junctions::voltages(&mut design);
@@ -155,7 +156,7 @@ fn optics(resolver: &mut Resolver<'_, '_>, design: &mut Design, property: &Prope
 /// `{ front_reflectance 3 % }` or `front_reflectance 3 %` behind the word. The outer `None`:
 /// nothing is said; the inner one: it is wrong, which is reported.
 fn front_reflectance(resolver: &mut Resolver<'_, '_>, property: &Property) -> Option<Option<f64>> {
-    let expected = Expected::new("front_reflectance", Dimension::NONE, Role::Share);
+    let expected = Expected::new("front_reflectance", Dimension::NONE, Role::Loss);
     let scope = &mut resolver.scope;
     let mut found = None;
     match property.arguments.get(1) {
@@ -200,7 +201,7 @@ fn fingers(resolver: &mut Resolver<'_, '_>, design: &mut Design, property: &Prop
         let name = inner.name.value.as_str();
         match name {
             "shading" => {
-                shading = quantity(scope, inner, Expected::new(name, Dimension::NONE, Role::Share));
+                shading = quantity(scope, inner, Expected::new(name, Dimension::NONE, Role::Loss));
             }
             "series_resistance" => {
                 let expected = Expected::new(name, Dimension::RESISTANCE_AREA, Role::NotNegative);

@@ -84,7 +84,7 @@ fn bare(value: f64, span: Span, literal: Option<Number>, expected: Expected<'_>)
     let digits = literal.map_or_else(|| number(value), |it| it.text.value.replace(',', "."));
     let slot = expected.called();
     match expected.role {
-        Role::Share | Role::PositiveShare | Role::Ratio if value > 0.0 && value <= 1.0 => {
+        Role::Share | Role::PositiveShare | Role::Loss | Role::Ratio if value > 0.0 && value <= 1.0 => {
             let percent = number(value * 100.0);
             Finding::error(
                 "unit.unlikely",
@@ -156,7 +156,7 @@ fn mismatch(si: f64, given: Dimension, expression: &Expression, expected: Expect
         _ => None,
     };
     // A percentage in disguise keeps its digits.
-    let share = matches!(expected.role, Role::Share | Role::PositiveShare);
+    let share = matches!(expected.role, Role::Share | Role::PositiveShare | Role::Loss);
     let replacement = replacement.or_else(|| match expression {
         Expression::Number(literal) if share && literal.value > 1.0 && literal.value <= 100.0 => {
             Some(format!("{} %", literal.text.value.replace(',', ".")))
@@ -226,7 +226,12 @@ fn out_of_range(si: f64, expression: &Expression, expected: Expected<'_>) -> Fin
             "absolute zero is -273.15 degC",
             format!("write {}", nearest_temperature(expression, expected)),
         ),
-        Role::Share | Role::PositiveShare | Role::Fraction => {
+        Role::Loss if si == 1.0 => error(
+            format!("{slot} is 100 %, so no light is left for the junctions"),
+            "nothing is left",
+            format!("write a smaller share, such as `{}`", example(expected)),
+        ),
+        Role::Share | Role::PositiveShare | Role::Loss | Role::Fraction => {
             let percent = |share: f64| format!("{} %", number(share * 100.0));
             let (given, most) = match expected.role {
                 Role::Fraction => (number(si), "1".to_owned()),
@@ -361,7 +366,7 @@ fn example(expected: Expected<'_>) -> &'static str {
         (Role::GrowthTemperature, _) => "650 degC",
         (Role::GrowthRate, _) => "2 um/h",
         (Role::SourceTemperature, _) => "5800 K",
-        (Role::Share | Role::PositiveShare | Role::Ratio, _) => "3 %",
+        (Role::Share | Role::PositiveShare | Role::Loss | Role::Ratio, _) => "3 %",
         (Role::Fraction, _) => "0.49",
         (Role::Concentration, _) => "500 times",
         (Role::Count, _) => "8",

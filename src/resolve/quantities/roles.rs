@@ -38,6 +38,8 @@ pub enum Role {
     Ratio,
     /// A fraction of a sublattice, a plain number from 0 to 1.
     Fraction,
+    /// A share of the light lost at the front: something has to be left.
+    Loss,
     /// A multiple of the light.
     Concentration,
     /// A count of at least one.
@@ -72,6 +74,7 @@ impl Role {
             Self::Any | Self::Difference => return None,
             Self::NotNegative | Self::Ratio => bounds(0.0, true, f64::INFINITY, false),
             Self::Share | Self::Fraction => bounds(0.0, true, 1.0, true),
+            Self::Loss => bounds(0.0, true, 1.0, false),
             Self::PositiveShare => bounds(0.0, false, 1.0, true),
             Self::Count => bounds(1.0, true, 10_000.0, true),
             Self::Incidence => bounds(0.0, true, std::f64::consts::FRAC_PI_2, false),
@@ -109,7 +112,7 @@ impl Role {
             Self::CellTemperature | Self::GrowthTemperature => &["degC", "K"],
             Self::SourceTemperature => &["K"],
             Self::GrowthRate => &["um/h", "nm/s", "nm/h"],
-            Self::Share | Self::PositiveShare | Self::Ratio => &["%"],
+            Self::Share | Self::PositiveShare | Self::Loss | Self::Ratio => &["%"],
             Self::Concentration => &["times"],
             Self::Irradiance => &["W/m2", "kW/m2"],
             Self::Incidence => &["deg"],
@@ -124,7 +127,7 @@ impl Role {
 
     /// Whether the number must say that it is a share or a multiple although it has no dimension.
     pub(crate) fn needs_word(self) -> bool {
-        matches!(self, Self::Share | Self::PositiveShare | Self::Ratio | Self::Concentration)
+        matches!(self, Self::Share | Self::PositiveShare | Self::Loss | Self::Ratio | Self::Concentration)
     }
 
     /// The unit in which `value` alone makes sense here, the most usual first.
