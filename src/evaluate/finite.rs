@@ -4,11 +4,15 @@ use crate::design::Design;
 use crate::finding::Finding;
 use crate::results::{ConditionResult, Results};
 
-/// A finding for the first figure that is not finite. Only inputs beyond all measure lead there
+/// A finding for the first figure that is not finite, or negative where it cannot be. Only inputs beyond all measure lead there
 /// (a concentration of 1e300), so the condition is blamed.
 pub(super) fn first_not_finite(design: &Design, results: &Results) -> Option<Finding> {
     results.conditions.iter().zip(&design.conditions).find_map(|(result, condition)| {
-        let (figure, _) = figures(result).find(|(_, value)| !value.is_finite())?;
+        // A junction in light delivers current and power; less than nothing is left of differences
+        // of emission and absorption that have lost every digit, as in a cell of 3000 K.
+        let lost = |figure: &str, value: f64| ["power", "jsc"].contains(&figure) && value < -1e-9;
+        let (figure, _) =
+            figures(result).find(|(figure, value)| !value.is_finite() || lost(figure, *value))?;
         let message = format!("`{figure}` under `{}` is beyond what can be computed", condition.name);
         Some(
             Finding::error("value.range", message)
