@@ -108,10 +108,17 @@ pub(super) fn draft<'b, 's>(
     if node.unreadable {
         draft.wrong = true;
     } else if node.material.is_none() && draft.phrase.is_none() && duty != Duty::Air {
+        let example = match duty {
+            Duty::Mirror => "Ag",
+            Duty::Metal => "Au",
+            Duty::Coat => "MgF2",
+            Duty::Cover | Duty::Adhesive => "SiO2",
+            _ => "GaAs",
+        };
         resolver.scope.report(
             Finding::error("value.missing", format!("`{}` has no material", draft.layer.path))
                 .at(node.duty.span, "made of what?")
-                .help(format!("write it after the word, such as `{} GaAs`", node.duty.value)),
+                .help(format!("write it after the word, such as `{} {example}`", node.duty.value)),
         );
         draft.wrong = true;
     }

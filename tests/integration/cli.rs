@@ -330,3 +330,31 @@ fn a_family_is_shown_without_a_composition() {
     assert!(elsewhere.out.contains("not to InP") && !elsewhere.out.contains("to GaAs"), "{}", elsewhere.out);
     place.run(&["materials", "GaInN"]).ends(2);
 }
+
+#[test]
+fn helps_name_values_of_their_own_slot() {
+    let file = "stack \"A\" {
+        mirror { }
+        junction a {
+            absorber  ideal of gap 1.42 eV   absorbs all_above_gap
+            voltage from fit { j01 0 A/cm2; j02 -2e-12 A/cm2; shunt 0 ohm cm2; at 25 degC }
+        }
+        require  efficiency >= 28 A
+    }
+";
+    let out = Place::with(&[("a.stack", file)]).run(&["check", "a.stack"]).ends(1).out;
+    for help in ["`mirror Ag`", "`2e-12 A/cm2`", "`1e6 ohm cm2`", "help: write `28 %`"] {
+        assert!(out.contains(help), "{help}\n{out}");
+    }
+}
+
+#[test]
+fn a_cell_too_hot_for_any_figure_is_told() {
+    let file = "stack \"A\" {
+        temperature  5000 K
+        junction a { absorber ideal of gap 1.4 eV   absorbs all_above_gap }
+    }
+";
+    let out = Place::with(&[("a.stack", file)]).run(&["check", "a.stack"]).ends(1).out;
+    assert!(out.contains("is beyond what can be computed"), "{out}");
+}
