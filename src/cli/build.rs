@@ -100,6 +100,8 @@ pub(crate) struct Built {
     /// Its folder.
     pub(crate) folder: PathBuf,
     pub(crate) files: Vec<OutputFile>,
+    /// Whether every file could be written, or nothing was to be written.
+    pub(crate) is_written: bool,
 }
 
 /// Everything that one run made.
@@ -134,7 +136,7 @@ pub(crate) fn build(entries: &[Entry], options: &Options, sheets: &Sheets, templ
             }
             match sheet(compiled, stack, &sheets.formats, templates) {
                 Ok(files) if files.is_empty() => {}
-                Ok(files) => round.stacks.push(Built { at: (file, index), folder, files }),
+                Ok(files) => round.stacks.push(Built { at: (file, index), folder, files, is_written: true }),
                 Err(why) if round.broken_templates.contains(&why) => {}
                 Err(why) => round.broken_templates.push(why),
             }
@@ -147,10 +149,11 @@ pub(crate) fn build(entries: &[Entry], options: &Options, sheets: &Sheets, templ
         round.unknown_stacks = sheets.stack.iter().filter(named).cloned().collect();
     }
     if !sheets.to_standard_output() {
-        for built in &round.stacks {
+        for built in &mut round.stacks {
             for file in &built.files {
                 if let Err(why) = write(&built.folder.join(&file.name), &file.bytes) {
                     round.unwritten.push(why);
+                    built.is_written = false;
                     break;
                 }
             }

@@ -17,7 +17,9 @@ pub(crate) fn summary(stack: &Stack, results: &Results, built: &Built, look: Loo
         2 => " and 1 more file".to_owned(),
         count => format!(" and {} more files", count - 1),
     };
-    lines.push(format!("  {first}{more}"));
+    if built.is_written {
+        lines.push(format!("  {first}{more}"));
+    }
     lines.into_iter().map(|line| line + "\n").collect()
 }
 

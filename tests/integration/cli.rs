@@ -358,3 +358,11 @@ fn a_cell_too_hot_for_any_figure_is_told() {
     let out = Place::with(&[("a.stack", file)]).run(&["check", "a.stack"]).ends(1).out;
     assert!(out.contains("is beyond what can be computed"), "{out}");
 }
+
+#[test]
+fn no_file_is_named_that_could_not_be_written() {
+    let place = Place::with(&[("pair.stack", PAIR), ("taken", "a file where a folder is due")]);
+    let run = place.run(&["build", "pair.stack", "--into", "taken"]).ends(2);
+    assert!(run.err.contains("cannot write"), "{}", run.err);
+    assert!(run.out.contains("Pair") && !run.out.contains("sheet.html"), "{}", run.out);
+}
