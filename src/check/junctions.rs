@@ -10,6 +10,8 @@ pub(crate) struct JunctionFacts<'a> {
     pub(crate) junction: &'a Junction,
     /// Its layers that are there everywhere, sunward first, with their index in the design.
     pub(crate) layers: Vec<(usize, &'a Layer)>,
+    /// Worked out once: a rule may ask for it at every layer.
+    gap: Option<Gap>,
 }
 
 impl<'a> JunctionFacts<'a> {
@@ -18,7 +20,9 @@ impl<'a> JunctionFacts<'a> {
         let range = junction.layers.clone();
         let all = design.layers.get(range.clone()).unwrap_or_default();
         let layers = range.zip(all).filter(|(_, layer)| layer.extent == Extent::Everywhere).collect();
-        Self { junction, layers }
+        let mut facts = Self { junction, layers, gap: None };
+        facts.gap = facts.absorber_gap();
+        facts
     }
 
     /// As the user calls it.
@@ -39,6 +43,10 @@ impl<'a> JunctionFacts<'a> {
 
     /// The gap of its main absorber at 25 °C; `None` where an absorber could not be resolved.
     pub(crate) fn gap(&self) -> Option<Gap> {
+        self.gap
+    }
+
+    fn absorber_gap(&self) -> Option<Gap> {
         if self.absorbers().any(|(_, layer)| layer.material.is_none()) {
             return None;
         }
