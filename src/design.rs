@@ -11,10 +11,10 @@ mod junction;
 mod layer;
 mod request;
 
-pub use crate::syntax::{Comparison, Polarity, ToleranceMeaning};
+pub use crate::syntax::{Accept, Comparison, Polarity, ToleranceMeaning};
 pub use junction::{DiodeFit, Fingers, Interconnect, InterconnectKind, Junction, VoltageModel};
 pub use layer::{Doping, Duty, Extent, Layer, LayerSpans, Place, Strain, Transport};
-pub use request::{Accept, Chart, FreeValue, Limit, Measured, Requirement, Seek, Tolerance};
+pub use request::{Chart, FreeValue, Limit, Measured, Requirement, Seek, Tolerance};
 
 /// Absolute zero of the Celsius scale, K.
 pub const ZERO_CELSIUS_K: f64 = 273.15;

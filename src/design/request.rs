@@ -81,19 +81,6 @@ pub struct Measured {
     pub span: Span,
 }
 
-/// A rule silenced in one place.
-#[derive(Clone, Debug, PartialEq)]
-pub struct Accept {
-    /// The code.
-    pub code: Spanned<String>,
-    /// The path; `None` for the whole stack.
-    pub on: Option<Spanned<String>>,
-    /// Why.
-    pub because: Option<Spanned<String>>,
-    /// The whole statement.
-    pub span: Span,
-}
-
 /// A threshold set for this file.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Limit {

@@ -1,7 +1,7 @@
 //! What is asked of a stack: requirements, what is sought, charts, measurements, rules accepted
 //! and thresholds set.
 
-use crate::design::{Accept, Chart, Design, Limit, Measured, Requirement, Seek};
+use crate::design::{Chart, Design, Limit, Measured, Requirement, Seek};
 use crate::finding::{Finding, Severity};
 use crate::resolve::properties::pending;
 use crate::resolve::quantities::{Expected, Role};
@@ -242,12 +242,7 @@ fn accept(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Acc
                 .help("write why at its end, such as `because \"graded buffer relaxes it\"`"),
         );
     }
-    design.accepts.push(Accept {
-        code: it.code.clone(),
-        on: it.on.clone(),
-        because: it.because.clone(),
-        span: it.span,
-    });
+    design.accepts.push(it.clone());
 }
 
 fn limit(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Limit) {
