@@ -276,6 +276,6 @@ pub struct ModelNote {
     pub does: String,
     /// What it does not see, one sentence.
     pub blind_to: String,
-    /// The publication.
+    /// The publication; empty where the model is arithmetic on what the file or the tables state.
     pub cite: String,
 }

@@ -36,7 +36,7 @@ pub(super) fn model_notes(design: &Design) -> Vec<ModelNote> {
             "k is linear in wavelength above the gap and ln k linear in photon energy below it; the table moves \
              with the gap from its own temperature to the condition's; outside a table its end value is held.",
             "Changes of the shape of the spectrum with temperature, doping and order.",
-            "Sources of each table stand in the layer table",
+            "",
         ));
     }
     notes.push(note(
@@ -51,9 +51,10 @@ pub(super) fn model_notes(design: &Design) -> Vec<ModelNote> {
         notes.push(note(
             "series string",
             "At each current the junction voltages are summed, negative ones included, less the drop over lumped \
-             resistances of fingers and tunnels; the voltage of a saturated junction is what the others leave.",
+             resistances of fingers and tunnels; the voltage of a saturated junction is what the others leave; the fill factor is over the \
+             string's own short-circuit current.",
             "Lateral current, luminescent coupling between junctions, reverse breakdown, the valley of a tunnel junction.",
-            "Kirchhoff's laws; fill factor over the string's own short-circuit current",
+            "Kirchhoff's laws",
         ));
     }
     if strings.len() > 1 {
@@ -69,7 +70,7 @@ pub(super) fn model_notes(design: &Design) -> Vec<ModelNote> {
             "fingers",
             "Their shading scales all light that enters; their series resistance is one lumped resistor.",
             "Light that the metal sends back into the cell, and current crowding under it.",
-            "As stated in the file",
+            "",
         ));
     }
     notes
@@ -82,7 +83,7 @@ fn light() -> ModelNote {
          a grid whose halving moves no current by more than 0.01 %; efficiency is over the spectrum's own integral \
          times concentration.",
         "Spectral change over the day, angle of the diffuse part, clouds.",
-        "The spectrum's source; CODATA 2018 constants",
+        "CODATA 2018 constants: Tiesinga et al., Rev. Mod. Phys. 93, 025010 (2021)",
     )
 }
 
