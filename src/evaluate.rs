@@ -1,6 +1,7 @@
 //! [`Design`] → [`Results`]: the physics rooms, called in order for each condition.
 
 mod condition;
+mod dark;
 mod findings;
 mod finite;
 mod hash;

@@ -81,6 +81,9 @@ pub struct ConditionResult {
     pub spectral: Spectral,
     /// The stack under light.
     pub curve: Curve,
+    /// Without light, driven forward: each junction and the stack at the same currents, which are
+    /// negative. `voltage_v` is empty with separate terminals.
+    pub dark_curve: Curve,
     /// Each junction by itself under its own photocurrent, sunward first.
     pub junction_curves: Vec<JunctionCurve>,
 }

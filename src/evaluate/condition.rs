@@ -4,6 +4,7 @@ use crate::circuit::curve::points;
 use crate::circuit::diode::Diode;
 use crate::circuit::series::{Point, Series};
 use crate::design::{Condition, Design};
+use crate::evaluate::dark::dark_curve;
 use crate::evaluate::junctions::{diodes, strings};
 use crate::evaluate::ledger::{Operating, account};
 use crate::evaluate::lit::Lit;
@@ -85,6 +86,7 @@ pub(super) fn condition_result(design: &Design, condition: &Condition, lit: &Lit
         layers: layer_light(design, lit, open),
         ledger_w_per_m2: account(design, condition, lit, &operating),
         spectral: spectral(design, condition, lit, received),
+        dark_curve: dark_curve(design, &diodes, &wirings),
         curve: figures.map_or_else(Curve::default, |(.., points)| curve(design, points)),
         junction_curves: alone
             .into_iter()

@@ -63,6 +63,8 @@ fn figures(result: &ConditionResult) -> impl Iterator<Item = (&'static str, f64)
     let curves = [&result.curve.voltage_v, &result.curve.current_ma_per_cm2]
         .into_iter()
         .chain(result.curve.junction_voltage_v.values())
+        .chain(result.dark_curve.junction_voltage_v.values())
+        .chain([&result.dark_curve.voltage_v, &result.dark_curve.current_ma_per_cm2])
         .chain(result.junction_curves.iter().flat_map(|curve| [&curve.voltage_v, &curve.current_ma_per_cm2]))
         .flatten()
         .map(|value| ("current-voltage curve", *value));

@@ -36,6 +36,29 @@ fn a_decade_of_current_is_59_159_mv() {
     close(voc(1000.0) - voc(100.0), 0.059_159_35, 1e-8);
 }
 
+/// Shockley's diode: kT/q ln 10 a decade, and, light only shifting the curve, the photocurrent in
+/// the dark at the voltage of open circuit.
+#[test]
+fn in_the_dark_a_junction_carries_its_photocurrent_at_its_open_circuit_voltage() {
+    let result = first(&limit_stack(&[1.8, 1.2]));
+    let dark = &result.dark_curve;
+    let at = |voltages: &[f64], milliampere: f64| {
+        let after = dark.current_ma_per_cm2.iter().position(|j| -j >= milliampere).expect("in range");
+        let log = |i: usize| (-dark.current_ma_per_cm2[i]).log10();
+        let share = (milliampere.log10() - log(after - 1)) / (log(after) - log(after - 1));
+        voltages[after - 1] + share * (voltages[after] - voltages[after - 1])
+    };
+    for junction in &result.junctions {
+        let own = &dark.junction_voltage_v[&junction.name];
+        close(at(own, junction.photocurrent_ma_per_cm2), junction.voc_v, 1e-6);
+        close(at(own, 10.0) - at(own, 1.0), 0.059_159_35, 1e-6);
+        assert!(own.is_sorted(), "{own:?}");
+    }
+    // Two in series need the sum of both voltages.
+    close(at(&dark.voltage_v, 1.0), dark.junction_voltage_v.values().map(|own| at(own, 1.0)).sum(), 1e-9);
+    assert!(dark.current_ma_per_cm2.iter().all(|j| *j < 0.0), "the junction takes power");
+}
+
 #[test]
 fn the_fill_factor_of_one_diode() {
     // Exact values by mpmath 1.3.0: maximum of v (1 − (e^v − 1)/(e^voc − 1)) over v, over voc.

@@ -166,6 +166,7 @@ mod tests {
                 ..Spectral::default()
             },
             curve: Curve::default(),
+            dark_curve: crate::results::Curve::default(),
             junction_curves: Vec::new(),
         }
     }
