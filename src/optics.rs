@@ -1,5 +1,6 @@
 //! Where light is absorbed.
 
+pub mod downward;
 pub mod grid;
 pub mod interference;
 mod media;

@@ -8,6 +8,7 @@ mod integration {
     mod cli;
     mod designs;
     mod docs;
+    mod downward;
     mod house_rules;
     mod materials;
     mod optics;

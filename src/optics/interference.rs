@@ -5,9 +5,10 @@ use std::sync::Arc;
 use crate::design::{Design, Duty, Layer, Place};
 use crate::materials::optics::Optics;
 use crate::numerics::quadrature::GAUSS4;
+use crate::optics::downward::{Downward, Half, Ray, downward};
 use crate::optics::media::Media;
 use crate::optics::model::Shares;
-use crate::optics::wave::{Index, Sheet, Stack};
+use crate::optics::wave::{Index, Polarization, Sheet, Stack};
 
 /// Layers thicker than this show no fringes in sunlight (its coherence length is below 1 µm, and
 /// no wafer is flat to a tenth of a wave), m. A wafer is taken so whatever its thickness.
@@ -133,6 +134,30 @@ impl Interference {
         sum
     }
 
+    /// See [`Downward`]. Both halves by waves, s and p each by itself; between the halves light
+    /// adds fluxes.
+    pub fn downward(&self, junction: usize, junctions: usize, wavelength_m: &[f64]) -> Option<Downward> {
+        let last = self.slabs.iter().rposition(|slab| slab.junction == Some(junction))?;
+        let columns = self.columns(wavelength_m);
+        let host = &columns[self.slabs[last].medium].0;
+        let indices = indices(&columns);
+        let air = Arc::new(Index::constant(1.0, 0.0, wavelength_m.len()));
+        let upper: Vec<&Slab> = self.slabs[..=last].iter().rev().collect();
+        let lower: Vec<&Slab> = self.slabs[last + 1..].iter().collect();
+        let solve = |slabs: &[&Slab], rear: &Arc<Index>, ray: &Ray, polarization| {
+            let sheets = slabs.iter().map(|slab| sheet(slab, &indices)).collect();
+            let stack = Stack::from_medium(wavelength_m, (host, &ray.along), sheets, rear.clone());
+            let shares = stack.solve_polarized(polarization);
+            let rows = slabs.iter().map(|slab| slab.junction).zip(shares.absorbed);
+            Half::new(shares.reflected, rows, junctions.max(junction + 1))
+        };
+        let rear = self.rear.map_or(&air, |(_, medium)| &indices[medium]);
+        Some(downward(host, (junction, junctions), |ray| {
+            let both = [Polarization::S, Polarization::P];
+            both.map(|it| [solve(&upper, &air, ray, it), solve(&lower, rear, ray, it)]).into()
+        }))
+    }
+
     /// `n` and `k` of each medium.
     fn columns(&self, wavelength_m: &[f64]) -> Vec<(Vec<f64>, Vec<f64>)> {
         self.media
@@ -146,21 +171,17 @@ impl Interference {
     }
 
     fn stack(&self, wavelength_m: &[f64], incidence_rad: f64, indices: &[Arc<Index>]) -> Stack {
-        let sheets = self
-            .slabs
-            .iter()
-            .map(|slab| Sheet {
-                index: indices[slab.medium].clone(),
-                thickness_m: slab.thickness_m,
-                coherent: slab.coherent,
-            })
-            .collect();
+        let sheets = self.slabs.iter().map(|slab| sheet(slab, indices)).collect();
         let rear = match self.rear {
             Some((_, medium)) => indices[medium].clone(),
             None => Arc::new(Index::constant(1.0, 0.0, wavelength_m.len())),
         };
         Stack::new(wavelength_m, (1.0, incidence_rad), sheets, rear)
     }
+}
+
+fn sheet(slab: &Slab, indices: &[Arc<Index>]) -> Sheet {
+    Sheet { index: indices[slab.medium].clone(), thickness_m: slab.thickness_m, coherent: slab.coherent }
 }
 
 fn indices(columns: &[(Vec<f64>, Vec<f64>)]) -> Vec<Arc<Index>> {

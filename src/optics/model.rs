@@ -1,6 +1,7 @@
 //! Which optics a stack gets, and what both kinds answer.
 
 use crate::design::{Design, OpticsModel};
+use crate::optics::downward::Downward;
 use crate::optics::interference::Interference;
 use crate::optics::one_pass::OnePass;
 
@@ -111,6 +112,39 @@ impl LightModel {
             Self::OnePass(model) => model.junction_share(junction, wavelength_m),
             Self::Interference(model) => model.emissivity(junction, wavelength_m),
         }
+    }
+}
+
+impl LightModel {
+    /// What `junction` sends down and does not get back, and what of it each of the first
+    /// `junctions` junctions absorbs, at vacuum wavelengths in m: see [`Downward`]. `None` where
+    /// the lowest layer `junction` collects from has no refractive index (a limit study, which
+    /// counts the front only) or there is none.
+    pub fn downward(&self, junction: usize, junctions: usize, wavelength_m: &[f64]) -> Option<Downward> {
+        match self {
+            Self::OnePass(model) => model.downward(junction, junctions, wavelength_m),
+            Self::Interference(model) => model.downward(junction, junctions, wavelength_m),
+        }
+    }
+
+    /// [`Downward::lost`] alone, in units of black-body light from one hemisphere with index 1:
+    /// 0..n². Added to [`LightModel::emissivity`] it gives all that a junction emits; zeros where
+    /// [`LightModel::downward`] has no answer.
+    pub fn emissivity_down(&self, junction: usize, wavelength_m: &[f64]) -> Vec<f64> {
+        let down = self.downward(junction, 0, wavelength_m);
+        down.map_or_else(|| vec![0.0; wavelength_m.len()], |down| down.lost)
+    }
+
+    /// Share of what `from` sends down and does not get back that the junction `to` absorbs, 0..1
+    /// by wavelength: [`Downward::to`] over [`Downward::lost`]. 0 where nothing goes down, and
+    /// where `to` stands above. A coupling by current is the two integrated over the emission
+    /// first and divided then.
+    pub fn coupling_share(&self, (from, to): (usize, usize), wavelength_m: &[f64]) -> Vec<f64> {
+        let Some(down) = self.downward(from, to + 1, wavelength_m) else {
+            return vec![0.0; wavelength_m.len()];
+        };
+        let share = |(part, whole): (&f64, &f64)| if *whole > 0.0 { part / whole } else { 0.0 };
+        down.to[to].iter().zip(&down.lost).map(share).collect()
     }
 }
 

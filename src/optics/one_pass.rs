@@ -7,6 +7,7 @@ use crate::design::{Design, Duty, OpticsModel, Place};
 use crate::materials::optics::Optics;
 use crate::materials::{MaterialClass, SharedMaterial};
 use crate::numerics::constants::HC_EV;
+use crate::optics::downward::{Downward, Half, Ray, downward};
 use crate::optics::media::{Media, Medium};
 use crate::optics::model::Shares;
 
@@ -191,6 +192,50 @@ impl OnePass {
             }
         }
         sum
+    }
+
+    /// See [`Downward`]. Rays keep their angle from layer to layer and fade by Beer–Lambert; the
+    /// front lets out what is within its critical angle and returns the rest, a mirror returns as
+    /// it does at normal incidence, and without one nothing comes back from below.
+    pub fn downward(&self, junction: usize, junctions: usize, wavelength_m: &[f64]) -> Option<Downward> {
+        let last = self.slabs.iter().rposition(|slab| slab.junction == Some(junction))?;
+        let Law::Bulk { medium, .. } = self.slabs[last].law else { return None };
+        let Medium { material, edge_shift_ev } = self.media.at(medium);
+        let index = |wavelength: &f64| material.optics.index(*wavelength, *edge_shift_ev).map(|(n, _)| n);
+        let host: Vec<f64> = wavelength_m.iter().map(index).collect::<Option<_>>()?;
+        let straight = self.taken(wavelength_m, self.slabs.len());
+        let mirror = self.mirror.as_ref().map(|mirror| self.mirror_absorbs(mirror, wavelength_m));
+        let count = junctions.max(junction + 1);
+        let half = |slabs: &mut dyn DoubleEndedIterator<Item = usize>, ray: &Ray, returns: &[f64]| {
+            let own: Vec<usize> = slabs.collect();
+            let oblique = |&at: &usize| match self.slabs[at].law {
+                Law::Share { .. } => straight[at].clone(),
+                Law::Bulk { .. } => {
+                    let longer = |(taken, cos): (&f64, &f64)| -((-taken).ln_1p() / cos).exp_m1();
+                    straight[at].iter().zip(&ray.cos).map(longer).collect()
+                }
+            };
+            let taken: Vec<Vec<f64>> = own.iter().map(oblique).collect();
+            let mut left = vec![1.0; wavelength_m.len()];
+            let mut rows: Vec<Vec<f64>> = taken.iter().map(|taken| absorb(&mut left, taken)).collect();
+            left.iter_mut().zip(returns).for_each(|(left, returns)| *left *= returns);
+            for (row, taken) in rows.iter_mut().zip(&taken).rev() {
+                for (sum, back) in row.iter_mut().zip(absorb(&mut left, taken)) {
+                    *sum += back;
+                }
+            }
+            Half::new(left, own.iter().map(|&at| self.slabs[at].junction).zip(rows), count)
+        };
+        Some(downward(&host, (junction, junctions), |ray| {
+            let trapped = |along: &f64| if *along > 1.0 { 1.0 } else { 0.0 };
+            let front: Vec<f64> = ray.along.iter().map(trapped).collect();
+            let rear: Vec<f64> = match &mirror {
+                Some(kept) => kept.iter().map(|kept| 1.0 - kept).collect(),
+                None => vec![0.0; wavelength_m.len()],
+            };
+            let upper = half(&mut (0..=last).rev(), ray, &front);
+            vec![[upper, half(&mut (last + 1..self.slabs.len()), ray, &rear)]]
+        }))
     }
 
     /// Share each of the first `count` slabs takes of what reaches it, `[slab][wavelength]`.

@@ -82,8 +82,9 @@ pub struct Stack {
     wavelength_m: Vec<f64>,
     /// `2π/λ`, 1/m.
     k0: Vec<Lane>,
-    front_n: f64,
-    incidence_rad: f64,
+    front_n: Vec<Lane>,
+    /// `n sin θ`, the same in every medium; empty at normal incidence.
+    along: Vec<Lane>,
     sheets: Vec<Sheet>,
     rear: Arc<Index>,
     /// Sheets of each run of films; between two runs stands one thick sheet.
@@ -110,6 +111,20 @@ impl Stack {
         sheets: Vec<Sheet>,
         rear: Arc<Index>,
     ) -> Self {
+        let count = wavelength_m.len();
+        let along =
+            if incidence_rad == 0.0 { Vec::new() } else { vec![front_n * incidence_rad.sin(); count] };
+        Self::from_medium(wavelength_m, (&vec![front_n; count], &along), sheets, rear)
+    }
+
+    /// The same from a medium whose index `front_n` (> 0) changes with the wavelength, along the
+    /// layers by `along = n sin θ`, 0 to `front_n`, at each; no `along` at all is normal incidence.
+    pub fn from_medium(
+        wavelength_m: &[f64],
+        (front_n, along): (&[f64], &[f64]),
+        sheets: Vec<Sheet>,
+        rear: Arc<Index>,
+    ) -> Self {
         let k0: Vec<f64> = wavelength_m.iter().map(|wavelength| std::f64::consts::TAU / wavelength).collect();
         let mut runs = Vec::new();
         let mut start = 0;
@@ -121,8 +136,8 @@ impl Stack {
         Self {
             wavelength_m: wavelength_m.to_vec(),
             k0: blocks(&k0),
-            front_n,
-            incidence_rad,
+            front_n: blocks(front_n),
+            along: blocks(along),
             sheets,
             rear,
             runs,
@@ -134,6 +149,11 @@ impl Stack {
         &self.wavelength_m
     }
 
+    /// Whether the two polarisations differ.
+    fn is_oblique(&self) -> bool {
+        !self.along.is_empty()
+    }
+
     /// From the front, as given.
     pub fn sheets(&self) -> &[Sheet] {
         &self.sheets
@@ -142,7 +162,7 @@ impl Stack {
     /// Light of no preferred polarisation: the mean of s and p.
     pub fn solve(&self) -> Shares {
         let mut shares = self.solve_polarized(Polarization::S);
-        if self.incidence_rad != 0.0 {
+        if self.is_oblique() {
             shares.add(&self.solve_polarized(Polarization::P));
             shares.halve();
         }

@@ -55,7 +55,7 @@ fn media<'a>(
 impl Block {
     /// Solves the block `at` of `stack`.
     pub(super) fn solve(&mut self, stack: &Stack, polarization: Polarization, at: usize) {
-        self.front = [[stack.front_n; LANES], [0.0; LANES]];
+        self.front = [stack.front_n[at], [0.0; LANES]];
         let mut tilted = std::mem::take(&mut self.tilted);
         fill_tilted(stack, polarization, (at, &self.front), &mut tilted);
         let front = self.front;
@@ -168,12 +168,11 @@ fn fill_tilted(
     (at, front): (usize, &[Lane; 2]),
     tilted: &mut Vec<[[Lane; 2]; 2]>,
 ) {
-    if stack.incidence_rad == 0.0 {
+    let Some(along) = stack.along.get(at) else {
         tilted.clear();
         return;
-    }
+    };
     tilted.resize(stack.sheets.len() + 2, [[[0.0; LANES]; 2]; 2]);
-    let along = stack.front_n * stack.incidence_rad.sin();
     let front = Pair { re: &front[0], im: &front[1] };
     let sheets = stack.sheets.iter().map(|sheet| pair(&sheet.index, at));
     let indices = std::iter::once(front).chain(sheets).chain([pair(&stack.rear, at)]);

@@ -214,13 +214,13 @@ fn up_and_down(run: Run<'_>, fields: &mut Fields, faces: &mut Faces) {
     "x86_64+avx512f+avx512bw+avx512cd+avx512dq+avx512vl+avx2",
     "x86_64+avx2"
 ))]
-pub(super) fn tilt(index: Pair<'_>, along: f64, q: &mut [Lane; 2], y: &mut [Lane; 2]) {
+pub(super) fn tilt(index: Pair<'_>, along: &Lane, q: &mut [Lane; 2], y: &mut [Lane; 2]) {
     let [q_re, q_im] = q;
     let [y_re, y_im] = y;
     for l in 0..LANES {
         let (n, k) = (index.re[l], index.im[l]);
         let (sr, si) = (n * n - k * k, 2.0 * n * k);
-        let (dr, di) = (sr - along * along, si);
+        let (dr, di) = (sr - along[l] * along[l], si);
         let size = (dr * dr + di * di).sqrt();
         let large = (0.5 * (size + dr.abs())).sqrt();
         let large = if large > 1e-8 { large } else { 1e-8 };

@@ -102,7 +102,7 @@ impl Stack {
     /// Where light of no preferred polarisation is absorbed in the layer `sheet`, by wavelength.
     pub fn profile(&self, sheet: usize) -> Vec<Profile> {
         let mut profiles = self.profile_polarized(Polarization::S, sheet);
-        if self.incidence_rad != 0.0 {
+        if self.is_oblique() {
             let other = self.profile_polarized(Polarization::P, sheet);
             for (profile, other) in profiles.iter_mut().zip(&other) {
                 let own = *profile;

@@ -91,7 +91,7 @@ impl Stack {
     /// Shares and their derivatives, light of no preferred polarisation.
     pub fn solve_with_slopes(&self) -> (Shares, Slopes) {
         let (mut shares, mut slopes) = self.slopes_polarized(Polarization::S);
-        if self.incidence_rad != 0.0 {
+        if self.is_oblique() {
             let (other, other_slopes) = self.slopes_polarized(Polarization::P);
             shares.add(&other);
             shares.halve();
@@ -118,7 +118,7 @@ impl Stack {
     /// preferred polarisation.
     pub fn solve_with_gradient(&self, merit: &Merit) -> (Shares, Vec<f64>) {
         let (mut shares, mut gradient) = self.gradient_polarized(Polarization::S, merit);
-        if self.incidence_rad != 0.0 {
+        if self.is_oblique() {
             let (other, other_gradient) = self.gradient_polarized(Polarization::P, merit);
             shares.add(&other);
             shares.halve();
