@@ -11,6 +11,7 @@
 //! Every pass returns an [`finding::Outcome`]: as much of its value as could be made, and all it
 //! has to say. See `DEVELOPERS.md` for the rooms and the direction of dependence between them.
 
+pub mod carriers;
 pub mod check;
 pub mod circuit;
 pub mod cli;
