@@ -6,3 +6,4 @@ pub mod curve;
 pub mod diode;
 pub mod radiative;
 pub mod series;
+pub mod tunnel;

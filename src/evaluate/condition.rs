@@ -35,10 +35,9 @@ pub(super) fn condition_result(design: &Design, condition: &Condition, lit: &Lit
     let wirings = strings(design);
     for wiring in &wirings {
         let own: Vec<Diode> = wiring.junctions.iter().map(|&junction| diodes[junction].clone()).collect();
-        let series =
-            Series { diodes: &own, resistance_ohm_m2: wiring.fingers_ohm_m2 + wiring.tunnels_ohm_m2 };
+        let series = Series::new(&own, wiring.fingers_ohm_m2 + wiring.tunnels_ohm_m2, &[]);
         let short = series.short_circuit();
-        let best = series.maximum_power(short.current);
+        let best = series.maximum_power(&short);
         if wirings.len() == 1 {
             whole = Some((
                 series.open_circuit().voltage,
@@ -101,9 +100,9 @@ pub(super) fn condition_result(design: &Design, condition: &Condition, lit: &Lit
 }
 
 fn by_itself(diode: &Diode) -> Alone {
-    let series = Series { diodes: std::slice::from_ref(diode), resistance_ohm_m2: 0.0 };
+    let series = Series::new(std::slice::from_ref(diode), 0.0, &[]);
     let short = series.short_circuit();
-    let best = series.maximum_power(short.current);
+    let best = series.maximum_power(&short);
     let points = points(&series, &short, &best);
     let curve = Curve {
         voltage_v: points.iter().map(|point| point.voltage).collect(),

@@ -27,7 +27,7 @@ pub(super) fn dark_curve(design: &Design, diodes: &[Diode], strings: &[Wiring]) 
         [one] => one.fingers_ohm_m2 + one.tunnels_ohm_m2,
         _ => 0.0,
     };
-    let series = Series { diodes: &dark, resistance_ohm_m2 };
+    let series = Series::new(&dark, resistance_ohm_m2, &[]);
     let mut points = Vec::new();
     for step in LEAST_DECADE * PER_DECADE..=last_decade * PER_DECADE {
         let current_ma = 10f64.powf(f64::from(step) / f64::from(PER_DECADE));

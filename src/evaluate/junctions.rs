@@ -22,13 +22,11 @@ pub(super) fn diodes(design: &Design, condition: &Condition, lit: &Lit, factor: 
             let thermal_v = thermal_voltage(condition.temperature_k);
             let radiative = &lit.emission[index];
             let photocurrent = factor * lit.photocurrent(index);
+            let made = if photocurrent < DARK_A_PER_M2 { 0.0 } else { photocurrent };
             let mut diode = Diode {
-                photocurrent: if photocurrent < DARK_A_PER_M2 { 0.0 } else { photocurrent },
-                thermal_v,
                 radiative: Some((radiative.clone(), 1.0)),
-                j01: 0.0,
-                j02: 0.0,
                 shunt_conductance: shunt(junction).map_or(0.0, f64::recip),
+                ..Diode::lossless(made, thermal_v)
             };
             match &junction.voltage {
                 VoltageModel::RadiativeLimit | VoltageModel::Layers => {}

@@ -26,7 +26,7 @@ fn close(value: f64, expected: f64, tolerance: f64) {
 
 fn one_diode(photocurrent: f64, j01: f64, temperature_k: f64) -> Diode {
     let thermal_v = thermal_voltage(temperature_k);
-    Diode { photocurrent, thermal_v, radiative: None, j01, j02: 0.0, shunt_conductance: 0.0 }
+    Diode { j01, ..Diode::lossless(photocurrent, thermal_v) }
 }
 
 #[test]
@@ -66,8 +66,8 @@ fn the_fill_factor_of_one_diode() {
     for (v, exact) in [(15.0, 0.765_268), (25.0, 0.836_556), (40.0, 0.885_141)] {
         let j01 = 100.0 / f64::exp_m1(v);
         let diode = one_diode(100.0, j01, 298.15);
-        let series = Series { diodes: std::slice::from_ref(&diode), resistance_ohm_m2: 0.0 };
-        let best = series.maximum_power(series.short_circuit().current);
+        let series = Series::new(std::slice::from_ref(&diode), 0.0, &[]);
+        let best = series.maximum_power(&series.short_circuit());
         let fill = best.current * best.voltage / (100.0 * v * diode.thermal_v);
         close(fill, exact, 1e-6);
         close(fill, (v - f64::ln(v + 0.72)) / (v + 1.0), 2e-4);
@@ -82,7 +82,7 @@ fn two_unequal_cells_in_series() {
         one_diode(138.0, 138.0 / (1.3 / thermal_v).exp_m1(), 298.15),
         one_diode(170.0, 170.0 / (1.0 / thermal_v).exp_m1(), 298.15),
     ];
-    let series = Series { diodes: &diodes, resistance_ohm_m2: 0.0 };
+    let series = Series::new(&diodes, 0.0, &[]);
     close(series.open_circuit().voltage, 2.3, 1e-9);
     let short = series.short_circuit();
     assert!(short.current >= 138.0 * (1.0 - 1e-9) && short.current < 170.0);
@@ -91,7 +91,7 @@ fn two_unequal_cells_in_series() {
     // 0.96 V / 0.1 ohm m2 = 9.6 A/m2.
     let mut shunted = diodes.clone();
     shunted[0].shunt_conductance = 10.0;
-    let short = Series { diodes: &shunted, resistance_ohm_m2: 0.0 }.short_circuit();
+    let short = Series::new(&shunted, 0.0, &[]).short_circuit();
     close(short.current, 138.0 - 10.0 * short.junctions[0], 1e-6);
     assert!(short.current > 147.0 && short.current < 148.0, "{}", short.current);
 }
