@@ -20,7 +20,10 @@ use crate::materials::{
 
 pub mod blend;
 mod label;
+mod ordering;
 pub mod solve;
+
+pub use ordering::Ordering;
 
 /// Avogadro constant, 1/mol (exact, SI 2019).
 const AVOGADRO: f64 = 6.022_140_76e23;
@@ -69,19 +72,6 @@ pub struct Bowing {
     /// By quantity: `direct`, `x`, `l`, or a name of
     /// [`constants::NAMES`](crate::materials::constants::NAMES).
     pub laws: BTreeMap<&'static str, BowingLaw>,
-}
-
-/// Spontaneous ordering lowers the direct gap of a family below that of the random alloy.
-#[derive(Clone, Debug, PartialEq)]
-pub struct Ordering {
-    /// The element whose fraction marks the reference composition.
-    pub element: String,
-    /// That fraction.
-    pub fraction: f64,
-    /// The direct gap there at 300 K by default, eV.
-    pub gap_ev: f64,
-    /// Lowest and highest gap met there, eV.
-    pub span_ev: (f64, f64),
 }
 
 /// How a family answers to light.
@@ -225,24 +215,6 @@ impl Family {
         }
     }
 
-    /// What ordering adds to the direct gap, eV, ≤ 0 by default: proportional to the product of
-    /// the two fractions, as the bowing is, and such that the gap at the reference composition is
-    /// the stated one.
-    fn ordering_shift(&self, composition: &Composition) -> f64 {
-        let Some(ordering) = &self.ordering else { return 0.0 };
-        let Some((site, at)) = self.position(&ordering.element) else { return 0.0 };
-        if self.freedom() != 1 {
-            return 0.0;
-        }
-        let mut reference = self.corner();
-        reference[site] = vec![1.0 - ordering.fraction; 2];
-        reference[site][at] = ordering.fraction;
-        let Some(random) = self.random_bands(&reference).gamma else { return 0.0 };
-        let product = |composition: &Composition| composition[site].iter().product::<f64>();
-        let share = product(composition) / product(&reference);
-        (ordering.gap_ev - random.at(ROOM_TEMPERATURE_K)) * share
-    }
-
     /// The direct gap of the random alloy at 300 K, eV.
     pub fn random_gap_ev(&self, composition: &Composition) -> Option<f64> {
         self.random_bands(composition).gamma.map(|gamma| gamma.at(ROOM_TEMPERATURE_K))
@@ -354,7 +326,8 @@ impl Family {
             }
         }
         for origin in &self.origins {
-            if origin.what == "ordering" && (ordered_to_ev.is_some() || self.freedom() != 1) {
+            let ordered = self.ordering_share(composition) > 0.0;
+            if origin.what == "ordering" && (ordered_to_ev.is_some() || !ordered) {
                 continue;
             }
             add(origin.clone());

@@ -110,6 +110,28 @@ fn the_matched_gap_of_gainp_is_that_of_the_optical_sample() {
 }
 
 #[test]
+fn ordering_fades_with_aluminium() {
+    let direct = |phrase: &str| {
+        let material = found(phrase);
+        let gamma = material.bands.as_ref().and_then(|bands| bands.gamma.clone()).expect("a direct gap");
+        (gamma.at(300.0), material.optics.clone())
+    };
+    // One end is GaInP with its ordering, the other AlInP without any.
+    near(direct("(Al0Ga1)0.5163In0.4837P").0, direct("Ga0.5163In0.4837P").0, 1e-12, "at Al 0");
+    near(direct("(Al1Ga0)0.53In0.47P").0, direct("Al0.53In0.47P").0, 1e-12, "at Ga 0");
+    assert_eq!(direct("(Al1Ga0)0.53In0.47P").1, direct("Al0.53In0.47P").1);
+    // Halfway half of the 46 meV are left: 1.926 less 1.88 eV.
+    let family = family("AlGaInP");
+    let half = [vec![0.5163 / 2.0, 0.5163 / 2.0, 0.4837], vec![1.0]];
+    let ordered = family.bands(&half).gamma.expect("a direct gap").at(300.0);
+    near(family.random_gap_ev(&half).expect("a gap") - ordered, 0.023, 1e-3, "halfway");
+    let material = matched("AlGaInP matched of gap 2.0 eV", "GaAs");
+    assert!(material.origins.iter().any(|it| it.what == "ordering" && it.kind == OriginKind::Estimate));
+    assert!(!found("Al0.53In0.47P").origins.iter().any(|it| it.what == "ordering"));
+    assert!(!found("In0.7Ga0.3As0.6P0.4").origins.iter().any(|it| it.what == "ordering"));
+}
+
+#[test]
 fn algaas_turns_indirect_where_the_handbooks_say() {
     // Window 0.40 to 0.46 of the handbooks (S. Adachi, J. Appl. Phys. 58, R1 (1985): 0.43-0.45).
     let family = family("AlGaAs");

@@ -6,7 +6,7 @@ use std::sync::Arc;
 use crate::finding::Finding;
 use crate::materials::alloy::{Bowing, BowingLaw, Compound, Family, FamilyIndex, Ordering};
 use crate::materials::elements::{Site, site};
-use crate::materials::formula;
+use crate::materials::{Origin, formula};
 use crate::resolve::materials::Definition;
 use crate::resolve::materials::blocks::Reader;
 use crate::resolve::materials::values::{Arguments, Kind, properties, quantity};
@@ -18,6 +18,9 @@ use crate::units::ELEMENTARY_CHARGE;
 /// The words an `alloy` block knows.
 const GROUPS: &[&str] =
     &["about", "bowing", "caution", "cite", "index", "members", "ordering", "source", "ternaries"];
+
+/// End members, bowings and ordering of the ternaries of a family.
+type Parts = (Vec<Arc<Compound>>, Vec<Bowing>, Option<Ordering>);
 
 impl Reader<'_> {
     pub(super) fn family(&mut self, item: &Named) -> Option<Family> {
@@ -36,8 +39,8 @@ impl Reader<'_> {
                 ));
             }
         }
-        let (members, mut bowings) = match (find("members"), find("ternaries")) {
-            (Some(members), _) => (self.members(members)?, Vec::new()),
+        let (members, mut bowings, ordering) = match (find("members"), find("ternaries")) {
+            (Some(members), _) => (self.members(members)?, Vec::new(), None),
             (None, Some(ternaries)) => self.ternaries(ternaries)?,
             (None, None) => {
                 self.scope.report(
@@ -73,12 +76,19 @@ impl Reader<'_> {
             sites,
             members,
             bowings,
-            ordering: None,
+            ordering,
             index: FamilyIndex::None,
             origins: Vec::new(),
             cautions: Vec::new(),
         };
-        family.ordering = find("ordering").and_then(|group| self.ordering(group, &family));
+        if let Some(group) = find("ordering") {
+            family.ordering = self.ordering(group, &family);
+        }
+        // Ordering is known of ternaries with one element on the other sublattice.
+        if family.sites.iter().all(|site| site.len() > 1) {
+            family.ordering = None;
+            self.origins.retain(|origin| origin.what != "ordering");
+        }
         if let Some(group) = find("index") {
             family.index = self.family_index(group, &family);
         }
@@ -129,10 +139,11 @@ impl Reader<'_> {
         self.scope.report(names::unknown(what, name, known.iter().map(String::as_str), &otherwise));
     }
 
-    /// `ternaries AlGaP, AlInP, GaInP`: their end members and their bowings.
-    fn ternaries(&mut self, property: &Property) -> Option<(Vec<Arc<Compound>>, Vec<Bowing>)> {
+    /// `ternaries AlGaP, AlInP, GaInP`: their end members, their bowings and their ordering.
+    fn ternaries(&mut self, property: &Property) -> Option<Parts> {
         let mut arguments = Arguments::of(property);
         let (mut members, mut bowings): (Vec<Arc<Compound>>, Vec<Bowing>) = (Vec::new(), Vec::new());
+        let mut ordering = None;
         while let Some(name) = arguments.word() {
             let Some(Definition::Family(ternary)) = self.library.find(&name.value, self.scope) else {
                 self.unknown_material(name, "alloy");
@@ -144,14 +155,16 @@ impl Reader<'_> {
                 }
             }
             bowings.extend(ternary.bowings.iter().cloned());
-            for origin in ternary.origins.iter().filter(|origin| origin.what == "bowing") {
+            ordering = ordering.or_else(|| ternary.ordering.clone());
+            let kept = |origin: &&Origin| origin.what == "bowing" || origin.what == "ordering";
+            for origin in ternary.origins.iter().filter(kept) {
                 if !self.origins.contains(origin) {
                     self.origins.push(origin.clone());
                 }
             }
         }
         arguments.end(self.scope);
-        Some((members, bowings))
+        Some((members, bowings, ordering))
     }
 
     /// Sorts end members into the grid of their sublattices, elements in the order of the name.
@@ -279,10 +292,11 @@ impl Reader<'_> {
             }
         }
         self.origin(group, "ordering");
-        if let (Some((gap_ev, element, fraction)), Some(span_ev), true) =
-            (reference, span_ev, family.freedom() == 1)
+        let mixed = family.sites.iter().find(|site| site.len() == 2).filter(|_| family.freedom() == 1);
+        if let (Some((gap_ev, element, fraction)), Some(span_ev), Some(mixed)) = (reference, span_ev, mixed)
+            && let Some(other) = mixed.iter().find(|other| **other != element)
         {
-            return Some(Ordering { element, fraction, gap_ev, span_ev });
+            return Some(Ordering { pair: [element, other.clone()], fraction, gap_ev, span_ev });
         }
         self.scope.report(
             Finding::error(

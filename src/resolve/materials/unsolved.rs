@@ -288,16 +288,13 @@ fn incomplete(asked: &Asked<'_>) -> Finding {
 pub(super) fn ordering(asked: &Asked<'_>, composition: &Composition, gap: f64) -> Option<Finding> {
     let place = asked.ordered.unwrap_or(asked.span());
     let name = asked.name();
-    let Some(ordering) = &asked.family.ordering else {
+    let Some((low, high)) = asked.family.ordered_span_ev(composition) else {
         return Some(
             Finding::error("gap.unreachable", format!("`{name}` shows no ordering that would move its gap"))
                 .at(place, "no ordering is known of this family")
                 .help(format!("write `{} of gap {}`", written(asked.request), ev(gap))),
         );
     };
-    let random = asked.family.random_gap_ev(composition)?;
-    let depth = ordering.span_ev.1 - ordering.span_ev.0;
-    let (low, high) = (random - depth, random);
     // 5 meV: the span is given with two decimals.
     if (low - 5e-3..=high + 5e-3).contains(&gap) {
         return None;
