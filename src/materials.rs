@@ -8,6 +8,7 @@
 use std::sync::Arc;
 
 pub mod alloy;
+pub mod carriers;
 pub mod constants;
 pub mod elements;
 pub mod formula;
@@ -15,6 +16,7 @@ pub mod library;
 pub mod optics;
 pub mod table;
 
+use carriers::Carriers;
 use constants::Constants;
 use optics::Optics;
 
@@ -277,6 +279,8 @@ pub struct Material {
     pub density_g_per_cm3: Option<f64>,
     /// Masses, split-off energy, deformation potentials, permittivity, … as far as stated.
     pub constants: Constants,
+    /// Mobility, lifetimes, recombination, doping limits, damage, as far as known.
+    pub carriers: Carriers,
     /// Refractive index, and what is absorbed.
     pub optics: Optics,
     /// Where its numbers come from, one entry a group.
@@ -299,6 +303,7 @@ impl Material {
             elastic: None,
             density_g_per_cm3: None,
             constants: Constants::default(),
+            carriers: Carriers::default(),
             optics: Optics::None,
             origins: Vec::new(),
             cautions: Vec::new(),

@@ -22,6 +22,7 @@ pub mod blend;
 mod label;
 mod ordering;
 pub mod solve;
+pub mod transport;
 
 pub use ordering::Ordering;
 
@@ -102,6 +103,8 @@ pub struct Family {
     pub ordering: Option<Ordering>,
     /// Index and absorption.
     pub index: FamilyIndex,
+    /// What its carriers do, as far as its end members do not say it.
+    pub carriers: transport::FamilyCarriers,
     /// Where its own numbers come from.
     pub origins: Vec<Origin>,
     /// Caution classes.
@@ -268,7 +271,10 @@ impl Family {
         material.constants = self.constants(composition);
         material.density_g_per_cm3 = self.density(composition);
         material.bands = Some(bands);
+        material.carriers = self.carriers_at(composition);
         material.origins = self.origins_at(composition, ordered_to_ev);
+        let has_edge = self.index != FamilyIndex::None;
+        material.origins.extend(crate::materials::carriers::derived(&material, has_edge));
         material.cautions = self.cautions.clone();
         material
     }
@@ -319,8 +325,15 @@ impl Family {
                 origins.push(origin);
             }
         };
+        let of_family = |what: &str| self.origins.iter().any(|origin| origin.what == what);
         for (weight, member) in self.weighted(composition) {
-            let of_bands = |origin: &&Origin| origin.what != "index" && origin.what != "critical points";
+            // What is worked out of the alloy itself, or stated of all of it, is no member's.
+            const OWN: [&str; 5] =
+                ["index", "critical points", "densities of states", "radiative", "affinity"];
+            let of_bands = |origin: &&Origin| {
+                let what = origin.what.as_str();
+                !OWN.contains(&what) && (what == "mobility" || !of_family(what))
+            };
             for origin in member.origins.iter().filter(of_bands).filter(|_| weight > 0.0) {
                 add(origin.clone());
             }
@@ -332,6 +345,7 @@ impl Family {
             }
             add(origin.clone());
         }
+        self.carrier_origins(composition).into_iter().for_each(&mut add);
         if let Some(ordered) = ordered_to_ev {
             let random = self.random_gap_ev(composition).unwrap_or(ordered);
             add(Origin {

@@ -27,6 +27,7 @@ mod misplaced;
 mod models;
 mod phrases;
 mod samples;
+mod transport;
 mod unsolved;
 mod values;
 

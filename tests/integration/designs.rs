@@ -31,6 +31,7 @@ pub(crate) fn material(gap_ev: f64, optics: Optics) -> SharedMaterial {
         elastic: None,
         density_g_per_cm3: None,
         constants: Default::default(),
+        carriers: Default::default(),
         optics,
         origins: Vec::new(),
         cautions: Vec::new(),

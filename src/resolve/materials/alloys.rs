@@ -4,11 +4,13 @@ use std::collections::BTreeMap;
 use std::sync::Arc;
 
 use crate::finding::Finding;
+use crate::materials::alloy::transport::FamilyCarriers;
 use crate::materials::alloy::{Bowing, BowingLaw, Compound, Family, FamilyIndex, Ordering};
 use crate::materials::elements::{Site, site};
 use crate::materials::{Origin, formula};
 use crate::resolve::materials::Definition;
 use crate::resolve::materials::blocks::Reader;
+use crate::resolve::materials::transport;
 use crate::resolve::materials::values::{Arguments, Kind, properties, quantity};
 use crate::resolve::names;
 use crate::source::Spanned;
@@ -29,14 +31,10 @@ impl Reader<'_> {
         let find = |word: &str| statements.iter().copied().find(|property| property.name.value == word);
         for property in &statements {
             let word = property.name.value.as_str();
-            if !GROUPS.contains(&word) {
+            if !GROUPS.contains(&word) && !transport::GROUPS.contains(&word) {
                 let otherwise = "an alloy takes `members` or `ternaries`, `bowing`, `ordering`, `index`";
-                self.scope.report(names::unknown(
-                    "group of an alloy",
-                    &property.name,
-                    GROUPS.iter().copied(),
-                    otherwise,
-                ));
+                let known = GROUPS.iter().chain(transport::GROUPS).copied();
+                self.scope.report(names::unknown("group of an alloy", &property.name, known, otherwise));
             }
         }
         let (members, mut bowings, ordering) = match (find("members"), find("ternaries")) {
@@ -78,6 +76,7 @@ impl Reader<'_> {
             bowings,
             ordering,
             index: FamilyIndex::None,
+            carriers: FamilyCarriers::default(),
             origins: Vec::new(),
             cautions: Vec::new(),
         };
@@ -92,6 +91,7 @@ impl Reader<'_> {
         if let Some(group) = find("index") {
             family.index = self.family_index(group, &family);
         }
+        self.family_carriers(&statements, &mut family);
         family.cautions = match find("caution") {
             Some(property) => self.words(property),
             None => cautions(&family),

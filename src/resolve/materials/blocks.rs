@@ -7,6 +7,7 @@ use crate::finding::Finding;
 use crate::materials::alloy::{Compound, zinc_blende_density};
 use crate::materials::optics::Optics;
 use crate::materials::{Material, MaterialClass, Origin, OriginKind, elements, formula};
+use crate::resolve::materials::transport;
 use crate::resolve::materials::values::{Arguments, Kind, properties, single};
 use crate::resolve::materials::{Definition, ItemKind, Library};
 use crate::resolve::names;
@@ -32,9 +33,6 @@ const GROUPS: &[&str] = &[
     "permittivity",
     "source",
 ];
-
-/// Words of the language whose numbers nothing uses yet.
-const PENDING: &[&str] = &["mobility", "lifetime", "radiative", "doping_limit", "damage"];
 
 /// Words that are often written beside their group instead of into it.
 const HOMES: &[(&str, &[&str])] = &[
@@ -105,6 +103,7 @@ impl<'a> Reader<'a> {
                 group @ ("effective_mass" | "deformation" | "permittivity") => {
                     self.constants(property, group, &mut material.constants);
                 }
+                word if transport::GROUPS.contains(&word) => self.carriers(property, &mut material.carriers),
                 "critical_points" => critical_ev = self.critical_points(property),
                 // Needs the gap, which may stand below it.
                 "index" => index = Some(*property),
@@ -123,6 +122,8 @@ impl<'a> Reader<'a> {
             self.density_of_crystal(&mut material);
         }
         material.origins = std::mem::take(&mut self.origins);
+        let has_edge = matches!(&material.optics, Optics::Table(table) if table.gap_ev.is_some());
+        material.origins.extend(crate::materials::carriers::derived(&material, has_edge));
         if self.scope.finding_count() == before && index.is_none() {
             self.complete(item, &material);
         }
@@ -167,15 +168,7 @@ impl<'a> Reader<'a> {
             );
             return;
         }
-        if PENDING.contains(&word) {
-            self.scope.report(
-                Finding::advice("feature.pending", format!("`{word}` of a material is not evaluated yet"))
-                    .at(property.name.span, "read and left out")
-                    .help(format!("state `{word}` in the layers that need it")),
-            );
-            return;
-        }
-        let known = GROUPS.iter().chain(PENDING).copied();
+        let known = GROUPS.iter().chain(transport::GROUPS).copied();
         let otherwise = "delete it, or see `bandloom materials GaAs` for the groups a material has";
         self.scope.report(names::unknown("group of a material", &property.name, known, otherwise));
     }

@@ -149,6 +149,11 @@ impl Kind {
         Self::new(dimension, Role::NotNegative, unit, sample)
     }
 
+    /// As [`Kind::of`], above zero.
+    pub(super) const fn positive(dimension: Dimension, unit: f64, sample: &'static str) -> Self {
+        Self::new(dimension, Role::Positive, unit, sample)
+    }
+
     /// What a slot of that name takes.
     pub(super) fn expected(self, slot: &str) -> Expected<'_> {
         Expected::new(slot, self.dimension, self.role)
@@ -156,6 +161,8 @@ impl Kind {
 
     /// eV
     pub(super) const ENERGY: Self = Self::new(Dimension::ENERGY, Role::Any, ELEMENTARY_CHARGE, "1.42 eV");
+    /// eV, zero or more
+    pub(super) const NOT_NEGATIVE_ENERGY: Self = Self::of(Dimension::ENERGY, ELEMENTARY_CHARGE, "10 meV");
     /// eV, above zero
     pub(super) const GAP: Self = Self::new(Dimension::ENERGY, Role::Positive, ELEMENTARY_CHARGE, "1.42 eV");
     /// eV/K

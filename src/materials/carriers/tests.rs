@@ -1,0 +1,178 @@
+use super::*;
+use crate::materials::Material;
+use crate::resolve::materials::look_up;
+use std::sync::Arc;
+
+fn material(phrase: &str) -> Arc<Material> {
+    let (outcome, _) = look_up(phrase, Some("GaAs"));
+    assert!(!outcome.findings.has_errors(), "{phrase}: {:#?}", outcome.findings);
+    outcome.value.expect("a material")
+}
+
+#[track_caller]
+fn within(value: Option<f64>, low: f64, high: f64) {
+    let value = value.expect("a value");
+    assert!((low..=high).contains(&value), "{value:e} is not within {low:e} and {high:e}");
+}
+
+/// cm-3 to m-3, cm3/s to m3/s, cm2/V/s to m2/V/s.
+const PER_CM3: f64 = 1e6;
+const CM3_PER_S: f64 = 1e-6;
+const CM2: f64 = 1e-4;
+
+#[test]
+fn densities_of_states_are_those_of_handbooks() {
+    let at = |name: &str| {
+        let material = material(name);
+        (material.conduction_density_per_m3(300.0), material.valence_density_per_m3(300.0))
+    };
+    // S. M. Sze, K. K. Ng, Physics of Semiconductor Devices, 3rd ed. (2007), appendix, from memory:
+    // GaAs 4.7e17 and 7.0e18; J. S. Blakemore, J. Appl. Phys. 53, R123 (1982): 4.21e17 and 9.51e18.
+    let (electrons, holes) = at("GaAs");
+    within(electrons, 4.1e17 * PER_CM3, 4.8e17 * PER_CM3);
+    within(holes, 7.0e18 * PER_CM3, 1.0e19 * PER_CM3);
+    // M. A. Green, J. Appl. Phys. 67, 2944 (1990): 2.86e19 and 3.10e19.
+    let (electrons, holes) = at("Si");
+    within(electrons, 2.84e19 * PER_CM3, 2.88e19 * PER_CM3);
+    within(holes, 3.08e19 * PER_CM3, 3.12e19 * PER_CM3);
+    // Ioffe Institute archive: 1.0e19 and 5.0e18.
+    let (electrons, holes) = at("Ge");
+    within(electrons, 0.95e19 * PER_CM3, 1.1e19 * PER_CM3);
+    within(holes, 4.5e18 * PER_CM3, 6.0e18 * PER_CM3);
+    // Ioffe Institute archive: 5.7e17 and 1.1e19.
+    let (electrons, holes) = at("InP");
+    within(electrons, 5.2e17 * PER_CM3, 6.0e17 * PER_CM3);
+    within(holes, 1.0e19 * PER_CM3, 1.3e19 * PER_CM3);
+}
+
+#[test]
+fn silicon_counts_its_valleys_and_germanium_its_own() {
+    // The whole mass from one ellipsoid of each: (6² · 0.98 · 0.19²)^(1/3) and (4² · 1.59 · 0.0815²)^(1/3).
+    let silicon = (36.0_f64 * 0.98 * 0.19 * 0.19).cbrt();
+    let germanium = (16.0_f64 * 1.59 * 0.0815 * 0.0815).cbrt();
+    let stated = |name: &str| material(name).constants.get("mass.electron_density");
+    within(stated("Si"), silicon * 0.99, silicon * 1.02);
+    within(stated("Ge"), germanium * 0.98, germanium * 1.01);
+}
+
+#[test]
+fn warped_bands_average_to_the_closed_form_where_they_are_not_warped() {
+    let mut spherical = Material::bare("x", crate::materials::MaterialClass::Semiconductor);
+    for (name, value) in [("mass.luttinger1", 7.0), ("mass.luttinger2", 2.5), ("mass.luttinger3", 2.5)] {
+        spherical.constants.0.insert(name, value);
+    }
+    let of_two = (1.0_f64 / 2.0).powf(1.5) + (1.0_f64 / 12.0).powf(1.5);
+    let per_mass = 2.509_4e25;
+    within(spherical.valence_density_per_m3(300.0), of_two * per_mass * 0.9995, of_two * per_mass * 1.0005);
+}
+
+#[test]
+fn intrinsic_densities_at_300_k() {
+    let at = |name: &str| material(name).intrinsic_density_per_m3(300.0);
+    // 2.1e6 (modern) to 2.25e6 (Blakemore 1982); 1.79e6 in older textbooks.
+    within(at("GaAs"), 1.8e6 * PER_CM3, 2.5e6 * PER_CM3);
+    // 2.0e13 (Sze) to 2.33e13 (F. J. Morin, J. P. Maita, Phys. Rev. 94, 1525 (1954)).
+    within(at("Ge"), 1.9e13 * PER_CM3, 2.4e13 * PER_CM3);
+    // Ioffe Institute archive: 1.3e7.
+    within(at("InP"), 0.9e7 * PER_CM3, 1.6e7 * PER_CM3);
+}
+
+#[test]
+fn low_field_mobilities_at_300_k() {
+    let electrons = |name: &str, doping: f64| {
+        material(name).mobility_m2_per_vs(Carrier::Electron, doping * PER_CM3, 300.0)
+    };
+    let holes =
+        |name: &str, doping: f64| material(name).mobility_m2_per_vs(Carrier::Hole, doping * PER_CM3, 300.0);
+    // Measured Hall mobilities of n-GaAs as collected in handbooks (Ioffe Institute archive): about
+    // 8000 to 9400 undoped, 4500 to 5500 at 1e17, 2300 to 3000 at 1e18 /cm3; p-GaAs 400 undoped,
+    // 200 to 250 at 1e18, 50 to 100 at 1e20 /cm3.
+    within(electrons("GaAs", 1e13), 8000.0 * CM2, 9400.0 * CM2);
+    within(electrons("GaAs", 1e17), 4000.0 * CM2, 5500.0 * CM2);
+    within(electrons("GaAs", 1e18), 2200.0 * CM2, 3200.0 * CM2);
+    within(holes("GaAs", 1e14), 380.0 * CM2, 492.0 * CM2);
+    within(holes("GaAs", 1e18), 150.0 * CM2, 250.0 * CM2);
+    within(holes("GaAs", 1e20), 40.0 * CM2, 100.0 * CM2);
+    // InP: 5000 undoped, 2500 to 3200 at 1e17, 1500 to 2200 at 1e18 /cm3.
+    within(electrons("InP", 1e14), 4500.0 * CM2, 5400.0 * CM2);
+    within(electrons("InP", 1e17), 2800.0 * CM2, 3800.0 * CM2);
+    within(electrons("InP", 1e18), 1500.0 * CM2, 2400.0 * CM2);
+    // Ga0.51In0.49P: 1000 to 1700 at 1e17 /cm3, falling to 500 to 900 at 1e18; holes 30 to 40 at 1e18.
+    within(electrons("Ga0.51In0.49P", 1e17), 900.0 * CM2, 1800.0 * CM2);
+    within(electrons("Ga0.51In0.49P", 1e18), 450.0 * CM2, 900.0 * CM2);
+    within(holes("Ga0.51In0.49P", 1e18), 30.0 * CM2, 50.0 * CM2);
+}
+
+#[test]
+fn a_mobility_falls_with_doping_and_with_temperature() {
+    for name in ["GaAs", "InP", "GaP", "Ga0.51In0.49P", "Ga0.7In0.3P"] {
+        let material = material(name);
+        for carrier in Carrier::BOTH {
+            let at = |doping: f64, kelvin: f64| {
+                material.mobility_m2_per_vs(carrier, doping, kelvin).expect("a mobility")
+            };
+            for decade in 18..27 {
+                let (low, high) = (10f64.powi(decade), 10f64.powi(decade + 1));
+                assert!(at(high, 300.0) < at(low, 300.0) && at(high, 300.0) > 0.0, "{name} {decade}");
+            }
+            assert!(at(1e20, 400.0) < at(1e20, 300.0) && at(1e20, 300.0) < at(1e20, 200.0), "{name}");
+        }
+    }
+}
+
+#[test]
+fn absorption_gives_the_published_radiative_coefficients() {
+    let at = |name: &str| material(name).radiative_coefficient_m3_per_s(300.0);
+    let near = |name: &str, published: f64, factor: f64| {
+        within(at(name), published * CM3_PER_S / factor, published * CM3_PER_S * factor);
+    };
+    // Y. P. Varshni, Phys. Status Solidi 19, 459 (1967), and handbooks since: GaAs 7.2e-10.
+    near("GaAs", 7.2e-10, 1.5);
+    // Varshni (1967): 6.41e-14 by the same formula.
+    near("Ge", 6.4e-14, 1.5);
+}
+
+#[test]
+fn affinities_follow_the_valence_offsets() {
+    let affinity = |name: &str| material(name).affinity_ev(300.0);
+    within(affinity("GaAs"), 4.069, 4.071);
+    // Handbooks (Ioffe Institute archive): InP 4.38, GaP 3.8; measured one by one.
+    within(affinity("InP"), 4.2, 4.45);
+    within(affinity("GaP"), 3.6, 3.9);
+    // The conduction band of GaInP lies 0.1 to 0.22 eV above that of GaAs: published offsets.
+    let step = affinity("GaAs").zip(affinity("Ga0.516In0.484P")).map(|(low, high)| low - high);
+    within(step, 0.08, 0.22);
+}
+
+#[test]
+fn narrowing_rises_with_doping_from_nothing() {
+    let gallium_arsenide = material("GaAs");
+    let at = |majority, doping: f64| gallium_arsenide.gap_narrowing_ev(majority, doping, 300.0);
+    assert_eq!(at(Carrier::Hole, 0.0), Some(0.0));
+    // p-GaAs at 1e19 /cm3: 50 to 75 meV by measurement (H. C. Casey, F. Stern, J. Appl. Phys. 47,
+    // 631 (1976): 1.6e-8 N^(1/3) = 34 meV, as the lower end; M. E. Klausmeier-Brown et al. (1987): 70).
+    within(at(Carrier::Hole, 1e25), 0.034, 0.075);
+}
+
+#[test]
+fn damage_shortens_a_diffusion_length() {
+    let damage = material("GaAs").damage().expect("a constant");
+    assert_eq!(damage.particle, Particle::Electrons);
+    // 1 MeV.
+    assert!((damage.energy_j / 1.602_176_634e-13 - 1.0).abs() < 1e-12);
+    // 1/L² = 1/(5 µm)² + 6e-8 · 1e15 /cm2.
+    let after = damage.diffusion_length_m(Carrier::Electron, 5e-6, 1e19);
+    let expected = (1.0 / (1.0 / 25e-12 + 6e-8 * 1e19_f64)).sqrt();
+    within(after, expected * 0.999_999, expected * 1.000_001);
+}
+
+#[test]
+fn unknown_stays_unknown() {
+    let coat = material("MgF2");
+    assert_eq!(coat.mobility_m2_per_vs(Carrier::Hole, 1e22, 300.0), None);
+    assert_eq!(coat.intrinsic_density_per_m3(300.0), None);
+    assert_eq!(coat.radiative_coefficient_m3_per_s(300.0), None);
+    assert_eq!(coat.non_radiative_lifetime_s(Carrier::Hole, 1e22, 300.0), None);
+    assert_eq!(coat.affinity_ev(300.0), None);
+    assert_eq!(coat.damage(), None);
+}
