@@ -8,7 +8,7 @@ use crate::report::palette::style_number;
 use crate::report::text::visible;
 use crate::results::{ConditionResult, LayerLight, LayerResult, Results};
 
-/// The input and its first condition, under which the figures are drawn.
+/// The input and the condition that is drawn: the first, unless [`Context::under`] says otherwise.
 #[derive(Clone, Copy, Debug)]
 pub struct Context<'a> {
     /// All of it.
@@ -18,7 +18,9 @@ pub struct Context<'a> {
     /// What came out.
     pub results: &'a Results,
     /// The condition that is drawn.
-    pub first: &'a ConditionResult,
+    pub drawn: &'a ConditionResult,
+    /// Its index in [`Results::conditions`].
+    pub index: usize,
     /// Its current densities share one scale.
     pub scale: CurrentScale,
 }
@@ -26,20 +28,23 @@ pub struct Context<'a> {
 impl<'a> Context<'a> {
     /// `None` where no condition was evaluated: then there is nothing to put on a sheet.
     pub fn new(input: &'a ReportInput<'a>) -> Option<Self> {
-        let first = input.results.conditions.first()?;
-        let largest = first.junctions.iter().map(|j| j.photocurrent_ma_per_cm2).fold(0.0, f64::max);
-        Some(Self {
-            input,
-            design: input.design,
-            results: input.results,
-            first,
-            scale: CurrentScale::for_largest(largest),
-        })
+        let drawn = input.results.conditions.first()?;
+        let (design, results) = (input.design, input.results);
+        Some(Self { input, design, results, drawn, index: 0, scale: scale_of(drawn) })
+    }
+
+    /// The same under another condition; as it is where there is no such condition.
+    #[must_use]
+    pub fn under(&self, index: usize) -> Self {
+        match self.results.conditions.get(index) {
+            Some(drawn) => Self { drawn, index, scale: scale_of(drawn), ..*self },
+            None => *self,
+        }
     }
 
     /// Every layer with what came out for it, sunward first, numbered from 1.
     pub fn layers(&self) -> impl Iterator<Item = Row<'a>> {
-        let light = &self.first.layers;
+        let light = &self.drawn.layers;
         self.design.layers.iter().zip(&self.results.layers).enumerate().map(|(index, (layer, result))| Row {
             index,
             layer,
@@ -50,7 +55,7 @@ impl<'a> Context<'a> {
 
     /// Whether each junction has terminals of its own.
     pub fn separate(&self) -> bool {
-        self.first.voc_v.is_none() || self.design.terminals != Terminals::Two
+        self.drawn.voc_v.is_none() || self.design.terminals != Terminals::Two
     }
 
     /// The condition of the design behind a result.
@@ -60,19 +65,24 @@ impl<'a> Context<'a> {
 
     /// The index of a junction by name.
     pub fn junction_index(&self, name: &str) -> usize {
-        self.first.junctions.iter().position(|j| j.name == name).unwrap_or(0)
+        self.drawn.junctions.iter().position(|j| j.name == name).unwrap_or(0)
     }
 
     /// The limiting junction's index, where one limits.
     pub fn limiting(&self) -> Option<usize> {
-        let name = self.first.limiting_junction.as_ref()?;
-        self.first.junctions.iter().position(|j| j.name == *name)
+        let name = self.drawn.limiting_junction.as_ref()?;
+        self.drawn.junctions.iter().position(|j| j.name == *name)
     }
 
     /// The share of the area under the fingers.
     pub fn shading(&self) -> f64 {
         self.design.fingers.as_ref().map_or(0.0, |fingers| fingers.shading)
     }
+}
+
+fn scale_of(condition: &ConditionResult) -> CurrentScale {
+    let largest = condition.junctions.iter().map(|j| j.photocurrent_ma_per_cm2).fold(0.0, f64::max);
+    CurrentScale::for_largest(largest)
 }
 
 /// `under noon`; a stack's own condition has no name of the user's.
@@ -84,7 +94,7 @@ pub fn under(condition: &ConditionResult) -> String {
     }
 }
 
-/// One layer: as designed, as resolved, and in the light of the first condition.
+/// One layer: as designed, as resolved, and in the light of the condition that is drawn.
 #[derive(Clone, Copy, Debug)]
 pub struct Row<'a> {
     /// In [`Design::layers`].

@@ -16,6 +16,7 @@ use crate::report::view::Table;
 pub use label::{Anchor, Label, LabelBox};
 
 pub mod curves;
+pub mod dark;
 pub mod eqe;
 pub mod hatch;
 pub mod label;
@@ -34,10 +35,14 @@ pub const SLIM: f64 = 400.0;
 /// One figure of a sheet, with everything that goes with it.
 #[derive(Clone, Debug)]
 pub struct Figure {
-    /// Prefix of its ids, `f2`; no user's word is in it.
+    /// Prefix of its ids, `fig-light-2`; no user's word is in it.
     pub id: String,
-    /// From 1.
-    pub number: usize,
+    /// What it draws, `light`; the same under every condition.
+    pub kind: &'static str,
+    /// Index of the condition, where it is not the first.
+    pub further: Option<usize>,
+    /// `3`, or `3.2` for the same under the second condition; given when all are known.
+    pub number: String,
     /// What it shows, in a few words.
     pub title: String,
     /// What can be read from it, for those who do not see it.
@@ -57,11 +62,13 @@ pub struct Figure {
 }
 
 impl Figure {
-    /// Puts `drawing` and its words together; call order gives `number`.
-    pub fn new(number: usize, file: &str, title: &str, desc: String) -> Self {
+    /// A figure of some kind without its drawings; the sheet numbers it.
+    pub fn new(kind: &'static str, title: &str, desc: String) -> Self {
         Self {
-            id: format!("f{number}"),
-            number,
+            id: format!("fig-{kind}"),
+            kind,
+            further: None,
+            number: String::new(),
             title: title.into(),
             desc: visible(&desc),
             caption: Text::new(),
@@ -69,13 +76,26 @@ impl Figure {
             wide: Drawing::new(0.0, 0.0),
             slim: None,
             half: false,
-            file: format!("figure-{file}.svg"),
+            file: format!("figure-{kind}.svg"),
         }
     }
 
     /// The full drawing as a file of its own.
     pub fn standalone(&self) -> String {
         self.wide.standalone(self)
+    }
+
+    /// The same under the condition of that index, small enough to stand two abreast.
+    #[must_use]
+    pub fn folded(mut self, condition: usize) -> Self {
+        self.id = format!("fig-{}-{}", self.kind, condition + 1);
+        self.file = format!("figure-{}-{}.svg", self.kind, condition + 1);
+        self.further = Some(condition);
+        if let Some(slim) = self.slim.take() {
+            self.wide = slim;
+        }
+        self.half = true;
+        self
     }
 
     /// Sets the drawings.
@@ -176,6 +196,11 @@ impl Drawing {
             unit(to.0),
             unit(to.1)
         );
+    }
+
+    /// Straight lines of one class in one element.
+    pub fn lines(&mut self, class: &str, segments: &[((f64, f64), (f64, f64))]) {
+        self.path(class, &hatch::path(segments));
     }
 
     /// An open line through points.

@@ -14,13 +14,17 @@ use crate::report::text::{Text, visible};
 
 pub mod account;
 pub mod cautions;
+pub mod dark;
 pub mod electrical;
 pub mod findings;
+pub mod further;
 pub mod layers;
 pub mod optical;
+pub mod parts;
 pub mod sources;
 pub mod verdict;
 
+pub use parts::{Beside, Column, Fold, Group, Item, Section, Table};
 use sources::Sources;
 
 /// One sheet. Sections come in reading order; an empty one has neither figures, tables nor items
@@ -100,104 +104,6 @@ pub struct Link {
     pub heading: &'static str,
 }
 
-/// A section: heading, one sentence that states the result, then figures, tables, items, notes.
-#[derive(Clone, Debug, Default, Serialize)]
-pub struct Section {
-    /// Anchor.
-    pub id: &'static str,
-    /// Nouns.
-    pub heading: &'static str,
-    /// The result, with values.
-    pub lede: Option<Text>,
-    /// In order.
-    pub figures: Vec<Figure>,
-    /// After the figures.
-    pub tables: Vec<Table>,
-    /// A list.
-    pub items: Vec<Item>,
-    /// Whether the list is numbered (the sources).
-    pub numbered: bool,
-    /// Beside or after.
-    pub notes: Vec<Text>,
-}
-
-impl Section {
-    fn new(id: &'static str, heading: &'static str) -> Self {
-        Self { id, heading, ..Self::default() }
-    }
-
-    fn is_there(&self) -> bool {
-        !(self.figures.is_empty() && self.tables.is_empty() && self.items.is_empty())
-    }
-}
-
-/// An entry of a list.
-#[derive(Clone, Debug, Serialize)]
-pub struct Item {
-    /// What it is about; may be empty.
-    pub head: Text,
-    /// What there is to say.
-    pub body: Text,
-}
-
-/// A table. The first cell of each row is its heading.
-#[derive(Clone, Debug, Default, Serialize)]
-pub struct Table {
-    /// What it holds.
-    pub caption: Text,
-    /// Heads.
-    pub columns: Vec<Column>,
-    /// Rows, under a heading each where there are several groups.
-    pub groups: Vec<Group>,
-    /// `big` for headline figures, `roomy` where it needs width, `fold` where it may be folded.
-    pub kind: &'static str,
-}
-
-impl Table {
-    /// Heads as given; those that begin with `>` are set to the right, as numbers are.
-    pub fn new(caption: Text, heads: &[&str]) -> Self {
-        let columns = heads
-            .iter()
-            .map(|head| match head.strip_prefix('>') {
-                Some(head) => Column { head: Text::of(head), right: true },
-                None => Column { head: Text::of(*head), right: false },
-            })
-            .collect();
-        Self { caption, columns, groups: vec![Group::default()], kind: "" }
-    }
-
-    /// Adds a row to the last group.
-    pub fn row(&mut self, cells: Vec<Text>) {
-        if let Some(group) = self.groups.last_mut() {
-            group.rows.push(cells);
-        }
-    }
-
-    /// Opens a group.
-    pub fn group(&mut self, head: Text) {
-        self.groups.retain(|group| !group.rows.is_empty());
-        self.groups.push(Group { head: Some(head), rows: Vec::new() });
-    }
-}
-
-/// The head of a column.
-#[derive(Clone, Debug, Serialize)]
-pub struct Column {
-    /// Its words.
-    pub head: Text,
-    /// Whether its cells are set to the right.
-    pub right: bool,
-}
-
-/// Rows that belong together.
-#[derive(Clone, Debug, Default, Serialize)]
-pub struct Group {
-    /// What they share.
-    pub head: Option<Text>,
-    /// Cells.
-    pub rows: Vec<Vec<Text>>,
-}
-
 impl Sheet {
     /// Every section but the verdict and the findings, in reading order.
     pub fn sections(&self) -> impl Iterator<Item = &Section> {
@@ -219,7 +125,40 @@ impl Sheet {
 
     /// Every figure, in reading order.
     pub fn figures(&self) -> impl Iterator<Item = &Figure> {
-        self.sections().flat_map(|section| &section.figures)
+        self.sections().flat_map(Section::drawings)
+    }
+
+    fn sections_mut(&mut self) -> impl Iterator<Item = &mut Section> {
+        [
+            &mut self.headline,
+            &mut self.stack,
+            &mut self.layers,
+            &mut self.light,
+            &mut self.curves,
+            &mut self.ledger,
+            &mut self.conditions,
+            &mut self.models,
+            &mut self.assumptions,
+            &mut self.cautions,
+            &mut self.sources,
+        ]
+        .into_iter()
+    }
+
+    /// Numbers the figures in reading order; the same under a further condition has the number of
+    /// the first with the condition's behind it.
+    fn number_figures(&mut self) {
+        let mut kinds: Vec<&'static str> = Vec::new();
+        for figure in self.sections_mut().flat_map(Section::drawings_mut) {
+            let at = kinds.iter().position(|kind| *kind == figure.kind).unwrap_or_else(|| {
+                kinds.push(figure.kind);
+                kinds.len() - 1
+            });
+            figure.number = match figure.further {
+                Some(condition) => format!("{}.{}", at + 1, condition + 1),
+                None => (at + 1).to_string(),
+            };
+        }
     }
 }
 
@@ -259,6 +198,7 @@ pub fn sheet(input: &ReportInput<'_>) -> Option<Sheet> {
         running: format!("{}, design {hash}", crate::report::width::fit(&name, 10.0, false, 420.0)),
         contents: Vec::new(),
     };
+    sheet.number_figures();
     sheet.contents = contents(&sheet);
     Some(sheet)
 }

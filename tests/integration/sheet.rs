@@ -46,6 +46,30 @@ fn markdown_stays_small_and_names_every_figure_file() {
     }
 }
 
+/// A sheet is mailed around and read on telephones.
+#[test]
+fn pages_stay_small() {
+    for case in every_case() {
+        let size = case.text("sheet.html").len();
+        assert!(size < 600_000, "{size} bytes for {}", case.name);
+    }
+}
+
+/// Conditions after the first are folded, under their number; what is not drawn is said.
+#[test]
+fn further_conditions_are_drawn() {
+    let case = every_case().iter().find(|case| case.name == "Twelve conditions").expect("there");
+    let html = case.text("sheet.html");
+    for condition in 2..=8 {
+        for kind in ["light", "eqe", "curves", "dark", "ledger"] {
+            let id = format!("<figure id=\"fig-{kind}-{condition}\">");
+            assert!(html.contains(&id), "no {id}");
+        }
+    }
+    assert_eq!(html.matches("<details class=\"more\">").count(), 3 * 7);
+    assert!(html.contains("Four conditions more are in the tables"), "four are left out without a word");
+}
+
 fn labels_fit(what: &str, drawing: &Drawing) {
     let labels = &drawing.labels;
     for (index, label) in labels.iter().enumerate() {

@@ -126,6 +126,30 @@ pub(super) fn hostile() -> String {
     )
 }
 
+/// The demo of three junctions under twelve lights and temperatures.
+fn twelve_conditions() -> String {
+    let mut text = String::new();
+    for index in 0..12 {
+        let light = ["AM1.5G", "AM1.5D", "AM0"][index % 3];
+        let celsius = 10 + 8 * index;
+        text.push_str(&format!(
+            "condition month_{index} {{\n    light {light}\n    temperature {celsius} degC\n}}\n"
+        ));
+    }
+    let stack = &KITTIWAKE[KITTIWAKE.find("part clear_tunnel").expect("the demo has a part")..];
+    let names: Vec<String> = (0..12).map(|index| format!("month_{index}")).collect();
+    let kept = |line: &&str| !line.trim_start().starts_with("require");
+    let stack: Vec<String> = stack
+        .lines()
+        .filter(kept)
+        .map(|line| match line.trim_start().starts_with("conditions") {
+            true => format!("    conditions {}", names.join(", ")),
+            false => line.to_string(),
+        })
+        .collect();
+    text + &stack.join("\n").replace("Kittiwake 3J", "Twelve conditions")
+}
+
 /// Every duty, inverted growth, removed layers, five conditions, tolerances.
 const ZOO: &str = r#"condition a { light AM1.5G
  temperature 25 degC }
@@ -200,6 +224,7 @@ fn make_cases() -> Vec<Case> {
     }
     all.extend(cases("sixty.stack", &many_layers()));
     all.extend(cases("zoo.stack", ZOO));
+    all.extend(cases("twelve.stack", &twelve_conditions()));
     all.extend(cases("a<b>|`c`.stack", &hostile()));
     all
 }

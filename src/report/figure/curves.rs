@@ -54,9 +54,9 @@ impl Line {
 
 /// Each junction's voltage when the stack's terminals are joined, in the order of the junctions.
 pub fn short_circuit_voltages(context: &Context<'_>) -> Vec<Option<f64>> {
-    let curve = &context.first.curve;
+    let curve = &context.drawn.curve;
     context
-        .first
+        .drawn
         .junctions
         .iter()
         .map(|junction| {
@@ -67,7 +67,7 @@ pub fn short_circuit_voltages(context: &Context<'_>) -> Vec<Option<f64>> {
 }
 
 fn lines(context: &Context<'_>) -> Vec<Line> {
-    let first = context.first;
+    let first = context.drawn;
     let short = short_circuit_voltages(context);
     let series = !context.separate() && first.junctions.len() > 1;
     let mut out: Vec<Line> = first
@@ -140,12 +140,12 @@ pub fn draw(context: &Context<'_>) -> (Drawing, Drawing) {
 
 /// The magnified range of currents, mA/cm2, where it shows more than the whole plot does.
 fn strip_range(context: &Context<'_>, most: f64) -> Option<(f64, f64)> {
-    let (jsc, jmp) = (context.first.jsc_ma_per_cm2?, context.first.jmp_ma_per_cm2?);
-    if context.separate() || context.first.junctions.len() < 2 {
+    let (jsc, jmp) = (context.drawn.jsc_ma_per_cm2?, context.drawn.jmp_ma_per_cm2?);
+    if context.separate() || context.drawn.junctions.len() < 2 {
         return None;
     }
     let near = context
-        .first
+        .drawn
         .junctions
         .iter()
         .map(|j| j.photocurrent_ma_per_cm2)
@@ -158,8 +158,8 @@ fn strip_range(context: &Context<'_>, most: f64) -> Option<(f64, f64)> {
 
 fn draw_in(context: &Context<'_>, lines: &[Line], (width, left): (f64, f64)) -> Drawing {
     let slim = width < 500.0;
-    let most = context.first.junctions.iter().map(|j| j.photocurrent_ma_per_cm2).fold(0.0, f64::max) * 1.05;
-    let most = most.max(context.first.jsc_ma_per_cm2.unwrap_or(0.0) * 1.05).max(1e-9);
+    let most = context.drawn.junctions.iter().map(|j| j.photocurrent_ma_per_cm2).fold(0.0, f64::max) * 1.05;
+    let most = most.max(context.drawn.jsc_ma_per_cm2.unwrap_or(0.0) * 1.05).max(1e-9);
     let greatest = lines.iter().map(|l| l.voc).fold(0.0, f64::max);
     let least = lines.iter().filter_map(|l| l.at_short).map(|p| p.0).fold(0.0, f64::min);
     let x = Scale::new(

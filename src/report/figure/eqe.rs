@@ -10,7 +10,7 @@ use crate::report::width::fit;
 
 /// First and last wavelength drawn, nm: the junctions' range with a little room.
 pub fn range(context: &Context<'_>) -> Option<(f64, f64)> {
-    let spectral = &context.first.spectral;
+    let spectral = &context.drawn.spectral;
     let live = |i: &usize| spectral.eqe.values().any(|eqe| eqe.get(*i).is_some_and(|q| *q > 0.025));
     let indices: Vec<usize> = (0..spectral.wavelength_nm.len()).filter(live).collect();
     let first = spectral.wavelength_nm.get(*indices.first()?)?;
@@ -25,7 +25,7 @@ pub fn draw(context: &Context<'_>, range: (f64, f64)) -> (Drawing, Drawing) {
 }
 
 fn draw_in(context: &Context<'_>, range: (f64, f64), (width, left, height): (f64, f64, f64)) -> Drawing {
-    let spectral = &context.first.spectral;
+    let spectral = &context.drawn.spectral;
     let top = 26.0;
     let foot = top + height;
     let mut drawing = Drawing::new(width, foot + 42.0);
@@ -38,7 +38,7 @@ fn draw_in(context: &Context<'_>, range: (f64, f64), (width, left, height): (f64
     for run in cut(&curve(&spectral.reflectance, &|r| 1.0 - r), frame.0, frame.1) {
         drawing.polyline("cq", &thin(&run, 0.12));
     }
-    for (index, junction) in context.first.junctions.iter().enumerate() {
+    for (index, junction) in context.drawn.junctions.iter().enumerate() {
         let Some(eqe) = spectral.eqe.get(&junction.name) else { continue };
         for run in cut(&curve(eqe, &|q| q), frame.0, frame.1) {
             drawing.polyline(&format!("c{}", style_number(index)), &thin(&run, 0.12));
@@ -60,10 +60,10 @@ fn draw_in(context: &Context<'_>, range: (f64, f64), (width, left, height): (f64
 
 /// Each name under its own curve where it is the highest, what is not reflected above.
 fn labels(context: &Context<'_>, drawing: &mut Drawing, (x, y): (Scale, Scale), (top, foot): (f64, f64)) {
-    let spectral = &context.first.spectral;
+    let spectral = &context.drawn.spectral;
     let mut unnamed = Vec::new();
     drawing.text(Label::at(x.at.1, top - 11.0, "dashed: not reflected").size(11.5).class("q").end());
-    for (index, junction) in context.first.junctions.iter().enumerate() {
+    for (index, junction) in context.drawn.junctions.iter().enumerate() {
         let Some(eqe) = spectral.eqe.get(&junction.name) else { continue };
         // The centre of the range where it takes more than half of its own greatest share.
         let most = eqe.iter().copied().fold(0.0, f64::max);
@@ -105,7 +105,7 @@ fn labels(context: &Context<'_>, drawing: &mut Drawing, (x, y): (Scale, Scale), 
 fn key(context: &Context<'_>, drawing: &mut Drawing, junctions: &[usize], left: f64) {
     let (mut at, mut row) = (left, drawing.height + 12.0);
     for index in junctions {
-        let name = fit(&visible(&context.first.junctions[*index].name), 12.5, true, 150.0);
+        let name = fit(&visible(&context.drawn.junctions[*index].name), 12.5, true, 150.0);
         let label = Label::at(at + 32.0, row, &name).bold().junction("i", *index);
         if at > left && label.bounds().right > drawing.width {
             at = left;

@@ -64,7 +64,8 @@ pub fn rectangle(at: Point, size: Point) -> [Point; 4] {
     [at, (at.0 + size.0, at.1), (at.0 + size.0, at.1 + size.1), (at.0, at.1 + size.1)]
 }
 
-fn path(segments: &[(Point, Point)]) -> String {
+/// Segments as path data.
+pub fn path(segments: &[(Point, Point)]) -> String {
     let mut out = String::new();
     for (index, (a, b)) in segments.iter().enumerate() {
         if index > 0 && index % 8 == 0 {

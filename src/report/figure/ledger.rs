@@ -56,9 +56,12 @@ fn bar(drawing: &mut Drawing, entry: &Entry, x: Scale, top: f64, height: f64) {
     }
 }
 
-fn tick(drawing: &mut Drawing, x: f64, top: f64, height: f64) {
-    drawing.line("tickhalo", (x, top - 2.0), (x, top + height + 2.0));
-    drawing.line("tick", (x, top - 2.0), (x, top + height + 2.0));
+/// Upright ticks, each with the place of its upper end and its height.
+fn ticks_at(drawing: &mut Drawing, ticks: &[(f64, f64, f64)]) {
+    let upright: Vec<_> =
+        ticks.iter().map(|(x, top, height)| ((*x, top - 2.0), (*x, top + height + 2.0))).collect();
+    drawing.lines("tickhalo", &upright);
+    drawing.lines("tick", &upright);
 }
 
 /// The scale of the bars: the largest entry of either condition that is drawn.
@@ -92,17 +95,17 @@ fn wide(context: &Context<'_>, account: &Account) -> Drawing {
     let name = |words: &str, room: f64| fit(&visible(words), 12.5, true, room);
 
     drawing.text(Label::at(2.0, 14.0, "W/m²").size(11.5).class("q"));
-    drawing.text(Label::at(value, 14.0, &name(&context.first.name, value_width + 30.0)).bold().end());
+    drawing.text(Label::at(value, 14.0, &name(&context.drawn.name, value_width + 30.0)).bold().end());
     drawing.text(Label::at(left, 14.0, "left").size(11.5).class("q").end());
     if let Some(second) = second {
         drawing.text(Label::at(WIDE, 14.0, &name(&second.name, 130.0)).bold().end());
         let at = bars.0;
         drawing.rect("lay", (at, 5.0), (16.0, 9.0));
-        let first_name = fit(&visible(&context.first.name), 11.5, false, 100.0);
+        let first_name = fit(&visible(&context.drawn.name), 11.5, false, 100.0);
         let label = Label::at(at + 21.0, 14.0, &first_name).size(11.5).class("q");
         let next = at + 21.0 + label.width() + 14.0;
         drawing.text(label);
-        tick(&mut drawing, next, 5.0, 9.0);
+        ticks_at(&mut drawing, &[(next, 5.0, 9.0)]);
         let second_name = fit(&visible(&second.name), 11.5, false, 100.0);
         drawing.text_where_free([Label::at(next + 7.0, 14.0, &second_name).size(11.5).class("q")]);
     }
@@ -133,6 +136,7 @@ fn wide(context: &Context<'_>, account: &Account) -> Drawing {
     let (ticks, decimals) = x.ticks(5);
     let mut grid_lines = String::new();
     let mut rows = Vec::new();
+    let mut marks = Vec::new();
     for (index, entry) in account.entries.iter().enumerate() {
         let delivered = entry.kind == Kind::Delivered;
         if delivered {
@@ -158,9 +162,10 @@ fn wide(context: &Context<'_>, account: &Account) -> Drawing {
         );
         bar(&mut drawing, entry, x, y - 16.0, 11.0);
         if let Some(other) = entry.second {
-            tick(&mut drawing, x.of(other as f64 / 100.0), y - 16.0, 11.0);
+            marks.push((x.of(other as f64 / 100.0), y - 16.0, 11.0));
         }
     }
+    ticks_at(&mut drawing, &marks);
     for (at, class) in rows {
         drawing.line(class, (0.0, at), (WIDE, at));
     }
@@ -199,7 +204,7 @@ fn slim(context: &Context<'_>, account: &Account) -> Drawing {
     let value_width = Label::at(0.0, 0.0, &hundredths(account.total)).bold().width().max(62.0);
     let value = SLIM;
     let x = scale(account, (2.0, SLIM));
-    drawing.text(Label::at(2.0, 14.0, &fit(&visible(&context.first.name), 12.5, true, 240.0)).bold());
+    drawing.text(Label::at(2.0, 14.0, &fit(&visible(&context.drawn.name), 12.5, true, 240.0)).bold());
     drawing.text(Label::at(value, 14.0, "W/m²").size(11.5).class("q").end());
     drawing.line("rule", (0.0, 22.0), (SLIM, 22.0));
     let mut y = 22.0;
@@ -210,6 +215,7 @@ fn slim(context: &Context<'_>, account: &Account) -> Drawing {
     };
     line(&mut drawing, "light on the cell", &hundredths(account.total), true, y + 16.0);
     y += 22.0;
+    let mut marks = Vec::new();
     for (index, entry) in account.entries.iter().enumerate() {
         let delivered = entry.kind == Kind::Delivered;
         if delivered || opens_group(account, index) || index == 0 {
@@ -219,10 +225,11 @@ fn slim(context: &Context<'_>, account: &Account) -> Drawing {
         line(&mut drawing, &entry.words, &hundredths(entry.value), delivered, y + 16.0);
         bar(&mut drawing, entry, x, y + 21.0, 8.0);
         if let Some(other) = entry.second {
-            tick(&mut drawing, x.of(other as f64 / 100.0), y + 21.0, 8.0);
+            marks.push((x.of(other as f64 / 100.0), y + 21.0, 8.0));
         }
         y += 35.0;
     }
+    ticks_at(&mut drawing, &marks);
     drawing.line("rule", (0.0, y + 2.0), (SLIM, y + 2.0));
     line(&mut drawing, "sum of the lines", &hundredths(account.total), false, y + 18.0);
     drawing.line("rule", (0.0, y + 24.0), (SLIM, y + 24.0));

@@ -155,7 +155,7 @@ fn shapes<'a>(light: &'a Light, frame: &Frame, x: Scale) -> Vec<Shape<'a>> {
             .zip(&light.counted_ma)
             .map(|(share, counted)| (x.of(*counted), frame.height * (1.0 - share.min(1.0))))
             .collect();
-        thin(&points, 0.12)
+        thin(&points, if frame.slim { 0.2 } else { 0.12 })
     };
     let mut lower = edge(&level);
     light
@@ -255,15 +255,16 @@ fn grid(drawing: &mut Drawing, stage: &Stage<'_>) -> f64 {
     let Stage { context, light, frame, x, top } = *stage;
     let foot = top + frame.height;
     let step = round_step(light.total_ma.0 / 11.0);
+    let y = Scale::new(0.0, 100.0, (foot, top));
+    let mut cells = [20.0, 40.0, 60.0, 80.0]
+        .map(|share| ((frame.left, y.of(share)), (frame.right, y.of(share))))
+        .to_vec();
     let mut at = step;
     while at < light.total_ma.0 {
-        drawing.line("grid", (x.of(at), top), (x.of(at), foot));
+        cells.push(((x.of(at), top), (x.of(at), foot)));
         at += step;
     }
-    let y = Scale::new(0.0, 100.0, (foot, top));
-    for share in [20.0, 40.0, 60.0, 80.0] {
-        drawing.line("grid", (frame.left, y.of(share)), (frame.right, y.of(share)));
-    }
+    drawing.lines("grid", &cells);
     let ticks: Vec<(f64, String)> = (0..=5)
         .map(|i| {
             (
@@ -275,13 +276,13 @@ fn grid(drawing: &mut Drawing, stage: &Stage<'_>) -> f64 {
     axis_left(drawing, y, frame.left, &ticks);
     // The counting axis.
     let base = foot + 42.0;
-    drawing.line("axis", (frame.left, base), (frame.right, base));
+    let mut axis = vec![((frame.left, base), (frame.right, base))];
     let minor = step / 5.0;
     let mut count = 0;
     while f64::from(count) * minor <= light.total_ma.0 * 1.0001 {
         let at = f64::from(count) * minor;
         let major = count % 5 == 0;
-        drawing.line("axis", (x.of(at), base - if major { 6.0 } else { 3.0 }), (x.of(at), base));
+        axis.push(((x.of(at), base - if major { 6.0 } else { 3.0 }), (x.of(at), base)));
         if major {
             let words = trimmed(context.scale.of(at));
             drawing
@@ -289,6 +290,7 @@ fn grid(drawing: &mut Drawing, stage: &Stage<'_>) -> f64 {
         }
         count += 1;
     }
+    drawing.lines("axis", &axis);
     let words = format!("photon current counted from the blue end, {}", context.scale.unit);
     drawing.text(Label::at(frame.width - 2.0, base + 31.0, &words).size(11.5).class("q").end());
     step
@@ -373,9 +375,8 @@ fn wavelengths(drawing: &mut Drawing, light: &Light, x: Scale, foot: f64) {
     let last = (light.range_nm.1 / step + 1e-9).floor() as i64;
     let ticks: Vec<(f64, f64)> =
         (first..=last).filter_map(|i| place(i as f64 * step).map(|x| (i as f64 * step, x))).collect();
-    for (_, at) in &ticks {
-        drawing.line("axis", (*at, foot), (*at, foot + 5.0));
-    }
+    let outward: Vec<_> = ticks.iter().map(|(_, at)| ((*at, foot), (*at, foot + 5.0))).collect();
+    drawing.lines("axis", &outward);
     let label = |at: f64, words: &str| Label::at(at, foot + 18.0, words).size(11.5).class("q").middle();
     if let Some((nm, at)) = ticks.last() {
         let words = format!("{} nm", fixed(*nm, 0).replace('\u{202f}', ""));

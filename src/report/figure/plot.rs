@@ -163,9 +163,10 @@ pub fn interpolate(xs: &[f64], ys: &[f64], x: f64) -> Option<f64> {
 /// An axis beneath a plot: spans its ticks, ticks outward, labels under them.
 pub fn axis_below(drawing: &mut Drawing, scale: Scale, y: f64, ticks: &[(f64, String)]) {
     let xs: Vec<f64> = ticks.iter().map(|(value, _)| scale.of(*value)).collect();
-    drawing.line("axis", (scale.at.0, y), (scale.at.1, y));
+    let outward = xs.iter().map(|x| ((*x, y), (*x, y + 4.0)));
+    let segments: Vec<_> = std::iter::once(((scale.at.0, y), (scale.at.1, y))).chain(outward).collect();
+    drawing.lines("axis", &segments);
     for (x, (_, words)) in xs.iter().zip(ticks) {
-        drawing.line("axis", (*x, y), (*x, y + 4.0));
         let half = crate::report::width::width(words, 11.5, false) / 2.0;
         let middle = x.clamp(half, (drawing.width - half).max(half));
         drawing.text_where_free([Label::at(middle, y + 17.0, words).size(11.5).class("q").middle()]);
@@ -174,10 +175,11 @@ pub fn axis_below(drawing: &mut Drawing, scale: Scale, y: f64, ticks: &[(f64, St
 
 /// An axis left of a plot: ticks outward, labels left of them.
 pub fn axis_left(drawing: &mut Drawing, scale: Scale, x: f64, ticks: &[(f64, String)]) {
-    drawing.line("axis", (x, scale.at.0), (x, scale.at.1));
+    let outward = ticks.iter().map(|(value, _)| ((x - 4.0, scale.of(*value)), (x, scale.of(*value))));
+    let segments: Vec<_> = std::iter::once(((x, scale.at.0), (x, scale.at.1))).chain(outward).collect();
+    drawing.lines("axis", &segments);
     for (value, words) in ticks {
         let y = scale.of(*value);
-        drawing.line("axis", (x - 4.0, y), (x, y));
         drawing.text_where_free([Label::at(x - 7.0, y + 4.0, words).size(11.5).class("q").end()]);
     }
 }

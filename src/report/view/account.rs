@@ -6,7 +6,8 @@ use crate::report::figure::ledger::{draw, hundredths};
 use crate::report::figure::light::layer_words;
 use crate::report::number::{counted, percent, round_to_sum};
 use crate::report::text::{Text, visible};
-use crate::report::view::{Section, Table};
+use crate::report::view::further::folds;
+use crate::report::view::{Beside, Section, Table};
 use crate::results::{ConditionResult, LedgerLine};
 
 /// What a line of the account is about.
@@ -126,7 +127,8 @@ pub fn account(context: &Context<'_>) -> Option<Account> {
             }
         }
     }
-    if context.first.ledger_w_per_m2.is_empty() {
+    let drawn = context.index;
+    if context.drawn.ledger_w_per_m2.is_empty() {
         return None;
     }
     let value = |condition: &ConditionResult, wanted: &Key| -> f64 {
@@ -139,8 +141,8 @@ pub fn account(context: &Context<'_>) -> Option<Account> {
     // A stable sort: within a kind the ledger's own order stays.
     entries.sort_by_key(|entry| (entry.kind.group(), entry.kind));
     let entries = merged(context, entries);
-    let second = conditions.iter().enumerate().skip(1).find(|(_, condition)| {
-        let ratio = condition.incident_w_per_m2 / context.first.incident_w_per_m2;
+    let second = conditions.iter().enumerate().filter(|(index, _)| *index != drawn).find(|(_, condition)| {
+        let ratio = condition.incident_w_per_m2 / context.drawn.incident_w_per_m2;
         (0.5..=2.0).contains(&ratio) && !condition.ledger_w_per_m2.is_empty()
     });
     let mut account = Account { total: 0, entries, second: None };
@@ -150,7 +152,7 @@ pub fn account(context: &Context<'_>) -> Option<Account> {
             2,
         )
     };
-    let first = column(0, &account.entries);
+    let first = column(drawn, &account.entries);
     account.total = first.iter().sum();
     for (entry, value) in account.entries.iter_mut().zip(first) {
         entry.value = value;
@@ -205,11 +207,13 @@ fn entry(context: &Context<'_>, key: &Key, exact: Vec<f64>) -> Entry {
 
 /// Small layers become one line; what is nothing under every condition has none.
 fn merged(context: &Context<'_>, entries: Vec<Entry>) -> Vec<Entry> {
-    let small = 0.002 * context.first.incident_w_per_m2;
-    let mut layers: Vec<f64> = entries.iter().filter(|e| e.kind == Kind::Layer).map(|e| e.exact[0]).collect();
+    let drawn = context.index;
+    let small = 0.002 * context.drawn.incident_w_per_m2;
+    let mut layers: Vec<f64> =
+        entries.iter().filter(|e| e.kind == Kind::Layer).map(|e| e.exact[drawn]).collect();
     layers.sort_by(|a, b| b.total_cmp(a));
     let bound = layers.get(LAYERS_SHOWN - 1).copied().unwrap_or(0.0).max(small);
-    let minor = |e: &Entry| e.kind == Kind::Layer && e.exact[0] < bound;
+    let minor = |e: &Entry| e.kind == Kind::Layer && e.exact[drawn] < bound;
     let count = entries.iter().filter(|e| minor(e)).count();
     let mut out: Vec<Entry> = Vec::new();
     let mut together: Option<usize> = None;
@@ -240,7 +244,7 @@ fn merged(context: &Context<'_>, entries: Vec<Entry>) -> Vec<Entry> {
         .collect();
     out.retain(|entry| !nothing(entry));
     // What the dropped lines held goes to the largest, where it is far below what is printed.
-    if let Some(largest) = out.iter_mut().max_by(|a, b| a.exact[0].total_cmp(&b.exact[0])) {
+    if let Some(largest) = out.iter_mut().max_by(|a, b| a.exact[drawn].total_cmp(&b.exact[drawn])) {
         for (sum, more) in largest.exact.iter_mut().zip(dropped) {
             *sum += more;
         }
@@ -289,14 +293,42 @@ pub fn section(context: &Context<'_>) -> Section {
         ));
     }
     section.lede = Some(lede);
-    let (wide, slim) = draw(context, &account);
+    let all: Vec<usize> = (0..context.results.conditions.len()).collect();
+    section.figures.push(figure(context, &account, &all));
+    section.more = folds(context, &|_, _| false, &|context| {
+        let figures = account_figure(context).into_iter().collect();
+        Beside { figures, tables: Vec::new() }
+    });
+    section.notes = vec![
+        Text::new()
+            .b("left")
+            .p(" is what remains after the line has been paid; after the last loss it equals ")
+            .b("delivered")
+            .p("."),
+        Text::of(format!(
+            "Delivered over light is the efficiency: {}.",
+            percent(context.drawn.efficiency, 2)
+        )),
+        Text::of("Printed lines are rounded so that they add up to the printed sum."),
+    ];
+    section
+}
+
+fn account_figure(context: &Context<'_>) -> Option<Figure> {
+    let account = account(context)?;
+    Some(figure(context, &account, &[context.index]).folded(context.index))
+}
+
+/// The drawing, with the conditions of `shown` in its table.
+fn figure(context: &Context<'_>, account: &Account, shown: &[usize]) -> Figure {
+    let delivered = account.entries.iter().find(|e| e.kind == Kind::Delivered).map_or(0, |e| e.value);
+    let (wide, slim) = draw(context, account);
     let mut figure = Figure::new(
-        6,
         "ledger",
         "Ledger of the light's power",
         format!(
             "A ruled account in W/m2 {}: of {} on the cell {} are delivered. {} with a bar each; the numbers are in the table.",
-            under(context.first),
+            under(context.drawn),
             hundredths(account.total),
             hundredths(delivered),
             counted(account.entries.len(), "line")
@@ -310,32 +342,21 @@ pub fn section(context: &Context<'_>) -> Section {
         caption = caption.p(" The upright tick is the same line under ").p(second.name.clone()).p(".");
     }
     figure.caption = caption;
-    figure.data = table(context, &account);
-    section.figures.push(figure);
-    section.notes = vec![
-        Text::new()
-            .b("left")
-            .p(" is what remains after the line has been paid; after the last loss it equals ")
-            .b("delivered")
-            .p("."),
-        Text::of(format!(
-            "Delivered over light is the efficiency: {}.",
-            percent(context.first.efficiency, 2)
-        )),
-        Text::of("Printed lines are rounded so that they add up to the printed sum."),
-    ];
-    section
+    figure.data = table(context, account, shown);
+    figure
 }
 
-/// All conditions, each column adding up.
-fn table(context: &Context<'_>, account: &Account) -> Table {
-    let conditions = &context.results.conditions;
+/// The conditions of `shown`, each column adding up.
+fn table(context: &Context<'_>, account: &Account, shown: &[usize]) -> Table {
+    let conditions: Vec<&ConditionResult> =
+        shown.iter().filter_map(|index| context.results.conditions.get(*index)).collect();
     let mut heads = vec!["line".to_string()];
     heads.extend(conditions.iter().map(|c| format!(">{}", visible(&c.name))));
     let heads: Vec<&str> = heads.iter().map(String::as_str).collect();
     let mut table = Table::new(Text::of("Power by condition, W/m²"), &heads);
-    let columns: Vec<Vec<i64>> = (0..conditions.len())
-        .map(|index| {
+    let columns: Vec<Vec<i64>> = shown
+        .iter()
+        .map(|&index| {
             round_to_sum(
                 &account
                     .entries

@@ -6,8 +6,10 @@ use crate::report::figure::power::{self, power_words, shared_scale};
 use crate::report::figure::{Figure, SLIM, WIDE};
 use crate::report::number::{celsius, current, fixed, percent, significant, with_unit};
 use crate::report::text::{Text, visible};
+use crate::report::view::dark;
+use crate::report::view::further::{folds, words};
 use crate::report::view::layers::{capital, joined};
-use crate::report::view::{Column, Section, Table, condition_words};
+use crate::report::view::{Beside, Column, Section, Table, condition_words};
 use crate::results::{ConditionResult, JunctionResult};
 
 fn volts(value: f64) -> String {
@@ -57,7 +59,6 @@ pub fn headline(context: &Context<'_>) -> Section {
         })
         .collect();
     let mut figure = Figure::new(
-        1,
         "power",
         "Greatest power by condition",
         format!(
@@ -92,8 +93,8 @@ pub fn headline(context: &Context<'_>) -> Section {
     }));
     section.notes.push(Text::of(format!(
         "Efficiency is power over all the light the cell receives; {} that is {}.",
-        under(context.first),
-        with_unit(&fixed(context.first.incident_w_per_m2, 2), "W/m²")
+        under(context.drawn),
+        with_unit(&fixed(context.drawn.incident_w_per_m2, 2), "W/m²")
     )));
     section
 }
@@ -148,13 +149,33 @@ fn headline_table(context: &Context<'_>) -> Table {
 /// Curves, and how the voltages add up.
 pub fn curves(context: &Context<'_>) -> Section {
     let mut section = Section::new("curves", "Voltage and current");
-    let first = context.first;
+    let first = context.drawn;
     if first.junction_curves.is_empty() && first.curve.voltage_v.is_empty() {
         return section;
     }
     let short = short_circuit_voltages(context);
     let series = !context.separate() && first.junctions.len() > 1;
     section.lede = Some(curves_lede(context, &short, series));
+    section.figures.push(lit(context, &short, series));
+    section.beside = dark::beside(context);
+    section.more = folds(context, &|_, _| false, &|context| {
+        let short = short_circuit_voltages(context);
+        let in_the_dark = dark::beside(context).figures.into_iter();
+        let figures = std::iter::once(lit(context, &short, series)).chain(in_the_dark);
+        let figures = figures.map(|figure| figure.folded(context.index)).collect();
+        Beside { figures, tables: Vec::new() }
+    });
+    section.notes.push(Text::of("Current is positive when the cell delivers power."));
+    if series && short.iter().flatten().any(|v| *v < -0.05) {
+        section.notes.push(Text::of("With the terminals joined, the junctions with more current drive the limiting one backwards; in a string the same happens in shade."));
+    }
+    section.notes.extend(words(context, &|_, _| false));
+    section
+}
+
+/// Under light.
+fn lit(context: &Context<'_>, short: &[Option<f64>], series: bool) -> Figure {
+    let first = context.drawn;
     let (wide, slim) = draw(context);
     let marks: Vec<String> = first
         .junctions
@@ -164,7 +185,6 @@ pub fn curves(context: &Context<'_>) -> Section {
     let whole =
         first.vmp_v.map(|v| format!(", the stack at {}", with_unit(&fixed(v, 2), "V"))).unwrap_or_default();
     let mut figure = Figure::new(
-        5,
         "curves",
         "Voltage and current",
         format!(
@@ -182,17 +202,12 @@ pub fn curves(context: &Context<'_>) -> Section {
         caption.push_str(" Dots are the points of greatest power.");
     }
     figure.caption = Text::of(caption);
-    figure.data = operating(context, &short, series);
-    section.figures.push(figure);
-    section.notes.push(Text::of("Current is positive when the cell delivers power."));
-    if series && short.iter().flatten().any(|v| *v < -0.05) {
-        section.notes.push(Text::of("With the terminals joined, the junctions with more current drive the limiting one backwards; in a string the same happens in shade."));
-    }
-    section
+    figure.data = operating(context, short, series);
+    figure
 }
 
 fn curves_lede(context: &Context<'_>, short: &[Option<f64>], series: bool) -> Text {
-    let first = context.first;
+    let first = context.drawn;
     let at = |j: &JunctionResult| {
         format!("{} at {}", visible(&j.name), with_unit(&fixed(j.voltage_at_mpp_v, 2), "V"))
     };
@@ -230,7 +245,7 @@ fn curves_lede(context: &Context<'_>, short: &[Option<f64>], series: bool) -> Te
 }
 
 fn operating(context: &Context<'_>, short: &[Option<f64>], series: bool) -> Table {
-    let first = context.first;
+    let first = context.drawn;
     let mut table = Table::new(
         Text::of(capital(&under(first))),
         &[
@@ -278,7 +293,7 @@ pub fn conditions(context: &Context<'_>) -> Section {
     if several {
         let mut words: Vec<String> = Vec::new();
         for condition in context.results.conditions.iter().skip(1) {
-            let points = (condition.efficiency - context.first.efficiency) * 100.0;
+            let points = (condition.efficiency - context.drawn.efficiency) * 100.0;
             words.push(format!(
                 "{} {} points",
                 visible(&condition.name),
@@ -287,7 +302,7 @@ pub fn conditions(context: &Context<'_>) -> Section {
         }
         section.lede = Some(Text::of(format!(
             "Efficiency against {}: {}.",
-            visible(&context.first.name),
+            visible(&context.drawn.name),
             joined(&words)
         )));
     }
@@ -307,7 +322,7 @@ fn conditions_table(context: &Context<'_>, several: bool) -> Table {
     row(&mut table, context, Text::of("received"), &|c| Some(power_words(c.incident_w_per_m2)));
     row(&mut table, context, Text::of("temperature"), &|c| Some(celsius(c.temperature_k)));
     row(&mut table, context, Text::of("reflected"), &|c| Some(current(c.reflected_ma_per_cm2)));
-    for (index, junction) in context.first.junctions.iter().enumerate() {
+    for (index, junction) in context.drawn.junctions.iter().enumerate() {
         table.group(Text::of("junction ").p(junction.name.clone()));
         let mut add = |name: Text, of: &dyn Fn(&JunctionResult) -> String| {
             row(&mut table, context, name, &|c| c.junctions.get(index).map(of));

@@ -12,7 +12,7 @@ use crate::report::view::{Section, Table};
 /// The section of the cross-section.
 pub fn stack(context: &Context<'_>) -> Section {
     let mut out = Section::new("stack", "The stack, sunward side up");
-    let junctions = &context.first.junctions;
+    let junctions = &context.drawn.junctions;
     let wafer = context.layers().find(|row| row.layer.duty == Duty::Wafer);
     let mut lede = Text::of(capital(&counted(junctions.len(), "junction")));
     lede = match &wafer {
@@ -55,7 +55,6 @@ pub fn stack(context: &Context<'_>) -> Section {
     let (wide, slim) = draw(context);
     let lit = context.layers().filter(Row::is_lit).count();
     let mut figure = Figure::new(
-        2,
         "stack",
         "Cross-section, sunward side up",
         format!(
@@ -118,8 +117,8 @@ fn caption(context: &Context<'_>) -> Text {
     if planes {
         words.push_str(" The heavy line is the p–n plane.");
     }
-    words.push_str(&format!(" Currents {}.", under(context.first)));
-    let warm = context.first.temperature_k;
+    words.push_str(&format!(" Currents {}.", under(context.drawn)));
+    let warm = context.drawn.temperature_k;
     if (warm - 298.15).abs() > 0.5 && rows.iter().any(|row| row.result.gap_ev.is_some()) {
         words
             .push_str(&format!(" Gaps in the rows at 25\u{a0}°C, beside the brackets at {}.", celsius(warm)));
@@ -188,7 +187,7 @@ fn table(context: &Context<'_>, mut sources: Option<&mut Sources>) -> Table {
     if sources.is_some() {
         heads.push("sources");
     }
-    let mut table = Table::new(Text::of("As resolved, at 25 °C; currents ").p(under(context.first)), &heads);
+    let mut table = Table::new(Text::of("As resolved, at 25 °C; currents ").p(under(context.drawn)), &heads);
     table.kind = "layers roomy";
     let mut place = None;
     for row in context.layers() {
@@ -256,7 +255,7 @@ fn group_words(context: &Context<'_>, place: Place) -> Text {
     match place {
         Place::Front => Text::of("sunward"),
         Place::Junction(index) => {
-            let Some(junction) = context.first.junctions.get(index) else { return Text::of("junction") };
+            let Some(junction) = context.drawn.junctions.get(index) else { return Text::of("junction") };
             let mut words = format!(
                 "junction {}: {}",
                 visible(&junction.name),

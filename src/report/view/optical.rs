@@ -5,8 +5,9 @@ use crate::report::figure::light::{Light, draw};
 use crate::report::figure::{Figure, eqe, plot};
 use crate::report::number::{fixed, trimmed, with_unit};
 use crate::report::text::{Text, visible};
+use crate::report::view::further::{folds, same_light, words};
 use crate::report::view::layers::{capital, joined};
-use crate::report::view::{Section, Table};
+use crate::report::view::{Beside, Section, Table};
 
 /// The section; empty where there is no spectral data.
 pub fn light(context: &Context<'_>) -> Section {
@@ -32,11 +33,33 @@ pub fn light(context: &Context<'_>) -> Section {
     }
     section.lede = Some(lede);
 
-    let (wide, slim) = draw(context, &light);
+    section.figures.push(destinations(context, &light));
+    section.figures.extend(efficiency(context));
+    section.more = folds(context, &same_light, &|context| {
+        let figures = Light::of(context).map(|light| destinations(context, &light)).into_iter();
+        let figures = figures.chain(efficiency(context)).map(|figure| figure.folded(context.index));
+        Beside { figures: figures.collect(), tables: Vec::new() }
+    });
+    section.notes = vec![
+        Text::new()
+            .b("Solid")
+            .p(" is current, ")
+            .b("hatched")
+            .p(" is lost, in the hatch of the layer that took it. Blank passes through."),
+        Text::of("Count cells, or read the numbers: both give the same answer."),
+    ];
+    section.notes.extend(words(context, &same_light));
+    section
+}
+
+/// Every photon by what became of it.
+fn destinations(context: &Context<'_>, light: &Light) -> Figure {
+    let scale = context.scale;
+    let nm = |value: f64| with_unit(&fixed(value, 0).replace('\u{202f}', ""), "nm");
+    let (wide, slim) = draw(context, light);
     let parts: Vec<String> =
         light.bands.iter().map(|band| format!("{} {}", band.name, scale.number(band.drawn_ma))).collect();
     let mut figure = Figure::new(
-        3,
         "light",
         "Where the light goes",
         format!(
@@ -53,7 +76,7 @@ pub fn light(context: &Context<'_>) -> Section {
     let cell = with_unit(&trimmed(cell), scale.unit);
     let mut caption = format!(
         "{}. Height is the share of the photons, width is photon current, so area is {} and each cell of the grid is {cell}.",
-        capital(&under(context.first)),
+        capital(&under(context.drawn)),
         scale.unit
     );
     if light.total_ma.1 > light.total_ma.0 * 1.002 {
@@ -64,18 +87,8 @@ pub fn light(context: &Context<'_>) -> Section {
         ));
     }
     figure.caption = Text::of(caption);
-    figure.data = table(context, &light);
-    section.figures.push(figure);
-    section.figures.extend(efficiency(context));
-    section.notes = vec![
-        Text::new()
-            .b("Solid")
-            .p(" is current, ")
-            .b("hatched")
-            .p(" is lost, in the hatch of the layer that took it. Blank passes through."),
-        Text::of("Count cells, or read the numbers: both give the same answer."),
-    ];
-    section
+    figure.data = table(context, light);
+    figure
 }
 
 fn table(context: &Context<'_>, light: &Light) -> Table {
@@ -99,9 +112,8 @@ fn table(context: &Context<'_>, light: &Light) -> Table {
 fn efficiency(context: &Context<'_>) -> Option<Figure> {
     let range = eqe::range(context)?;
     let (wide, slim) = eqe::draw(context, range);
-    let names: Vec<String> = context.first.junctions.iter().map(|j| visible(&j.name)).collect();
+    let names: Vec<String> = context.drawn.junctions.iter().map(|j| visible(&j.name)).collect();
     let mut figure = Figure::new(
-        4,
         "eqe",
         "External quantum efficiency",
         format!(
@@ -114,15 +126,17 @@ fn efficiency(context: &Context<'_>) -> Option<Figure> {
     .drawn(wide, Some(slim));
     figure.caption = Text::of(format!(
         "Electrons per photon that reaches the cell between the fingers, {}.",
-        under(context.first)
+        under(context.drawn)
     ));
-    let spectral = &context.first.spectral;
+    let spectral = &context.drawn.spectral;
     let mut heads = vec![">wavelength, nm".to_string()];
     heads.extend(names.iter().map(|name| format!(">{name}, %")));
     heads.push(">reflected, %".into());
     let heads: Vec<&str> = heads.iter().map(String::as_str).collect();
     let mut table = Table::new(Text::of("Quantum efficiency and reflectance"), &heads);
     let step = if range.1 - range.0 > 900.0 { 50.0 } else { 25.0 };
+    // Beside the first, a further condition changes little: every other line is enough.
+    let step = if context.index > 0 { 2.0 * step } else { step };
     let mut nm = (range.0 / step).ceil() * step;
     while nm <= range.1 {
         let at = |values: &[f64]| {
@@ -131,7 +145,7 @@ fn efficiency(context: &Context<'_>) -> Option<Figure> {
                 .unwrap_or_default()
         };
         let mut cells = vec![Text::of(fixed(nm, 0).replace('\u{202f}', ""))];
-        for junction in &context.first.junctions {
+        for junction in &context.drawn.junctions {
             cells.push(Text::of(spectral.eqe.get(&junction.name).map(|eqe| at(eqe)).unwrap_or_default()));
         }
         cells.push(Text::of(at(&spectral.reflectance)));

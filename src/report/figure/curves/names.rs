@@ -97,7 +97,7 @@ pub(super) fn strip_labels(
         let words = format!("{} ", fit(&line.name, 12.5, true, 120.0));
         let value = line
             .junction
-            .and_then(|index| context.first.junctions.get(index))
+            .and_then(|index| context.drawn.junctions.get(index))
             .map(|j| context.scale.number(j.photocurrent_ma_per_cm2))
             .unwrap_or_default();
         let places = [0.10, 0.3, 0.45, 0.02].into_iter().flat_map(|share| {
@@ -211,10 +211,10 @@ pub(super) fn plot_labels(
         if let Some((v, j)) = line.at_power.filter(|_| !has_strip || line.junction.is_none()) {
             let (px, py) = (x.of(v), y.of(j));
             let power = if line.junction.is_none() || lines.len() == 1 {
-                power_words(context.first.power_w_per_m2)
+                power_words(context.drawn.power_w_per_m2)
             } else {
                 let index = line.junction.unwrap_or(0);
-                power_words(context.first.junctions[index].power_w_per_m2)
+                power_words(context.drawn.junctions[index].power_w_per_m2)
             };
             let label = |dx: f64, dy: f64| line.coloured(Label::at(px + dx, py + dy, &power).halo()).end();
             put(

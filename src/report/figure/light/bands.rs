@@ -50,7 +50,7 @@ const LAYERS_SHOWN: usize = 3;
 impl Light {
     /// Divides the light; `None` where the condition has no spectral data.
     pub fn of(context: &Context<'_>) -> Option<Self> {
-        let spectral = &context.first.spectral;
+        let spectral = &context.drawn.spectral;
         let n = spectral
             .wavelength_nm
             .len()
@@ -92,7 +92,7 @@ impl Light {
     }
 
     fn divide(&mut self, context: &Context<'_>, n: usize) {
-        let spectral = &context.first.spectral;
+        let spectral = &context.drawn.spectral;
         let open = 1.0 - context.shading();
         let rows: Vec<Row<'_>> = context.layers().collect();
         let zero = vec![0.0; n];
@@ -101,7 +101,7 @@ impl Light {
         };
         let mut absorbed = vec![0.0; n];
         let mut not_collected = vec![0.0; n];
-        for (index, junction) in context.first.junctions.iter().enumerate() {
+        for (index, junction) in context.drawn.junctions.iter().enumerate() {
             let eqe = spectral.eqe.get(&junction.name).filter(|eqe| eqe.len() >= n).map_or(&zero, |e| e);
             let mut taken = vec![0.0; n];
             for row in rows.iter().filter(|row| row.junction() == Some(index) && row.makes_current()) {
@@ -246,7 +246,7 @@ impl Light {
 /// `AlInP window of top`, `wafer`
 pub fn layer_words(context: &Context<'_>, row: &Row<'_>) -> String {
     let duty = row.duty(context.design);
-    match row.junction().and_then(|index| context.first.junctions.get(index)) {
+    match row.junction().and_then(|index| context.drawn.junctions.get(index)) {
         Some(junction) => format!("{duty} of {}", visible(&junction.name)),
         None if row.result.name.contains('.') || duty == "tunnel" => {
             format!("{duty} {}", visible(row.material()))

@@ -19,7 +19,7 @@ pub(super) fn brackets(
     let x = layout.stack.0;
     let line = 15.5;
     let mut blocks = Vec::new();
-    for (index, junction) in context.first.junctions.iter().enumerate() {
+    for (index, junction) in context.drawn.junctions.iter().enumerate() {
         let of_it: Vec<usize> = (0..rows.len()).filter(|&i| rows[i].junction() == Some(index)).collect();
         let (Some(first), Some(last)) = (of_it.first(), of_it.last()) else { continue };
         let (from, to) = (edges[*first] + 1.0, edges[*last + 1] - 1.0);
