@@ -101,6 +101,8 @@ pub struct Family {
     pub bowings: Vec<Bowing>,
     /// Ordering, where the family shows it.
     pub ordering: Option<Ordering>,
+    /// Fractions taken where a phrase leaves them open, the first one first.
+    pub otherwise: Vec<(String, f64)>,
     /// Index and absorption.
     pub index: FamilyIndex,
     /// What its carriers do, as far as its end members do not say it.

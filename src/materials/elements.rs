@@ -1,21 +1,23 @@
 //! Chemical elements: symbols, the sublattice they sit on, standard atomic weights.
 
-/// Which sublattice of a zinc-blende compound an element takes.
+/// Which sublattice of a compound an element takes where it is mixed with others.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord)]
 pub enum Site {
-    /// Group III: boron, aluminium, gallium, indium.
+    /// That of group III: boron, aluminium, gallium, indium; also of zinc and its like in II–VI
+    /// compounds, and of caesium and the organic ions in perovskites.
     Three,
-    /// Group V: nitrogen, phosphorus, arsenic, antimony.
+    /// That of group V: nitrogen, phosphorus, arsenic, antimony; also of chalcogens and halogens.
     Five,
     /// Silicon, germanium and the like share both sublattices.
     Four,
 }
 
-/// The sublattice of `element` in a III–V or IV compound, `None` where it has none.
+/// The sublattice of `element`, `None` for elements that no family mixes: lead and tin in
+/// perovskites, copper and silver in chalcopyrites.
 pub fn site(element: &str) -> Option<Site> {
     match element {
-        "B" | "Al" | "Ga" | "In" => Some(Site::Three),
-        "N" | "P" | "As" | "Sb" | "Bi" => Some(Site::Five),
+        "B" | "Al" | "Ga" | "In" | "Mg" | "Zn" | "Cd" | "Cs" | "Rb" | "FA" | "MA" => Some(Site::Three),
+        "N" | "P" | "As" | "Sb" | "Bi" | "O" | "S" | "Se" | "Te" | "Cl" | "Br" | "I" => Some(Site::Five),
         "C" | "Si" | "Ge" | "Sn" => Some(Site::Four),
         _ => None,
     }

@@ -3,7 +3,8 @@
 //! The files are embedded as text and read only when a name is asked for.
 
 /// Every material and alloy with the text that defines it: elements and compounds of the groups
-/// III, IV and V, then alloys, then coats, glasses, contacts and metals.
+/// III, IV and V, their alloys, perovskites, compounds of the group VI and amorphous silicon, then
+/// coats, glasses, contacts and metals.
 pub const FILES: &[(&str, &str)] = &[
     ("GaAs", include_str!("library/GaAs.stack")),
     ("InP", include_str!("library/InP.stack")),
@@ -34,6 +35,24 @@ pub const FILES: &[(&str, &str)] = &[
     ("GaAsSb", include_str!("library/GaAsSb.stack")),
     ("InAsSb", include_str!("library/InAsSb.stack")),
     ("AlAsSb", include_str!("library/AlAsSb.stack")),
+    ("MAPbI3", include_str!("library/MAPbI3.stack")),
+    ("MAPbBr3", include_str!("library/MAPbBr3.stack")),
+    ("CsPbI3", include_str!("library/CsPbI3.stack")),
+    ("CsPbBr3", include_str!("library/CsPbBr3.stack")),
+    ("FAPbI3", include_str!("library/FAPbI3.stack")),
+    ("FAPbBr3", include_str!("library/FAPbBr3.stack")),
+    ("MAPbIBr", include_str!("library/MAPbIBr.stack")),
+    ("FAPbIBr", include_str!("library/FAPbIBr.stack")),
+    ("CsPbIBr", include_str!("library/CsPbIBr.stack")),
+    ("perovskite", include_str!("library/perovskite.stack")),
+    ("CuInSe2", include_str!("library/CuInSe2.stack")),
+    ("CuGaSe2", include_str!("library/CuGaSe2.stack")),
+    ("CIGS", include_str!("library/CIGS.stack")),
+    ("CdTe", include_str!("library/CdTe.stack")),
+    ("CdSe", include_str!("library/CdSe.stack")),
+    ("CdS", include_str!("library/CdS.stack")),
+    ("ZnTe", include_str!("library/ZnTe.stack")),
+    ("aSiH", include_str!("library/aSiH.stack")),
     ("MgF2", include_str!("library/MgF2.stack")),
     ("ZnS", include_str!("library/ZnS.stack")),
     ("SiO2", include_str!("library/SiO2.stack")),
@@ -41,12 +60,26 @@ pub const FILES: &[(&str, &str)] = &[
     ("Al2O3", include_str!("library/Al2O3.stack")),
     ("Ta2O5", include_str!("library/Ta2O5.stack")),
     ("Si3N4", include_str!("library/Si3N4.stack")),
+    ("SiNx", include_str!("library/SiNx.stack")),
     ("HfO2", include_str!("library/HfO2.stack")),
     ("Nb2O5", include_str!("library/Nb2O5.stack")),
+    ("LiF", include_str!("library/LiF.stack")),
     ("glass", include_str!("library/glass.stack")),
+    ("glass_clear", include_str!("library/glass_clear.stack")),
     ("EVA", include_str!("library/EVA.stack")),
+    ("air", include_str!("library/air.stack")),
     ("ITO", include_str!("library/ITO.stack")),
+    ("ITO_light", include_str!("library/ITO_light.stack")),
+    ("ITO_heavy", include_str!("library/ITO_heavy.stack")),
     ("AZO", include_str!("library/AZO.stack")),
+    ("ZnO", include_str!("library/ZnO.stack")),
+    ("SnO2", include_str!("library/SnO2.stack")),
+    ("NiO", include_str!("library/NiO.stack")),
+    ("MoO3", include_str!("library/MoO3.stack")),
+    ("WO3", include_str!("library/WO3.stack")),
+    ("C60", include_str!("library/C60.stack")),
+    ("PEDOT_PSS", include_str!("library/PEDOT_PSS.stack")),
+    ("spiro", include_str!("library/spiro.stack")),
     ("Au", include_str!("library/Au.stack")),
     ("Ag", include_str!("library/Ag.stack")),
     ("Al", include_str!("library/Al.stack")),
@@ -55,6 +88,8 @@ pub const FILES: &[(&str, &str)] = &[
     ("Ni", include_str!("library/Ni.stack")),
     ("Pd", include_str!("library/Pd.stack")),
     ("Pt", include_str!("library/Pt.stack")),
+    ("Cr", include_str!("library/Cr.stack")),
+    ("Mo", include_str!("library/Mo.stack")),
 ];
 
 /// Every n,k table by the name a material gives it.
@@ -73,7 +108,15 @@ const TABLES: &[(&str, &str)] = &[
     ("AlGaAs_700.csv", include_str!("library/tables/AlGaAs_700.csv")),
     ("AlGaAs_804.csv", include_str!("library/tables/AlGaAs_804.csv")),
     ("Au.csv", include_str!("library/tables/Au.csv")),
+    ("C60.csv", include_str!("library/tables/C60.csv")),
+    ("CdS.csv", include_str!("library/tables/CdS.csv")),
+    ("CdSe.csv", include_str!("library/tables/CdSe.csv")),
+    ("CdTe.csv", include_str!("library/tables/CdTe.csv")),
+    ("Cr.csv", include_str!("library/tables/Cr.csv")),
+    ("CsPbBr3.csv", include_str!("library/tables/CsPbBr3.csv")),
     ("Cu.csv", include_str!("library/tables/Cu.csv")),
+    ("CuGaSe2.csv", include_str!("library/tables/CuGaSe2.csv")),
+    ("CuInSe2.csv", include_str!("library/tables/CuInSe2.csv")),
     ("EVA.csv", include_str!("library/tables/EVA.csv")),
     ("GaAs.csv", include_str!("library/tables/GaAs.csv")),
     ("GaInP.csv", include_str!("library/tables/GaInP.csv")),
@@ -82,19 +125,40 @@ const TABLES: &[(&str, &str)] = &[
     ("Ge.csv", include_str!("library/tables/Ge.csv")),
     ("HfO2.csv", include_str!("library/tables/HfO2.csv")),
     ("ITO.csv", include_str!("library/tables/ITO.csv")),
+    ("ITO_heavy.csv", include_str!("library/tables/ITO_heavy.csv")),
+    ("ITO_light.csv", include_str!("library/tables/ITO_light.csv")),
     ("InAs.csv", include_str!("library/tables/InAs.csv")),
     ("InP.csv", include_str!("library/tables/InP.csv")),
+    ("MAPbBr3.csv", include_str!("library/tables/MAPbBr3.csv")),
+    ("MAPbI3.csv", include_str!("library/tables/MAPbI3.csv")),
+    ("Mo.csv", include_str!("library/tables/Mo.csv")),
+    ("MoO3.csv", include_str!("library/tables/MoO3.csv")),
     ("Nb2O5.csv", include_str!("library/tables/Nb2O5.csv")),
     ("Ni.csv", include_str!("library/tables/Ni.csv")),
+    ("PEDOT_PSS.csv", include_str!("library/tables/PEDOT_PSS.csv")),
     ("Pd.csv", include_str!("library/tables/Pd.csv")),
     ("Pt.csv", include_str!("library/tables/Pt.csv")),
     ("Si.csv", include_str!("library/tables/Si.csv")),
+    ("SiNx.csv", include_str!("library/tables/SiNx.csv")),
     ("Ta2O5.csv", include_str!("library/tables/Ta2O5.csv")),
     ("Ti.csv", include_str!("library/tables/Ti.csv")),
     ("TiO2.csv", include_str!("library/tables/TiO2.csv")),
+    ("WO3.csv", include_str!("library/tables/WO3.csv")),
+    ("ZnO.csv", include_str!("library/tables/ZnO.csv")),
     ("ZnS.csv", include_str!("library/tables/ZnS.csv")),
+    ("ZnTe.csv", include_str!("library/tables/ZnTe.csv")),
+    ("aSiH.csv", include_str!("library/tables/aSiH.csv")),
     ("glass.csv", include_str!("library/tables/glass.csv")),
+    ("glass_clear.csv", include_str!("library/tables/glass_clear.csv")),
 ];
+
+/// Families that are called by a word, and the elements that stand in a formula of theirs.
+const FORMULAS: &[(&str, &str)] = &[("perovskite", "CsFAMAPbIBr"), ("CIGS", "CuInGaSe2")];
+
+/// What to read the elements of a name from: the name itself, or the formula behind it.
+pub fn formula_of(name: &str) -> &str {
+    FORMULAS.iter().find(|(word, _)| *word == name).map_or(name, |(_, formula)| formula)
+}
 
 /// The table of that name: `nm,n,k` lines.
 pub fn table(name: &str) -> Option<&'static str> {

@@ -120,6 +120,29 @@ impl Library {
         self.of_elements(&formula::elements(name)?, scope)
     }
 
+    /// The smallest family that mixes these elements with others, and has the same unmixed ones:
+    /// `perovskite` for Cs, FA, Pb, I. Families that mix all they are made of have to be named.
+    fn of_more_elements(&mut self, elements: &[String], scope: &mut Scope) -> Option<Arc<Family>> {
+        let holds = |all: &[String]| elements.iter().all(|element| all.contains(element));
+        let mut found: Vec<(usize, String)> = self
+            .names()
+            .into_iter()
+            .filter_map(|name| Some((formula::elements(library::formula_of(name))?, name)))
+            .filter(|(all, _)| holds(all))
+            .map(|(all, name)| (all.len(), name.to_owned()))
+            .collect();
+        found.sort();
+        found.into_iter().find_map(|(_, name)| match self.named(&name, scope)? {
+            Definition::Family(family) => {
+                let frame = family.frame();
+                let whole = !frame.is_empty() && frame.iter().all(|element| elements.contains(element));
+                let filled = family.sites.iter().all(|site| site.iter().any(|it| elements.contains(it)));
+                (whole && filled).then_some(family)
+            }
+            Definition::Compound(_) => None,
+        })
+    }
+
     /// Whether a name is defined, be it rightly or wrongly.
     fn is_defined(&self, name: &str) -> bool {
         self.user.contains_key(name) || library::FILES.iter().any(|(known, _)| *known == name)
@@ -132,7 +155,9 @@ impl Library {
             elements
         };
         let wanted = sorted(elements.to_vec());
-        let same = |name: &&str| formula::elements(name).is_some_and(|own| sorted(own) == wanted);
+        let same = |name: &&str| {
+            formula::elements(library::formula_of(name)).is_some_and(|own| sorted(own) == wanted)
+        };
         let found = self.names().into_iter().find(same)?.to_owned();
         self.named(&found, scope)
     }

@@ -108,6 +108,8 @@ pub fn gap_reach(family: &Family, lattice: Option<(f64, f64)>) -> Option<GapReac
             reach((0..=STEPS).map(|step| between(&from, &to, step as f64 / STEPS as f64)), family)
         }
         (None, 2) => reach(plane(family).into_iter(), family),
+        // Three free fractions: between every two members, where bowing shows most.
+        (None, _) => reach(edges(family).into_iter(), family),
         _ => None,
     }
 }
@@ -348,6 +350,29 @@ fn plane(family: &Family) -> Vec<Composition> {
     for first in 0..=steps {
         let Some((from, to)) = line(family, &[(0, 0, fraction(first))]) else { continue };
         all.extend((0..=steps).map(|second| between(&from, &to, fraction(second))));
+    }
+    all
+}
+
+/// The straight lines between every two end members.
+fn edges(family: &Family) -> Vec<Composition> {
+    let corner = |row: usize, column: usize| {
+        let mut corner = [vec![0.0; family.sites[0].len()], vec![0.0; family.sites[1].len()]];
+        corner[0][row] = 1.0;
+        corner[1][column] = 1.0;
+        corner
+    };
+    let rows = 0..family.sites[0].len();
+    let corners: Vec<Composition> = rows
+        .flat_map(|row| (0..family.sites[1].len()).map(move |column| (row, column)))
+        .map(|(row, column)| corner(row, column))
+        .collect();
+    let steps = 20;
+    let mut all = Vec::new();
+    for (at, from) in corners.iter().enumerate() {
+        for to in &corners[at + 1..] {
+            all.extend((0..=steps).map(|step| between(from, to, step as f64 / steps as f64)));
+        }
     }
     all
 }

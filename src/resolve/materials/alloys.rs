@@ -8,18 +8,28 @@ use crate::materials::alloy::transport::FamilyCarriers;
 use crate::materials::alloy::{Bowing, BowingLaw, Compound, Family, FamilyIndex, Ordering};
 use crate::materials::elements::{Site, site};
 use crate::materials::{Origin, formula};
-use crate::resolve::materials::Definition;
 use crate::resolve::materials::blocks::Reader;
 use crate::resolve::materials::transport;
 use crate::resolve::materials::values::{Arguments, Kind, properties, quantity};
+use crate::resolve::materials::{Definition, misplaced};
 use crate::resolve::names;
 use crate::source::Spanned;
 use crate::syntax::{Named, Property};
 use crate::units::ELEMENTARY_CHARGE;
 
 /// The words an `alloy` block knows.
-const GROUPS: &[&str] =
-    &["about", "bowing", "caution", "cite", "index", "members", "ordering", "source", "ternaries"];
+const GROUPS: &[&str] = &[
+    "about",
+    "bowing",
+    "caution",
+    "cite",
+    "index",
+    "members",
+    "ordering",
+    "otherwise",
+    "source",
+    "ternaries",
+];
 
 /// End members, bowings and ordering of the ternaries of a family.
 type Parts = (Vec<Arc<Compound>>, Vec<Bowing>, Option<Ordering>);
@@ -75,6 +85,7 @@ impl Reader<'_> {
             members,
             bowings,
             ordering,
+            otherwise: Vec::new(),
             index: FamilyIndex::None,
             carriers: FamilyCarriers::default(),
             origins: Vec::new(),
@@ -88,6 +99,9 @@ impl Reader<'_> {
             family.ordering = None;
             self.origins.retain(|origin| origin.what != "ordering");
         }
+        if let Some(property) = find("otherwise") {
+            family.otherwise = self.otherwise(property, &family);
+        }
         if let Some(group) = find("index") {
             family.index = self.family_index(group, &family);
         }
@@ -98,6 +112,24 @@ impl Reader<'_> {
         };
         family.origins = std::mem::take(&mut self.origins);
         Some(family)
+    }
+
+    /// `otherwise MA 0, Cs 0.2`: fractions taken where a phrase leaves them open.
+    fn otherwise(&mut self, property: &Property, family: &Family) -> Vec<(String, f64)> {
+        let mut arguments = Arguments::of(property);
+        let mut taken = Vec::new();
+        while let Some(element) = arguments.word() {
+            if family.position(&element.value).is_none() {
+                self.scope.report(misplaced::no_such_element(family, element));
+                return Vec::new();
+            }
+            let Some(fraction) = quantity(&mut arguments, "otherwise", Kind::FRACTION, self.scope) else {
+                return Vec::new();
+            };
+            taken.push((element.value.clone(), fraction));
+        }
+        arguments.end(self.scope);
+        taken
     }
 
     /// `members GaP, InP`
@@ -189,10 +221,16 @@ impl Reader<'_> {
                 sites[place].push(element.clone());
             }
         }
+        // Lead in a perovskite, copper in a chalcopyrite: on no sublattice that mixes, and the same
+        // in every member.
+        let frame = |own: &[String]| own.iter().filter(|it| site(it).is_none()).cloned().collect::<Vec<_>>();
+        let first = members.first().and_then(|member| formula::elements(&member.material.name));
+        let first = frame(&first.unwrap_or_default());
         let find = |three: &String, five: &String| {
             members.iter().find(|member| {
                 let own = formula::elements(&member.material.name).unwrap_or_default();
-                own.len() == 2 && own.contains(three) && own.contains(five)
+                let mixed = own.len() - frame(&own).len();
+                mixed == 2 && frame(&own) == first && own.contains(three) && own.contains(five)
             })
         };
         let rows: Option<Vec<Vec<Arc<Compound>>>> = sites[0]
@@ -200,7 +238,7 @@ impl Reader<'_> {
             .map(|three| sites[1].iter().map(|five| find(three, five).cloned()).collect())
             .collect();
         let freedom = sites[0].len() + sites[1].len();
-        if let (Some(rows), 3 | 4) = (rows, freedom) {
+        if let (Some(rows), 3..=5) = (rows, freedom) {
             return Some((sites, rows));
         }
         self.scope.report(
@@ -208,7 +246,7 @@ impl Reader<'_> {
                 "material.incomplete",
                 format!("the end members of `{}` do not span a family", item.name.value),
             )
-            .at(item.name.span, "two or four III-V compounds, or three on one sublattice, are due")
+            .at(item.name.span, "two or four compounds, or three on one sublattice, are due")
             .help("name every corner, such as `members GaP, InP` for `GaInP`"),
         );
         None

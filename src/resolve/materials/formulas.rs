@@ -37,7 +37,9 @@ pub(super) fn composition_of(
         );
         return None;
     }
-    let family = match library.of_elements(&elements, scope) {
+    let exact = library.of_elements(&elements, scope);
+    let found = exact.or_else(|| library.of_more_elements(&elements, scope).map(Definition::Family));
+    let family = match found {
         Some(Definition::Family(family)) => family,
         Some(Definition::Compound(compound)) => {
             let own = &compound.material.name;
@@ -58,9 +60,20 @@ pub(super) fn composition_of(
         }
     };
     let flat = flatten(scope, name, &parts)?;
+    if let Some(finding) = off_pattern(name, &flat, &family) {
+        scope.report(finding);
+        return None;
+    }
     let mut composition = [Vec::new(), Vec::new()];
     for (at, elements) in family.sites.iter().enumerate() {
-        let own: Vec<&Share> = flat.iter().filter(|share| elements.contains(&share.element)).collect();
+        let times = family.times(at);
+        let per_atom = |share: &Share| Share {
+            element: share.element.clone(),
+            fraction: share.fraction.map(|fraction| fraction / times),
+        };
+        let own: Vec<Share> =
+            flat.iter().filter(|share| elements.contains(&share.element)).map(per_atom).collect();
+        let own: Vec<&Share> = own.iter().collect();
         let fractions = complete(scope, name, &own)?;
         composition[at] = elements
             .iter()
@@ -69,6 +82,68 @@ pub(super) fn composition_of(
             .collect();
     }
     Some((family, composition))
+}
+
+/// Numbers that do not fit the formula unit of a family: lead with 0.9, halogens that sum to 1
+/// where 3 are due. Sublattices of one atom are seen to elsewhere.
+fn off_pattern(name: &Spanned<String>, flat: &[Share], family: &Family) -> Option<Finding> {
+    let text = &name.value;
+    for own in family.pattern() {
+        let count = own.fraction.unwrap_or(1.0);
+        let Some((site, _)) = family.position(&own.element) else {
+            let stated = flat.iter().find(|share| share.element == own.element)?.fraction.unwrap_or(1.0);
+            if (stated - count).abs() > TOLERANCE {
+                let whole = family.label(&family.corner());
+                return Some(
+                    Finding::error(
+                        "formula.composition",
+                        format!("`{text}` has {} of {}, not {}", number(stated), own.element, number(count)),
+                    )
+                    .at(part_span(name, &own.element), "data are of the whole number")
+                    .help(format!("write `{}` as in `{whole}`", own.element)),
+                );
+            }
+            continue;
+        };
+        let on_site: Vec<&Share> =
+            flat.iter().filter(|share| family.sites[site].contains(&share.element)).collect();
+        let sum: f64 = on_site.iter().filter_map(|share| share.fraction).sum();
+        let open = on_site.iter().any(|share| share.fraction.is_none());
+        let wrong =
+            if open { sum > count * (1.0 + TOLERANCE) } else { (sum / count - 1.0).abs() > TOLERANCE };
+        if count == 1.0 || !wrong {
+            continue;
+        }
+        let elements: Vec<&str> = on_site.iter().map(|share| share.element.as_str()).collect();
+        let shown = number((sum * 1e6).round() / 1e6);
+        let inside: Vec<String> = on_site
+            .iter()
+            .map(|share| {
+                format!(
+                    "{}{}",
+                    share.element,
+                    number(((share.fraction.unwrap_or(0.0) / sum) * 1e3).round() / 1e3)
+                )
+            })
+            .collect();
+        let help = match inside.as_slice() {
+            [_] => format!("write `{}{}`", elements[0], number(count)),
+            _ => format!("write `({}){}`", inside.concat(), number(count)),
+        };
+        return Some(
+            Finding::error(
+                "formula.sum",
+                format!(
+                    "the numbers of {} in `{text}` sum to {shown}, not {}",
+                    elements.join(", "),
+                    number(count)
+                ),
+            )
+            .at(name.span, format!("{} are due", number(count)))
+            .help(help),
+        );
+    }
+    None
 }
 
 fn shares(part: &Part) -> &[Share] {

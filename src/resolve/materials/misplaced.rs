@@ -52,7 +52,7 @@ pub(super) fn other_families(
     let names: Vec<String> = library.names().into_iter().map(str::to_owned).collect();
     for name in names {
         let holds = formula::elements(&name)
-            .is_some_and(|all| all.len() == 3 && own.iter().all(|it| all.contains(it)));
+            .is_some_and(|all| all.len() == own.len() + 1 && own.iter().all(|it| all.contains(it)));
         if !holds {
             continue;
         }

@@ -230,6 +230,27 @@ fn of_family(
     if open {
         return Some(resolved);
     }
+    // What a family takes where nothing is said, and only as much of it as is open.
+    if stated.is_none() && !wishes.is_empty() {
+        let named: Vec<&str> = request
+            .phrase
+            .qualifiers
+            .iter()
+            .filter_map(|it| match it {
+                Qualifier::With { element, .. } => Some(element.value.as_str()),
+                _ => None,
+            })
+            .collect();
+        let unsaid = family.otherwise.iter().filter(|(element, _)| !named.contains(&element.as_str()));
+        for (element, fraction) in unsaid.take(family.freedom().saturating_sub(wishes.len())) {
+            asked.taken.push((element.clone(), *fraction));
+            let own = element.clone();
+            wishes.push(Wish {
+                make: Box::new(move |fraction| Wanted::Fraction(own.clone(), fraction)),
+                ends: (*fraction, None),
+            });
+        }
+    }
     let graded = wishes.iter().any(|wish| wish.ends.1.is_some());
     let steps = if graded { request.steps.max(1) } else { 1 };
     for step in 0..steps {
@@ -329,7 +350,8 @@ fn lattice_beneath(scope: &mut Scope, reference: &Reference, span: Span, tempera
 /// How the composition came to be.
 fn composition_origin(asked: &Asked<'_>, material: &Material, wanted: &[Wanted], stated: bool) -> Origin {
     let what = "composition".to_owned();
-    if stated || wanted.iter().all(|wish| matches!(wish, Wanted::Fraction(..))) {
+    let fractions = wanted.iter().all(|wish| matches!(wish, Wanted::Fraction(..)));
+    if stated || (fractions && asked.taken.is_empty()) {
         return Origin { what, kind: OriginKind::Stated, cite: "stated in the stack file".to_owned() };
     }
     let mut parts = Vec::new();
@@ -343,6 +365,10 @@ fn composition_origin(asked: &Asked<'_>, material: &Material, wanted: &[Wanted],
             }
             Wanted::Gap(ev) => {
                 parts.push(format!("the gap asked for, {} eV at 300 K", crate::units::number(*ev)))
+            }
+            Wanted::Fraction(element, fraction) if asked.taken.contains(&(element.clone(), *fraction)) => {
+                let fraction = crate::units::number(*fraction);
+                parts.push(format!("the fraction of {element} taken as {fraction}, since none was stated"));
             }
             Wanted::Fraction(element, fraction) => {
                 parts.push(format!("the fraction of {element} stated, {}", crate::units::number(*fraction)));

@@ -19,6 +19,8 @@ pub(super) struct Asked<'a> {
     pub(super) gap: Option<Span>,
     pub(super) ordered: Option<Span>,
     pub(super) fractions: Vec<Span>,
+    /// Fractions nobody stated, and the family took.
+    pub(super) taken: Vec<(String, f64)>,
 }
 
 impl<'a> Asked<'a> {
@@ -31,6 +33,7 @@ impl<'a> Asked<'a> {
             gap: None,
             ordered: None,
             fractions: Vec::new(),
+            taken: Vec::new(),
         }
     }
 
@@ -233,9 +236,17 @@ fn edge_member(family: &Family, angstrom: f64, temperature_k: f64) -> Option<Str
 fn open(asked: &Asked<'_>, count: usize, gap: Option<f64>) -> Finding {
     let (name, family) = (asked.name(), asked.family);
     let shown = if asked.matched.is_some() { format!("{name} matched") } else { name.to_owned() };
-    let noun = if count == 1 { "one fraction" } else { "two fractions" };
+    let noun = match count {
+        1 => "one fraction",
+        2 => "two fractions",
+        _ => "three fractions",
+    };
     let finding = Finding::error("material.open", format!("`{shown}` leaves {noun} of its composition open"))
-        .at(asked.span(), format!("{} more to say", if count == 1 { "one thing" } else { "two things" }));
+        .at(asked.span(), format!("{} more to say", if count == 1 { "one thing" } else { "some things" }));
+    if family.frame().first().is_some() {
+        let whole = family.label(&middle(family));
+        return finding.help(format!("write `{name} of gap 1.68 eV`, or a formula such as `{whole}`"));
+    }
     let mixed = family.sites.iter().find(|site| site.len() > 1);
     let element = mixed.and_then(|site| site.first()).map_or("Al", String::as_str);
     if family.freedom() == 1 {
@@ -249,6 +260,17 @@ fn open(asked: &Asked<'_>, count: usize, gap: Option<f64>) -> Finding {
     }
     let gap = reachable_gap(asked).map_or_else(|| "2.1 eV".to_owned(), |gap| ev(round(gap, 2)));
     finding.help(format!("write `{name} matched of gap {gap}` or `{name} matched with {element} 0.2`"))
+}
+
+/// A composition to show how a formula is written: one fifth of the second element on each
+/// sublattice.
+fn middle(family: &Family) -> Composition {
+    let mut composition = family.corner();
+    for site in composition.iter_mut().filter(|site| site.len() > 1) {
+        site[0] = 0.8;
+        site[1] = 0.2;
+    }
+    composition
 }
 
 /// A gap in the middle of what the phrase can still reach.
