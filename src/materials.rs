@@ -14,6 +14,7 @@ pub mod elements;
 pub mod formula;
 pub mod library;
 pub mod optics;
+pub mod strain;
 pub mod table;
 
 use carriers::Carriers;

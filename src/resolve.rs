@@ -37,6 +37,7 @@ pub mod quantities;
 mod requests;
 mod slots;
 mod stack;
+mod strain;
 mod table;
 mod tree;
 
@@ -92,6 +93,7 @@ pub fn resolve(
         spectra: HashMap::new(),
         bodies: HashMap::new(),
         materials: HashMap::new(),
+        strained: HashMap::new(),
         conditions_whole: true,
     };
     let designs = resolver.designs(first);
@@ -110,6 +112,7 @@ pub(crate) struct Resolver<'a, 's> {
     spectra: HashMap<&'s str, Option<Arc<Spectrum>>>,
     bodies: HashMap<&'s str, State<'s>>,
     materials: chemistry::Cache,
+    strained: strain::Cache,
     /// Whether every condition of the stack at hand is right.
     conditions_whole: bool,
 }

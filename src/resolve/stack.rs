@@ -5,7 +5,7 @@ use crate::finding::{Finding, Severity};
 use crate::resolve::properties::{self, pending, quantity, word};
 use crate::resolve::quantities::{Expected, Role};
 use crate::resolve::tree::Body;
-use crate::resolve::{Resolver, chemistry, junctions, layers, names, requests};
+use crate::resolve::{Resolver, chemistry, junctions, layers, names, requests, strain};
 use crate::source::Span;
 use crate::syntax::{Argument, Property, Stack};
 use crate::units::Dimension;
@@ -30,6 +30,7 @@ pub(super) fn design<'s>(
     junctions::separate(resolver, &design, terminals.map(|(property, _)| property.span));
     chemistry::materials(resolver, &mut design, &mut drafts);
     layers::finish(resolver, &mut design, drafts);
+    strain::strain(resolver, &mut design);
     junctions::voltages(&mut design);
     requests::requests(resolver, &mut design, body, conditions_whole);
     resolver.scope.close(outer);

@@ -9,6 +9,7 @@ use bandloom::resolve::quantities::Scope;
 mod files;
 mod optics;
 mod others;
+mod strain;
 
 pub(super) fn on(phrase: &str, substrate: Option<&str>) -> SharedMaterial {
     let (outcome, _) = look_up(phrase, substrate);

@@ -68,7 +68,7 @@ fn definitions_that_lead_in_a_circle_end() {
 }
 
 /// The designs of a file that has no findings.
-fn designs(text: &str) -> Vec<bandloom::design::Design> {
+pub(super) fn designs(text: &str) -> Vec<bandloom::design::Design> {
     let world = Memory::new().with("main.stack", text);
     let mut sources = Sources::default();
     let outcome = resolve(&world, &mut sources, Path::new("main.stack"), &Overrides::default());
