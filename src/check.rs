@@ -26,9 +26,12 @@ mod gap_indirect_absorber;
 mod gap_order;
 mod gap_window_absorbs;
 mod junctions;
+mod lattice_accumulated;
+mod lattice_bow;
 mod lattice_critical_thickness;
 mod lattice_mismatch;
 mod lattice_needless_relaxed;
+mod lattice_thermal;
 mod light_range;
 mod limits;
 mod optics_no_index;
@@ -60,6 +63,9 @@ pub static RULES: &[&Rule] = &[
     &lattice_mismatch::RULE,
     &lattice_critical_thickness::RULE,
     &lattice_needless_relaxed::RULE,
+    &lattice_accumulated::RULE,
+    &lattice_thermal::RULE,
+    &lattice_bow::RULE,
     &polarity_same::RULE,
     &polarity_flipped::RULE,
     &doping_missing::RULE,

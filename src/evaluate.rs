@@ -4,6 +4,7 @@ mod condition;
 mod dark;
 mod findings;
 mod finite;
+mod growth;
 mod hash;
 mod junctions;
 mod layers;
@@ -54,6 +55,7 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
         source: source.to_owned(),
         conditions,
         layers: layers::layer_results(design),
+        growth: growth::growth_result(design),
         requirements: Vec::new(),
         free_values: free_values(design),
         sensitivities: Vec::new(),

@@ -4,9 +4,13 @@
 //! is too large; in-plane strain `ε∥ = a_beneath/a_layer − 1` is then negative (compressed).
 
 use crate::design::{Design, Duty, Growth, Layer, Strain, ZERO_CELSIUS_K};
-use crate::materials::Elastic;
+use crate::materials::{Elastic, Material};
 
+pub mod accumulated;
+pub mod balance;
+pub mod bow;
 pub mod critical;
+pub mod record;
 
 /// Room temperature of the sheet, 25 °C, in K.
 pub const ROOM_K: f64 = ZERO_CELSIUS_K + 25.0;
@@ -23,6 +27,9 @@ pub struct LayerGrowth {
     pub mismatch: f64,
     /// Relaxed mismatch at [`LayerGrowth::growth_temperature_k`], a plain fraction.
     pub mismatch_at_growth: f64,
+    /// In-plane strain that cooling from the growth temperature to 25 °C adds, positive in
+    /// tension: the layer follows the wafer, which is far thicker. 0 where no temperature is stated.
+    pub thermal_strain: f64,
     /// In-plane strain at 25 °C of a layer that keeps the lattice beneath; 0 where the layer is
     /// said to be relaxed. A layer beyond its critical thickness that says nothing is still
     /// counted as strained: how far it relaxes by itself is not predicted.
@@ -70,6 +77,7 @@ pub fn lattice_states(design: &Design) -> Vec<Option<LayerGrowth>> {
     if wafer(design).is_none() {
         return states;
     }
+    let wafer = wafer(design).and_then(|at| design.layers[at].material.as_deref());
     let mut beneath: Option<usize> = None;
     for index in order(design) {
         let layer = &design.layers[index];
@@ -82,6 +90,9 @@ pub fn lattice_states(design: &Design) -> Vec<Option<LayerGrowth>> {
             continue;
         }
         states[index] = lattice_state(layer, beneath.map(|at| (at, &design.layers[at])));
+        if let (Some(state), Some(material), Some(wafer)) = (&mut states[index], &layer.material, wafer) {
+            state.thermal_strain = thermal_strain(material, wafer, state.growth_temperature_k);
+        }
         if beneath.is_none() || layer.strain == Strain::Relaxed {
             beneath = Some(index);
         }
@@ -107,10 +118,19 @@ fn lattice_state(layer: &Layer, beneath: Option<(usize, &Layer)>) -> Option<Laye
         growth_temperature_k,
         mismatch,
         mismatch_at_growth: mismatch_at(growth_temperature_k)?,
+        thermal_strain: 0.0,
         strain,
         perpendicular_strain: material.elastic.map(|elastic| perpendicular_strain(elastic, strain)),
         stress_gpa: material.elastic.map(|elastic| biaxial_stress_gpa(elastic, strain)),
     })
+}
+
+/// In-plane strain of a film that is free of stress at `from_k` and follows `wafer` down to 25 °C;
+/// 0 without the lattice of either.
+fn thermal_strain(film: &Material, wafer: &Material, from_k: f64) -> f64 {
+    let shrinks =
+        |material: &Material| Some(material.lattice_constant(ROOM_K)? / material.lattice_constant(from_k)?);
+    shrinks(wafer).zip(shrinks(film)).map_or(0.0, |(wafer, film)| wafer / film - 1.0)
 }
 
 /// In-plane strain of a coherent layer of relaxed mismatch `f`: `ε∥ = 1/(1 + f) − 1`.
@@ -127,8 +147,7 @@ pub fn perpendicular_strain(elastic: Elastic, in_plane: f64) -> f64 {
 /// Biaxial stress in GPa of a (001) layer, positive in tension:
 /// `σ = (C11 + C12 − 2 C12²/C11) ε∥`.
 pub fn biaxial_stress_gpa(elastic: Elastic, in_plane: f64) -> f64 {
-    let Elastic { c11_gpa: c11, c12_gpa: c12, .. } = elastic;
-    (c11 + c12 - 2.0 * c12 * c12 / c11) * in_plane
+    balance::biaxial_modulus_gpa(elastic) * in_plane
 }
 
 /// Poisson ratio of a (001) film, `ν = C12/(C11 + C12)`.
@@ -240,6 +259,8 @@ mod tests {
         let state = state(&design, "only.base");
         let grown = state.mismatch_at_growth - state.mismatch;
         assert!((grown - 0.002_56).abs() < 2e-4, "{grown}");
+        // What was free at growth is stretched by as much once the wafer has cooled.
+        assert!((state.thermal_strain - grown).abs() < 2e-5, "{}", state.thermal_strain);
     }
 
     #[test]

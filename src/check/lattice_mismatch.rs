@@ -12,8 +12,8 @@ use super::show::{celsius, count, length, percent, significant};
 use super::{Context, Report, Rule, Threshold};
 use crate::design::{Layer, Strain};
 use crate::finding::{Finding, Severity};
-use crate::growth::critical::{Cover, matthews_blakeslee, people_bean};
-use crate::growth::{LayerGrowth, order, poisson_ratio};
+use crate::growth::critical::Critical;
+use crate::growth::{LayerGrowth, order};
 use crate::materials::Material;
 
 pub(super) static RULE: Rule = Rule {
@@ -25,10 +25,6 @@ pub(super) static RULE: Rule = Rule {
     run,
 };
 
-/// Poisson ratio of a (001) film whose elastic constants nobody gave: that of most cubic
-/// semiconductors lies between 0.27 (Si, Ge) and 0.36 (InP, InAs).
-const USUAL_POISSON: f64 = 1.0 / 3.0;
-
 /// Nobody grows a closed layer thinner than this, m.
 const LEAST_LAYER_M: f64 = 3e-9;
 
@@ -39,31 +35,18 @@ struct Slab {
     mismatch: f64,
 }
 
-/// How thick a slab may be, m; `None` where no thickness keeps it coherent.
-pub(super) struct Critical {
-    /// Matthews and Blakeslee.
-    pub(super) safe_m: Option<f64>,
-    /// People and Bean.
-    hopeless_m: Option<f64>,
-    /// One step of the lattice.
-    step_m: f64,
-}
-
 fn run(context: &Context, report: &mut Report) {
     judge(context, report, RULE.code, |strain| strain == Strain::Unstated);
 }
 
-/// Reports the slabs of layers whose strain is said as `speaks` wants it.
+/// Reports the slabs of layers whose strain is said as `speaks` wants it; of the steps of one
+/// graded statement only the first.
 pub(super) fn judge(context: &Context, report: &mut Report, code: &'static str, speaks: fn(Strain) -> bool) {
-    for slab in slabs(context, speaks) {
+    let mut told = None;
+    for (slab, thickness, critical) in too_thick(context, speaks) {
         let layers: Vec<&Layer> = slab.layers.iter().map(|index| &context.design.layers[*index]).collect();
-        let known: Vec<f64> = layers.iter().filter_map(|layer| layer.thickness_m).collect();
-        let thickness: f64 = known.iter().sum();
-        let Some(critical) = slab.layers.first().and_then(|first| critical(context, *first)) else {
-            continue;
-        };
-        // Less than a step of the lattice is no layer yet: dots and wetting layers start so.
-        if thickness <= critical.safe_m.unwrap_or(0.0).max(critical.step_m) {
+        let statement = layers.first().map(|layer| layer.spans.statement);
+        if std::mem::replace(&mut told, statement) == statement {
             continue;
         }
         let severity = if critical.hopeless_m.is_none_or(|most| thickness > most) {
@@ -75,6 +58,25 @@ pub(super) fn judge(context: &Context, report: &mut Report, code: &'static str, 
             report.push(layers.iter().map(|layer| layer.path.as_str()), finding);
         }
     }
+}
+
+/// The layers that are too thick by themselves, whatever is said of their strain.
+pub(super) fn relaxing(context: &Context) -> Vec<usize> {
+    let slabs = too_thick(context, |strain| strain != Strain::Relaxed);
+    slabs.into_iter().flat_map(|(slab, ..)| slab.layers).collect()
+}
+
+/// The slabs that are thicker than what stays coherent, with their thickness.
+fn too_thick(context: &Context, speaks: fn(Strain) -> bool) -> Vec<(Slab, f64, Critical)> {
+    let design = context.design;
+    let judged = slabs(context, speaks).into_iter().filter_map(|slab| {
+        let thickness: f64 = slab.layers.iter().filter_map(|index| design.layers[*index].thickness_m).sum();
+        let critical = Critical::of(design, &context.lattice, *slab.layers.first()?)?;
+        // Less than a step of the lattice is no layer yet: dots and wetting layers start so.
+        let most = critical.safe_m.unwrap_or(0.0).max(critical.step_m);
+        (thickness > most).then_some((slab, thickness, critical))
+    });
+    judged.collect()
 }
 
 /// The coherent slabs beyond the threshold, in growth order.
@@ -100,24 +102,6 @@ fn slabs(context: &Context, speaks: fn(Strain) -> bool) -> Vec<Slab> {
         open = true;
     }
     slabs
-}
-
-/// How thick the layer at `index` may be on the layer beneath it before it relaxes.
-pub(super) fn critical(context: &Context, index: usize) -> Option<Critical> {
-    let layer = &context.design.layers[index];
-    let state = context.lattice[index]?;
-    let (material, temperature_k) = (layer.material.as_ref()?, state.growth_temperature_k);
-    let ground = context.design.layers[state.beneath?].material.as_ref()?;
-    let burgers = ground.lattice_constant(temperature_k)? / std::f64::consts::SQRT_2;
-    let lattice = material.lattice_constant(temperature_k)?;
-    let (mismatch, poisson) =
-        (state.mismatch_at_growth, material.elastic.map_or(USUAL_POISSON, poisson_ratio));
-    let metres = |angstrom: f64| angstrom * 1e-10;
-    Some(Critical {
-        safe_m: matthews_blakeslee(mismatch, poisson, burgers, Cover::Free).map(metres),
-        hopeless_m: people_bean(mismatch, poisson, burgers, lattice).map(metres),
-        step_m: metres(burgers),
-    })
 }
 
 fn finding(

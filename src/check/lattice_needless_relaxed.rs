@@ -1,11 +1,11 @@
 //! `lattice.needless-relaxed`: a layer said to be relaxed that has no reason to relax.
 
 use super::junctions::describe;
-use super::lattice_mismatch::critical;
 use super::show::{length, percent};
 use super::{Context, Report, Rule, Threshold};
 use crate::design::Strain;
 use crate::finding::{Finding, Severity};
+use crate::growth::critical::Critical;
 
 pub(super) static RULE: Rule = Rule {
     code: "lattice.needless-relaxed",
@@ -30,7 +30,10 @@ fn run(context: &Context, report: &mut Report) {
         if layer.strain != Strain::Relaxed || mismatch.abs() <= context.threshold(&RULE) {
             continue;
         }
-        let Some(safe) = critical(context, index).and_then(|critical| critical.safe_m) else { continue };
+        let Some(safe) = Critical::of(design, &context.lattice, index).and_then(|critical| critical.safe_m)
+        else {
+            continue;
+        };
         if thickness >= safe {
             continue;
         }

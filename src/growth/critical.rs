@@ -1,5 +1,8 @@
 //! Critical thickness: how thick a strained layer grows before dislocations pay off.
 
+use crate::design::Design;
+use crate::growth::{LayerGrowth, poisson_ratio};
+
 /// What lies above a strained layer.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Cover {
@@ -15,6 +18,46 @@ impl Cover {
             Self::Free => 8.0,
             Self::Buried => 4.0,
         }
+    }
+}
+
+/// Poisson ratio of a (001) film whose elastic constants nobody gave: that of most cubic
+/// semiconductors lies between 0.27 (Si, Ge) and 0.36 (InP, InAs).
+pub const USUAL_POISSON: f64 = 1.0 / 3.0;
+
+/// How thick a layer may be on the lattice beneath it, m; `None` where no thickness is safe.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Critical {
+    /// Matthews and Blakeslee, uncovered: every layer is while it grows.
+    pub safe_m: Option<f64>,
+    /// People and Bean.
+    pub hopeless_m: Option<f64>,
+    /// One step of the lattice, the Burgers vector a/√2 of the lattice beneath.
+    pub step_m: f64,
+    /// The (001) Poisson ratio it was worked out with.
+    pub poisson: f64,
+}
+
+impl Critical {
+    /// Of the layer at `index`; `None` where there is nothing to compare or nothing to relax.
+    pub fn of(design: &Design, states: &[Option<LayerGrowth>], index: usize) -> Option<Self> {
+        let state = states[index]?;
+        let (material, temperature_k) = (design.layers[index].material.as_ref()?, state.growth_temperature_k);
+        let ground = design.layers[state.beneath?].material.as_ref()?;
+        let burgers = ground.lattice_constant(temperature_k)? / std::f64::consts::SQRT_2;
+        let lattice = material.lattice_constant(temperature_k)?;
+        let mismatch = state.mismatch_at_growth;
+        if mismatch == 0.0 {
+            return None;
+        }
+        let poisson = material.elastic.map_or(USUAL_POISSON, poisson_ratio);
+        let metres = |angstrom: f64| angstrom * 1e-10;
+        Some(Self {
+            safe_m: matthews_blakeslee(mismatch, poisson, burgers, Cover::Free).map(metres),
+            hopeless_m: people_bean(mismatch, poisson, burgers, lattice).map(metres),
+            step_m: metres(burgers),
+            poisson,
+        })
     }
 }
 

@@ -209,6 +209,7 @@ fn the_numbers_file_has_its_keys_and_ten_digits() {
             "source",
             "conditions",
             "layers",
+            "growth",
             "requirements",
             "free_values",
             "sensitivities",
