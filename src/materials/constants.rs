@@ -11,6 +11,21 @@ impl Constants {
     pub fn get(&self, name: &str) -> Option<f64> {
         self.0.get(name).copied()
     }
+
+    /// Adds the density-of-states masses of the X and L valleys that follow from a longitudinal
+    /// and a transverse one: `(c² m_l m_t²)^(1/3)` with `c` whole ellipsoids, three at the faces of
+    /// the zone at X, four at L. Alloys need the same names from all their end members.
+    pub fn complete(&mut self) {
+        for (count, valley) in [
+            (3.0_f64, ["mass.x_density", "mass.x_longitudinal", "mass.x_transverse"]),
+            (4.0, ["mass.l_density", "mass.l_longitudinal", "mass.l_transverse"]),
+        ] {
+            let [density, long, across] = valley;
+            if let (None, Some(long), Some(across)) = (self.get(density), self.get(long), self.get(across)) {
+                self.0.insert(density, (count * count * long * across * across).cbrt());
+            }
+        }
+    }
 }
 
 /// The unit a constant is kept in.

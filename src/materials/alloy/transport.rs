@@ -127,6 +127,9 @@ impl Family {
                     "between the compositions given and the end members: means of the logarithms of mobilities and dopings and of the exponents"
                 }
                 (1, false) => "between the end members: means of logarithms by fraction",
+                (_, _) if what == "mobility" => {
+                    "means of logarithms over the ternaries around it, weighted as their bowings are; without the scattering of a random alloy of four, which slows electrons by up to 1.7"
+                }
                 (_, _) => "means of logarithms over the ternaries around it, weighted as their bowings are",
             };
             origins.push(Origin { what: what.to_owned(), kind: OriginKind::Model, cite: how.to_owned() });

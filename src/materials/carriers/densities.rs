@@ -44,20 +44,11 @@ impl Material {
     /// Density-of-states mass of a valley with all its equivalents, in electron masses.
     fn valley_mass(&self, kind: GapKind, is_lowest: bool) -> Option<f64> {
         let get = |name: &str| self.constants.get(name).filter(|mass| *mass > 0.0);
-        // Equivalent ellipsoids: three whole ones at the zone's X faces, four at its L faces.
-        let ellipsoids = |count: f64, longitudinal: &str, transverse: &str| {
-            let (long, across) = (get(longitudinal)?, get(transverse)?);
-            Some(count.powf(2.0 / 3.0) * (long * across * across).cbrt())
-        };
         let stated = get("mass.electron_density").filter(|_| is_lowest);
         stated.or_else(|| match kind {
             GapKind::Direct => get("mass.electron"),
-            GapKind::IndirectX => {
-                get("mass.x_density").or_else(|| ellipsoids(3.0, "mass.x_longitudinal", "mass.x_transverse"))
-            }
-            GapKind::IndirectL => {
-                get("mass.l_density").or_else(|| ellipsoids(4.0, "mass.l_longitudinal", "mass.l_transverse"))
-            }
+            GapKind::IndirectX => get("mass.x_density"),
+            GapKind::IndirectL => get("mass.l_density"),
         })
     }
 

@@ -73,7 +73,11 @@ fn intrinsic_densities_at_300_k() {
     within(at("GaAs"), 1.8e6 * PER_CM3, 2.5e6 * PER_CM3);
     // 2.0e13 (Sze) to 2.33e13 (F. J. Morin, J. P. Maita, Phys. Rev. 94, 1525 (1954)).
     within(at("Ge"), 1.9e13 * PER_CM3, 2.4e13 * PER_CM3);
-    // Ioffe Institute archive: 1.3e7.
+    // P. P. Altermatt et al., J. Appl. Phys. 93, 1598 (2003).
+    within(at("Si"), 9.6e9 * PER_CM3, 9.7e9 * PER_CM3);
+    // Ioffe Institute archive: 6.3e11 for Ga0.47In0.53As, 1e15 for InAs, 1.3e7 for InP.
+    within(at("In0.53Ga0.47As"), 5.0e11 * PER_CM3, 9.5e11 * PER_CM3);
+    within(at("InAs"), 0.8e15 * PER_CM3, 1.2e15 * PER_CM3);
     within(at("InP"), 0.9e7 * PER_CM3, 1.6e7 * PER_CM3);
 }
 
@@ -104,8 +108,51 @@ fn low_field_mobilities_at_300_k() {
 }
 
 #[test]
+fn mobilities_of_elements_and_alloys_at_300_k() {
+    let at = |name: &str, carrier, doping: f64| {
+        material(name).mobility_m2_per_vs(carrier, doping * PER_CM3, 300.0).map(|value| value / CM2)
+    };
+    // W. R. Thurber et al., J. Electrochem. Soc. 127, 1807 and 2291 (1980), from memory: silicon with
+    // phosphorus 1250 at 1e16, 730 at 1e17; with boron 430 at 1e16, 320 at 1e17, within 8 %.
+    within(at("Si", Carrier::Electron, 1e16), 1150.0, 1300.0);
+    within(at("Si", Carrier::Electron, 1e17), 670.0, 790.0);
+    within(at("Si", Carrier::Hole, 1e16), 400.0, 450.0);
+    within(at("Si", Carrier::Hole, 1e17), 295.0, 345.0);
+    // Ioffe Institute archive: germanium at most 3900 and 1900.
+    within(at("Ge", Carrier::Electron, 1e14), 3500.0, 3900.0);
+    within(at("Ge", Carrier::Hole, 1e14), 1700.0, 1900.0);
+    // Ioffe Institute archive, undoped Hall mobilities: Al0.2Ga0.8As 8000 - 22000 x + 10000 x² = 4000,
+    // Al0.45Ga0.55As 125, Al0.8Ga0.2As -255 + 1160 x - 720 x² = 212; Ga0.47In0.53As 12 900.
+    within(at("Al0.2Ga0.8As", Carrier::Electron, 1e13), 3000.0, 4400.0);
+    within(at("Al0.45Ga0.55As", Carrier::Electron, 1e13), 110.0, 140.0);
+    within(at("Al0.8Ga0.2As", Carrier::Electron, 1e13), 150.0, 300.0);
+    within(at("In0.53Ga0.47As", Carrier::Electron, 1e14), 10_000.0, 14_000.0);
+    // Ga0.28In0.72As0.6P0.4, same archive: holes at most 200 - 400 y + 500 y² = 140, electrons at most
+    // 5400 - 7750 y + 14400 y² = 5900; here without the scattering of an alloy of four, up to 1.7 times.
+    within(at("Ga0.28In0.72As0.6P0.4", Carrier::Electron, 1e14), 5900.0 / 1.7, 5900.0 * 1.7);
+    within(at("Ga0.28In0.72As0.6P0.4", Carrier::Hole, 1e14), 90.0, 320.0);
+}
+
+#[test]
 fn a_mobility_falls_with_doping_and_with_temperature() {
-    for name in ["GaAs", "InP", "GaP", "Ga0.51In0.49P", "Ga0.7In0.3P"] {
+    for name in [
+        "GaAs",
+        "InP",
+        "GaP",
+        "InAs",
+        "AlAs",
+        "GaSb",
+        "Si",
+        "Ge",
+        "Ga0.51In0.49P",
+        "Ga0.7In0.3P",
+        "Al0.2Ga0.8As",
+        "Al0.52In0.48P",
+        "In0.53Ga0.47As",
+        "In0.52Al0.48As",
+        "GaAs0.8P0.2",
+        "(Al0.3Ga0.7)0.52In0.48P",
+    ] {
         let material = material(name);
         for carrier in Carrier::BOTH {
             let at = |doping: f64, kelvin: f64| {
@@ -130,6 +177,12 @@ fn absorption_gives_the_published_radiative_coefficients() {
     near("GaAs", 7.2e-10, 1.5);
     // Varshni (1967): 6.41e-14 by the same formula.
     near("Ge", 6.4e-14, 1.5);
+    // T. Trupke et al., J. Appl. Phys. 94, 4930 (2003): 4.73e-15 at 300 K.
+    near("Si", 4.73e-15, 1.1);
+    // Ioffe Institute archive, measured: 1.2e-10 for InP and 0.96e-10 for Ga0.47In0.53As; calculated
+    // from absorption by Varshni (1967): 1.26e-9 for InP. Between both.
+    within(at("InP"), 1.2e-10 * CM3_PER_S, 1.26e-9 * CM3_PER_S);
+    within(at("In0.53Ga0.47As"), 0.96e-10 * CM3_PER_S, 4.0e-10 * CM3_PER_S);
 }
 
 #[test]
@@ -139,6 +192,9 @@ fn affinities_follow_the_valence_offsets() {
     // Handbooks (Ioffe Institute archive): InP 4.38, GaP 3.8; measured one by one.
     within(affinity("InP"), 4.2, 4.45);
     within(affinity("GaP"), 3.6, 3.9);
+    within(affinity("InAs"), 4.8, 5.0);
+    within(affinity("GaSb"), 3.9, 4.1);
+    within(affinity("InSb"), 4.45, 4.65);
     // The conduction band of GaInP lies 0.1 to 0.22 eV above that of GaAs: published offsets.
     let step = affinity("GaAs").zip(affinity("Ga0.516In0.484P")).map(|(low, high)| low - high);
     within(step, 0.08, 0.22);
@@ -164,6 +220,14 @@ fn damage_shortens_a_diffusion_length() {
     let after = damage.diffusion_length_m(Carrier::Electron, 5e-6, 1e19);
     let expected = (1.0 / (1.0 / 25e-12 + 6e-8 * 1e19_f64)).sqrt();
     within(after, expected * 0.999_999, expected * 1.000_001);
+}
+
+#[test]
+fn an_indirect_alloy_has_states_too() {
+    // AlInP matched to GaAs: X valley, three ellipsoids of 0.8 to 0.9 electron masses together.
+    let window = material("Al0.52In0.48P");
+    within(window.conduction_density_per_m3(300.0), 1.5e19 * PER_CM3, 4e19 * PER_CM3);
+    within(window.affinity_ev(300.0), 3.6, 3.9);
 }
 
 #[test]

@@ -110,6 +110,7 @@ impl<'a> Reader<'a> {
                 other => self.unknown_word(property, other),
             }
         }
+        material.constants.complete();
         if let Some(group) = index {
             material.optics = self.index(group, material.bands.as_ref());
         }
