@@ -5,6 +5,7 @@ mod dark;
 mod findings;
 mod finite;
 mod growth;
+mod gap_map;
 mod hash;
 mod junctions;
 mod layers;
@@ -56,6 +57,7 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
         conditions,
         layers: layers::layer_results(design),
         growth: growth::growth_result(design),
+        gap_map: gap_map::gap_map(design),
         requirements: Vec::new(),
         free_values: free_values(design),
         sensitivities: Vec::new(),

@@ -30,6 +30,9 @@ pub struct Results {
     pub layers: Vec<LayerResult>,
     /// The layers as they grow; `None` without a wafer or a lattice.
     pub growth: Option<GrowthResult>,
+    /// Gaps and lattices of the layers beside the families they are taken from, at 25 °C; `None`
+    /// without a wafer that has a lattice.
+    pub gap_map: Option<GapMap>,
     /// One per requirement and condition it holds for.
     pub requirements: Vec<RequirementResult>,
     /// In the order of the design.
@@ -251,6 +254,57 @@ pub struct GrowthStep {
     pub critical_thickness_nm: Option<f64>,
     /// People and Bean, the upper estimate.
     pub critical_thickness_upper_nm: Option<f64>,
+/// Gap against mismatch to the wafer, at 25 °C.
+#[derive(Clone, Debug, Serialize)]
+pub struct GapMap {
+    /// The wafer's material.
+    pub wafer: String,
+    /// Its lattice, where the mismatch is 0.
+    pub lattice_constant_angstrom: f64,
+    /// The ternaries around each family that a layer is taken from.
+    pub families: Vec<FamilyCurve>,
+    /// Where they end.
+    pub compounds: Vec<EndMember>,
+    /// Layers grown on the wafer that have a gap and a lattice, sunward first.
+    pub layers: Vec<GapMark>,
+}
+
+/// A ternary from one end to the other.
+#[derive(Clone, Debug, Serialize)]
+pub struct FamilyCurve {
+    /// `GaInP`
+    pub name: String,
+    /// Relaxed, against the wafer.
+    pub mismatch: Vec<f64>,
+    /// The lowest.
+    pub gap_ev: Vec<f64>,
+    /// Whether it is direct there.
+    pub direct: Vec<bool>,
+}
+
+/// Where a ternary ends.
+#[derive(Clone, Debug, Serialize)]
+pub struct EndMember {
+    /// `GaP`
+    pub name: String,
+    /// Relaxed, against the wafer.
+    pub mismatch: f64,
+    /// The lowest.
+    pub gap_ev: f64,
+}
+
+/// A layer on the map.
+#[derive(Clone, Debug, Serialize)]
+pub struct GapMark {
+    /// Path.
+    pub name: String,
+    /// Relaxed, against the wafer.
+    pub mismatch: f64,
+    /// The lowest, unstrained.
+    pub gap_ev: f64,
+    /// The size of the mismatch at which a layer of its thickness would begin to relax, by
+    /// balance of forces; `None` where it does not lie on the wafer's lattice.
+    pub critical_mismatch: Option<f64>,
 }
 
 /// Where a number comes from.

@@ -77,6 +77,17 @@ pub fn matthews_blakeslee(mismatch: f64, poisson: f64, burgers: f64, cover: Cove
     fixed_point(scale, 1.0).map(|ratio| ratio * burgers)
 }
 
+/// The relaxed mismatch, ≥ 0, at which a layer of `thickness` (in the unit of `burgers`) is just
+/// critical: [`matthews_blakeslee`] solved for the mismatch, which it is linear in. `None` for a
+/// layer no thicker than `burgers`, to which the balance of forces does not apply.
+pub fn critical_mismatch(thickness: f64, poisson: f64, burgers: f64, cover: Cover) -> Option<f64> {
+    let ratio = thickness / burgers;
+    let cos = 0.5;
+    let at_one =
+        (1.0 - poisson * cos * cos) / (cover.factor() * std::f64::consts::PI * (1.0 + poisson) * cos);
+    (ratio > 1.0 && ratio.is_finite()).then(|| at_one * (ratio.ln() + 1.0) / ratio)
+}
+
 /// Upper estimate by energy balance, in the unit of `burgers` and `lattice`: the larger root of
 /// `h = (1 − ν)/(1 + ν) · b²/(16 π √2 a f²) · ln(h/b)`.
 ///
@@ -165,5 +176,15 @@ mod tests {
             assert!((x - scale * (x.ln() + 1.0)).abs() < 1e-9 * x, "scale {scale}");
             assert!(x >= scale * (1.0 - 1e-12), "the larger root");
         }
+    }
+
+    #[test]
+    fn critical_mismatch_is_the_inverse() {
+        for mismatch in [0.0005, 0.003, 0.01] {
+            let thick = matthews_blakeslee(mismatch, 0.31, 4.0, Cover::Free).expect("has a root");
+            let back = critical_mismatch(thick, 0.31, 4.0, Cover::Free).expect("thick enough");
+            assert!((back / mismatch - 1.0).abs() < 1e-9, "{back} for {mismatch}");
+        }
+        assert_eq!(critical_mismatch(3.0, 0.31, 4.0, Cover::Free), None);
     }
 }

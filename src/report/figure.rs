@@ -18,6 +18,7 @@ pub use label::{Anchor, Label, LabelBox};
 pub mod curves;
 pub mod dark;
 pub mod eqe;
+pub mod gap;
 pub mod hatch;
 pub mod label;
 pub mod ledger;

@@ -161,6 +161,9 @@ fn rules() -> Vec<Rule> {
     rule("grid", "fill:none;stroke-width:.7;stroke-opacity:.5", &|t| format!("stroke:{}", t.paper));
     rule("cs", "fill:none;stroke-width:2.6;stroke-linejoin:round", &|t| format!("stroke:{}", t.ink));
     rule("cq", "fill:none;stroke-width:1.2;stroke-dasharray:4 3", &|t| format!("stroke:{}", t.quiet));
+    rule("fam", "fill:none;stroke-width:1.1;stroke-linejoin:round", &|t| format!("stroke:{}", t.quiet));
+    rule("famx", "fill:none;stroke-width:1.1;stroke-dasharray:4 3", &|t| format!("stroke:{}", t.quiet));
+    rule("wash", "", &|t| format!("fill:{}", t.wash));
     rule("box", "fill:none;stroke-width:.8;stroke-dasharray:1.5 2.5", &|t| format!("stroke:{}", t.quiet));
     rule("tick", "fill:none;stroke-width:1.5", &|t| format!("stroke:{}", t.ink));
     rule("tickhalo", "fill:none;stroke-width:3.6", &|t| format!("stroke:{}", t.paper));

@@ -18,6 +18,7 @@ pub mod dark;
 pub mod electrical;
 pub mod findings;
 pub mod further;
+pub mod gap;
 pub mod layers;
 pub mod optical;
 pub mod parts;
@@ -51,6 +52,8 @@ pub struct Sheet {
     pub findings: findings::FindingsView,
     /// Every layer as resolved.
     pub layers: Section,
+    /// Gap against mismatch to the wafer.
+    pub gap: Section,
     /// Photon current by destination, and quantum efficiency.
     pub light: Section,
     /// Current against voltage.
@@ -111,6 +114,7 @@ impl Sheet {
             &self.headline,
             &self.stack,
             &self.layers,
+            &self.gap,
             &self.light,
             &self.curves,
             &self.ledger,
@@ -133,6 +137,7 @@ impl Sheet {
             &mut self.headline,
             &mut self.stack,
             &mut self.layers,
+            &mut self.gap,
             &mut self.light,
             &mut self.curves,
             &mut self.ledger,
@@ -181,6 +186,7 @@ pub fn sheet(input: &ReportInput<'_>) -> Option<Sheet> {
         stack: layers::stack(&context),
         findings: findings::findings(&context),
         layers: layers::layers(&context, &mut sources),
+        gap: gap::gap(&context),
         light: optical::light(&context),
         curves: electrical::curves(&context),
         ledger: account::section(&context),

@@ -137,6 +137,26 @@ fn the_printed_light_adds_up() {
     }
 }
 
+/// Vurgaftman et al., J. Appl. Phys. 89, 5815 (2001): at 300 K GaP 5.4505 Å and 2.27 eV (X), InP
+/// 5.8697 Å and 1.353 eV, AlAs 5.6611 Å, on GaAs of 5.65325 Å; Ga0.52In0.48P meets GaAs.
+#[test]
+fn families_stand_where_the_handbook_has_them() {
+    let case = &cases("stacks/sandpiper.stack", SANDPIPER)[0];
+    let map = case.input().results.gap_map.as_ref().expect("it has a wafer");
+    for (name, angstrom, gap) in [("GaP", 5.4505, 2.27), ("InP", 5.8697, 1.353), ("AlAs", 5.6611, 2.16)] {
+        let end = map.compounds.iter().find(|end| end.name == name).expect("an end of a family");
+        let mismatch = angstrom / 5.65325 - 1.0;
+        assert!((end.mismatch - mismatch).abs() < 1e-4, "{name}: {} for {mismatch}", end.mismatch);
+        assert!((end.gap_ev - gap).abs() < 0.02, "{name}: {} eV for {gap}", end.gap_ev);
+    }
+    let family = map.families.iter().find(|family| family.name == "GaInP").expect("the tops are made of it");
+    // From GaP: indirect first, then direct to the end; its lattice grows all the way.
+    assert!(family.mismatch.is_sorted() && !family.direct[0] && family.direct[family.direct.len() - 1]);
+    assert_eq!(family.direct.windows(2).filter(|pair| pair[0] != pair[1]).count(), 1);
+    let base = map.layers.iter().find(|layer| layer.name == "top.base").expect("marked");
+    assert!(base.mismatch.abs() < 1e-6, "{}", base.mismatch);
+}
+
 /// Numbers become words in one place; a template that got a float could print `0.30000000000000004`.
 #[test]
 fn the_view_holds_no_float() {
@@ -211,6 +231,7 @@ fn the_numbers_file_has_its_keys_and_ten_digits() {
             "layers",
             "growth",
             "requirements",
+            "gap_map",
             "free_values",
             "sensitivities",
             "findings",

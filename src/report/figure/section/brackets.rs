@@ -2,6 +2,7 @@
 
 use super::{HEAD, Layout};
 use crate::report::context::{Context, Row};
+use crate::report::figure::staircase::spread;
 use crate::report::figure::{Drawing, Label, unit};
 use crate::report::number::{fixed, with_unit};
 use crate::report::palette::style_number;
@@ -58,56 +59,5 @@ pub(super) fn brackets(
             let tip = y - line - 4.0;
             drawing.path("fbad", &format!("M{},{}l-9,-4.5v9z", unit(right), unit(tip)));
         }
-    }
-}
-
-/// Centres of blocks of given heights, as near to the wanted ones as they can be without meeting,
-/// none above `top`. Input and output from top to bottom.
-fn spread(blocks: &[(f64, f64)], top: f64) -> Vec<f64> {
-    // Blocks that meet merge into clusters that sit at the mean of what their members want.
-    struct Cluster {
-        members: Vec<usize>,
-        centre: f64,
-        height: f64,
-    }
-    let mut clusters: Vec<Cluster> = Vec::new();
-    for (index, (wanted, height)) in blocks.iter().enumerate() {
-        let centre = wanted.max(top + height / 2.0);
-        clusters.push(Cluster { members: vec![index], centre, height: *height });
-        while clusters.len() > 1 {
-            let last = clusters.len() - 1;
-            let (above, below) = (&clusters[last - 1], &clusters[last]);
-            if above.centre + above.height / 2.0 <= below.centre - below.height / 2.0 {
-                break;
-            }
-            let Some(below) = clusters.pop() else { break };
-            if let Some(above) = clusters.last_mut() {
-                let (a, b) = (above.members.len() as f64, below.members.len() as f64);
-                let height = above.height + below.height;
-                above.centre = ((above.centre * a + below.centre * b) / (a + b)).max(top + height / 2.0);
-                above.height = height;
-                above.members.extend(below.members);
-            }
-        }
-    }
-    let mut out = vec![0.0; blocks.len()];
-    for cluster in clusters {
-        let mut y = cluster.centre - cluster.height / 2.0;
-        for member in cluster.members {
-            out[member] = y + blocks[member].1 / 2.0;
-            y += blocks[member].1;
-        }
-    }
-    out
-}
-
-#[cfg(test)]
-mod tests {
-    use super::*;
-
-    #[test]
-    fn blocks_that_meet_are_pushed_apart_evenly() {
-        assert_eq!(spread(&[(50.0, 20.0), (55.0, 20.0)], 0.0), [42.5, 62.5]);
-        assert_eq!(spread(&[(5.0, 20.0), (200.0, 20.0)], 0.0), [10.0, 200.0]);
     }
 }
