@@ -254,6 +254,8 @@ pub struct GrowthStep {
     pub critical_thickness_nm: Option<f64>,
     /// People and Bean, the upper estimate.
     pub critical_thickness_upper_nm: Option<f64>,
+}
+
 /// Gap against mismatch to the wafer, at 25 °C.
 #[derive(Clone, Debug, Serialize)]
 pub struct GapMap {
