@@ -8,6 +8,7 @@ use crate::numerics::quadrature::GAUSS4;
 use crate::optics::downward::{Downward, Half, Ray, downward};
 use crate::optics::media::Media;
 use crate::optics::model::Shares;
+use crate::optics::wave::profile::Profile;
 use crate::optics::wave::{Index, Polarization, Sheet, Stack};
 
 /// Layers thicker than this show no fringes in sunlight (its coherence length is below 1 µm, and
@@ -115,6 +116,14 @@ impl Interference {
             absorbed.push(std::mem::replace(&mut passing, vec![0.0; wavelength_m.len()]));
         }
         Shares { reflected: solved.reflected, absorbed, passing }
+    }
+
+    /// See [`LightModel::profiles`](crate::optics::model::LightModel::profiles).
+    pub fn profiles(&self, rows: &[usize], wavelength_m: &[f64]) -> Vec<Option<Vec<Profile>>> {
+        let stack = self.stack(wavelength_m, self.incidence_rad, &indices(&self.columns(wavelength_m)));
+        let sheets: Vec<usize> = rows.iter().copied().filter(|row| *row < self.slabs.len()).collect();
+        let mut profiles = stack.profiles(&sheets).into_iter();
+        rows.iter().map(|row| if *row < self.slabs.len() { profiles.next() } else { None }).collect()
     }
 
     /// Share of light from the whole front hemisphere, `∫ A cos θ dΩ / π`, that `junction`

@@ -4,6 +4,7 @@ use crate::design::{Design, OpticsModel};
 use crate::optics::downward::Downward;
 use crate::optics::interference::Interference;
 use crate::optics::one_pass::OnePass;
+use crate::optics::wave::profile::Profile;
 
 /// Shares of the light that falls on the front, by wavelength.
 #[derive(Clone, Debug, Default)]
@@ -90,6 +91,16 @@ impl LightModel {
         match self {
             Self::OnePass(model) => model.shares(wavelength_m),
             Self::Interference(model) => model.shares(wavelength_m),
+        }
+    }
+
+    /// Where in each of `rows` (as [`LightModel::rows`]) light is absorbed, `[of rows][wavelength]`:
+    /// for unit flux on the front, mean of s and p. `None` for a row without a depth (`ideal`, a
+    /// metal without end).
+    pub fn profiles(&self, rows: &[usize], wavelength_m: &[f64]) -> Vec<Option<Vec<Profile>>> {
+        match self {
+            Self::OnePass(model) => model.profiles(rows, wavelength_m),
+            Self::Interference(model) => model.profiles(rows, wavelength_m),
         }
     }
 

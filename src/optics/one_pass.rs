@@ -10,6 +10,7 @@ use crate::numerics::constants::HC_EV;
 use crate::optics::downward::{Downward, Half, Ray, downward};
 use crate::optics::media::{Media, Medium};
 use crate::optics::model::Shares;
+use crate::optics::wave::profile::Profile;
 
 /// The lit layers of a design at one temperature, ready to be asked at any wavelength.
 #[derive(Clone, Debug)]
@@ -236,6 +237,39 @@ impl OnePass {
             let upper = half(&mut (0..=last).rev(), ray, &front);
             vec![[upper, half(&mut (last + 1..self.slabs.len()), ray, &rear)]]
         }))
+    }
+
+    /// Where in each row of [`OnePass::rows`] light is absorbed, by wavelength: what falls from
+    /// the front and, over a mirror, what comes back. `None` for a row without a depth.
+    pub fn profiles(&self, rows: &[usize], wavelength_m: &[f64]) -> Vec<Option<Vec<Profile>>> {
+        let taken = self.taken(wavelength_m, self.slabs.len());
+        let mut left = vec![1.0 - self.front_reflectance; wavelength_m.len()];
+        let pass = |left: &mut Vec<f64>, taken: &[f64]| {
+            let entering = left.clone();
+            absorb(left, taken);
+            entering
+        };
+        let down: Vec<Vec<f64>> = taken.iter().map(|taken| pass(&mut left, taken)).collect();
+        let mut up = Vec::new();
+        if let Some(mirror) = &self.mirror {
+            absorb(&mut left, &self.mirror_absorbs(mirror, wavelength_m));
+            up = taken.iter().rev().map(|taken| pass(&mut left, taken)).collect();
+            up.reverse();
+        }
+        let of_row = |&row: &usize| {
+            let Law::Bulk { medium, thickness_m } = self.slabs.get(row)?.law else { return None };
+            let Medium { material, edge_shift_ev } = self.media.at(medium);
+            let alpha = material.optics.absorption_along(wavelength_m, *edge_shift_ev);
+            let at = |(at, alpha): (usize, f64)| Profile {
+                thickness_m,
+                decay_per_m: alpha,
+                down: alpha * down[row][at],
+                up: alpha * up.get(row).map_or(0.0, |up| up[at]),
+                ..Profile::default()
+            };
+            Some(alpha.into_iter().enumerate().map(at).collect())
+        };
+        rows.iter().map(of_row).collect()
     }
 
     /// Share each of the first `count` slabs takes of what reaches it, `[slab][wavelength]`.

@@ -101,10 +101,15 @@ fn oscillation(c: f64, wave: f64, width: f64) -> (f64, f64) {
 impl Stack {
     /// Where light of no preferred polarisation is absorbed in the layer `sheet`, by wavelength.
     pub fn profile(&self, sheet: usize) -> Vec<Profile> {
-        let mut profiles = self.profile_polarized(Polarization::S, sheet);
+        self.profiles(&[sheet]).pop().unwrap_or_default()
+    }
+
+    /// The same of several layers, `[of sheets][wavelength]`, for the cost of one solution.
+    pub fn profiles(&self, sheets: &[usize]) -> Vec<Vec<Profile>> {
+        let mut profiles = self.profiles_polarized(Polarization::S, sheets);
         if self.is_oblique() {
-            let other = self.profile_polarized(Polarization::P, sheet);
-            for (profile, other) in profiles.iter_mut().zip(&other) {
+            let other = self.profiles_polarized(Polarization::P, sheets);
+            for (profile, other) in profiles.iter_mut().flatten().zip(other.iter().flatten()) {
                 let own = *profile;
                 (profile.down, profile.up, profile.cosine, profile.sine) = (0.0, 0.0, 0.0, 0.0);
                 profile.add(0.5, &own);
@@ -114,14 +119,20 @@ impl Stack {
         profiles
     }
 
-    /// The same for one polarisation.
+    /// [`Stack::profile`] for one polarisation.
     pub fn profile_polarized(&self, polarization: Polarization, sheet: usize) -> Vec<Profile> {
-        let mut profiles = vec![Profile::default(); self.wavelength_m.len()];
+        self.profiles_polarized(polarization, &[sheet]).pop().unwrap_or_default()
+    }
+
+    fn profiles_polarized(&self, polarization: Polarization, sheets: &[usize]) -> Vec<Vec<Profile>> {
+        let mut profiles = vec![vec![Profile::default(); self.wavelength_m.len()]; sheets.len()];
         self.each_block(polarization, |block, part| {
             let media = block.media(self, part.start / LANES);
-            for (l, profile) in profiles[part.clone()].iter_mut().enumerate() {
-                let k0 = TAU / self.wavelength_m[part.start + l];
-                *profile = self.profile_in(block, (sheet, &media[sheet + 1]), k0, l);
+            for (row, &sheet) in profiles.iter_mut().zip(sheets) {
+                for (l, profile) in row[part.clone()].iter_mut().enumerate() {
+                    let k0 = TAU / self.wavelength_m[part.start + l];
+                    *profile = self.profile_in(block, (sheet, &media[sheet + 1]), k0, l);
+                }
             }
         });
         profiles
