@@ -13,3 +13,4 @@ pub mod depletion;
 pub mod drift;
 pub mod recycling;
 pub mod region;
+pub mod statistics;

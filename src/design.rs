@@ -5,13 +5,16 @@
 use std::sync::Arc;
 
 use crate::light::Spectrum;
+use crate::materials::carriers::{Damage, Particle};
 use crate::source::{Span, Spanned};
 
+mod faces;
 mod junction;
 mod layer;
 mod request;
 
 pub use crate::syntax::{Accept, Comparison, Polarity, ToleranceMeaning};
+pub use faces::{BARE_M_PER_S, COVERED_M_PER_S, Face};
 pub use junction::{DiodeFit, Fingers, Interconnect, InterconnectKind, Junction, VoltageModel};
 pub use layer::{Doping, Duty, Extent, Layer, LayerSpans, Place, Strain, Transport};
 pub use request::{Chart, FreeValue, Limit, Measured, Requirement, Seek, Tolerance};
@@ -161,12 +164,31 @@ pub struct Condition {
     pub temperature_k: f64,
     /// Angle of incidence from the normal, rad, 0..π/2.
     pub incidence_rad: f64,
-    /// Particle fluence, 1/m2, if stated.
-    pub fluence_per_m2: Option<f64>,
+    /// Particles the cell has been through, if stated.
+    pub fluence: Option<Fluence>,
     /// Distance from the sun, in astronomical units, if stated; already in `concentration`.
     pub distance_au: Option<f64>,
     /// Where it was written; the stack's name where it was assumed.
     pub span: Span,
+}
+
+/// Particles that have damaged a cell.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Fluence {
+    /// 1/m2, ≥ 0.
+    pub per_m2: f64,
+    /// Which.
+    pub particle: Particle,
+    /// Kinetic energy of each, J.
+    pub energy_j: f64,
+}
+
+impl Fluence {
+    /// Whether `damage` holds for this particle at this energy, to one part in a thousand.
+    pub fn is_of(&self, damage: &Damage) -> bool {
+        let near = (self.energy_j - damage.energy_j).abs() <= 1e-3 * damage.energy_j;
+        self.particle == damage.particle && near
+    }
 }
 
 impl Condition {

@@ -1,5 +1,6 @@
 //! [`Design`] → [`Results`]: the physics rooms, called in order for each condition.
 
+mod collect;
 mod condition;
 mod dark;
 mod findings;
@@ -14,6 +15,7 @@ mod lit;
 pub mod metrics;
 mod models;
 mod spectral;
+mod transport;
 
 use rayon::prelude::*;
 
@@ -61,13 +63,15 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
         requirements: Vec::new(),
         free_values: free_values(design),
         sensitivities: Vec::new(),
-        models: models::model_notes(design),
+        models: models::model_notes(design, &lit[0]),
     };
     if let Some(finding) = finite::first_not_finite(design, &results) {
         findings.push(finding);
         return Outcome::nothing(findings);
     }
     findings.extend(findings::after(design, &results, &lit));
+    let under = design.conditions.iter().zip(lit.iter().map(|lit| &**lit));
+    findings.extend(transport::findings(design, under));
     let (judged, unjudged) = metrics::judge(design, &results);
     findings.extend(unjudged);
     results.requirements = judged.iter().map(|judged| requirement(design, judged)).collect();

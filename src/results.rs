@@ -112,8 +112,19 @@ pub struct JunctionResult {
     pub power_w_per_m2: f64,
     /// At the stack's maximum power point (its own with separate terminals).
     pub voltage_at_mpp_v: f64,
-    /// Radiative recombination current prefactor.
+    /// Radiative recombination current prefactor: what leaves through the front and, with a voltage
+    /// from layers, what goes down and does not come back.
     pub dark_current_radiative_a_per_cm2: f64,
+    /// Prefactor of slope kT/q of emitter and base, radiation left out; `None` where carriers are
+    /// not followed.
+    pub dark_current_diffusion_a_per_cm2: Option<f64>,
+    /// Prefactor of slope 2kT/q of the depleted layers; `None` where carriers are not followed.
+    pub dark_current_depletion_a_per_cm2: Option<f64>,
+    /// At zero bias; `None` where carriers are not followed.
+    pub depletion_width_nm: Option<f64>,
+    /// Collected over absorbed in the layers it collects from; `None` where carriers are not
+    /// followed and all is taken as collected.
+    pub collection_efficiency: Option<f64>,
 }
 
 /// Light and one layer under one condition.
@@ -154,6 +165,10 @@ pub struct Spectral {
     pub reflectance: Vec<f64>,
     /// External quantum efficiency by junction (finger shading left out).
     pub eqe: BTreeMap<String, Vec<f64>>,
+    /// Internal quantum efficiency by junction: electrons out per photon absorbed in the layers the
+    /// junction collects from, which is the external one over 1 less what is reflected, what passes
+    /// and what all other layers absorb. 0 where less than a millionth is absorbed.
+    pub iqe: BTreeMap<String, Vec<f64>>,
     /// Share absorbed by layer path; only layers that absorb anything.
     pub absorptance: BTreeMap<String, Vec<f64>>,
 }
@@ -215,6 +230,8 @@ pub struct LayerResult {
     pub species: Option<String>,
     /// `everywhere`, `under fingers`, `removed`
     pub extent: String,
+    /// Minority carriers at 25 °C at the beginning of life, where they are followed.
+    pub transport: Option<LayerTransport>,
     /// Where its numbers come from.
     pub origins: Vec<OriginResult>,
 }
@@ -307,6 +324,23 @@ pub struct GapMark {
     /// The size of the mismatch at which a layer of its thickness would begin to relax, by
     /// balance of forces; `None` where it does not lie on the wafer's lattice.
     pub critical_mismatch: Option<f64>,
+}
+
+/// Minority carriers of one layer.
+#[derive(Clone, Debug, Serialize)]
+pub struct LayerTransport {
+    /// `electron` or `hole`; in an undoped layer the one with less reach.
+    pub minority_carrier: String,
+    /// Drift mobility.
+    pub mobility_cm2_per_vs: f64,
+    /// All recombination.
+    pub lifetime_ns: f64,
+    /// All recombination but the radiative.
+    pub non_radiative_lifetime_ns: f64,
+    /// By which carriers are collected.
+    pub diffusion_length_um: f64,
+    /// Where they come from: `mobility material, lifetime stated, diffusion length derived`.
+    pub origin: String,
 }
 
 /// Where a number comes from.

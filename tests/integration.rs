@@ -5,6 +5,7 @@
 
 mod integration {
     mod browser;
+    mod carriers;
     mod cli;
     mod designs;
     mod docs;

@@ -26,6 +26,10 @@ pub struct Depletion {
     pub between_m: f64,
     /// Into the layers away from the sun, from the junction, m.
     pub rear_m: f64,
+    /// What the sunward side would take if its last layer went on, m.
+    pub sunward_asked_m: f64,
+    /// The same of the rear side.
+    pub rear_asked_m: f64,
     /// The largest field, V/m.
     pub field_v_per_m: f64,
     /// Whether the sunward layers have less charge than the other side asks for.
@@ -76,6 +80,8 @@ impl Depletion {
             sunward_m: front.width_m,
             between_m,
             rear_m: back.width_m,
+            sunward_asked_m: front.asked_m,
+            rear_asked_m: back.asked_m,
             field_v_per_m: charge / least_epsilon,
             sunward_full: front.full,
             rear_full: back.full,
@@ -86,6 +92,7 @@ impl Depletion {
 /// One side at a charge.
 struct Reach {
     width_m: f64,
+    asked_m: f64,
     potential_v: f64,
     /// `dV/dσ`, V m2/C.
     per_charge: f64,
@@ -93,7 +100,7 @@ struct Reach {
 }
 
 fn reach(layers: &[Doped], charge: f64) -> Reach {
-    let mut side = Reach { width_m: 0.0, potential_v: 0.0, per_charge: 0.0, full: true };
+    let mut side = Reach { width_m: 0.0, asked_m: 0.0, potential_v: 0.0, per_charge: 0.0, full: true };
     let mut left = charge;
     for layer in layers {
         let epsilon = VACUUM_PERMITTIVITY * layer.permittivity;
@@ -109,6 +116,8 @@ fn reach(layers: &[Doped], charge: f64) -> Reach {
             break;
         }
     }
+    let last = layers.last().map_or(0.0, |layer| CHARGE * layer.doping_per_m3);
+    side.asked_m = side.width_m + if side.full && last > 0.0 { left / last } else { 0.0 };
     side
 }
 
@@ -181,6 +190,7 @@ mod tests {
         let d = Depletion::new(&[layer(10e-9, 1e23, 12.9)], &[], &[layer(3e-6, 1e23, 12.9)], 1.3);
         assert!(d.sunward_full && !d.rear_full);
         close(d.sunward_m, 10e-9);
+        close(d.sunward_asked_m, d.rear_m);
         // V = σ²/(2qNε) + (σ − qN t/2) t/ε.
         let sigma = CHARGE * 1e23 * d.rear_m;
         let e = 12.9 * VACUUM_PERMITTIVITY;

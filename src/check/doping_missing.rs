@@ -37,7 +37,13 @@ fn junctions(context: &Context, report: &mut Report) {
             let partner = facts.layers.iter().find(|(_, it)| it.duty == partner).and_then(|(_, it)| sign(it));
             let polarity =
                 partner.map_or(if layer.duty == Duty::Emitter { Polarity::N } else { Polarity::P }, opposite);
-            report.push([layer.path.as_str()], finding(context, layer, polarity, usual));
+            let from_layers = facts.junction.voltage == VoltageModel::Layers;
+            let label = if from_layers {
+                format!("neither n nor p: `{}` is shown at its radiative limit", facts.junction.name.value)
+            } else {
+                "neither n nor p".to_owned()
+            };
+            report.push([layer.path.as_str()], finding((context, layer), label, polarity, usual));
         }
     }
 }
@@ -63,7 +69,7 @@ fn tunnels(context: &Context, report: &mut Report) {
             };
             report.push(
                 [layer.path.as_str(), tunnel.name.value.as_str()],
-                finding(context, layer, polarity, "3e19"),
+                finding((context, layer), "neither n nor p".to_owned(), polarity, "3e19"),
             );
         }
     }
@@ -77,9 +83,14 @@ fn is_bare(context: &Context, layer: &Layer) -> bool {
         && layer.material.as_ref().is_some_and(|material| material.class == MaterialClass::Semiconductor)
 }
 
-fn finding(context: &Context, layer: &Layer, polarity: Polarity, density: &str) -> Finding {
+fn finding(
+    (context, layer): (&Context, &Layer),
+    label: String,
+    polarity: Polarity,
+    density: &str,
+) -> Finding {
     Finding::warning(RULE.code, format!("{} says no doping", describe(context.design, layer)))
-        .at(layer.spans.statement, "neither n nor p")
+        .at(layer.spans.statement, label)
         .help(format!(
             "write `{} {density} /cm3` after its thickness, with your own density",
             letter(polarity)

@@ -9,6 +9,7 @@ use crate::evaluate::junctions::{diodes, strings};
 use crate::evaluate::ledger::{Operating, account};
 use crate::evaluate::lit::Lit;
 use crate::evaluate::spectral::spectral;
+use crate::evaluate::transport::Carrying;
 use crate::numerics::constants::HC_EV;
 use crate::results::{ConditionResult, Curve, JunctionCurve, JunctionResult, LayerLight};
 
@@ -132,6 +133,10 @@ fn junction_results(
         .map(|(index, junction)| {
             let own = &alone[index];
             let power = own.best.current * own.best.voltage;
+            let transport = match &lit.carrying[index] {
+                Carrying::Followed(transport) => Some(transport),
+                _ => None,
+            };
             JunctionResult {
                 name: junction.name.value.clone(),
                 gap_ev: lit.gap_ev[index],
@@ -141,7 +146,12 @@ fn junction_results(
                 fill_factor: ratio(power, own.open_v * own.short.current),
                 power_w_per_m2: power,
                 voltage_at_mpp_v: voltage_at_mpp(index).unwrap_or(own.best.voltage),
-                dark_current_radiative_a_per_cm2: 1e-4 * lit.emission[index].dark_a_per_m2(),
+                dark_current_radiative_a_per_cm2: 1e-4 * lit.radiative_dark(index),
+                dark_current_diffusion_a_per_cm2: transport.map(|it| 1e-4 * it.diffusion_a_per_m2),
+                dark_current_depletion_a_per_cm2: transport.map(|it| 1e-4 * it.depletion_a_per_m2),
+                depletion_width_nm: transport.map(|it| 1e9 * it.depletion.width_m()),
+                collection_efficiency: transport
+                    .map(|_| ratio(lit.photocurrent(index), lit.absorbed_current(index))),
             }
         })
         .collect()
@@ -161,7 +171,7 @@ fn layer_light(design: &Design, lit: &Lit, open: f64) -> Vec<LayerLight> {
         let current = MA_PER_CM2 * open * lit.row_current[row];
         layers[*layer].absorbed_ma_per_cm2 += current;
         if junction.is_some() {
-            layers[*layer].collected_ma_per_cm2 += current;
+            layers[*layer].collected_ma_per_cm2 += MA_PER_CM2 * open * lit.row_collected[row];
         }
     }
     layers

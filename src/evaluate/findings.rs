@@ -2,7 +2,7 @@
 
 use std::sync::Arc;
 
-use crate::design::{Design, OpticsModel, Transport, VoltageModel};
+use crate::design::{Design, OpticsModel, VoltageModel};
 use crate::evaluate::junctions::fit_at;
 use crate::evaluate::lit::{Lit, junction_gap};
 use crate::finding::{Finding, Findings};
@@ -155,25 +155,11 @@ fn fits_below_the_limit(design: &Design, lit: &[Arc<Lit>]) -> Findings {
     findings
 }
 
-/// What is stated, or left, to a model that is not evaluated yet. The radiative limit stands in for
-/// a voltage from layers, so that the figures are an upper bound and say so; transport data and a
-/// breakdown voltage are kept without effect.
+/// What is stated of a model that is not evaluated yet: a breakdown voltage is kept without effect.
 pub(super) fn stand_ins(design: &Design) -> Findings {
     let mut findings = Findings::new();
     for junction in &design.junctions {
         let name = &junction.name.value;
-        if junction.voltage == VoltageModel::Layers {
-            let message =
-                format!("the voltage of `{name}` from its layers is not evaluated yet, only its upper bound");
-            findings.push(
-                Finding::warning("feature.pending", message)
-                    .at(
-                        junction.voltage_span.unwrap_or(junction.name.span),
-                        "the radiative limit stands in for it",
-                    )
-                    .help("write `voltage from ere 1 %`, or `voltage from fit { … }` of a measured curve"),
-            );
-        }
         if junction.breakdown_v.is_some() {
             findings.push(
                 Finding::advice(
@@ -184,16 +170,6 @@ pub(super) fn stand_ins(design: &Design) -> Findings {
                 .help("read the reverse part of its curve as that of a junction that never breaks down"),
             );
         }
-    }
-    for layer in design.layers.iter().filter(|layer| layer.transport != Transport::default()) {
-        findings.push(
-            Finding::advice(
-                "feature.pending",
-                format!("transport of carriers in `{}` is not evaluated yet", layer.path),
-            )
-            .at(layer.spans.material, "its lengths and velocities are kept, without effect on the figures")
-            .help("read its current as that of complete collection"),
-        );
     }
     findings
 }

@@ -45,6 +45,10 @@ fn figures(result: &ConditionResult) -> impl Iterator<Item = (&'static str, f64)
             ("power", junction.power_w_per_m2),
             ("voltage at the maximum power point", junction.voltage_at_mpp_v),
             ("dark current", junction.dark_current_radiative_a_per_cm2),
+            ("dark current", junction.dark_current_diffusion_a_per_cm2.unwrap_or(0.0)),
+            ("dark current", junction.dark_current_depletion_a_per_cm2.unwrap_or(0.0)),
+            ("depletion width", junction.depletion_width_nm.unwrap_or(0.0)),
+            ("collection efficiency", junction.collection_efficiency.unwrap_or(0.0)),
         ]
     });
     let layers = result
@@ -56,6 +60,7 @@ fn figures(result: &ConditionResult) -> impl Iterator<Item = (&'static str, f64)
     let spectral = [&result.spectral.wavelength_nm, &result.spectral.photon_current_ma_per_cm2_per_nm]
         .into_iter()
         .chain(result.spectral.eqe.values())
+        .chain(result.spectral.iqe.values())
         .chain(result.spectral.absorptance.values())
         .chain([&result.spectral.reflectance])
         .flatten()

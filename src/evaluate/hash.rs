@@ -205,7 +205,9 @@ impl Canonical {
         self.text(&condition.name);
         self.spectrum(&condition.light);
         self.numbers(&[condition.concentration, condition.temperature_k, condition.incidence_rad]);
-        self.optional(condition.fluence_per_m2);
+        self.optional(condition.fluence.map(|fluence| fluence.per_m2));
+        self.debug(&condition.fluence.map(|fluence| fluence.particle));
+        self.optional(condition.fluence.map(|fluence| fluence.energy_j));
         self.optional(condition.distance_au);
     }
 

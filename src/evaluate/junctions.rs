@@ -3,6 +3,7 @@
 use crate::circuit::diode::Diode;
 use crate::design::{Condition, Design, DiodeFit, Junction, Terminals, VoltageModel};
 use crate::evaluate::lit::{Lit, junction_gap};
+use crate::evaluate::transport::Carrying;
 use crate::numerics::constants::thermal_voltage;
 
 /// Photocurrents below this are dark, A/m2: one electron in five thousand years over a square
@@ -29,7 +30,15 @@ pub(super) fn diodes(design: &Design, condition: &Condition, lit: &Lit, factor: 
                 ..Diode::lossless(made, thermal_v)
             };
             match &junction.voltage {
-                VoltageModel::RadiativeLimit | VoltageModel::Layers => {}
+                VoltageModel::RadiativeLimit => {}
+                VoltageModel::Layers => {
+                    // What the front sends out and what goes down for good are both lost.
+                    diode.radiative = Some((radiative.clone(), lit.emits_times[index]));
+                    if let Carrying::Followed(transport) = &lit.carrying[index] {
+                        diode.j01 = transport.diffusion_a_per_m2;
+                        diode.j02 = transport.depletion_a_per_m2;
+                    }
+                }
                 VoltageModel::Ere(ere) => diode.radiative = Some((radiative.clone(), ere.recip())),
                 VoltageModel::Fit(fit) => {
                     let gap_now = lit.gap_ev[index];

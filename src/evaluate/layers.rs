@@ -1,14 +1,51 @@
 //! The layer table.
 
 use crate::design::Polarity;
-use crate::design::{Design, Extent, Layer, Place};
+use crate::design::{Condition, Design, Extent, Layer, Place};
+use crate::evaluate::transport::{Carrying, LayerCarriers, carrying};
 use crate::growth::{LayerGrowth, ROOM_K, lattice_states};
-use crate::results::{LayerResult, OriginResult};
+use crate::results::{LayerResult, LayerTransport, OriginResult};
 
 /// One row per layer of the design, same order.
 pub(super) fn layer_results(design: &Design) -> Vec<LayerResult> {
     let states = lattice_states(design);
-    design.layers.iter().zip(states).map(|(layer, state)| layer_result(design, layer, state)).collect()
+    let transport = transport(design);
+    design
+        .layers
+        .iter()
+        .zip(states)
+        .zip(transport)
+        .map(|((layer, state), transport)| LayerResult { transport, ..layer_result(design, layer, state) })
+        .collect()
+}
+
+/// Minority carriers at room temperature and the beginning of life, one entry per layer.
+fn transport(design: &Design) -> Vec<Option<LayerTransport>> {
+    let mut rows = vec![None; design.layers.len()];
+    let Some(condition) = design.conditions.first() else { return rows };
+    let room = Condition { temperature_k: ROOM_K, fluence: None, ..condition.clone() };
+    for carrying in carrying(design, &room) {
+        let Carrying::Followed(transport) = carrying else { continue };
+        for own in &transport.layers {
+            rows[own.layer] = Some(layer_transport(own));
+        }
+    }
+    rows
+}
+
+fn layer_transport(own: &LayerCarriers) -> LayerTransport {
+    let words = [own.mobility_from, own.lifetime_from, own.length_from].map(|from| from.word());
+    LayerTransport {
+        minority_carrier: own.minority.word().to_owned(),
+        mobility_cm2_per_vs: 1e4 * own.mobility_m2_per_vs,
+        lifetime_ns: 1e9 * own.lifetime_s,
+        non_radiative_lifetime_ns: 1e9 * own.non_radiative_s,
+        diffusion_length_um: 1e6 * own.length_m,
+        origin: format!(
+            "mobility {}, non-radiative lifetime {}, diffusion length {}",
+            words[0], words[1], words[2]
+        ),
+    }
 }
 
 fn layer_result(design: &Design, layer: &Layer, state: Option<LayerGrowth>) -> LayerResult {
@@ -41,6 +78,7 @@ fn layer_result(design: &Design, layer: &Layer, state: Option<LayerGrowth>) -> L
             Extent::Removed => "removed",
         }
         .to_owned(),
+        transport: None,
         origins: material
             .map(|material| {
                 let origin = |origin: &crate::materials::Origin| OriginResult {

@@ -18,6 +18,8 @@ pub(super) struct Operating {
 /// One junction's part in the account.
 struct Share {
     junction: usize,
+    /// Photon current absorbed where it collects from.
+    absorbed: f64,
     photocurrent: f64,
     /// The smallest photocurrent of its string, or the operating current where a shunt lets
     /// more than that through.
@@ -82,7 +84,7 @@ pub(super) fn account(
     let gap = |share: &Share| lit.gap_ev[share.junction];
     let carried = |share: &Share| share.photocurrent.min(share.reference);
     let each: [(&str, Loss); 4] = [
-        ("not_collected", &|_| 0.0),
+        ("not_collected", &|share| gap(share) * (share.absorbed - share.photocurrent)),
         ("mismatch", &|share| gap(share) * (share.photocurrent - carried(share))),
         ("recombined", &|share| gap(share) * (carried(share) - share.current).max(0.0)),
         ("voltage", &|share| gap(share) * carried(share).min(share.current) - share.current * share.voltage),
@@ -110,6 +112,7 @@ fn shares(lit: &Lit, open: f64, strings: &[Operating]) -> Vec<Share> {
         for (at, &junction) in string.wiring.junctions.iter().enumerate() {
             shares.push(Share {
                 junction,
+                absorbed: open * lit.absorbed_current(junction),
                 photocurrent: photocurrents[at],
                 reference: smallest.max(string.current),
                 current: string.current,

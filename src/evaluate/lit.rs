@@ -1,7 +1,9 @@
 //! What one light at one temperature does to a stack, before it is multiplied by anything.
 
-use crate::circuit::radiative::{Radiative, Statistics};
-use crate::design::{Condition, Design, Place};
+use crate::circuit::radiative::{Radiative, Statistics, dark_currents};
+use crate::design::{Condition, Design, Place, VoltageModel};
+use crate::evaluate::collect::{Collected, collected};
+use crate::evaluate::transport::{Carrying, carrying};
 use crate::light::{DATA_START_M, Spectrum};
 use crate::numerics::constants::{CHARGE, HC_EV};
 use crate::numerics::quadrature::linear_along;
@@ -36,12 +38,23 @@ pub(super) struct Lit {
     pub(super) power_weight: Vec<f64>,
     /// Photon current absorbed in each row, A/m2, of the light that falls on the open front.
     pub(super) row_current: Vec<f64>,
+    /// The part of it that is collected, A/m2.
+    pub(super) row_collected: Vec<f64>,
     /// Power absorbed in each row, W/m2, of the light that falls on the open front.
     pub(super) row_power: Vec<f64>,
+    /// How the carriers of each junction are taken.
+    pub(super) carrying: Vec<Carrying>,
+    /// What of the absorbed light is collected, by wavelength.
+    pub(super) collected: Collected,
     /// Of each junction at this temperature, eV.
     pub(super) gap_ev: Vec<f64>,
-    /// Of each junction.
+    /// Of each junction through the front, by reciprocity with what it collects.
     pub(super) emission: Vec<Radiative>,
+    /// Lowest photon energy each junction emits, eV.
+    pub(super) lowest_emitted_ev: Vec<f64>,
+    /// Light each junction loses as a multiple of what it sends out of the front: 1, or with a
+    /// voltage from layers also what goes down and does not come back.
+    pub(super) emits_times: Vec<f64>,
     /// Part of the spectrum's total that drives nothing: outside [`Lit::wavelength_m`], W/m2.
     pub(super) beyond_w_per_m2: f64,
 }
@@ -61,38 +74,78 @@ impl Lit {
         current_weight.iter_mut().for_each(|weight| *weight *= CHARGE);
         let power_weight = weights(&wavelength_m, &at(&light.irradiance));
         let inside: f64 = power_weight.iter().sum();
-        let emission = emission(&optics, &gap_ev, temperature_k);
-        let by_row = |weight: &[f64]| shares.absorbed.iter().map(|share| dot(share, weight)).collect();
-        Some(Self {
+        let by_row =
+            |weight: &[f64]| -> Vec<f64> { shares.absorbed.iter().map(|share| dot(share, weight)).collect() };
+        let mut lit = Self {
             row_current: by_row(&current_weight),
+            row_collected: Vec::new(),
             row_power: by_row(&power_weight),
+            carrying: carrying(design, condition),
+            collected: Collected::default(),
             rows,
             wavelength_m,
             shares,
             current_weight,
             power_weight,
             gap_ev,
-            emission,
+            emission: Vec::new(),
+            lowest_emitted_ev: Vec::new(),
+            emits_times: Vec::new(),
             beyond_w_per_m2: light.total_w_per_m2 - inside,
             optics,
-        })
+        };
+        lit.collected = collected(&mut lit);
+        let collected = lit.collected.rows.iter().zip(&lit.row_current);
+        lit.row_collected = collected
+            .map(|(row, all)| row.as_ref().map_or(*all, |row| dot(row, &lit.current_weight)))
+            .collect();
+        lit.lowest_emitted_ev = lowest_emitted(&lit.optics, &lit.gap_ev);
+        lit.emission = emission(&lit, temperature_k);
+        lit.emits_times = emits_times(design, &lit, temperature_k);
+        Some(lit)
     }
 
-    /// Rows that `junction` collects.
-    pub(super) fn collected(&self, junction: usize) -> impl Iterator<Item = usize> {
+    /// Rows that `junction` collects from.
+    pub(super) fn own_rows(&self, junction: usize) -> impl Iterator<Item = usize> {
         self.rows.iter().enumerate().filter(move |(_, row)| row.1 == Some(junction)).map(|(index, _)| index)
     }
 
-    /// Photocurrent of `junction`, A/m2, of the light that falls on the open front: every photon
-    /// absorbed where it is collected gives one electron.
+    /// Photocurrent of `junction`, A/m2, of the light that falls on the open front.
     pub(super) fn photocurrent(&self, junction: usize) -> f64 {
-        self.collected(junction).map(|row| self.row_current[row]).sum()
+        self.own_rows(junction).map(|row| self.row_collected[row]).sum()
+    }
+
+    /// Of shares that `junction` absorbs at some wavelengths, what it collects.
+    pub(super) fn collects_of(&self, junction: usize, absorbed: Vec<f64>, wavelength_m: &[f64]) -> Vec<f64> {
+        let efficiency = self.collected.efficiency_at(junction, &self.wavelength_m, wavelength_m);
+        absorbed.iter().zip(efficiency).map(|(share, part)| share * part).collect()
+    }
+
+    /// Radiative dark current of `junction`, A/m2.
+    pub(super) fn radiative_dark(&self, junction: usize) -> f64 {
+        self.emits_times[junction] * self.emission[junction].dark_a_per_m2()
+    }
+
+    /// Photon current absorbed where `junction` collects from, A/m2; what [`Lit::photocurrent`]
+    /// lacks of it recombines on its way.
+    pub(super) fn absorbed_current(&self, junction: usize) -> f64 {
+        self.own_rows(junction).map(|row| self.row_current[row]).sum()
     }
 
     /// Share `junction` collects of the light that falls on the open front, by wavelength.
     pub(super) fn collected_share(&self, junction: usize) -> Vec<f64> {
         let mut sum = vec![0.0; self.wavelength_m.len()];
-        for row in self.collected(junction) {
+        for row in self.own_rows(junction) {
+            let part = self.collected.rows[row].as_ref().unwrap_or(&self.shares.absorbed[row]);
+            sum.iter_mut().zip(part).for_each(|(sum, part)| *sum += part);
+        }
+        sum
+    }
+
+    /// Share absorbed where `junction` collects from, by wavelength.
+    pub(super) fn absorbed_share(&self, junction: usize) -> Vec<f64> {
+        let mut sum = vec![0.0; self.wavelength_m.len()];
+        for row in self.own_rows(junction) {
             sum.iter_mut().zip(&self.shares.absorbed[row]).for_each(|(sum, part)| *sum += part);
         }
         sum
@@ -104,12 +157,12 @@ impl Lit {
         self.wavelength_m.partition_point(|&wavelength| wavelength <= HC_EV / lowest)
     }
 
-    /// Of what `junction` collects: current and power above its gap, then below it (its tail).
+    /// Of what `junction` absorbs where it collects from: current and power above its gap, then below it (its tail).
     pub(super) fn split_at_gap(&self, junction: usize) -> [(f64, f64); 2] {
         let edge_m = HC_EV / self.gap_ev[junction];
         let cut = self.wavelength_m.partition_point(|&wavelength| wavelength <= edge_m);
         let mut parts = [(0.0, 0.0); 2];
-        for row in self.collected(junction) {
+        for row in self.own_rows(junction) {
             let share = &self.shares.absorbed[row];
             for (part, range) in parts.iter_mut().zip([0..cut, cut..share.len()]) {
                 part.0 += dot(&share[range.clone()], &self.current_weight[range.clone()]);
@@ -140,9 +193,10 @@ impl Lit {
     }
 }
 
-/// Conditions that share light, angle and temperature share a [`Lit`].
+/// Conditions that share light, angle, temperature and fluence share a [`Lit`].
 pub(super) fn same_light(a: &Condition, b: &Condition) -> bool {
-    let same = a.temperature_k == b.temperature_k && a.incidence_rad == b.incidence_rad;
+    let same =
+        a.temperature_k == b.temperature_k && a.incidence_rad == b.incidence_rad && a.fluence == b.fluence;
     same && (std::sync::Arc::ptr_eq(&a.light, &b.light) || a.light == b.light)
 }
 
@@ -174,32 +228,57 @@ fn features(light: &Spectrum, optics: &LightModel, gap_ev: &[f64]) -> Option<Fea
     (range_m.0 < range_m.1).then(|| Features { range_m, jumps_m, knots_m: optics.knots_m() })
 }
 
-fn emission(optics: &LightModel, gap_ev: &[f64], temperature_k: f64) -> Vec<Radiative> {
-    let jumps: Vec<f64> = optics.jumps_m().iter().map(|edge| HC_EV / edge).collect();
+/// Lowest photon energy each junction emits, eV: where its tables end, and no further down than a
+/// band edge can reach.
+fn lowest_emitted(optics: &LightModel, gap_ev: &[f64]) -> Vec<f64> {
     let rows = optics.rows();
     let tables = optics.table_ranges_m();
-    // Where the tables of a junction end, and no further down than a band edge can reach.
-    let lowest = |junction: usize, gap: f64| {
+    let lowest = |(junction, gap): (usize, &f64)| {
         let own = tables.iter().filter(|(row, ..)| rows[*row].1 == Some(junction));
         let ends: Vec<f64> = own.map(|(_, _, last)| HC_EV / last).collect();
         if optics.is_sharp(junction) {
-            return gap;
+            return *gap;
         }
         let end = ends.iter().copied().fold(0.0, f64::max);
         if ends.is_empty() { 0.0 } else { end.max(gap - TABLE_TAIL_EV) }
     };
-    gap_ev
+    gap_ev.iter().enumerate().map(lowest).collect()
+}
+
+fn emission(lit: &Lit, temperature_k: f64) -> Vec<Radiative> {
+    let optics = &lit.optics;
+    let jumps: Vec<f64> = optics.jumps_m().iter().map(|edge| HC_EV / edge).collect();
+    lit.gap_ev
         .iter()
+        .zip(&lit.lowest_emitted_ev)
         .enumerate()
-        .map(|(junction, &gap)| {
+        .map(|(junction, (&gap, &lowest))| {
             let statistics =
                 if optics.is_model(junction) { Statistics::BoseEinstein } else { Statistics::Diode };
-            Radiative::new(gap, temperature_k, statistics, (&jumps, lowest(junction, gap)), |energy| {
+            Radiative::new(gap, temperature_k, statistics, (&jumps, lowest), |energy| {
                 let wavelength: Vec<f64> = energy.iter().map(|energy| HC_EV / energy).collect();
-                optics.emissivity(junction, &wavelength)
+                lit.collects_of(junction, optics.emissivity(junction, &wavelength), &wavelength)
             })
         })
         .collect()
+}
+
+/// For each junction with a voltage from layers, all it emits over what the front lets out.
+fn emits_times(design: &Design, lit: &Lit, temperature_k: f64) -> Vec<f64> {
+    let of = |(junction, named): (usize, &crate::design::Junction)| {
+        let front = lit.emission[junction].dark_a_per_m2();
+        if named.voltage != VoltageModel::Layers || front <= 0.0 {
+            return 1.0;
+        }
+        let range = (lit.gap_ev[junction], lit.lowest_emitted_ev[junction]);
+        let down = dark_currents(range, temperature_k, |energy| {
+            let wavelength: Vec<f64> = energy.iter().map(|energy| HC_EV / energy).collect();
+            let down = lit.optics.emissivity_down(junction, &wavelength);
+            vec![lit.collects_of(junction, down, &wavelength)]
+        });
+        1.0 + down[0] / front
+    };
+    design.junctions.iter().enumerate().map(of).collect()
 }
 
 /// `w` with `Σ w_i s_i = ∫ s f dx` for `s` and `f` linear between the points.

@@ -2,12 +2,14 @@
 
 use crate::design::{Design, Duty, OpticsModel, VoltageModel};
 use crate::evaluate::junctions::strings;
+use crate::evaluate::lit::Lit;
+use crate::evaluate::transport::{Carrying, held_at_the_limit};
 use crate::materials::optics::Optics;
 use crate::optics::model::layers_without_index;
 use crate::results::ModelNote;
 
 /// The models behind the numbers of `design`, in the order of the calculation.
-pub(super) fn model_notes(design: &Design) -> Vec<ModelNote> {
+pub(super) fn model_notes(design: &Design, lit: &Lit) -> Vec<ModelNote> {
     let mut notes = vec![light()];
     if design.conditions.iter().any(|condition| condition.light.name == "AM0") {
         notes.push(note(
@@ -39,13 +41,8 @@ pub(super) fn model_notes(design: &Design) -> Vec<ModelNote> {
             "",
         ));
     }
-    notes.push(note(
-        "collection ideal",
-        "Every photon absorbed in emitter, base, intrinsic, absorber or a wafer inside a junction gives one electron.",
-        "Diffusion lengths, interface velocities, depletion: real currents are lower.",
-        "Shockley and Queisser, J. Appl. Phys. 32, 510 (1961)",
-    ));
-    notes.extend(voltage(design));
+    notes.extend(collection(design, lit));
+    notes.extend(voltage(design, lit));
     let strings = strings(design);
     if strings.iter().any(|string| string.junctions.len() > 1) {
         notes.push(note(
@@ -154,10 +151,61 @@ fn percent(share: f64) -> String {
     crate::units::number(100.0 * share)
 }
 
-fn voltage(design: &Design) -> Vec<ModelNote> {
+fn collection(design: &Design, lit: &Lit) -> Vec<ModelNote> {
+    let is_followed = |carrying: &&Carrying| matches!(carrying, Carrying::Followed(_));
+    let mut notes = Vec::new();
+    if lit.carrying.iter().any(|carrying| !is_followed(&carrying)) {
+        notes.push(note(
+            "collection ideal",
+            "Every photon absorbed in emitter, base, intrinsic, absorber or a wafer inside a junction gives one \
+             electron, where no voltage from layers is asked for and no transport data are stated.",
+            "Diffusion lengths, interface velocities, depletion: real currents are lower.",
+            "Shockley and Queisser, J. Appl. Phys. 32, 510 (1961)",
+        ));
+    }
+    if lit.carrying.iter().any(|carrying| is_followed(&carrying)) {
+        notes.push(note(
+            "collection by transport",
+            "A carrier is collected with the probability that solves the diffusion of minority carriers in emitter and \
+             base, 1 in the depleted layers (abrupt, at zero bias), integrated over where the light is absorbed; \
+             non-radiative lifetimes, radiative recombination and Auger together give the diffusion length; windows and \
+             BSF give nothing unless they are said to be collecting; low injection, full ionisation, Boltzmann \
+             statistics.",
+            "Fields of graded layers and of doping profiles, high injection, traps that fill, currents along the layers, \
+             collection that changes with the voltage.",
+            "Donolato, Appl. Phys. Lett. 46, 270 (1985); Hovel, Semiconductors and Semimetals 11 (1975)",
+        ));
+    }
+    let undoped = lit.carrying.iter().any(|carrying| match carrying {
+        Carrying::Followed(transport) => transport.layers.iter().any(|own| own.doping_per_m3 == 0.0),
+        _ => false,
+    });
+    if undoped {
+        notes.push(note(
+            "undoped absorber",
+            "Electrons and holes drift in an even field at zero bias, each over its own mobility times lifetime times \
+             field; contacts hold the Fermi level at the band edges; in the dark n = p throughout, recombining in the bulk \
+             and at both faces.",
+            "Mobile ions, fields that space charge bends, collection that falls towards open circuit.",
+            "Hecht, Z. Phys. 77, 235 (1932); Shockley and Read, Phys. Rev. 87, 835 (1952)",
+        ));
+    }
+    if design.conditions.iter().any(|condition| condition.fluence.is_some()) {
+        notes.push(note(
+            "damage",
+            "Particles add K_L times their fluence to 1/L² of the minority carriers in every layer whose material has a \
+             constant for them; J01 and J02 follow; the remaining factor is over the same condition without them.",
+            "Carrier removal, annealing, damage of covers and coats, other energies and angles than the constant's.",
+            "Hovel, Semiconductors and Semimetals 11 (1975), chapter 8",
+        ));
+    }
+    notes
+}
+
+fn voltage(design: &Design, lit: &Lit) -> Vec<ModelNote> {
     let uses = |wanted: fn(&VoltageModel) -> bool| design.junctions.iter().any(|j| wanted(&j.voltage));
     let mut notes = Vec::new();
-    if uses(|model| !matches!(model, VoltageModel::Fit(_))) {
+    if uses(|model| matches!(model, VoltageModel::RadiativeLimit | VoltageModel::Ere(_))) {
         notes.push(note(
             "voltage from radiative_limit",
             if by_waves(design) {
@@ -193,11 +241,43 @@ fn voltage(design: &Design) -> Vec<ModelNote> {
     }
     if uses(|model| matches!(model, VoltageModel::Layers)) {
         notes.push(note(
-            "voltage from layers: not evaluated yet",
-            "The radiative limit stands in for it.",
-            "Every loss in the layers: the voltage shown is an upper bound.",
-            "Shockley and Queisser, J. Appl. Phys. 32, 510 (1961)",
+            "voltage from layers",
+            "J01 of minority carriers that diffuse in emitter and base with their surface velocities and non-radiative \
+             lifetimes; J02 of recombination centres at mid-gap in the field at zero bias; the radiative part by \
+             reciprocity with what the junction collects, through the front and into the layers below with their index \
+             (where the lowest layer has none, the front only).",
+            "The field's weakening under bias, recombination along edges, shunts that are not stated, traps in other \
+             places.",
+            "Shockley, Bell Syst. Tech. J. 28, 435 (1949); Sah, Noyce and Shockley, Proc. IRE 45, 1228 (1957); Rau, \
+             Phys. Rev. B 76, 085303 (2007)",
         ));
+        if design.switches.photon_recycling == Some(true) {
+            notes.push(note(
+                "photon recycling",
+                "Of the light a layer makes, the share that it absorbs again itself counts as not lost in its diffusion length.",
+                "Light that other layers absorb, and what mirrors send back.",
+                "Asbeck, J. Appl. Phys. 48, 820 (1977)",
+            ));
+        }
+        if design.switches.gap_narrowing == Some(true) {
+            notes.push(note(
+                "gap narrowing",
+                "Doping narrows the gap and so raises the minority density in emitter and base; a degenerate majority \
+                 lowers it.",
+                "The edge of absorption, which stays where the table has it.",
+                "Jain and Roulston, Solid-State Electron. 34, 453 (1991); Joyce and Dixon, Appl. Phys. Lett. 31, 354 (1977)",
+            ));
+        }
+    }
+    let held = held_at_the_limit(design, lit);
+    if !held.is_empty() && uses(|model| matches!(model, VoltageModel::Layers)) {
+        let names: Vec<String> = held.iter().map(|name| format!("`{name}`")).collect();
+        notes.push(ModelNote {
+            name: "voltage from layers: not enough is known".to_owned(),
+            does: format!("The radiative limit stands in for the carriers of {}.", names.join(", ")),
+            blind_to: "Every loss in its layers: current and voltage shown are upper bounds.".to_owned(),
+            cite: "Shockley and Queisser, J. Appl. Phys. 32, 510 (1961)".to_owned(),
+        });
     }
     notes
 }

@@ -14,6 +14,9 @@ const NEAREST: f64 = 0.005;
 /// Two points nearer than this are the two sides of a jump, relative.
 const JUMP: f64 = 1e-12;
 
+/// Share absorbed from which a junction's internal efficiency is told.
+const TELLING: f64 = 1e-6;
+
 /// Shares are given to this many steps per unit.
 const STEPS: f64 = 1e7;
 
@@ -52,11 +55,25 @@ pub(super) fn spectral(design: &Design, condition: &Condition, lit: &Lit, receiv
         .enumerate()
         .map(|(index, junction)| (junction.name.value.clone(), pick(&lit.collected_share(index))))
         .collect();
+    let iqe = design
+        .junctions
+        .iter()
+        .enumerate()
+        .map(|(index, junction)| {
+            let absorbed = lit.absorbed_share(index);
+            let of = |(collected, absorbed): (f64, f64)| {
+                if absorbed >= TELLING { (collected / absorbed).min(1.0) } else { 0.0 }
+            };
+            let shares = lit.collected_share(index).into_iter().zip(absorbed);
+            (junction.name.value.clone(), pick(&shares.map(of).collect::<Vec<f64>>()))
+        })
+        .collect();
     Spectral {
         wavelength_nm: wavelength_m.iter().map(|wavelength| rounded(wavelength * 1e9)).collect(),
         photon_current_ma_per_cm2_per_nm,
         reflectance: pick(&lit.shares.reflected),
         eqe,
+        iqe,
         absorptance,
     }
 }

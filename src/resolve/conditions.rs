@@ -2,9 +2,10 @@
 
 use std::sync::Arc;
 
-use crate::design::{Condition, ZERO_CELSIUS_K};
-use crate::finding::Severity;
+use crate::design::{Condition, Fluence, ZERO_CELSIUS_K};
 use crate::light::{self, Spectrum};
+use crate::materials::carriers::Particle;
+use crate::numerics::constants::CHARGE;
 use crate::resolve::properties::{self, conflict, quantity};
 use crate::resolve::quantities::{Expected, Role};
 use crate::resolve::{Resolver, names};
@@ -15,6 +16,9 @@ use crate::units::Dimension;
 /// What a `condition` states.
 pub(super) const OF_CONDITION: &[&str] =
     &["light", "temperature", "concentration", "irradiance", "incidence", "distance", "fluence", "note"];
+
+/// What a fluence can be of.
+const PARTICLES: [Particle; 2] = [Particle::Electrons, Particle::Protons];
 
 /// Cell temperature where none is stated, K.
 const STANDARD_K: f64 = ZERO_CELSIUS_K + 25.0;
@@ -89,7 +93,7 @@ impl<'s> Resolver<'_, 's> {
         }
         let fluence = find("fluence").and_then(|(property, frame)| {
             self.scope.enter(frame);
-            self.fluence(property)
+            self.fluence(property, &mut assumed)
         });
         self.scope.close(here);
         let light = light.filter(|_| !wrong)?;
@@ -107,7 +111,7 @@ impl<'s> Resolver<'_, 's> {
             concentration: concentration * thinned,
             temperature_k: temperature.unwrap_or(STANDARD_K),
             incidence_rad: incidence.unwrap_or(0.0),
-            fluence_per_m2: fluence,
+            fluence,
             distance_au,
             span,
         };
@@ -175,18 +179,42 @@ impl<'s> Resolver<'_, 's> {
         Some(light::blackbody(kelvin, light::SUN_DILUTION))
     }
 
-    /// `fluence 1e15 /cm2 of electrons 1 MeV`: kept, not evaluated yet.
-    fn fluence(&mut self, property: &Property) -> Option<f64> {
+    /// `fluence 1e15 /cm2 of electrons 1 MeV`
+    fn fluence(&mut self, property: &Property, assumed: &mut Vec<String>) -> Option<Fluence> {
         let expected = Expected::new("fluence", Dimension::PER_AREA, Role::NotNegative);
         let value = properties::first_value(&mut self.scope, property, expected)?;
-        let fluence = self.scope.quantity(&value, expected)?;
-        properties::pending(
-            &mut self.scope,
-            Severity::Warning,
-            "damage by particles is",
-            property.span,
-            "read the figures as those of the beginning of life",
-        );
+        let per_m2 = self.scope.quantity(&value, expected)?;
+        let mut fluence = Fluence { per_m2, particle: Particle::Electrons, energy_j: 1e6 * CHARGE };
+        let mut rest = property.arguments[1..].iter().peekable();
+        rest.next_if(|next| matches!(next, Argument::Word(word) if word.value == "of"));
+        let Some(Argument::Word(word)) = rest.peek() else {
+            assumed.push("particles of the fluence: electrons of 1 MeV, as none are stated".to_owned());
+            properties::no_more(&mut self.scope, property, property.arguments.len() - rest.len());
+            return Some(fluence);
+        };
+        match PARTICLES.into_iter().find(|particle| particle.word() == word.value) {
+            Some(particle) => fluence.particle = particle,
+            None => {
+                let known = PARTICLES.iter().map(|particle| particle.word());
+                let help = "write `of electrons 1 MeV` or `of protons 10 MeV`";
+                self.scope.report(names::unknown("particle", word, known, help));
+                return None;
+            }
+        }
+        rest.next();
+        let Some(energy) = rest.peek().and_then(|next| properties::as_value(next)) else {
+            properties::missing_of(
+                &mut self.scope,
+                &format!("the {} of the fluence have no energy", word.value),
+                word.span,
+                "write it behind them, such as `of electrons 1 MeV`",
+            );
+            return None;
+        };
+        fluence.energy_j =
+            self.scope.quantity(&energy, Expected::new("energy", Dimension::ENERGY, Role::Positive))?;
+        rest.next();
+        properties::no_more(&mut self.scope, property, property.arguments.len() - rest.len());
         Some(fluence)
     }
 }

@@ -1,7 +1,10 @@
 //! What junctions, tunnels and the front grid state of themselves, and how a junction turns light
 //! into voltage.
 
-use crate::design::{Design, DiodeFit, Duty, Place, Terminals, VoltageModel, ZERO_CELSIUS_K};
+use crate::design::{
+    BARE_M_PER_S, COVERED_M_PER_S, Design, DiodeFit, Duty, Face, Place, Terminals, VoltageModel,
+    ZERO_CELSIUS_K,
+};
 use crate::finding::{Finding, Severity};
 use crate::materials::MaterialClass;
 use crate::resolve::Resolver;
@@ -315,9 +318,36 @@ pub(super) fn voltages(design: &mut Design) {
     for layer in &design.layers {
         if layer.duty == Duty::Wafer
             && let Place::Junction(index) = layer.place
+            && !design.follows_carriers(index)
         {
             let name = &design.junctions[index].name.value;
             design.assumptions.push(format!("what the wafer of junction `{name}` absorbs is collected"));
+        }
+    }
+    velocities(design);
+}
+
+/// Says which faces take a default recombination velocity, a sentence for each value.
+fn velocities(design: &mut Design) {
+    let faces = design.default_velocities();
+    for (value, text, why) in [
+        (COVERED_M_PER_S, "1e3 cm/s", "next to a layer of the same junction"),
+        (BARE_M_PER_S, "1e7 cm/s", "bare, or next to metal or a layer of no junction"),
+    ] {
+        let places: Vec<String> = faces
+            .iter()
+            .filter(|(_, _, velocity)| *velocity == value)
+            .map(|(index, face, _)| {
+                let side = if *face == Face::Sunward { "the sunward face" } else { "the rear" };
+                format!("{side} of `{}`", design.layers[*index].path)
+            })
+            .collect();
+        if !places.is_empty() {
+            let sentence = format!(
+                "recombination velocity of {text} at {}, {why}, as nothing is stated",
+                places.join(", ")
+            );
+            design.assumptions.push(sentence);
         }
     }
 }

@@ -240,15 +240,17 @@ fn switch(resolver: &mut Resolver<'_, '_>, design: &mut Design, property: &Prope
     let Some(state) = word(&mut resolver.scope, property, &["on", "off"]) else { return };
     properties::no_more(&mut resolver.scope, property, 1);
     let on = state == "on";
-    let (slot, what) = match property.name.value.as_str() {
-        "luminescent_coupling" => (&mut design.switches.luminescent_coupling, "luminescent coupling is"),
-        "photon_recycling" => (&mut design.switches.photon_recycling, "photon recycling is"),
-        _ => (&mut design.switches.gap_narrowing, "gap narrowing is"),
-    };
-    *slot = Some(on);
-    if on {
-        let off = format!("write `{} off`", property.name.value);
-        pending(&mut resolver.scope, Severity::Warning, what, property.span, &off);
+    match property.name.value.as_str() {
+        "luminescent_coupling" => {
+            design.switches.luminescent_coupling = Some(on);
+            if on {
+                let what = "luminescent coupling is";
+                let off = "write `luminescent_coupling off`";
+                pending(&mut resolver.scope, Severity::Warning, what, property.span, off);
+            }
+        }
+        "photon_recycling" => design.switches.photon_recycling = Some(on),
+        _ => design.switches.gap_narrowing = Some(on),
     }
 }
 

@@ -84,7 +84,7 @@ pub(crate) fn condition(name: &str, light: Arc<Spectrum>, temperature_k: f64) ->
         concentration: 1.0,
         temperature_k,
         incidence_rad: 0.0,
-        fluence_per_m2: None,
+        fluence: None,
         distance_au: None,
         span: Span::default(),
     }

@@ -155,6 +155,10 @@ mod tests {
                     power_w_per_m2: 100.0,
                     voltage_at_mpp_v: 0.9,
                     dark_current_radiative_a_per_cm2: 1e-20,
+                    dark_current_diffusion_a_per_cm2: None,
+                    dark_current_depletion_a_per_cm2: None,
+                    depletion_width_nm: None,
+                    collection_efficiency: None,
                 })
                 .collect(),
             layers: Vec::new(),
