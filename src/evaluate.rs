@@ -2,6 +2,7 @@
 
 mod collect;
 mod condition;
+mod coupling;
 mod dark;
 mod findings;
 mod finite;
@@ -16,10 +17,13 @@ pub mod metrics;
 mod models;
 mod spectral;
 mod transport;
+mod tunnels;
+mod wiring;
 
 use rayon::prelude::*;
 
 use crate::design::{Condition, Design};
+use crate::evaluate::condition::Detail;
 use crate::evaluate::lit::Lit;
 use crate::finding::Outcome;
 use crate::materials::optics::Optics;
@@ -36,7 +40,6 @@ pub use hash::design_hash;
 /// unknown metrics in any case. What is stated but not evaluated yet is reported by `resolve`.
 pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
     let mut findings = metrics::check(design);
-    findings.extend(findings::stand_ins(design));
     if !is_whole(design) {
         return Outcome::nothing(findings);
     }
@@ -48,7 +51,7 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
         .conditions
         .par_iter()
         .zip(lit.par_iter())
-        .map(|(condition, lit)| condition::condition_result(design, condition, lit))
+        .map(|(condition, lit)| condition::condition_result(design, condition, lit, Detail::All))
         .collect();
     let mut results = Results {
         schema_version: SCHEMA_VERSION,
@@ -63,6 +66,9 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
         requirements: Vec::new(),
         free_values: free_values(design),
         sensitivities: Vec::new(),
+        season: None,
+        charts: Vec::new(),
+        measured: Vec::new(),
         models: models::model_notes(design, &lit[0]),
     };
     if let Some(finding) = finite::first_not_finite(design, &results) {

@@ -6,6 +6,7 @@
 mod integration {
     mod browser;
     mod carriers;
+    mod circuit;
     mod cli;
     mod designs;
     mod docs;

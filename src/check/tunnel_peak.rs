@@ -1,4 +1,5 @@
-//! `tunnel.peak`: the operating current is above what a tunnel junction carries by tunnelling.
+//! `tunnel.peak`: the current the stack would work at is above what a tunnel junction carries by
+//! tunnelling.
 
 use super::show::{current, significant};
 use super::{Context, Report, Rule};
@@ -21,28 +22,28 @@ const HEAD_ROOM: f64 = 1.5;
 
 fn run(context: &Context, report: &mut Report) {
     let Some(results) = context.results else { return };
-    for tunnel in &context.design.interconnects {
+    for (index, tunnel) in context.design.interconnects.iter().enumerate() {
         let Some(peak) = tunnel.peak_a_per_m2.map(|peak| peak * MA_PER_CM2) else { continue };
         let worst = results
             .conditions
             .iter()
-            .filter_map(|condition| condition.jmp_ma_per_cm2.map(|jmp| (condition, jmp)))
+            .filter_map(|condition| Some((condition, condition.tunnels.get(index)?.demanded_ma_per_cm2)))
             .reduce(|worst, next| if next.1 > worst.1 { next } else { worst });
-        let Some((condition, operating)) = worst.filter(|(_, operating)| *operating > peak) else { continue };
+        let Some((condition, demanded)) = worst.filter(|(_, demanded)| *demanded > peak) else { continue };
         let name = &tunnel.name.value;
         report.push(
             [name.as_str()],
             Finding::error(
                 RULE.code,
                 format!(
-                    "`{name}` carries {} under `{}`, above its peak of {}: past the peak it drops into its valley and the voltage collapses",
-                    current(operating),
+                    "`{name}` has to carry {} under `{}`, above its peak of {}: past the peak it drops into its valley and the voltage collapses",
+                    current(demanded),
                     condition.name,
                     current(peak)
                 ),
             )
             .at(tunnel.span, format!("peak {}", current(peak)))
-            .help(help(condition.concentration, operating, peak)),
+            .help(help(condition.concentration, demanded, peak)),
         );
     }
 }

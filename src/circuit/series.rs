@@ -22,6 +22,8 @@ pub struct Series<'a> {
     resistance_ohm_m2: f64,
     /// Lowest crest first: in this order they leave their tunnelling branch.
     tunnels: Vec<Tunnel>,
+    /// Where each of them stood in what was given.
+    order: Vec<usize>,
     /// The most each junction carries, A/m2, with the light of the junction above.
     ceilings: Vec<f64>,
 }
@@ -37,8 +39,8 @@ pub struct Point {
     pub junctions: Vec<f64>,
     /// What each junction gets from the light of the one above, A/m2.
     pub coupled: Vec<f64>,
-    /// Lost over all tunnel junctions that have a peak, V.
-    pub tunnels_v: f64,
+    /// Lost over each tunnel junction that has a peak, V.
+    pub tunnels: Vec<f64>,
 }
 
 /// The junctions at one current.
@@ -55,9 +57,10 @@ impl<'a> Series<'a> {
     /// `diodes` sunward first, at least one; `resistance_ohm_m2` holds fingers and everything else
     /// that is ohmic; `tunnels` are those with a peak.
     pub fn new(diodes: &'a [Diode], resistance_ohm_m2: f64, tunnels: &[Tunnel]) -> Self {
-        let mut tunnels = tunnels.to_vec();
-        tunnels.sort_by(|a, b| a.crest().1.total_cmp(&b.crest().1));
-        let mut series = Self { diodes, resistance_ohm_m2, tunnels, ceilings: Vec::new() };
+        let mut order: Vec<usize> = (0..tunnels.len()).collect();
+        order.sort_by(|&a, &b| tunnels[a].crest().1.total_cmp(&tunnels[b].crest().1));
+        let tunnels = order.iter().map(|&at| tunnels[at]).collect();
+        let mut series = Self { diodes, resistance_ohm_m2, tunnels, order, ceilings: Vec::new() };
         for index in 0..diodes.len() {
             let ceiling = series.ceiling_of(index);
             series.ceilings.push(ceiling);
@@ -69,7 +72,7 @@ impl<'a> Series<'a> {
     pub fn without_peaks(&self) -> Self {
         let ohmic: f64 = self.tunnels.iter().map(|tunnel| 1.0 / tunnel.current(0.0).1).sum();
         let resistance_ohm_m2 = self.resistance_ohm_m2 + ohmic;
-        Self { resistance_ohm_m2, tunnels: Vec::new(), ..self.clone() }
+        Self { resistance_ohm_m2, tunnels: Vec::new(), order: Vec::new(), ..self.clone() }
     }
 
     /// The most junction `index` carries, given those above: the current that its photocurrent, the
@@ -109,14 +112,23 @@ impl<'a> Series<'a> {
     }
 
     /// Voltage lost at `current` over everything but the junctions, with the first `passed` tunnel
-    /// junctions over their barrier, and its slope; the part of the tunnel junctions last.
-    fn lost(&self, current: f64, passed: usize) -> (f64, f64, f64) {
-        let mut sum = (0.0, 0.0);
-        for (index, tunnel) in self.tunnels.iter().enumerate() {
+    /// junctions over their barrier, and its slope.
+    fn lost(&self, current: f64, passed: usize) -> (f64, f64) {
+        let ohmic = (current * self.resistance_ohm_m2, self.resistance_ohm_m2);
+        self.tunnels.iter().enumerate().fold(ohmic, |sum, (index, tunnel)| {
             let own = if index < passed { tunnel.over_barrier(current) } else { tunnel.tunnelling(current) };
-            sum = (sum.0 + own.0, sum.1 + own.1);
+            (sum.0 + own.0, sum.1 + own.1)
+        })
+    }
+
+    /// Voltage of each tunnel junction, in the order given.
+    fn tunnel_voltages(&self, current: f64, passed: usize) -> Vec<f64> {
+        let mut voltages = vec![0.0; self.tunnels.len()];
+        for (index, (tunnel, &at)) in self.tunnels.iter().zip(&self.order).enumerate() {
+            let own = if index < passed { tunnel.over_barrier(current) } else { tunnel.tunnelling(current) };
+            voltages[at] = own.0;
         }
-        (sum.0 + current * self.resistance_ohm_m2, sum.1 + self.resistance_ohm_m2, sum.0)
+        voltages
     }
 
     /// Terminal voltage at `current` and `dV/dJ`; `−∞` where a junction cannot carry it.
@@ -138,7 +150,8 @@ impl<'a> Series<'a> {
     fn point(&self, current: f64, passed: usize) -> Point {
         let Cascade { junctions, coupled, sum, .. } = self.cascade(current);
         let lost = self.lost(current, passed);
-        Point { current, voltage: sum.0 - lost.0, junctions, coupled, tunnels_v: lost.2 }
+        let tunnels = self.tunnel_voltages(current, passed);
+        Point { current, voltage: sum.0 - lost.0, junctions, coupled, tunnels }
     }
 
     /// The point at `voltage`, from reverse to beyond open circuit, as met on the way from open
@@ -233,7 +246,7 @@ impl<'a> Series<'a> {
                 .map(|(at, factor)| factor * self.diodes[at].shines(point.junctions[at]).0);
             point.coupled[index] = gets.sum();
         }
-        point.tunnels_v = self.lost(point.current, passed).2;
+        point.tunnels = self.tunnel_voltages(point.current, passed);
         point.voltage = voltage;
         point
     }
@@ -273,7 +286,7 @@ impl<'a> Series<'a> {
         };
         let own = newton_bracketed(off, crest_v, trough_v, 1e-15);
         let mut point = self.point(tunnel.current(own).0, passed);
-        point.tunnels_v += own - tunnel.tunnelling(point.current).0;
+        point.tunnels[self.order[passed]] = own;
         point.voltage = voltage;
         point
     }

@@ -66,6 +66,8 @@ pub struct Interconnect {
     pub resistance_ohm_m2: Option<f64>,
     /// Peak current, A/m2, if stated.
     pub peak_a_per_m2: Option<f64>,
+    /// Least current beyond the peak, A/m2, if stated.
+    pub valley_a_per_m2: Option<f64>,
     /// The whole statement.
     pub span: Span,
 }

@@ -5,16 +5,27 @@ use crate::circuit::diode::Diode;
 use crate::circuit::series::{Point, Series};
 use crate::design::{Condition, Design};
 use crate::evaluate::dark::dark_curve;
-use crate::evaluate::junctions::{diodes, strings};
-use crate::evaluate::ledger::{Operating, account};
+use crate::evaluate::junctions::diodes;
+use crate::evaluate::ledger::account;
 use crate::evaluate::lit::Lit;
 use crate::evaluate::spectral::spectral;
 use crate::evaluate::transport::Carrying;
+use crate::evaluate::tunnels::crossing;
+use crate::evaluate::wiring::{Flow, Operating, inner_interconnects, operating, strings};
 use crate::numerics::constants::HC_EV;
-use crate::results::{ConditionResult, Curve, JunctionCurve, JunctionResult, LayerLight};
+use crate::results::{ConditionResult, Curve, JunctionCurve, JunctionResult, LayerLight, TunnelResult};
 
 /// A/m2 to mA/cm2.
 const MA_PER_CM2: f64 = 0.1;
+
+/// How much of a condition is worked out.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Detail {
+    /// Figures alone: no curves, no spectra, no account.
+    Figures,
+    /// Everything.
+    All,
+}
 
 /// One junction by itself.
 struct Alone {
@@ -24,49 +35,42 @@ struct Alone {
     open_v: f64,
 }
 
+/// Greatest power of `condition`, W/m2, and nothing else.
+pub(super) fn power_w_per_m2(design: &Design, condition: &Condition, lit: &Lit) -> f64 {
+    let shading = design.fingers.as_ref().map_or(0.0, |fingers| fingers.shading);
+    let open = condition.concentration * condition.incidence_rad.cos() * (1.0 - shading);
+    let diodes = diodes(design, condition, lit, open);
+    let strings = strings(design, fingers_ohm_m2(design));
+    operating(strings, &diodes).0.iter().map(Operating::power).sum()
+}
+
+/// Series resistance of the front, ohm m2.
+fn fingers_ohm_m2(design: &Design) -> f64 {
+    design.fingers.as_ref().map_or(0.0, |fingers| fingers.series_resistance_ohm_m2)
+}
+
 /// Every figure of `condition`.
-pub(super) fn condition_result(design: &Design, condition: &Condition, lit: &Lit) -> ConditionResult {
+pub(super) fn condition_result(
+    design: &Design,
+    condition: &Condition,
+    lit: &Lit,
+    detail: Detail,
+) -> ConditionResult {
     let shading = design.fingers.as_ref().map_or(0.0, |fingers| fingers.shading);
     let received = condition.concentration * condition.incidence_rad.cos();
     let open = received * (1.0 - shading);
     let diodes = diodes(design, condition, lit, open);
-
-    let mut operating = Vec::new();
-    let mut whole = None;
-    let wirings = strings(design);
-    for wiring in &wirings {
-        let own: Vec<Diode> = wiring.junctions.iter().map(|&junction| diodes[junction].clone()).collect();
-        let series = Series::new(&own, wiring.fingers_ohm_m2 + wiring.tunnels_ohm_m2, &[]);
-        let short = series.short_circuit();
-        let best = series.maximum_power(&short);
-        if wirings.len() == 1 {
-            whole = Some((
-                series.open_circuit().voltage,
-                short.clone(),
-                best.clone(),
-                points(&series, &short, &best),
-            ));
-        }
-        operating.push(Operating {
-            wiring: wiring.clone(),
-            current: best.current,
-            junction_v: best.junctions,
-        });
-    }
-    let power_w_per_m2: f64 = operating
-        .iter()
-        .map(|string| {
-            let resistance = string.wiring.fingers_ohm_m2 + string.wiring.tunnels_ohm_m2;
-            let sum: f64 = string.junction_v.iter().sum();
-            string.current * (sum - string.current * resistance)
-        })
-        .sum();
+    let wirings = strings(design, fingers_ohm_m2(design));
+    let (operating, flows) = operating(wirings.clone(), &diodes);
+    let power_w_per_m2: f64 = operating.iter().map(Operating::power).sum();
     let incident = condition.incident_w_per_m2();
-    let figures = whole.as_ref();
-    let alone: Vec<Alone> = diodes.iter().map(by_itself).collect();
+    let whole = match operating.as_slice() {
+        [one] => Some(one),
+        _ => None,
+    };
+    let alone: Vec<Alone> = diodes.iter().map(|diode| by_itself(diode, detail)).collect();
     let photocurrents: Vec<f64> = diodes.iter().map(|diode| diode.photocurrent).collect();
-
-    ConditionResult {
+    let figures = ConditionResult {
         name: condition.name.clone(),
         light: condition.light.name.clone(),
         incident_w_per_m2: incident,
@@ -74,20 +78,30 @@ pub(super) fn condition_result(design: &Design, condition: &Condition, lit: &Lit
         concentration: condition.concentration,
         efficiency: ratio(power_w_per_m2, incident),
         power_w_per_m2,
-        voc_v: figures.map(|(open_v, ..)| *open_v),
-        jsc_ma_per_cm2: figures.map(|(_, short, ..)| MA_PER_CM2 * short.current),
-        fill_factor: figures.map(|(open_v, short, ..)| ratio(power_w_per_m2, open_v * short.current)),
-        vmp_v: figures.map(|(_, _, best, _)| best.voltage),
-        jmp_ma_per_cm2: figures.map(|(_, _, best, _)| MA_PER_CM2 * best.current),
-        limiting_junction: figures.and_then(|_| limiting(design, &photocurrents)),
+        voc_v: whole.map(|it| it.open_v),
+        jsc_ma_per_cm2: whole.map(|it| MA_PER_CM2 * it.short.current),
+        fill_factor: whole.map(|it| ratio(power_w_per_m2, it.open_v * it.short.current)),
+        vmp_v: whole.map(|it| it.best.voltage),
+        jmp_ma_per_cm2: whole.map(|it| MA_PER_CM2 * it.best.current),
+        limiting_junction: whole.and_then(|_| limiting(design, &photocurrents)),
         current_mismatch: mismatch(&photocurrents),
         reflected_ma_per_cm2: MA_PER_CM2 * open * reflected(lit),
-        junctions: junction_results(design, lit, &operating, &alone, &photocurrents),
+        junctions: junction_results(design, lit, (&operating, &flows), &alone, &photocurrents),
+        tunnels: tunnel_results(design, &operating),
+        ..ConditionResult::default()
+    };
+    if detail == Detail::Figures {
+        return figures;
+    }
+    ConditionResult {
         layers: layer_light(design, lit, open),
-        ledger_w_per_m2: account(design, condition, lit, &operating),
+        ledger_w_per_m2: account(design, condition, lit, (&operating, &flows)),
         spectral: spectral(design, condition, lit, received),
         dark_curve: dark_curve(design, &diodes, &wirings),
-        curve: figures.map_or_else(Curve::default, |(.., points)| curve(design, points)),
+        curve: whole.map_or_else(Curve::default, |it| {
+            let own = it.wiring.own(&diodes);
+            curve(design, &points(&it.wiring.series(&own), &it.short, &it.best))
+        }),
         junction_curves: alone
             .into_iter()
             .zip(&design.junctions)
@@ -97,14 +111,15 @@ pub(super) fn condition_result(design: &Design, condition: &Condition, lit: &Lit
                 current_ma_per_cm2: alone.curve.current_ma_per_cm2,
             })
             .collect(),
+        ..figures
     }
 }
 
-fn by_itself(diode: &Diode) -> Alone {
+fn by_itself(diode: &Diode, detail: Detail) -> Alone {
     let series = Series::new(std::slice::from_ref(diode), 0.0, &[]);
     let short = series.short_circuit();
     let best = series.maximum_power(&short);
-    let points = points(&series, &short, &best);
+    let points = if detail == Detail::All { points(&series, &short, &best) } else { Vec::new() };
     let curve = Curve {
         voltage_v: points.iter().map(|point| point.voltage).collect(),
         current_ma_per_cm2: points.iter().map(|point| MA_PER_CM2 * point.current).collect(),
@@ -116,15 +131,18 @@ fn by_itself(diode: &Diode) -> Alone {
 fn junction_results(
     design: &Design,
     lit: &Lit,
-    operating: &[Operating],
+    (operating, flows): (&[Operating], &[Flow]),
     alone: &[Alone],
     photocurrents: &[f64],
 ) -> Vec<JunctionResult> {
-    let voltage_at_mpp = |junction: usize| {
+    let within = |junction: usize, of: fn(&Operating) -> &Point| {
         operating.iter().find_map(|string| {
             let at = string.wiring.junctions.iter().position(|&own| own == junction)?;
-            string.junction_v.get(at).copied()
+            of(string).junctions.get(at).copied()
         })
+    };
+    let coupled = |junction: usize| -> f64 {
+        flows.iter().filter(|flow| flow.to == junction).map(|flow| flow.current).sum()
     };
     design
         .junctions
@@ -145,7 +163,9 @@ fn junction_results(
                 voc_v: own.open_v,
                 fill_factor: ratio(power, own.open_v * own.short.current),
                 power_w_per_m2: power,
-                voltage_at_mpp_v: voltage_at_mpp(index).unwrap_or(own.best.voltage),
+                voltage_at_mpp_v: within(index, |it| &it.best).unwrap_or(own.best.voltage),
+                voltage_at_short_circuit_v: within(index, |it| &it.short).unwrap_or(0.0),
+                coupled_ma_per_cm2: MA_PER_CM2 * coupled(index),
                 dark_current_radiative_a_per_cm2: 1e-4 * lit.radiative_dark(index),
                 dark_current_diffusion_a_per_cm2: transport.map(|it| 1e-4 * it.diffusion_a_per_m2),
                 dark_current_depletion_a_per_cm2: transport.map(|it| 1e-4 * it.depletion_a_per_m2),
@@ -155,6 +175,31 @@ fn junction_results(
             }
         })
         .collect()
+}
+
+/// What joins the junctions, at the operating point of the string that crosses it.
+fn tunnel_results(design: &Design, operating: &[Operating]) -> Vec<TunnelResult> {
+    let mut results: Vec<TunnelResult> = design
+        .interconnects
+        .iter()
+        .map(|interconnect| TunnelResult {
+            name: interconnect.name.value.clone(),
+            peak_ma_per_cm2: interconnect.peak_a_per_m2.map(|peak| MA_PER_CM2 * peak),
+            ..TunnelResult::default()
+        })
+        .collect();
+    for string in operating {
+        let mut voltages = string.wiring.tunnels.iter().zip(&string.best.tunnels);
+        for index in inner_interconnects(design, &string.wiring.junctions) {
+            let (ohmic, tunnel) = crossing(&design.interconnects[index]);
+            let own = tunnel.and_then(|_| voltages.next());
+            let result = &mut results[index];
+            result.demanded_ma_per_cm2 = MA_PER_CM2 * string.demanded;
+            result.voltage_at_mpp_v = ohmic * string.best.current + own.map_or(0.0, |(_, voltage)| *voltage);
+            result.beyond_peak = own.is_some_and(|(tunnel, voltage)| *voltage > tunnel.crest().0);
+        }
+    }
+    results
 }
 
 fn layer_light(design: &Design, lit: &Lit, open: f64) -> Vec<LayerLight> {

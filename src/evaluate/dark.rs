@@ -3,7 +3,7 @@
 use crate::circuit::diode::Diode;
 use crate::circuit::series::Series;
 use crate::design::Design;
-use crate::evaluate::junctions::Wiring;
+use crate::evaluate::wiring::Wiring;
 use crate::results::Curve;
 
 /// The least current, mA/cm2: a hundred thousandth of what a good meter on a square centimetre
@@ -23,11 +23,15 @@ pub(super) fn dark_curve(design: &Design, diodes: &[Diode], strings: &[Wiring]) 
     let largest = diodes.iter().map(|diode| diode.photocurrent / A_PER_M2).fold(0.0, f64::max);
     let last_decade = (2.0 * largest).max(10.0).log10().ceil().min(12.0) as i32;
     let dark: Vec<Diode> = diodes.iter().map(|diode| Diode { photocurrent: 0.0, ..diode.clone() }).collect();
-    let resistance_ohm_m2 = match strings {
-        [one] => one.fingers_ohm_m2 + one.tunnels_ohm_m2,
-        _ => 0.0,
+    let own = match strings {
+        [one] => one.own(&dark),
+        // Each junction by itself, without the light of the others.
+        _ => dark.iter().map(|diode| Diode { sends_down: None, ..diode.clone() }).collect(),
     };
-    let series = Series::new(&dark, resistance_ohm_m2, &[]);
+    let series = match strings {
+        [one] => one.series(&own),
+        _ => Series::new(&own, 0.0, &[]),
+    };
     let mut points = Vec::new();
     for step in LEAST_DECADE * PER_DECADE..=last_decade * PER_DECADE {
         let current_ma = 10f64.powf(f64::from(step) / f64::from(PER_DECADE));

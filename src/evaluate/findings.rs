@@ -154,22 +154,3 @@ fn fits_below_the_limit(design: &Design, lit: &[Arc<Lit>]) -> Findings {
     }
     findings
 }
-
-/// What is stated of a model that is not evaluated yet: a breakdown voltage is kept without effect.
-pub(super) fn stand_ins(design: &Design) -> Findings {
-    let mut findings = Findings::new();
-    for junction in &design.junctions {
-        let name = &junction.name.value;
-        if junction.breakdown_v.is_some() {
-            findings.push(
-                Finding::advice(
-                    "feature.pending",
-                    format!("reverse breakdown of `{name}` is not evaluated yet"),
-                )
-                .at(junction.name.span, "its `breakdown` is read and kept, without effect on the figures")
-                .help("read the reverse part of its curve as that of a junction that never breaks down"),
-            );
-        }
-    }
-    findings
-}

@@ -37,6 +37,7 @@ pub fn design_hash(design: &Design) -> String {
         hash.debug(&(interconnect.kind, &interconnect.layers, interconnect.below_junctions));
         hash.optional(interconnect.resistance_ohm_m2);
         hash.optional(interconnect.peak_a_per_m2);
+        hash.optional(interconnect.valley_a_per_m2);
     });
     hash.optional(design.fingers.as_ref().map(|fingers| fingers.shading));
     hash.optional(design.fingers.as_ref().map(|fingers| fingers.series_resistance_ohm_m2));

@@ -1,7 +1,9 @@
-//! From voltage models to diodes, and which junctions share a string.
+//! From voltage models to diodes.
 
-use crate::circuit::diode::Diode;
-use crate::design::{Condition, Design, DiodeFit, Junction, Terminals, VoltageModel};
+use crate::circuit::diode::{Breakdown, Diode, SentDown};
+use crate::circuit::radiative::Radiative;
+use crate::design::{Condition, Design, DiodeFit, Junction, VoltageModel};
+use crate::evaluate::coupling::{self, Sent};
 use crate::evaluate::lit::{Lit, junction_gap};
 use crate::evaluate::transport::Carrying;
 use crate::numerics::constants::thermal_voltage;
@@ -15,7 +17,7 @@ const DARK_A_PER_M2: f64 = 1e-30;
 /// `factor` is what multiplies the light on the open front: concentration, obliquity, what fingers
 /// leave.
 pub(super) fn diodes(design: &Design, condition: &Condition, lit: &Lit, factor: f64) -> Vec<Diode> {
-    design
+    let mut diodes: Vec<Diode> = design
         .junctions
         .iter()
         .enumerate()
@@ -27,6 +29,7 @@ pub(super) fn diodes(design: &Design, condition: &Condition, lit: &Lit, factor: 
             let mut diode = Diode {
                 radiative: Some((radiative.clone(), 1.0)),
                 shunt_conductance: shunt(junction).map_or(0.0, f64::recip),
+                breakdown: breakdown(junction),
                 ..Diode::lossless(made, thermal_v)
             };
             match &junction.voltage {
@@ -51,9 +54,56 @@ pub(super) fn diodes(design: &Design, condition: &Condition, lit: &Lit, factor: 
                     }
                 }
             }
+            if let Some(sent) = lit.sent.get(index).filter(|_| coupling::is_on(design)) {
+                send_down(&mut diode, sent, radiative);
+            }
             diode
         })
-        .collect()
+        .collect();
+    // What a junction can absorb from above it emits up there too, by reciprocity: without that loss
+    // one that nothing reaches from the front would have no voltage to end at.
+    for from in 0..diodes.len() {
+        let Some(sent) = diodes[from].sends_down.clone() else { continue };
+        let dark = sent.emission.dark_a_per_m2();
+        for (diode, factor) in diodes[from + 1..].iter_mut().zip(sent.factors) {
+            diode.j01 += factor * dark;
+        }
+    }
+    diodes
+}
+
+/// Lets a junction's light count below it.
+///
+/// In the radiative limit that light is recombination on top of what leaves at the front; a stated
+/// efficiency, a fit or a sum over layers holds it already. No junction sends more than it
+/// recombines beyond its front's emission.
+fn send_down(diode: &mut Diode, sent: &Sent, emission: &Radiative) {
+    let front = emission.dark_a_per_m2();
+    if let Some((_, factor)) = &mut diode.radiative
+        && *factor == 1.0
+    {
+        *factor += sent.lost;
+    }
+    let recombines = diode.j01 + diode.radiative.as_ref().map_or(0.0, |(_, factor)| factor * front);
+    let wanted = sent.lost * front;
+    if wanted <= 0.0 {
+        return;
+    }
+    let share = ((recombines - front).max(0.0) / wanted).min(1.0);
+    let factors = sent.to.iter().map(|to| share * to).collect();
+    diode.sends_down = Some(SentDown { emission: emission.clone(), factors });
+}
+
+/// Leakage that is multiplied on the way to breakdown, 1/(ohm m2), where the junction states no
+/// shunt: of 1 Mohm cm2, below what any curve shows.
+const LEAKAGE: f64 = 1.0 / (1e6 * 1e-4);
+
+/// Share of the leakage that is multiplied: Bishop, Solar Cells 25, 73 (1988).
+const MULTIPLIED: f64 = 0.1;
+
+fn breakdown(junction: &Junction) -> Option<Breakdown> {
+    let leakage = shunt(junction).map_or(LEAKAGE, f64::recip);
+    junction.breakdown_v.map(|voltage_v| Breakdown { voltage_v, conductance: MULTIPLIED * leakage })
 }
 
 /// A fit's dark currents at the condition's temperature, A/m2: `J01 ∝ T³ exp(−E_g/kT)`,
@@ -72,58 +122,4 @@ fn shunt(junction: &Junction) -> Option<f64> {
         _ => None,
     };
     junction.shunt_ohm_m2.or(of_fit).filter(|shunt| *shunt > 0.0)
-}
-
-/// Junctions that carry one current, and the resistances in their way, ohm m2.
-#[derive(Clone, Debug, PartialEq)]
-pub(super) struct Wiring {
-    pub(super) junctions: Vec<usize>,
-    pub(super) fingers_ohm_m2: f64,
-    pub(super) tunnels_ohm_m2: f64,
-}
-
-/// The strings of a design, sunward first. With four terminals junctions marked `separate` stand
-/// alone and the others share a string; where none is marked, each stands alone. The front grid
-/// carries the current of the first string.
-pub(super) fn strings(design: &Design) -> Vec<Wiring> {
-    let all = 0..design.junctions.len();
-    let marked = design.junctions.iter().any(|junction| junction.separate);
-    let mut strings: Vec<Vec<usize>> = match design.terminals {
-        Terminals::Two | Terminals::Three if !marked => vec![all.collect()],
-        Terminals::Four if !marked => all.map(|junction| vec![junction]).collect(),
-        _ => {
-            let (alone, shared): (Vec<usize>, Vec<usize>) =
-                all.partition(|&junction| design.junctions[junction].separate);
-            std::iter::once(shared).chain(alone.into_iter().map(|junction| vec![junction])).collect()
-        }
-    };
-    strings.retain(|string| !string.is_empty());
-    strings.sort_by_key(|string| string[0]);
-    strings
-        .into_iter()
-        .enumerate()
-        .map(|(index, junctions)| {
-            let fingers = design.fingers.as_ref().filter(|_| index == 0);
-            let tunnels_ohm_m2 = inner_interconnects(design, &junctions)
-                .filter_map(|at| design.interconnects[at].resistance_ohm_m2);
-            Wiring {
-                fingers_ohm_m2: fingers.map_or(0.0, |fingers| fingers.series_resistance_ohm_m2),
-                tunnels_ohm_m2: tunnels_ohm_m2.sum(),
-                junctions,
-            }
-        })
-        .collect()
-}
-
-/// Interconnects that stand between two junctions of one string, as indices of
-/// [`Design::interconnects`].
-pub(super) fn inner_interconnects<'a>(
-    design: &'a Design,
-    junctions: &'a [usize],
-) -> impl Iterator<Item = usize> + 'a {
-    design.interconnects.iter().enumerate().filter_map(move |(index, interconnect)| {
-        let below = interconnect.below_junctions;
-        let inside = below > 0 && junctions.contains(&(below - 1)) && junctions.contains(&below);
-        inside.then_some(index)
-    })
 }

@@ -1,25 +1,17 @@
 //! Where every watt goes.
 
 use crate::design::{Condition, Design};
-use crate::evaluate::junctions::Wiring;
 use crate::evaluate::lit::Lit;
+use crate::evaluate::wiring::{Flow, Operating};
 use crate::results::LedgerLine;
-
-/// A string at its maximum power point.
-#[derive(Clone, Debug)]
-pub(super) struct Operating {
-    pub(super) wiring: Wiring,
-    /// A/m2.
-    pub(super) current: f64,
-    /// Of each junction of the string, V.
-    pub(super) junction_v: Vec<f64>,
-}
 
 /// One junction's part in the account.
 struct Share {
     junction: usize,
-    /// Photon current absorbed where it collects from.
+    /// Photon current absorbed where it collects from, with the light it gets from other junctions
+    /// and less that which it gives.
     absorbed: f64,
+    /// The part of it that is collected.
     photocurrent: f64,
     /// The smallest photocurrent of its string, or the operating current where a shunt lets
     /// more than that through.
@@ -33,17 +25,19 @@ type Loss<'a> = &'a dyn Fn(&Share) -> f64;
 
 /// The account of one condition, in W/m2, in this order: fingers, reflected, each layer that
 /// collects nothing, passing below every gap, what no data reach, heat above the gap and tail
-/// below it, not collected, mismatch, recombined, voltage — each by junction —, tunnel and series
-/// resistance, delivered.
+/// below it, coupling, not collected, mismatch, recombined, voltage — each by junction —, tunnel and
+/// series resistance, delivered. Coupling stands at the junction that gets the light and is what is
+/// lost between the two gaps; all lines behind it count the light where it ends up.
 ///
-/// The lines sum to what the cell receives. Each is ≥ 0 but `tail`: photons absorbed below the
-/// gap that still give one electron each. Heat is the absorbed power less `E_g` per electron;
+/// The lines sum to what the cell receives. Each is ≥ 0 but `tail`, photons absorbed below the
+/// gap that still give one electron each, and `coupling` where a junction with the narrower gap
+/// stands above or one is driven backwards and sends less than in the dark. Heat is the absorbed power less `E_g` per electron;
 /// from there on every line is in units of `E_g` per charge, less the terminal's work.
 pub(super) fn account(
     design: &Design,
     condition: &Condition,
     lit: &Lit,
-    strings: &[Operating],
+    (strings, flows): (&[Operating], &[Flow]),
 ) -> Vec<LedgerLine> {
     let received = condition.concentration * condition.incidence_rad.cos();
     let shading = design.fingers.as_ref().map_or(0.0, |fingers| fingers.shading);
@@ -80,7 +74,11 @@ pub(super) fn account(
             lines.push(named("tail", junction, below));
         }
     }
-    let shares = shares(lit, open, strings);
+    for flow in flows {
+        let lost = (lit.gap_ev[flow.from] - lit.gap_ev[flow.to]) * flow.current;
+        lines.push(named("coupling", flow.to, lost));
+    }
+    let shares = shares(lit, open, (strings, flows));
     let gap = |share: &Share| lit.gap_ev[share.junction];
     let carried = |share: &Share| share.photocurrent.min(share.reference);
     let each: [(&str, Loss); 4] = [
@@ -92,10 +90,12 @@ pub(super) fn account(
     for (name, value) in each {
         lines.extend(shares.iter().map(|share| named(name, share.junction, value(share))));
     }
-    let resistance = |ohm: fn(&Wiring) -> f64| -> f64 {
-        strings.iter().map(|string| string.current.powi(2) * ohm(&string.wiring)).sum()
-    };
-    let (tunnel, series) = (resistance(|w| w.tunnels_ohm_m2), resistance(|w| w.fingers_ohm_m2));
+    let sum = |of: &dyn Fn(&Operating) -> f64| -> f64 { strings.iter().map(of).sum() };
+    let squared = |string: &Operating| string.best.current.powi(2);
+    let tunnel = sum(&|it| {
+        squared(it) * it.wiring.tunnels_ohm_m2 + it.best.current * it.best.tunnels.iter().sum::<f64>()
+    });
+    let series = sum(&|it| squared(it) * it.wiring.fingers_ohm_m2);
     let work: f64 = shares.iter().map(|share| share.current * share.voltage).sum();
     lines.push(line("tunnel", tunnel));
     lines.push(line("series", series));
@@ -103,20 +103,27 @@ pub(super) fn account(
     lines
 }
 
-fn shares(lit: &Lit, open: f64, strings: &[Operating]) -> Vec<Share> {
+fn shares(lit: &Lit, open: f64, (strings, flows): (&[Operating], &[Flow])) -> Vec<Share> {
+    let net = |junction: usize| -> f64 {
+        let part = |flow: &Flow| {
+            let got = if flow.to == junction { flow.current } else { 0.0 };
+            got - if flow.from == junction { flow.current } else { 0.0 }
+        };
+        open * lit.photocurrent(junction) + flows.iter().map(part).sum::<f64>()
+    };
     let mut shares = Vec::new();
     for string in strings {
-        let photocurrents: Vec<f64> =
-            string.wiring.junctions.iter().map(|&junction| open * lit.photocurrent(junction)).collect();
+        let photocurrents: Vec<f64> = string.wiring.junctions.iter().map(|&junction| net(junction)).collect();
         let smallest = photocurrents.iter().copied().fold(f64::INFINITY, f64::min);
         for (at, &junction) in string.wiring.junctions.iter().enumerate() {
             shares.push(Share {
                 junction,
-                absorbed: open * lit.absorbed_current(junction),
+                absorbed: photocurrents[at]
+                    + open * (lit.absorbed_current(junction) - lit.photocurrent(junction)),
                 photocurrent: photocurrents[at],
-                reference: smallest.max(string.current),
-                current: string.current,
-                voltage: string.junction_v[at],
+                reference: smallest.max(string.best.current),
+                current: string.best.current,
+                voltage: string.best.junctions[at],
             });
         }
     }

@@ -1,8 +1,9 @@
 //! What one light at one temperature does to a stack, before it is multiplied by anything.
 
-use crate::circuit::radiative::{Radiative, Statistics, dark_currents};
+use crate::circuit::radiative::{Radiative, Statistics};
 use crate::design::{Condition, Design, Place, VoltageModel};
 use crate::evaluate::collect::{Collected, collected};
+use crate::evaluate::coupling::{self, Sent};
 use crate::evaluate::transport::{Carrying, carrying};
 use crate::light::{DATA_START_M, Spectrum};
 use crate::numerics::constants::{CHARGE, HC_EV};
@@ -55,6 +56,8 @@ pub(super) struct Lit {
     /// Light each junction loses as a multiple of what it sends out of the front: 1, or with a
     /// voltage from layers also what goes down and does not come back.
     pub(super) emits_times: Vec<f64>,
+    /// What each junction sends down; empty where neither a voltage nor coupling asks for it.
+    pub(super) sent: Vec<Sent>,
     /// Part of the spectrum's total that drives nothing: outside [`Lit::wavelength_m`], W/m2.
     pub(super) beyond_w_per_m2: f64,
 }
@@ -91,6 +94,7 @@ impl Lit {
             emission: Vec::new(),
             lowest_emitted_ev: Vec::new(),
             emits_times: Vec::new(),
+            sent: Vec::new(),
             beyond_w_per_m2: light.total_w_per_m2 - inside,
             optics,
         };
@@ -101,7 +105,8 @@ impl Lit {
             .collect();
         lit.lowest_emitted_ev = lowest_emitted(&lit.optics, &lit.gap_ev);
         lit.emission = emission(&lit, temperature_k);
-        lit.emits_times = emits_times(design, &lit, temperature_k);
+        lit.sent = coupling::sent(design, &lit, temperature_k);
+        lit.emits_times = emits_times(design, &lit.sent);
         Some(lit)
     }
 
@@ -264,19 +269,10 @@ fn emission(lit: &Lit, temperature_k: f64) -> Vec<Radiative> {
 }
 
 /// For each junction with a voltage from layers, all it emits over what the front lets out.
-fn emits_times(design: &Design, lit: &Lit, temperature_k: f64) -> Vec<f64> {
-    let of = |(junction, named): (usize, &crate::design::Junction)| {
-        let front = lit.emission[junction].dark_a_per_m2();
-        if named.voltage != VoltageModel::Layers || front <= 0.0 {
-            return 1.0;
-        }
-        let range = (lit.gap_ev[junction], lit.lowest_emitted_ev[junction]);
-        let down = dark_currents(range, temperature_k, |energy| {
-            let wavelength: Vec<f64> = energy.iter().map(|energy| HC_EV / energy).collect();
-            let down = lit.optics.emissivity_down(junction, &wavelength);
-            vec![lit.collects_of(junction, down, &wavelength)]
-        });
-        1.0 + down[0] / front
+fn emits_times(design: &Design, sent: &[Sent]) -> Vec<f64> {
+    let of = |(index, junction): (usize, &crate::design::Junction)| match &junction.voltage {
+        VoltageModel::Layers => 1.0 + sent.get(index).map_or(0.0, |sent| sent.lost),
+        _ => 1.0,
     };
     design.junctions.iter().enumerate().map(of).collect()
 }

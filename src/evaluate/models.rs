@@ -1,9 +1,10 @@
 //! Which models were used, and what they do not see.
 
-use crate::design::{Design, Duty, OpticsModel, VoltageModel};
-use crate::evaluate::junctions::strings;
+use crate::design::{Design, Duty, OpticsModel, Terminals, VoltageModel};
+use crate::evaluate::coupling;
 use crate::evaluate::lit::Lit;
 use crate::evaluate::transport::{Carrying, held_at_the_limit};
+use crate::evaluate::wiring::strings;
 use crate::materials::optics::Optics;
 use crate::optics::model::layers_without_index;
 use crate::results::ModelNote;
@@ -43,21 +44,55 @@ pub(super) fn model_notes(design: &Design, lit: &Lit) -> Vec<ModelNote> {
     }
     notes.extend(collection(design, lit));
     notes.extend(voltage(design, lit));
-    let strings = strings(design);
+    let strings = strings(design, 0.0);
     if strings.iter().any(|string| string.junctions.len() > 1) {
         notes.push(note(
             "series string",
             "At each current the junction voltages are summed, negative ones included, less the drop over lumped \
              resistances of fingers and tunnels; the voltage of a saturated junction is what the others leave; the fill factor is over the \
              string's own short-circuit current.",
-            "Lateral current, luminescent coupling between junctions, reverse breakdown, the valley of a tunnel junction.",
+            "Lateral current: every junction carries the same current density everywhere.",
             "Kirchhoff's laws",
+        ));
+    }
+    if strings.iter().any(|string| !string.tunnels.is_empty()) {
+        notes.push(note(
+            "tunnel junctions",
+            "Up to its peak the tunnelling current (V/V_p) exp(1 − V/V_p), with the stated resistance at no current; \
+             beyond it the excess current through the stated valley; the curve is that met on the way from open \
+             circuit down, with the dip where the current passes a peak.",
+            "Temperature, light in the tunnel layers, spreading of the current; the way up from short circuit may differ.",
+            "Sze and Ng, Physics of Semiconductor Devices (2007), chapter 8; Esaki, Phys. Rev. 109, 603 (1958)",
+        ));
+    }
+    if coupling::is_on(design) {
+        notes.push(note(
+            "luminescent coupling",
+            "Light that a junction sends down by its radiative recombination at its own voltage makes current where \
+             junctions below absorb it, at every point of the curve; left out of the photocurrents and the \
+             mismatch told.",
+            "Light sent up, and what junctions below send back.",
+            "Steiner, Geisz et al., Opt. Express 21, A163 (2013)",
+        ));
+    }
+    if design.junctions.iter().any(|junction| junction.breakdown_v.is_some()) {
+        notes.push(note(
+            "reverse breakdown",
+            "A tenth of the leakage, multiplied by (1 + V/V_b)^−3.4 in reverse, with the stated voltage V_b.",
+            "Change of the voltage with temperature, microplasmas, heating where it breaks down.",
+            "Bishop, Solar Cells 25, 73 (1988)",
         ));
     }
     if strings.len() > 1 {
         notes.push(note(
             "separate terminals",
-            "Each string works at its own maximum power point and the powers add; the grid's resistance lies in the first string.",
+            if design.terminals == Terminals::Three {
+                "Two strings between front, middle and rear, each with a load of its own at its maximum power point; \
+                 the powers add, and the middle contact carries the difference of the currents without loss; the \
+                 grid's resistance lies in the first string."
+            } else {
+                "Each string works at its own maximum power point and the powers add; the grid's resistance lies in the first string."
+            },
             "The cost of the wiring and of the further power conversion.",
             "Kirchhoff's laws",
         ));

@@ -209,6 +209,7 @@ impl<'b, 's> Walk<'_, '_, 'b, 's> {
                 below_junctions: self.design.junctions.len(),
                 resistance_ohm_m2: None,
                 peak_a_per_m2: None,
+                valley_a_per_m2: None,
                 span: group.span,
             });
             self.groups.push(Placed::Interconnect(index, group));

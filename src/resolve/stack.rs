@@ -240,18 +240,13 @@ fn switch(resolver: &mut Resolver<'_, '_>, design: &mut Design, property: &Prope
     let Some(state) = word(&mut resolver.scope, property, &["on", "off"]) else { return };
     properties::no_more(&mut resolver.scope, property, 1);
     let on = state == "on";
-    match property.name.value.as_str() {
-        "luminescent_coupling" => {
-            design.switches.luminescent_coupling = Some(on);
-            if on {
-                let what = "luminescent coupling is";
-                let off = "write `luminescent_coupling off`";
-                pending(&mut resolver.scope, Severity::Warning, what, property.span, off);
-            }
-        }
-        "photon_recycling" => design.switches.photon_recycling = Some(on),
-        _ => design.switches.gap_narrowing = Some(on),
-    }
+    let switches = &mut design.switches;
+    let slot = match property.name.value.as_str() {
+        "luminescent_coupling" => &mut switches.luminescent_coupling,
+        "photon_recycling" => &mut switches.photon_recycling,
+        _ => &mut switches.gap_narrowing,
+    };
+    *slot = Some(on);
 }
 
 /// Conditions named, stated in the body, or assumed. `false` where one is wrong, which is

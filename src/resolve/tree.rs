@@ -276,8 +276,11 @@ pub(super) fn report_too_many(scope: &mut Scope, span: Span) {
 /// What a junction states of itself.
 pub(super) const OF_JUNCTION: &[&str] = &["voltage", "shunt", "breakdown", "texture", "note"];
 
-/// What a tunnel or a recombination contact states of itself.
-pub(super) const OF_INTERCONNECT: &[&str] = &["resistance", "peak", "note"];
+/// What a tunnel junction states of itself.
+pub(super) const OF_INTERCONNECT: &[&str] = &["resistance", "peak", "valley", "note"];
+
+/// What a recombination contact states of itself.
+pub(super) const OF_RECOMBINATION: &[&str] = &["resistance", "note"];
 
 /// Properties a stack's body takes.
 pub(super) const OF_STACK: &[&str] = &[

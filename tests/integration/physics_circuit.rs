@@ -139,6 +139,7 @@ fn resistances_cost_what_ohm_says() {
         below_junctions: 1,
         resistance_ohm_m2: Some(1e-7),
         peak_a_per_m2: None,
+        valley_a_per_m2: None,
         span: Span::default(),
     });
     let result = first(&design);

@@ -114,7 +114,7 @@ pub(super) fn gap_for(condition: &ConditionResult, junction: &str, target: f64) 
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::results::{Curve, JunctionResult, Spectral};
+    use crate::results::{JunctionResult, Spectral};
 
     /// A condition of which only currents, gaps and quantum efficiencies count.
     fn condition(
@@ -129,49 +129,24 @@ mod tests {
         let eqe = eqe.iter().map(|(name, from, to)| ((*name).to_string(), steps(*from, *to))).collect();
         ConditionResult {
             name: "noon".into(),
-            light: "flat".into(),
-            incident_w_per_m2: 1000.0,
             temperature_k: 298.15,
-            concentration: 1.0,
-            efficiency: 0.3,
-            power_w_per_m2: 300.0,
-            voc_v: None,
-            jsc_ma_per_cm2: None,
-            fill_factor: None,
-            vmp_v: None,
-            jmp_ma_per_cm2: None,
             limiting_junction: Some(limiting.into()),
-            current_mismatch: None,
-            reflected_ma_per_cm2: 0.0,
             junctions: junctions
                 .iter()
                 .map(|(name, gap_ev, current)| JunctionResult {
                     name: (*name).into(),
                     gap_ev: *gap_ev,
                     photocurrent_ma_per_cm2: *current,
-                    jsc_ma_per_cm2: *current,
-                    voc_v: 1.0,
-                    fill_factor: 0.8,
-                    power_w_per_m2: 100.0,
-                    voltage_at_mpp_v: 0.9,
-                    dark_current_radiative_a_per_cm2: 1e-20,
-                    dark_current_diffusion_a_per_cm2: None,
-                    dark_current_depletion_a_per_cm2: None,
-                    depletion_width_nm: None,
-                    collection_efficiency: None,
+                    ..JunctionResult::default()
                 })
                 .collect(),
-            layers: Vec::new(),
-            ledger_w_per_m2: Vec::new(),
             spectral: Spectral {
                 photon_current_ma_per_cm2_per_nm: vec![0.04; wavelength_nm.len()],
                 wavelength_nm,
                 eqe,
                 ..Spectral::default()
             },
-            curve: Curve::default(),
-            dark_curve: crate::results::Curve::default(),
-            junction_curves: Vec::new(),
+            ..ConditionResult::default()
         }
     }
 

@@ -21,6 +21,7 @@ pub enum Kind {
     Beyond,
     Heat,
     Tail,
+    Coupling,
     NotCollected,
     Mismatch,
     Recombined,
@@ -41,6 +42,7 @@ impl Kind {
             "beyond_data" => Self::Beyond,
             "heat" => Self::Heat,
             "tail" => Self::Tail,
+            "coupling" => Self::Coupling,
             "not_collected" => Self::NotCollected,
             "mismatch" => Self::Mismatch,
             "recombined" => Self::Recombined,
@@ -57,7 +59,7 @@ impl Kind {
         match self {
             Self::Fingers | Self::Reflected => 0,
             Self::Layer | Self::Passing | Self::Beyond => 1,
-            Self::Heat | Self::Tail => 2,
+            Self::Heat | Self::Tail | Self::Coupling => 2,
             Self::NotCollected => 3,
             Self::Mismatch | Self::Recombined | Self::Voltage | Self::Tunnel | Self::Series | Self::Other => {
                 4
@@ -184,6 +186,7 @@ fn entry(context: &Context<'_>, key: &Key, exact: Vec<f64>) -> Entry {
         Kind::Beyond => "outside the optical data".into(),
         Kind::Heat => format!("turned to heat in {of}"),
         Kind::Tail => format!("lifted from below the gap in {of}"),
+        Kind::Coupling => format!("turned to heat with light sent down to {of}"),
         Kind::NotCollected => format!("absorbed in {of}, not collected"),
         Kind::Mismatch => format!("current of {of} above the smallest"),
         Kind::Recombined => format!("recombined while working in {of}"),
