@@ -5,10 +5,19 @@
 
 use crate::source::Span;
 
+pub mod apply;
 mod excerpt;
+mod fingerprint;
+pub mod format;
 pub mod github;
+pub mod gitlab;
 pub mod json;
+pub mod junit;
+pub mod narrated;
 pub mod render;
+pub mod run;
+pub mod sarif;
+pub mod short;
 pub mod suggest;
 
 /// How much a finding weighs.

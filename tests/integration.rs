@@ -11,6 +11,7 @@ mod integration {
     mod designs;
     mod docs;
     mod downward;
+    mod formats;
     mod house_rules;
     mod materials;
     mod optics;
@@ -21,6 +22,7 @@ mod integration {
     mod physics_properties;
     mod robustness;
     mod rooms;
+    mod schema;
     mod sheet;
     mod sheet_cases;
     mod sheet_page;

@@ -166,6 +166,7 @@ pub(crate) fn build(entries: &[Entry], options: &Options, sheets: &Sheets, templ
 /// Says what was found and what went wrong.
 pub(crate) fn tell(round: &Round, telling: &Telling, console: &Console) -> Exit {
     let mut exit = telling.exit(&round.compiled, console);
+    exit = exit.max(telling.write(&round.compiled, console));
     console.message(&telling.text(&round.compiled, console, Stream::Err));
     for why in &round.broken_templates {
         exit = exit.max(console.trouble(&why.to_string(), &[]));

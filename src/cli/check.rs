@@ -3,16 +3,20 @@
 use clap::Args;
 
 use crate::cli::Exit;
+use crate::cli::apply::apply;
 use crate::cli::console::{Console, Stream};
-use crate::cli::findings::{Format, Telling, counted};
+use crate::cli::findings::{Telling, counted};
 use crate::cli::input::Input;
 use crate::compile::{Compiled, Options};
+use crate::finding::format::Format;
 use crate::source::shown;
 
 const EXAMPLES: &str = "\
 Examples:
   bandloom check stacks/*.stack
   bandloom check design.stack --format json
+  bandloom check design.stack --output sarif=a.sarif --output junit=a.xml
+  bandloom check design.stack --apply      put in the cures that are certain
   git show HEAD:stacks/sandpiper.stack | bandloom check -";
 
 /// Read, resolve and evaluate stack files, and report what is wrong with them
@@ -26,23 +30,43 @@ pub(crate) struct Check {
     /// Leave evaluation out, and with it the rules that need figures
     #[arg(long = "static")]
     no_evaluation: bool,
+    /// Put the cures that are certain into the files, say which, and check again
+    #[arg(long)]
+    apply: bool,
 }
+
+/// A cure may uncover another slip; more often than this the cures feed each other.
+const MOST_ROUNDS: usize = 8;
 
 /// Runs the command: findings on standard output.
 pub(crate) fn run(command: &Check, console: &Console) -> Exit {
     if let Some(misuse) = command.input.misuse() {
         return console.trouble(misuse, &["leave it out, or read from `-`"]);
     }
+    if command.apply && command.input.files.iter().any(|file| file.as_os_str() == "-") {
+        return console.trouble("`--apply` has no file to write what comes from `-` to", &["name the file"]);
+    }
     let options = Options { no_evaluation: command.no_evaluation, ..command.input.options() };
-    let all: Vec<Compiled> =
-        command.input.open(console).iter().map(|entry| entry.compile(&options)).collect();
+    let compile = || -> Vec<Compiled> {
+        command.input.open(console).iter().map(|entry| entry.compile(&options)).collect()
+    };
+    let mut all = compile();
+    let mut exit = Exit::Fine;
+    for _ in 0..if command.apply { MOST_ROUNDS } else { 0 } {
+        let round = apply(&all, console);
+        exit = exit.max(round.exit);
+        if round.done == 0 {
+            break;
+        }
+        all = compile();
+    }
     let mut text = command.telling.text(&all, console, Stream::Out);
-    if command.telling.format == Format::Human {
+    if matches!(command.telling.format, Format::Human | Format::Narrated) {
         for compiled in all.iter().filter(|compiled| compiled.unreadable.is_none()) {
             text.push_str(&closing(compiled, command.no_evaluation));
         }
     }
-    let exit = command.telling.exit(&all, console);
+    let exit = exit.max(command.telling.exit(&all, console)).max(command.telling.write(&all, console));
     exit.max(console.result(&text))
 }
 

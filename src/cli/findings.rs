@@ -1,22 +1,39 @@
 //! Findings on a stream, in the format asked for, and what they mean for the exit code.
 
-use clap::{Args, ValueEnum};
+use std::path::PathBuf;
 
+use clap::Args;
+
+use crate::check;
 use crate::cli::Exit;
 use crate::cli::console::{Console, Stream};
-use crate::compile::Compiled;
-use crate::finding::json::{AcceptedEntry, Document, Entry, Unreadable};
-use crate::finding::render::render;
-use crate::finding::{Severity, github};
+use crate::cli::output::write;
+use crate::compile::{Compiled, Stack};
+use crate::finding::Severity;
+use crate::finding::format::Format;
+use crate::finding::render::{Look, PLAIN_WIDTH};
+use crate::finding::run::{About, Asked, FileRun, Run};
+use crate::results::RequirementResult;
 use crate::source::shown;
+use crate::units::number;
+use crate::why;
 use crate::world::ReadError;
 
 /// How findings are told.
 #[derive(Args, Clone, Debug)]
 pub(crate) struct Telling {
-    /// How findings are written: framed for people, one JSON document, annotations on a pull request
-    #[arg(long, value_enum, default_value_t, value_name = "human|json|github", hide_possible_values = true)]
+    /// How findings are written: framed for people, one line each, in sentences for screen readers,
+    /// as JSON, as SARIF 2.1.0, as annotations of a pull or merge request, as JUnit XML
+    #[arg(
+        long,
+        value_parser = format,
+        default_value = "human",
+        value_name = "human|short|narrated|json|jsonl|sarif|github|gitlab|junit"
+    )]
     pub(crate) format: Format,
+    /// Write the findings to a file as well, as in `sarif=findings.sarif`; repeatable
+    #[arg(long, value_name = "FORMAT=PATH", value_parser = output)]
+    pub(crate) output: Vec<(Format, PathBuf)>,
     /// Warnings fail the run too
     #[arg(long)]
     pub(crate) strict: bool,
@@ -25,26 +42,29 @@ pub(crate) struct Telling {
     pub(crate) max_findings: Option<usize>,
 }
 
-/// `--format`.
-#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
-pub(crate) enum Format {
-    /// For people: the source framed
-    #[default]
-    Human,
-    /// One JSON document
-    Json,
-    /// Annotations on a pull request
-    Github,
-}
-
 const SHOWN_TO_PEOPLE: usize = 50;
 
+fn format(word: &str) -> Result<Format, String> {
+    Format::of_word(word).ok_or_else(|| {
+        let known: Vec<&str> = Format::ALL.iter().map(|(_, word)| *word).collect();
+        format!("write one of {}", known.join(", "))
+    })
+}
+
+fn output(text: &str) -> Result<(Format, PathBuf), String> {
+    match text.split_once('=') {
+        Some((word, path)) if !path.is_empty() => Ok((format(word)?, PathBuf::from(path))),
+        _ => Err("write FORMAT=PATH, as in `sarif=findings.sarif`".to_owned()),
+    }
+}
+
 impl Telling {
-    fn limit(&self) -> Option<usize> {
-        match (self.max_findings, self.format) {
-            (Some(0), _) | (None, Format::Json) => None,
-            (Some(limit), _) => Some(limit),
-            (None, Format::Human | Format::Github) => Some(SHOWN_TO_PEOPLE),
+    fn limit(&self, format: Format) -> Option<usize> {
+        match self.max_findings {
+            Some(0) => None,
+            Some(limit) => Some(limit),
+            None if format.is_for_people() || format == Format::Github => Some(SHOWN_TO_PEOPLE),
+            None => None,
         }
     }
 
@@ -69,68 +89,74 @@ impl Telling {
     }
 
     /// The findings of `all` in the format asked for; for people without a closing line.
-    /// Files that could not be read are told on standard error, except in JSON.
+    /// Files that could not be read are told on standard error, except where the format tells them.
     pub(crate) fn text(&self, all: &[Compiled], console: &Console, stream: Stream) -> String {
-        if self.format == Format::Json {
-            return self.json(all);
-        }
-        for compiled in all {
-            if let Some(why) = &compiled.unreadable {
-                unreadable(compiled, why, console);
-            }
-        }
-        let mut out = String::new();
-        let mut room = self.limit().unwrap_or(usize::MAX);
-        let mut left_out = 0;
-        for compiled in all {
-            for finding in compiled.findings.iter() {
-                if room == 0 {
-                    left_out += 1;
-                    continue;
-                }
-                room -= 1;
-                match self.format {
-                    Format::Github => out.push_str(&github::annotation(finding, &compiled.sources)),
-                    Format::Human | Format::Json => {
-                        out.push_str(&render(finding, &compiled.sources, console.look(stream)));
-                        out.push('\n');
-                    }
+        if !self.format.tells_unreadable() {
+            for compiled in all {
+                if let Some(why) = &compiled.unreadable {
+                    unreadable(compiled, why, console);
                 }
             }
         }
-        if left_out > 0 && self.format == Format::Human {
-            out.push_str(&format!("{left_out} more not shown; `--max-findings 0` shows all\n\n"));
-        } else if left_out > 0 {
-            out.push_str(&format!("::notice title=bandloom::{left_out} more findings not shown\n"));
-        }
-        out
+        self.format.text(&run_of(all, self.limit(self.format)), console.look(stream))
     }
 
-    fn json(&self, all: &[Compiled]) -> String {
-        let mut document = Document::new();
-        for compiled in all {
-            add(&mut document, compiled, self.limit());
+    /// Writes the files of `--output`, all findings in each unless a number was asked for.
+    pub(crate) fn write(&self, all: &[Compiled], console: &Console) -> Exit {
+        let look = Look { color: false, width: PLAIN_WIDTH };
+        let mut exit = Exit::Fine;
+        for (format, path) in &self.output {
+            let limit = self.max_findings.filter(|most| *most > 0);
+            let text = format.text(&run_of(all, limit), look);
+            if let Err(why) = write(path, text.as_bytes()) {
+                let text = format!("cannot write `{}`: {}", shown(&why.path), why.message);
+                exit = exit.max(console.trouble(&text, &["name another file with `--output`"]));
+            }
         }
-        // Strings and whole numbers only: this cannot fail.
-        let mut text = serde_json::to_string_pretty(&document).unwrap_or_default();
-        text.push('\n');
-        text
+        exit
     }
 }
 
-/// Adds what came of one file; at most `limit` findings stand in the document in all.
-fn add(document: &mut Document, compiled: &Compiled, limit: Option<usize>) {
-    if let Some(why) = &compiled.unreadable {
-        document.unreadable.push(Unreadable { file: shown(&compiled.path), message: why.worded() });
+/// What every format reads; at most `limit` findings stand in it.
+fn run_of(all: &[Compiled], limit: Option<usize>) -> Run<'_> {
+    let mut run = Run { about: Some(about), ..Run::default() };
+    let mut room = limit.unwrap_or(usize::MAX);
+    for compiled in all {
+        let findings: Vec<_> = compiled.findings.iter().take(room).collect();
+        room -= findings.len();
+        run.left_out += compiled.findings.0.len() - findings.len();
+        let accepted = compiled.stacks.iter().flat_map(|stack| &stack.accepted);
+        run.files.push(FileRun {
+            path: shown(&compiled.path),
+            sources: &compiled.sources,
+            findings,
+            accepted: accepted.map(|it| (&it.finding, it.because.as_str())).collect(),
+            asked: compiled.stacks.iter().flat_map(asked).collect(),
+            unreadable: compiled.unreadable.as_ref().map(ReadError::worded),
+        });
     }
-    let entry = |finding| Entry::of(finding, &compiled.sources);
-    let room = limit.map_or(usize::MAX, |limit| limit.saturating_sub(document.findings.len()));
-    document.findings.extend(compiled.findings.iter().take(room).map(entry));
-    document.left_out += compiled.findings.0.len().saturating_sub(room);
-    for accepted in compiled.stacks.iter().flat_map(|stack| &stack.accepted) {
-        let because = accepted.because.clone();
-        document.accepted.push(AcceptedEntry { finding: entry(&accepted.finding), because });
-    }
+    run
+}
+
+fn asked(stack: &Stack) -> Vec<Asked> {
+    let Some(results) = &stack.results else { return Vec::new() };
+    let one = |it: &RequirementResult| Asked {
+        stack: stack.design.name.value.clone(),
+        text: it.text.clone(),
+        condition: it.condition.clone(),
+        met: it.met,
+        value: if it.unit == "1" { number(it.value) } else { format!("{} {}", number(it.value), it.unit) },
+    };
+    results.requirements.iter().map(one).collect()
+}
+
+/// The rule's title and what its page reports.
+fn about(code: &str) -> About {
+    let page = why::page(code).unwrap_or_default();
+    let section = page.split("## What it reports").nth(1).and_then(|rest| rest.split("\n## ").next());
+    let words: Vec<&str> = section.unwrap_or_default().split_whitespace().collect();
+    let title = check::rule(code).map_or_else(String::new, |rule| rule.title.to_owned());
+    About { title, reports: words.join(" ") }
 }
 
 fn unreadable(compiled: &Compiled, why: &ReadError, console: &Console) {

@@ -49,10 +49,29 @@ pub(crate) fn write(path: &Path, bytes: &[u8]) -> Result<Wrote, WriteError> {
     if let Some(folder) = folder {
         fs::create_dir_all(folder).map_err(|why| WriteError::new(folder, &why))?;
     }
+    put(path, bytes, None)
+}
+
+/// As [`write`], for a file that is there: it keeps its permissions, and a link stays a link.
+///
+/// # Errors
+/// With the path that could not be written and why.
+pub(crate) fn replace(path: &Path, bytes: &[u8]) -> Result<Wrote, WriteError> {
+    let told = |why: std::io::Error| WriteError::new(path, &why);
+    let target = fs::canonicalize(path).map_err(told)?;
+    let permissions = fs::metadata(&target).map_err(told)?.permissions();
+    if permissions.readonly() {
+        return Err(told(ErrorKind::PermissionDenied.into()));
+    }
+    put(&target, bytes, Some(permissions))
+}
+
+fn put(path: &Path, bytes: &[u8], permissions: Option<fs::Permissions>) -> Result<Wrote, WriteError> {
     let name = path.file_name().map(|name| name.to_string_lossy().into_owned()).unwrap_or_default();
     let temporary = path.with_file_name(format!(".{name}.{}.part", std::process::id()));
     let written = fs::File::create(&temporary)
         .and_then(|mut file| file.write_all(bytes))
+        .and_then(|()| permissions.map_or(Ok(()), |it| fs::set_permissions(&temporary, it)))
         .and_then(|()| fs::rename(&temporary, path));
     written.map(|()| Wrote::New).map_err(|why| {
         // The first fault is the one to tell.

@@ -1,4 +1,5 @@
-//! Findings for programs: one document, with its own version.
+//! Findings for programs: one document, or one object a line, with their own version and a schema
+//! (`schemas/findings.schema.json`).
 //!
 //! Lines and columns count from 1, columns in characters; the end is exclusive. Byte offsets
 //! count from 0 in the UTF-8 text, a byte order mark left out. Keys keep their meaning once
@@ -7,6 +8,7 @@
 use serde::Serialize;
 
 use crate::finding::Finding;
+use crate::finding::run::Run;
 use crate::source::{Sources, Span, shown};
 
 /// Version of the findings document.
@@ -154,6 +156,65 @@ impl Document {
             left_out: 0,
         }
     }
+
+    /// The document of `run`.
+    pub fn of(run: &Run) -> Self {
+        let mut document = Self::new();
+        document.left_out = run.left_out;
+        for file in &run.files {
+            if let Some(message) = &file.unreadable {
+                document.unreadable.push(Unreadable { file: file.path.clone(), message: message.clone() });
+            }
+            let entry = |finding: &Finding| Entry::of(finding, file.sources);
+            document.findings.extend(file.findings.iter().map(|it| entry(it)));
+            document.accepted.extend(file.accepted.iter().map(|(finding, because)| AcceptedEntry {
+                finding: entry(finding),
+                because: (*because).to_owned(),
+            }));
+        }
+        document
+    }
+
+    /// As text, ended by a line break.
+    pub fn text(&self) -> String {
+        // Strings and whole numbers only: this cannot fail.
+        let mut text = serde_json::to_string_pretty(self).unwrap_or_default();
+        text.push('\n');
+        text
+    }
+}
+
+/// One line of the line format.
+#[derive(Serialize)]
+#[serde(tag = "kind", rename_all = "snake_case")]
+enum Line<'a> {
+    /// The first line.
+    Begin {
+        schema_version: u32,
+        tool: &'a str,
+    },
+    Finding(&'a Entry),
+    Accepted(&'a AcceptedEntry),
+    Unreadable(&'a Unreadable),
+    /// The last line: a reader that has it has everything.
+    End {
+        findings: usize,
+        left_out: usize,
+    },
+}
+
+/// `run` as one JSON object a line: `begin`, then what the document lists, then `end`.
+pub fn lines(run: &Run) -> String {
+    let document = Document::of(run);
+    let begin = Line::Begin { schema_version: SCHEMA_VERSION, tool: &document.tool };
+    let end = Line::End { findings: document.findings.len(), left_out: document.left_out };
+    let all = std::iter::once(begin)
+        .chain(document.findings.iter().map(Line::Finding))
+        .chain(document.accepted.iter().map(Line::Accepted))
+        .chain(document.unreadable.iter().map(Line::Unreadable))
+        .chain([end]);
+    // Strings and whole numbers only: this cannot fail.
+    all.map(|line| serde_json::to_string(&line).unwrap_or_default() + "\n").collect()
 }
 
 impl Default for Document {

@@ -27,6 +27,35 @@ pub fn near<'a>(word: &str, known: impl Iterator<Item = &'a str>) -> Option<Stri
     best.map(|(_, name)| name.to_owned())
 }
 
+/// Whether two words differ only by letters that look alike or by case: then nothing else was meant.
+pub fn alike(word: &str, other: &str) -> bool {
+    word != other && fold(word) == fold(other)
+}
+
+/// `word` with letters of other scripts that look like Latin ones replaced by those; `None` where
+/// it holds none, or one that looks like nothing.
+pub fn latin(word: &str) -> Option<String> {
+    let plain: Option<String> = word.chars().map(|c| if c.is_ascii() { Some(c) } else { twin(c) }).collect();
+    plain.filter(|plain| plain != word)
+}
+
+/// The Latin letter a Cyrillic, Greek or full-width one looks like in most fonts.
+fn twin(letter: char) -> Option<char> {
+    const TWINS: &[(&str, &str)] = &[
+        ("АВЕКМНОРСТХУІЈЅ", "ABEKMHOPCTXYIJS"),
+        ("асеорхуіјѕһԁԛԝ", "aceopxyijshdqw"),
+        ("ΑΒΕΖΗΙΚΜΝΟΡΤΥΧ", "ABEZHIKMNOPTYX"),
+        ("ονρυικα", "ovpuika"),
+    ];
+    if ('\u{ff01}'..='\u{ff5e}').contains(&letter) {
+        return char::from_u32(letter as u32 - 0xfee0);
+    }
+    TWINS.iter().find_map(|(from, to)| {
+        let at = from.chars().position(|c| c == letter)?;
+        to.chars().nth(at)
+    })
+}
+
 /// Letters that are mistaken for each other on a screen, and case, folded to one.
 fn fold(word: &str) -> String {
     word.chars()
@@ -81,6 +110,17 @@ mod tests {
         assert_eq!(near("gaas").as_deref(), Some("GaAs"));
         assert_eq!(near("perovskite"), None);
         assert_eq!(near("x"), None);
+    }
+
+    #[test]
+    fn letters_of_other_scripts_are_told_from_latin_ones() {
+        // Cyrillic А, о; Greek capital omicron and Ρ; full-width G.
+        assert_eq!(latin("АM1.5G").as_deref(), Some("AM1.5G"));
+        assert_eq!(latin("tоp").as_deref(), Some("top"));
+        assert_eq!(latin("ＧaInΡ").as_deref(), Some("GaInP"));
+        assert_eq!(latin("GaAs"), None);
+        assert_eq!(latin("größe"), None);
+        assert!(alike("AllnP", "AlInP") && alike("gaas", "GaAs") && !alike("GaA", "GaAs"));
     }
 
     #[test]

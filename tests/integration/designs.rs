@@ -114,6 +114,7 @@ pub(crate) fn empty() -> Design {
         vary_together: Vec::new(),
         measured: Vec::new(),
         accepts: Vec::new(),
+        file_accepts: Vec::new(),
         limits: Vec::new(),
         assumptions: Vec::new(),
         span: Span::default(),
