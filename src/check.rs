@@ -47,6 +47,8 @@ mod tunnel_missing;
 mod tunnel_peak;
 mod tunnel_polarity;
 
+pub use accept::Settled;
+pub(crate) use accept::unused_in_file;
 use junctions::JunctionFacts;
 
 /// Every rule, in the order they run.
@@ -183,6 +185,8 @@ pub struct Checked {
     pub findings: Findings,
     /// What the designer accepts, for the sheet.
     pub accepted: Vec<Accepted>,
+    /// Each of [`Design::file_accepts`], same order.
+    pub of_file: Vec<Settled>,
 }
 
 /// Runs every rule on `design`; rules that need figures are left out without `results`.

@@ -7,7 +7,7 @@ use std::path::{Path, PathBuf};
 
 use rayon::prelude::*;
 
-use crate::check::{self, Accepted};
+use crate::check::{self, Accepted, Settled};
 use crate::design::Design;
 use crate::evaluate;
 use crate::finding::{Findings, Severity};
@@ -36,6 +36,8 @@ pub struct Stack {
     pub findings: Findings,
     /// What was found and accepted, with the reason.
     pub accepted: Vec<Accepted>,
+    /// What became of each `accept` of the whole file.
+    pub of_file: Vec<Settled>,
 }
 
 /// Everything that came of one file.
@@ -98,6 +100,9 @@ pub fn compile(world: &dyn World, path: &Path, options: &Options) -> Compiled {
     let work: Vec<(Design, Findings)> = designs.into_iter().zip(own).collect();
     compiled.stacks =
         work.into_par_iter().map(|(design, early)| finish(design, early, &source, no_evaluation)).collect();
+    let settled: Vec<(&Design, &[Settled])> =
+        compiled.stacks.iter().map(|stack| (&stack.design, stack.of_file.as_slice())).collect();
+    compiled.findings.extend(check::unused_in_file(&settled));
     for stack in &compiled.stacks {
         compiled.findings.extend(stack.findings.clone());
     }
@@ -118,7 +123,8 @@ fn finish(design: Design, early: Findings, source: &str, no_evaluation: bool) ->
         before.extend(evaluated.findings);
         checked = check::check(&design, results.as_ref(), before);
     }
-    Stack { design, results, findings: checked.findings.sorted(), accepted: checked.accepted }
+    let check::Checked { findings, accepted, of_file } = checked;
+    Stack { design, results, findings: findings.sorted(), accepted, of_file }
 }
 
 /// Sorts findings of the shared passes to the stack whose text they lie in; the rest is shared.

@@ -63,9 +63,11 @@ pub struct Design {
     pub vary_together: Vec<Spanned<String>>,
     /// Measurements to lay over.
     pub measured: Vec<Measured>,
-    /// Rules silenced.
+    /// Rules silenced in this stack.
     pub accepts: Vec<Accept>,
-    /// Thresholds set.
+    /// Rules silenced in every stack of the file, each with a reason.
+    pub file_accepts: Vec<Accept>,
+    /// Thresholds set, those of the stack before those of the file.
     pub limits: Vec<Limit>,
     /// Every default that was used, one sentence each, for the sheet.
     pub assumptions: Vec<String>,

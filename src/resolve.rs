@@ -71,7 +71,7 @@ pub fn resolve(
     let first = sources.add(path, &text);
     let mut files = Files::new(world, sources);
     let read = load::files(&mut files, &mut scope, first);
-    let items = load::items(&mut scope, &read);
+    let items = load::items(&mut scope, &read, first);
     set(&mut scope, &mut files, overrides);
     scope.evaluate_file_names();
 

@@ -42,6 +42,7 @@ pub const PAGES: &[(&str, &str)] = &[
     ("material.table", include_str!("why/material.table.md")),
     ("name.cycle", include_str!("why/name.cycle.md")),
     ("name.duplicate", include_str!("why/name.duplicate.md")),
+    ("name.look-alike", include_str!("why/name.look-alike.md")),
     ("name.reserved", include_str!("why/name.reserved.md")),
     ("name.unknown", include_str!("why/name.unknown.md")),
     ("number.decimal-comma", include_str!("why/number.decimal-comma.md")),

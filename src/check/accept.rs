@@ -10,13 +10,15 @@ const CODE: &str = "accept.unused";
 /// Splits what was found into what stands and what is accepted.
 pub(super) fn sort_out(context: &Context, report: Report) -> Checked {
     let design = context.design;
-    let mut used = vec![false; design.accepts.len()];
+    // Those of the stack come first: they are closer.
+    let all: Vec<&Accept> = design.accepts.iter().chain(&design.file_accepts).collect();
+    let mut used = vec![false; all.len()];
     let mut checked = Checked::default();
     for found in report.found {
-        match design.accepts.iter().position(|accept| covers(design, accept, &found)) {
+        match all.iter().position(|accept| covers(design, accept, &found)) {
             Some(at) => {
                 used[at] = true;
-                let because = design.accepts[at].because.as_ref().map(|text| text.value.clone());
+                let because = all[at].because.as_ref().map(|text| text.value.clone());
                 let accepted = Accepted { finding: found.finding, because: because.unwrap_or_default() };
                 if !checked.accepted.contains(&accepted) {
                     checked.accepted.push(accepted);
@@ -25,8 +27,43 @@ pub(super) fn sort_out(context: &Context, report: Report) -> Checked {
             None => checked.findings.push(found.finding),
         }
     }
-    checked.findings.extend(unused(context, &used));
+    let file = design.accepts.len();
+    checked.findings.extend(unused(context, &used[..file]));
+    for accept in design.file_accepts.iter().filter(|accept| !super::limits::is_known(&accept.code.value)) {
+        checked.findings.push(super::limits::unknown_code(&accept.code));
+    }
+    let of_file = design.file_accepts.iter().zip(&used[file..]);
+    checked.of_file = of_file
+        .map(|(accept, used)| Settled { accept: accept.span, used: *used || !may_judge(context, accept) })
+        .collect();
     checked
+}
+
+/// Whether an `accept` of the whole file did something in one stack.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Settled {
+    /// The statement.
+    pub accept: Span,
+    /// Whether it took something out, or nobody can tell.
+    pub used: bool,
+}
+
+/// What an `accept` of the whole file says that took nothing out of any of its stacks.
+pub(crate) fn unused_in_file(designs: &[(&Design, &[Settled])]) -> Findings {
+    let Some((first, settled)) = designs.first() else { return Findings::new() };
+    let idle = first.file_accepts.iter().zip(settled.iter()).filter(|(_, own)| {
+        designs.iter().all(|(_, other)| other.iter().all(|it| it.accept != own.accept || !it.used))
+    });
+    let known = idle.filter(|(accept, _)| super::limits::is_known(&accept.code.value));
+    Findings(known.map(|(accept, _)| of_nothing(accept, "in any stack of the file", None)).collect())
+}
+
+/// Whether everything was looked at that `accept` could have silenced.
+fn may_judge(context: &Context, accept: &Accept) -> bool {
+    // What would have been found may lie where something could not be read, and without figures
+    // what only evaluation can find is still to come.
+    let evaluated = rule(&accept.code.value).is_some_and(|rule| !rule.needs_results);
+    !context.has_faults() && (context.results.is_some() || evaluated)
 }
 
 /// Whether `accept` speaks of this finding: same code, and the path given is what the finding is
@@ -73,25 +110,29 @@ fn unused(context: &Context, used: &[bool]) -> Findings {
             findings.push(super::limits::unknown_code(&accept.code));
             continue;
         }
-        // What would have been found may lie where something could not be read.
-        if context.has_faults() {
+        if !may_judge(context, accept) {
             continue;
         }
-        // Without figures, what only evaluation can find is still to come.
-        if context.results.is_none() && rule(code).is_none_or(|rule| rule.needs_results) {
-            continue;
-        }
-        let place = accept.on.as_ref().map_or_else(String::new, |on| format!(" on `{}`", on.value));
-        findings.push(
-            Finding::warning(CODE, format!("`{code}` is accepted{place}, but nothing of the kind is found"))
-                .at(accept.span, "accepts nothing")
-                .help(match &accept.on {
-                    Some(on) if place_of(design, &on.value).is_none() => {
-                        format!("`{}` names nothing in `{}`; correct the path", on.value, design.name.value)
-                    }
-                    _ => "remove the line".to_string(),
-                }),
-        );
+        let wrong = accept.on.as_ref().filter(|on| place_of(design, &on.value).is_none());
+        let help = wrong
+            .map(|on| format!("`{}` names nothing in `{}`; correct the path", on.value, design.name.value));
+        findings.push(of_nothing(accept, "", help));
     }
     findings
+}
+
+/// An `accept` that takes nothing out; without `help` it can go.
+fn of_nothing(accept: &Accept, whole: &str, help: Option<String>) -> Finding {
+    let code = &accept.code.value;
+    let place = accept.on.as_ref().map_or_else(String::new, |on| format!(" on `{}`", on.value));
+    let whole = if whole.is_empty() { String::new() } else { format!(" {whole}") };
+    let finding = Finding::warning(
+        CODE,
+        format!("`{code}` is accepted{place}, but nothing of the kind is found{whole}"),
+    )
+    .at(accept.span, "accepts nothing");
+    match help {
+        Some(help) => finding.help(help),
+        None => finding.help("remove the line").fix(accept.span, "", true),
+    }
 }

@@ -72,7 +72,10 @@ impl<'a> Trouble<'a> {
         let Some(cure) = cure else {
             return finding.help(self.form());
         };
-        let finding = finding.help(cure.help);
+        let mut finding = finding.help(cure.help);
+        if let Some((code, message)) = cure.instead {
+            (finding.code, finding.message) = (code, message);
+        }
         let Some(edit) = cure.edit else { return finding };
         let start = span.start as usize;
         let at = Span::new(span.source, start + edit.range.start, start + edit.range.end);

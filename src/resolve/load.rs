@@ -74,6 +74,8 @@ pub(super) struct Items<'s> {
     pub(super) stacks: Table<'s, Stack>,
     /// Materials and alloys in order, with whether they are an alloy.
     pub(super) chemistry: Vec<(&'s Named, bool)>,
+    /// `accept` and `limit` outside of every stack: for all of the file.
+    pub(super) for_all: Vec<&'s syntax::Statement>,
 }
 
 /// Items of one kind: in order, and by name.
@@ -132,8 +134,9 @@ fn plural(kind: &str) -> String {
 /// Words that open an item.
 const ITEMS: &[&str] = &["alloy", "condition", "let", "material", "part", "spectrum", "stack", "use"];
 
-/// Sorts the items of `files` and binds the file-level names.
-pub(super) fn items<'s>(scope: &mut Scope, files: &'s [syntax::File]) -> Items<'s> {
+/// Sorts the items of `files` and binds the file-level names. What holds for every stack is taken
+/// from `first` only, the file whose stacks are resolved.
+pub(super) fn items<'s>(scope: &mut Scope, files: &'s [syntax::File], first: SourceId) -> Items<'s> {
     let mut items = Items::default();
     for item in files.iter().flat_map(|file| &file.items) {
         match item {
@@ -156,7 +159,15 @@ pub(super) fn items<'s>(scope: &mut Scope, files: &'s [syntax::File]) -> Items<'
             Item::Stack(it) => {
                 items.stacks.add(scope, "stack", it, |it| &it.name);
             }
-            Item::Stray(statement) => stray(scope, statement),
+            Item::Stray(statement) => match statement {
+                syntax::Statement::Accept(syntax::Accept { span, .. })
+                | syntax::Statement::Limit(syntax::Limit { span, .. })
+                    if span.source == first =>
+                {
+                    items.for_all.push(statement);
+                }
+                other => stray(scope, other),
+            },
         }
     }
     items
@@ -173,7 +184,11 @@ fn stray(scope: &mut Scope, statement: &syntax::Statement) {
                     )
                     .at(property.name.span, format!("did you mean `{near}`?"))
                     .help(format!("write `{near}`"))
-                    .fix(property.name.span, near, false),
+                    .fix(
+                        property.name.span,
+                        near.clone(),
+                        names::alike(&property.name.value, &near),
+                    ),
                 ),
                 None => scope.report(
                     Finding::error(

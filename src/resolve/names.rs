@@ -1,7 +1,7 @@
 //! Names that nothing is called by.
 
 use crate::finding::Finding;
-pub use crate::finding::suggest::near;
+pub use crate::finding::suggest::{alike, near};
 use crate::source::Spanned;
 
 /// A finding for a word that names nothing of `kind`, with the near name and the edit where one
@@ -17,11 +17,12 @@ pub fn unknown<'a>(
         Some(near) => {
             // A span two bytes longer than its text includes the quotes, which the edit keeps.
             let quoted = (name.span.end - name.span.start) as usize == name.value.len() + 2;
+            let sure = alike(&name.value, &near);
             let text = if quoted { format!("\"{near}\"") } else { near };
             finding
                 .at(name.span, format!("did you mean `{text}`?"))
                 .help(format!("write `{text}`"))
-                .fix(name.span, text, false)
+                .fix(name.span, text, sure)
         }
         None => finding.at(name.span, format!("an unknown {kind}")).help(otherwise),
     }

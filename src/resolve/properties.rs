@@ -48,7 +48,7 @@ pub(super) fn known(scope: &mut Scope, property: &Property, place: &str, allowed
         Some(near) => finding
             .at(name.span, format!("did you mean `{near}`?"))
             .help(format!("write `{near}`"))
-            .fix(name.span, near, false),
+            .fix(name.span, near.clone(), names::alike(&name.value, &near)),
         None => finding.at(name.span, "an unknown word here").help(format!("{place} takes {list}")),
     };
     scope.report(finding);

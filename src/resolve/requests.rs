@@ -33,6 +33,18 @@ pub(super) fn requests(
             _ => {}
         }
     }
+    for statement in resolver.items.for_all.clone() {
+        resolver.scope.enter(0);
+        match statement {
+            Statement::Accept(it) => {
+                if reasoned(resolver, it) {
+                    design.file_accepts.push(it.clone());
+                }
+            }
+            Statement::Limit(it) => limit(resolver, design, it),
+            _ => {}
+        }
+    }
     resolver.scope.close(here);
 }
 
@@ -233,6 +245,12 @@ fn measured(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::M
 }
 
 fn accept(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Accept) {
+    reasoned(resolver, it);
+    design.accepts.push(it.clone());
+}
+
+/// Whether it says why; if not, that is reported.
+fn reasoned(resolver: &mut Resolver<'_, '_>, it: &syntax::Accept) -> bool {
     let given = it.because.as_ref().is_some_and(|reason| !reason.value.trim().is_empty());
     if !given {
         let code = &it.code.value;
@@ -242,7 +260,7 @@ fn accept(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Acc
                 .help("write why at its end, such as `because \"graded buffer relaxes it\"`"),
         );
     }
-    design.accepts.push(it.clone());
+    given
 }
 
 fn limit(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Limit) {

@@ -59,6 +59,7 @@ fn empty(stack: &Stack) -> Design {
         vary_together: Vec::new(),
         measured: Vec::new(),
         accepts: Vec::new(),
+        file_accepts: Vec::new(),
         limits: Vec::new(),
         assumptions: Vec::new(),
         span: stack.span,

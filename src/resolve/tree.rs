@@ -348,7 +348,7 @@ pub(super) fn near_or<'a>(
         Some(near) => finding
             .at(name.span, format!("did you mean `{near}`?"))
             .help(format!("write `{near}`"))
-            .fix(name.span, near, false),
+            .fix(name.span, near.clone(), names::alike(&name.value, &near)),
         None => finding.at(name.span, "an unknown word here").help(otherwise),
     }
 }

@@ -2,7 +2,7 @@
 
 use std::ops::Range;
 
-use crate::finding::suggest::near;
+use crate::finding::suggest::{latin, near};
 use crate::parse::expected::{Trouble, first_word, is_invisible, is_word, names};
 use crate::parse::grammar::{self, Rule};
 use crate::syntax::DUTIES;
@@ -15,6 +15,8 @@ pub(super) struct Cure {
     pub(super) help: String,
     /// The edit, where there is one.
     pub(super) edit: Option<Edit>,
+    /// A code and a message of its own, where the trouble is not one of syntax.
+    pub(super) instead: Option<(&'static str, String)>,
 }
 
 /// An edit after which the statement reads.
@@ -71,7 +73,7 @@ impl Trouble<'_> {
             }
         });
         let edit = Some(Edit { range, replacement: replacement.to_owned(), safe });
-        Some(Cure { label: label.to_owned(), help, edit })
+        Some(Cure { label: label.to_owned(), help, edit, instead: None })
     }
 
     fn token_end(&self) -> usize {
@@ -111,6 +113,7 @@ fn odd_sign(trouble: &Trouble<'_>) -> Option<Cure> {
                 label: "comments begin with `//`".to_owned(),
                 help: "write `//` instead of `#`".to_owned(),
                 edit: Some(edit),
+                instead: None,
             })
         }
         '.' if trouble.token.len() > 1 => {
@@ -126,11 +129,25 @@ fn odd_sign(trouble: &Trouble<'_>) -> Option<Cure> {
 
 /// `größe 3`
 fn foreign_letter(trouble: &Trouble<'_>) -> Option<Cure> {
-    let letter = trouble.token.chars().find(|c| c.is_alphabetic() && !c.is_ascii())?;
+    let token = trouble.token;
+    let letter = token.chars().find(|c| c.is_alphabetic() && !c.is_ascii())?;
+    if let Some(plain) = latin(token) {
+        let sign = latin(&letter.to_string())?;
+        return Some(Cure {
+            label: format!("`{letter}` here is U+{:04X}, not the letter `{sign}`", letter as u32),
+            help: format!("write `{plain}` with Latin letters"),
+            edit: Some(Edit { range: trouble.at..trouble.token_end(), replacement: plain, safe: true }),
+            instead: Some((
+                "name.look-alike",
+                format!("`{token}` holds `{letter}`, which only looks like the letter `{sign}`"),
+            )),
+        });
+    }
     Some(Cure {
         label: format!("`{letter}` cannot be part of a name"),
         help: "write names with the letters a to z, digits and `_`".to_owned(),
         edit: None,
+        instead: None,
     })
 }
 
@@ -265,6 +282,7 @@ fn late_phrase(trouble: &Trouble<'_>) -> Option<Cure> {
         label: "belongs to the material".to_owned(),
         help: format!("write `{}` right {place} the material", trouble.token),
         edit: None,
+        instead: None,
     })
 }
 
@@ -294,5 +312,6 @@ fn missing_block(trouble: &Trouble<'_>) -> Option<Cure> {
         label: "its block is missing".to_owned(),
         help: format!("write `{} {{ … }}`", trouble.text.trim()),
         edit: Some(Edit { range: at..at, replacement: " { }".to_owned(), safe: false }),
+        instead: None,
     })
 }

@@ -7,6 +7,7 @@ use crate::materials::alloy::{Composition, Family};
 use crate::materials::elements::site;
 use crate::materials::formula::{self, FormulaError, Part, Share};
 use crate::resolve::materials::{Definition, Library};
+use crate::resolve::names;
 use crate::resolve::quantities::Scope;
 use crate::source::{Span, Spanned};
 use crate::units::number;
@@ -322,7 +323,10 @@ fn unreadable(name: &Spanned<String>, error: &FormulaError, library: &Library) -
         FormulaError::Unreadable(_) => None,
     });
     match meant {
-        Some(meant) => finding.help(format!("write `{meant}`")).fix(name.span, meant, false),
+        Some(meant) => {
+            let sure = names::alike(text, &meant);
+            finding.help(format!("write `{meant}`")).fix(name.span, meant, sure)
+        }
         None => finding.help("write chemical symbols and fractions, such as `Ga0.51In0.49P`"),
     }
 }
