@@ -11,6 +11,7 @@ pub mod collection;
 pub mod dark;
 pub mod depletion;
 pub mod drift;
+pub mod equilibrium;
 pub mod recycling;
 pub mod region;
 pub mod statistics;

@@ -120,6 +120,10 @@ fn finish(design: Design, early: Findings, source: &str, no_evaluation: bool) ->
     if !(no_evaluation || hole || checked.findings.has_errors()) {
         let evaluated = evaluate::evaluate(&design, source);
         results = evaluated.value;
+        // Nothing is judged by it; only reports show it.
+        if let Some(results) = &mut results {
+            results.bands = evaluate::bands::band_diagram(&design);
+        }
         before.extend(evaluated.findings);
         checked = check::check(&design, results.as_ref(), before);
     }

@@ -1,5 +1,6 @@
 //! [`Design`] → [`Results`]: the physics rooms, called in order for each condition.
 
+pub mod bands;
 mod collect;
 mod condition;
 mod coupling;
@@ -62,6 +63,7 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
         conditions,
         layers: layers::layer_results(design),
         growth: growth::growth_result(design),
+        bands: None,
         gap_map: gap_map::gap_map(design),
         requirements: Vec::new(),
         free_values: free_values(design),

@@ -30,6 +30,8 @@ pub struct Results {
     pub layers: Vec<LayerResult>,
     /// The layers as they grow; `None` without a wafer or a lattice.
     pub growth: Option<GrowthResult>,
+    /// Band edges in the dark without bias; `None` where no layer has a gap and an affinity.
+    pub bands: Option<BandDiagram>,
     /// Gaps and lattices of the layers beside the families they are taken from, at 25 °C; `None`
     /// without a wafer that has a lattice.
     pub gap_map: Option<GapMap>,
@@ -460,6 +462,48 @@ pub struct GrowthStep {
     pub critical_thickness_nm: Option<f64>,
     /// People and Bean, the upper estimate.
     pub critical_thickness_upper_nm: Option<f64>,
+}
+
+/// Band edges through the stack, in the dark, without bias.
+#[derive(Clone, Debug, Serialize)]
+pub struct BandDiagram {
+    /// `equilibrium`: bent by doping, energies over the Fermi level; `flat_band`: unbent, energies
+    /// over the vacuum level, where a layer lacks densities of states or a permittivity.
+    pub model: String,
+    /// 25 °C.
+    pub temperature_k: f64,
+    /// Semiconductor layers that have a gap and an affinity, sunward first.
+    pub layers: Vec<BandLayer>,
+    /// Steps at the faces of layers that collect.
+    pub steps: Vec<BandStep>,
+}
+
+/// Band edges through one layer.
+#[derive(Clone, Debug, Serialize)]
+pub struct BandLayer {
+    /// Path.
+    pub name: String,
+    /// From its sunward face to the other.
+    pub depth_nm: Vec<f64>,
+    /// Conduction edge.
+    pub conduction_ev: Vec<f64>,
+    /// Valence edge.
+    pub valence_ev: Vec<f64>,
+}
+
+/// What one kind of carrier meets on its way out of a layer that collects.
+#[derive(Clone, Debug, Serialize)]
+pub struct BandStep {
+    /// Path of the layer that collects.
+    pub from: String,
+    /// Path of its neighbour.
+    pub to: String,
+    /// `electrons`, `holes`
+    pub carrier: String,
+    /// How much energy the step takes; negative where the way is downhill.
+    pub barrier_ev: f64,
+    /// Whether these are the carriers to be kept in here: the neighbour carries the others off.
+    pub keeps_in: bool,
 }
 
 /// Gap against mismatch to the wafer, at 25 °C.

@@ -15,6 +15,7 @@ use crate::report::view::Table;
 
 pub use label::{Anchor, Label, LabelBox};
 
+pub mod bands;
 pub mod curves;
 pub mod dark;
 pub mod eqe;

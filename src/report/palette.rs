@@ -163,6 +163,10 @@ fn rules() -> Vec<Rule> {
     rule("cq", "fill:none;stroke-width:1.2;stroke-dasharray:4 3", &|t| format!("stroke:{}", t.quiet));
     rule("fam", "fill:none;stroke-width:1.1;stroke-linejoin:round", &|t| format!("stroke:{}", t.quiet));
     rule("famx", "fill:none;stroke-width:1.1;stroke-dasharray:4 3", &|t| format!("stroke:{}", t.quiet));
+    rule("edge", "fill:none;stroke-width:1.8;stroke-linejoin:round", &|t| format!("stroke:{}", t.ink));
+    rule("holds", "fill:none;stroke-width:4", &|t| format!("stroke:{}", t.ink));
+    rule("blocks", "fill:none;stroke-width:4", &|t| format!("stroke:{}", t.fail));
+    rule("level", "fill:none;stroke-width:.9;stroke-dasharray:7 2 1.5 2", &|t| format!("stroke:{}", t.quiet));
     rule("wash", "", &|t| format!("fill:{}", t.wash));
     rule("box", "fill:none;stroke-width:.8;stroke-dasharray:1.5 2.5", &|t| format!("stroke:{}", t.quiet));
     rule("tick", "fill:none;stroke-width:1.5", &|t| format!("stroke:{}", t.ink));
@@ -187,6 +191,7 @@ fn rules() -> Vec<Rule> {
         rule(&format!("u{n}"), "fill:none;stroke-width:1.1", &|t| format!("stroke:{}", colours(t).on_fill));
         rule(&format!("g{n}"), "fill:none;stroke-width:.8", &|t| format!("stroke:{}", colours(t).on_fill));
         rule(&format!("hj{n}"), "fill:none;stroke-width:1.6", &|t| format!("stroke:{}", colours(t).line));
+        rule(&format!("t{n}"), "fill-opacity:.22", &|t| format!("fill:{}", colours(t).fill));
         rule(&format!("mk{n}"), "stroke-width:1", &|t| format!("fill:{};stroke:{}", colours(t).fill, t.ink));
     }
     rules

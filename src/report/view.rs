@@ -13,6 +13,7 @@ use crate::report::number::{celsius, short};
 use crate::report::text::{Text, visible};
 
 pub mod account;
+pub mod bands;
 pub mod cautions;
 pub mod dark;
 pub mod electrical;
@@ -62,6 +63,8 @@ pub struct Sheet {
     pub ledger: Section,
     /// Conditions side by side.
     pub conditions: Section,
+    /// Band edges through the stack.
+    pub bands: Section,
     /// Models used and their blind spots.
     pub models: Section,
     /// Defaults that were used.
@@ -119,6 +122,7 @@ impl Sheet {
             &self.curves,
             &self.ledger,
             &self.conditions,
+            &self.bands,
             &self.models,
             &self.assumptions,
             &self.cautions,
@@ -142,6 +146,7 @@ impl Sheet {
             &mut self.curves,
             &mut self.ledger,
             &mut self.conditions,
+            &mut self.bands,
             &mut self.models,
             &mut self.assumptions,
             &mut self.cautions,
@@ -191,6 +196,7 @@ pub fn sheet(input: &ReportInput<'_>) -> Option<Sheet> {
         curves: electrical::curves(&context),
         ledger: account::section(&context),
         conditions: electrical::conditions(&context),
+        bands: bands::bands(&context),
         models: sources::models(&context, &mut sources),
         assumptions: assumptions(&context),
         cautions: cautions::cautions(&context),

@@ -157,6 +157,31 @@ fn families_stand_where_the_handbook_has_them() {
     assert!(base.mismatch.abs() < 1e-6, "{}", base.mismatch);
 }
 
+/// At rest the Fermi level is one: the built-in voltage of a junction is what both neutral sides
+/// differ by, `kT ln(N_D N_A/n_i²)`; for gallium arsenide n_i is 2.1e6 /cm3 at 300 K (Blakemore,
+/// J. Appl. Phys. 53, R123 (1982), from memory), some 1.6e6 at 298 K. Heavy doping lifts the Fermi
+/// level into the band, which adds to it.
+#[test]
+fn band_edges_bend_by_the_built_in_voltage() {
+    let case = &cases("stacks/sandpiper.stack", SANDPIPER)[0];
+    let bands = case.input().results.bands.as_ref().expect("every layer has its data");
+    assert_eq!(bands.model, "equilibrium");
+    let conduction = |name: &str, depth: f64| {
+        let layer = bands.layers.iter().find(|layer| layer.name == name).expect(name);
+        assert_eq!(layer.depth_nm.len(), layer.conduction_ev.len());
+        let after = layer.depth_nm.iter().position(|z| *z >= depth).expect("inside").max(1);
+        let (z, ev) = (&layer.depth_nm[after - 1..], &layer.conduction_ev[after - 1..]);
+        ev[0] + (depth - z[0]) / (z[1] - z[0]) * (ev[1] - ev[0])
+    };
+    // Far from every face: two micrometres into the base, half way through the emitter.
+    let lift = conduction("bottom.base", 2000.0) - conduction("bottom.emitter", 50.0);
+    let kt = 0.025_692_6;
+    let boltzmann = kt * (2e18_f64 * 1e17 / (1.6e6_f64 * 1.6e6)).ln();
+    assert!((boltzmann - 0.01..boltzmann + 0.08).contains(&lift), "{lift} V for {boltzmann}");
+    // Each junction is closed by its window and its BSF.
+    assert_eq!(bands.steps.iter().filter(|step| step.keeps_in && step.barrier_ev > 0.1).count(), 4);
+}
+
 /// Numbers become words in one place; a template that got a float could print `0.30000000000000004`.
 #[test]
 fn the_view_holds_no_float() {
@@ -231,6 +256,7 @@ fn the_numbers_file_has_its_keys_and_ten_digits() {
             "layers",
             "growth",
             "requirements",
+            "bands",
             "gap_map",
             "free_values",
             "sensitivities",
