@@ -68,11 +68,19 @@ pub struct BowingLaw {
 pub struct Bowing {
     /// The mixed elements; the first is the one a slope counts.
     pub pair: [String; 2],
-    /// The element of the other sublattice.
+    /// The element of the other sublattice; empty where both are shared.
     pub with: String,
-    /// By quantity: `direct`, `x`, `l`, or a name of
+    /// By quantity: `direct`, `x`, `l`, [`LATTICE`], or a name of
     /// [`constants::NAMES`](crate::materials::constants::NAMES).
     pub laws: BTreeMap<&'static str, BowingLaw>,
+}
+
+/// The quantity under which a family's lattice constant bows, Å.
+pub const LATTICE: &str = "lattice";
+
+/// Fractions of the second sublattice; all of it where both are shared.
+fn partners(fractions: &[f64]) -> &[f64] {
+    if fractions.is_empty() { &[1.0] } else { fractions }
 }
 
 /// How a family answers to light.
@@ -93,7 +101,8 @@ pub struct Family {
     pub name: String,
     /// One line for lists.
     pub about: String,
-    /// Elements of the group III and the group V sublattice, in the order of the label.
+    /// Elements of the group III and the group V sublattice, in the order of the label; silicon and
+    /// germanium share both, and stand on the first with none on the second.
     pub sites: [Vec<String>; 2],
     /// End members, `[group III][group V]`.
     pub members: Vec<Vec<Arc<Compound>>>,
@@ -130,14 +139,15 @@ impl Family {
     fn weighted(&self, composition: &Composition) -> Vec<(f64, &Material)> {
         let mut all = Vec::new();
         for (row, three) in self.members.iter().zip(&composition[0]) {
-            for (member, five) in row.iter().zip(&composition[1]) {
+            for (member, five) in row.iter().zip(partners(&composition[1])) {
                 all.push((three * five, &*member.material));
             }
         }
         all
     }
 
-    /// Relaxed lattice constant in Å by Vegard's rule at `temperature_k`.
+    /// Relaxed lattice constant in Å at `temperature_k`: Vegard's rule, less the bowing of
+    /// families that have one.
     ///
     /// `None` where an end member has no lattice.
     pub fn lattice_constant(&self, composition: &Composition, temperature_k: f64) -> Option<f64> {
@@ -151,6 +161,7 @@ impl Family {
             sum.a300_angstrom += weight * own.a300_angstrom;
             sum.slope_angstrom_per_k += weight * own.slope_angstrom_per_k;
         }
+        sum.a300_angstrom -= self.bowing(composition, LATTICE);
         Some(sum)
     }
 
@@ -169,8 +180,9 @@ impl Family {
                     }
                     weights += pair;
                     let share = (1.0 + fractions[first] - fractions[second]) / 2.0;
-                    let others = self.sites[1 - site].iter().zip(&composition[1 - site]);
-                    for (other, fraction) in others {
+                    let others = self.sites[1 - site].iter().map(String::as_str);
+                    let others = others.chain(self.sites[1 - site].is_empty().then_some(""));
+                    for (other, fraction) in others.zip(partners(&composition[1 - site])) {
                         let names = [&elements[first], &elements[second]];
                         let law = self.bowing_law(names, other, quantity, share);
                         sum += pair * fraction * share * (1.0 - share) * law;
@@ -317,7 +329,9 @@ impl Family {
                 mass += fraction * atomic_weight(element)?;
             }
         }
-        zinc_blende_density(mass, self.lattice(composition)?.a300_angstrom)
+        // A diamond crystal has the elements of its one list on both sublattices.
+        let times = if self.sites[1].is_empty() { 2.0 } else { 1.0 };
+        zinc_blende_density(times * mass, self.lattice(composition)?.a300_angstrom)
     }
 
     fn origins_at(&self, composition: &Composition, ordered_to_ev: Option<f64>) -> Vec<Origin> {

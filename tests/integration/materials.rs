@@ -6,6 +6,7 @@ use bandloom::materials::{GapKind, Material, OriginKind, SharedMaterial, library
 use bandloom::resolve::materials::{Definition, Library, entries, look_up, with_gap};
 use bandloom::resolve::quantities::Scope;
 
+mod families;
 mod files;
 mod optics;
 mod others;

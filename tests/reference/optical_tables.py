@@ -200,6 +200,153 @@ def gasb_table():
     write("GaSb", rows)
 
 
+def insb_table():
+    """InSb: Aspnes & Studna 1983 to 826.6 nm, then Adachi 1989 with k times 1.44 fading to 1 at 0.9 eV;
+    Urbach tail of 10 meV below the gap of 0.174 eV."""
+    model = tabulated("main/InSb/nk/Adachi.yml")
+    rows = thinned("InSb")
+    edge = varshni(0.235, 3.2e-4, 170)
+    fade_from, fade_to = HC / rows[-1][0], 0.9
+    up = rows[-1][2] / interpolate(model, rows[-1][0], 2)
+    print(f"InSb: k of the model times {up:.3f}")
+    for nm in (880, 950, 1030, 1130, 1240, 1380, 1550, 1780, 2070, 2480, 3000, 3500, 4000, 4800, 5600, 6400, 6900):
+        fade = 1 + (up - 1) * min(max((HC / nm - fade_to) / (fade_from - fade_to), 0), 1)
+        rows.append((nm, interpolate(model, nm, 1), interpolate(model, nm, 2) * fade))
+    at_edge = interpolate(model, HC / edge, 2)
+    for below in (0.0, 0.01, 0.02, 0.03):
+        nm = HC / (edge - below)
+        rows.append((nm, interpolate(model, nm, 1), at_edge * math.exp(-below / 0.010)))
+    write("InSb", rows)
+
+
+def alsb_table():
+    """AlSb: Zollner et al. 1989, k = 0 below the X gap of 1.616 eV; n beyond 885 nm from Adachi's formula
+    of 1987 scaled to meet."""
+    rows = [(nm, n, k if HC / nm >= 1.616 else 0.0) for nm, n, k in thinned("AlSb")]
+    e0 = varshni(2.386, 4.2e-4, 140)
+    end = rows[-1]
+    scale = end[1] / adachi(HC / end[0], e0, 0.676, 59.68, -9.53)
+    print(f"AlSb: n of the formula times {scale:.4f}")
+    rows.append((HC / 1.616, interpolate(thinned("AlSb"), HC / 1.616, 1), 0.0))
+    for nm in (950, 1050, 1200, 1400, 1700, 2100):
+        rows.append((nm, scale * adachi(HC / nm, e0, 0.676, 59.68, -9.53), 0.0))
+    write("AlSb", rows)
+
+
+def algasb_table(percent):
+    """AlGaSb: Ferrini et al. 1998 from 0.03 eV above the direct gap on (nearer their points lie too far
+    apart); the edge form of GaSb below, met there; the indirect part is the family's own."""
+    x = percent / 100
+    path = f"other/semiconductor alloys/AlSb-GaSb/nk/Ferrini-{percent}.yml"
+    measured = [row for row in tabulated(path) if row[0] >= 275]
+    gasb, alsb = varshni(0.812, 4.17e-4, 140), varshni(2.386, 4.2e-4, 140)
+    e0 = x * alsb + (1 - x) * gasb - x * (1 - x) * (-0.044 + 1.22 * x)
+    rows = [row for row in measured if HC / row[0] > e0 + 0.03]
+    join = rows[-1]
+    at_join, over = alpha(join[0], join[2]), HC / join[0] - e0
+    start = min(3.5e3, at_join)
+    print(f"AlGaSb {percent}: E0 {e0:.3f} eV, {at_join:.3g} /cm at {HC / join[0]:.2f} eV")
+    for step in (0.05, 0.02, 0.01, 0.0):
+        if step < over:
+            nm = HC / (e0 + step)
+            rows.append((nm, interpolate(measured, nm, 1), k_of(nm, start + (at_join - start) * step / over)))
+    for below in (0.01, 0.02, 0.035, 0.06, 0.1, 0.14, 0.17):
+        nm = HC / (e0 - below)
+        per_cm = start * math.exp(-below / 0.010)
+        rows.append((nm, interpolate(measured, nm, 1), k_of(nm, per_cm) if per_cm >= 1e-3 else 0.0))
+    rows += [(nm, n, 0.0) for nm, n, k in measured if HC / nm < e0 - 0.18]
+    write(f"AlGaSb_{percent:02d}", rows)
+
+
+def sige_table(percent):
+    """SiGe of `percent` silicon: Jellison et al. 1993 while k is above 0.1 (its accuracy is 0.003 to 0.02).
+    Below, ln alpha and n between those of germanium and silicon, weighted by composition, at the energy
+    that lies as far between the lowest gap and the point where k is 0.1; both bent to meet."""
+    x = percent / 100
+    measured = thinned(f"SiGe_{percent}")
+    ge, si = table_of("Ge"), thinned("joined_Si")
+
+    def where(rows):
+        for left, right in zip(rows, rows[1:]):
+            if left[2] >= 0.1 > right[2] and HC / left[0] < 3.2:
+                share = (left[2] - 0.1) / (left[2] - right[2])
+                return HC / (left[0] + share * (right[0] - left[0]))
+        return HC / measured[-1][0]
+
+    low, cut = sige_gap(x), where(measured)
+    rows = [row for row in measured if HC / row[0] > cut + 0.01]
+    ends = [(0.661, where(ge), ge, 1 - x), (1.1245, where(si), si, x)]
+    n_cut, k_cut = (interpolate(measured, min(HC / cut, measured[-1][0]), column) for column in (1, 2))
+
+    def model(share):
+        """n and ln alpha at a share of the way from the gap to the cut; n alone below the gap."""
+        n, log = 0.0, 0.0
+        for gap, top, table, weight in ends:
+            energy = gap + share * (top - gap) if share >= 0 else gap * (1 + share)
+            nm = min(HC / energy, table[-1][0])
+            n += weight * interpolate(table, nm, 1)
+            log += weight * math.log(max(alpha(nm, interpolate(table, nm, 2)), 1e-3))
+        return n, log
+
+    n_top, log_top = model(1.0)
+    steps = (1.0, 0.9, 0.8, 0.7, 0.6, 0.5, 0.4, 0.3, 0.2, 0.15, 0.1, 0.05, 0.02, 0.0)
+    for share in steps:
+        n, log = model(share)
+        nm = HC / (low + share * (cut - low))
+        # What is left of the step to the measurement fades towards the gap.
+        per_cm = math.exp(log + share * (math.log(alpha(HC / cut, k_cut)) - log_top))
+        rows.append((nm, n + share * (n_cut - n_top), k_of(nm, per_cm)))
+    for below in (0.02, 0.05, 0.08, 0.12):
+        at_gap = math.exp(model(0.0)[1])
+        nm = HC / (low - below)
+        per_cm = at_gap * math.exp(-below / 0.010)
+        rows.append((nm, model(-below / low)[0], k_of(nm, per_cm) if per_cm >= 1e-3 else 0.0))
+    rows.append((2400, model(-0.4)[0], 0.0))
+    print(f"SiGe {percent}: gap {low:.3f}, cut {cut:.3f} eV, n off by {n_cut - n_top:+.3f}, "
+          f"alpha {alpha(HC / cut, k_cut):.3g} against {math.exp(log_top):.3g} /cm")
+    write(f"SiGe_{percent:02d}", rows)
+
+
+def table_of(name):
+    """A table already written to OUT."""
+    with open(OUT / f"{name}.csv") as file:
+        return [tuple(float(cell) for cell in row) for row in list(csv.reader(file))[1:]]
+
+
+def sige_gap(silicon):
+    """Lowest gap at 300 K: ends of the handbooks, X bowing 0.206 eV, L at 2.010 eV in silicon."""
+    x = 1 - silicon
+    return min(1.1245 * silicon + 0.85 * x - 0.206 * x * silicon, 2.010 * silicon + 0.661 * x)
+
+
+def inganas_table():
+    """InGaAsN of 1.0 eV: the table of GaAs with photon energy between 0 and E0 + 1.51 eV (E1) mapped so
+    that E0 falls from 1.424 to 1.0 eV while E1 stays; k below the edge moved rigidly. A model."""
+    parent = thinned("joined_GaAs")
+    old, new, e1 = 1.4225, 1.0, 2.93
+    rows = []
+    for nm, n, k in parent:
+        energy = HC / nm
+        if energy >= e1:
+            moved = energy
+        elif energy >= old:
+            moved = new + (energy - old) * (e1 - new) / (e1 - old)
+        elif energy >= old - 0.15:
+            moved = energy - old + new
+        else:
+            moved = energy * (new - 0.15) / (old - 0.15)
+        rows.append((HC / moved, n, k))
+    write("InGaAsN", rows)
+
+
+def germanium_table():
+    """Ge: Nunley et al. 2016; beyond the join every third point of the database to 2.48 um."""
+    rows = thinned("joined_Ge")
+    far = [row for row in tabulated("main/Ge/nk/Nunley.yml") if row[0] > rows[-1][0] + 5]
+    rows += [(nm, n, k if alpha(nm, k) >= 1e-3 else 0.0) for nm, n, k in far]
+    write("Ge", rows)
+
+
 def zns_table():
     """ZnS: Querry 1987 below 395 nm, Amotchkina et al. 2020 above."""
     ultraviolet = [row for row in tabulated("main/ZnS/nk/Querry.yml") if 255 <= row[0] < 395]
@@ -214,7 +361,15 @@ inas_table()
 gasb_table()
 zns_table()
 gainp_table()
-for name in ("GaAs", "InP", "Ge", "Si"):
+insb_table()
+alsb_table()
+for percent in (10, 30, 50):
+    algasb_table(percent)
+germanium_table()
+for percent in (11, 20, 28, 47, 65, 85, 98):
+    sige_table(percent)
+inganas_table()
+for name in ("GaAs", "InP", "Si"):
     write(name, thinned(f"joined_{name}"))
 for name, source in {
     "TiO2": "TiO2", "Al2O3": "Al2O3", "Ta2O5": "Ta2O5", "HfO2": "HfO2", "Nb2O5": "Nb2O5", "ITO": "ITO_Konig",

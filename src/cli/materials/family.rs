@@ -37,7 +37,9 @@ pub(super) fn sheet(family: &Family, on: Option<&Material>, width: usize) -> Str
             .collect();
         if !laws.is_empty() {
             let [first, second] = &bowing.pair;
-            rows.push(("bowing", format!("{first}–{second} with {}: {}", bowing.with, laws.join(", "))));
+            // Silicon and germanium share both sublattices.
+            let with = if bowing.with.is_empty() { String::new() } else { format!(" with {}", bowing.with) };
+            rows.push(("bowing", format!("{first}–{second}{with}: {}", laws.join(", "))));
         }
     }
     let named: Vec<Material> = match on {

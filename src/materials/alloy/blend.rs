@@ -4,8 +4,9 @@
 //! the critical points E0, E1, E2, and dielectric functions (never n and k) are averaged there:
 //! Snyder, Woollam, Alterovitz and Johs, J. Appl. Phys. 68, 5925 (1990).
 //!
-//! Below the direct gap a direct relative keeps its own tail, moved rigidly; an indirect one, whose
-//! table there shows its own X gap, gives an Urbach tail instead. Where the X gap of the target lies
+//! Below the direct gap a direct relative keeps its own tail, moved rigidly, for 0.15 eV or half its
+//! gap; further down, and at once for an indirect one, whose table there shows its own X gap, an
+//! Urbach tail follows. Where the X gap of the target lies
 //! below its direct gap, a square law starts from it. Below both, nothing is absorbed.
 
 use std::sync::Arc;
@@ -59,8 +60,21 @@ pub struct Shifted {
     pub moves_ev: [(f64, f64); 2],
     /// `ε − 1` is scaled by `1 + a x + b x²`.
     pub scale: (f64, f64),
+    /// The compound that takes over as the fraction of an element grows.
+    pub end: Option<End>,
     /// Absorption below the direct gap.
     pub tail: Tail,
+}
+
+/// A compound at the end of a family of which a parent table is moved.
+#[derive(Clone, Debug, PartialEq)]
+pub struct End {
+    /// All of its sublattice in the compound.
+    pub element: String,
+    /// The fraction from which on the compound takes over, linearly.
+    pub from: f64,
+    /// Its table.
+    pub sample: Sample,
 }
 
 /// One source of the dielectric function at the target.
@@ -78,10 +92,10 @@ struct Source<'a> {
 impl Blend {
     /// The optics of `family` at `composition` with the bands in force there.
     pub fn at(&self, family: &Family, composition: &Composition, bands: &Bands) -> Optics {
-        let Some(e0) = direct_gap(bands) else { return Optics::None };
+        let Some(e0) = edge(bands) else { return Optics::None };
         let mut sources = Vec::new();
         for (weight, sample) in self.weighted(family, composition) {
-            let own = sample.e0_ev.or_else(|| direct_gap(&family.bands(&sample.composition)));
+            let own = sample.e0_ev.or_else(|| edge(&family.bands(&sample.composition)));
             let Some(own) = own else { return Optics::None };
             let points = [own, sample.critical_ev.0, sample.critical_ev.1];
             let is_direct = indirect_gap(&family.bands(&sample.composition)).is_none();
@@ -89,7 +103,8 @@ impl Blend {
         }
         let mean = |at: usize| sources.iter().map(|source| source.weight * source.points[at]).sum::<f64>();
         let target = [e0, mean(1), mean(2)];
-        table(&sources, target, indirect_gap(bands), self.tail)
+        let is_direct = bands.gamma.is_some();
+        table(&sources, target, (indirect_gap(bands), is_direct), self.tail)
     }
 
     /// The samples that speak for a composition, with weights that sum to 1: its neighbours along
@@ -128,16 +143,35 @@ impl Shifted {
         let x = if first + second > 0.0 { first / (first + second) } else { 0.0 };
         let polynomial = |(a, b): (f64, f64)| a * x + b * x * x;
         let [_, e1, e2] = self.parent_ev;
-        let target = [e0, e1 + polynomial(self.moves_ev[0]), e2 + polynomial(self.moves_ev[1])];
-        let source = Source {
-            weight: 1.0,
+        let mut target = [e0, e1 + polynomial(self.moves_ev[0]), e2 + polynomial(self.moves_ev[1])];
+        let parent = |weight: f64| Source {
+            weight,
             table: &self.table,
             points: self.parent_ev,
             is_direct: true,
             scale: 1.0 + polynomial(self.scale),
         };
-        table(&[source], target, indirect_gap(bands), self.tail)
+        let mut sources = vec![parent(1.0)];
+        if let Some(End { element, from, sample }) = &self.end {
+            let share = ((fraction(element) - from) / (1.0 - from)).clamp(0.0, 1.0);
+            let (e1, e2) = sample.critical_ev;
+            let Some(own) = sample.e0_ev else { return Optics::None };
+            if share > 0.0 {
+                target[1] += share * (e1 - target[1]);
+                target[2] += share * (e2 - target[2]);
+                let points = [own, e1, e2];
+                let end = Source { weight: share, table: &sample.table, points, is_direct: true, scale: 1.0 };
+                sources = vec![parent(1.0 - share), end];
+            }
+        }
+        table(&sources, target, (indirect_gap(bands), true), self.tail)
     }
+}
+
+/// Where the table starts to absorb: the direct gap, or the lowest one where no direct gap is
+/// known, as in SiGe.
+fn edge(bands: &Bands) -> Option<f64> {
+    direct_gap(bands).or_else(|| bands.gap(ROOM_TEMPERATURE_K).map(|gap| gap.ev))
 }
 
 fn direct_gap(bands: &Bands) -> Option<f64> {
@@ -163,8 +197,14 @@ fn mapped(energy: f64, target: &[f64; 6], source: &[f64; 6]) -> f64 {
     source[at - 1] + share * (source[at] - source[at - 1])
 }
 
-/// Evaluates the mix on the common grid.
-fn table(sources: &[Source<'_>], target: [f64; 3], x_gap: Option<f64>, tail: Tail) -> Optics {
+/// Evaluates the mix on the common grid. `x_gap` is the X gap where it lies below E0, and the flag
+/// says whether E0 is the direct gap.
+fn table(
+    sources: &[Source<'_>],
+    target: [f64; 3],
+    (x_gap, edge_is_direct): (Option<f64>, bool),
+    tail: Tail,
+) -> Optics {
     let gaps = sources.iter().map(|source| source.points[0]).chain([target[0]]);
     let rigid = 0.15_f64.min(gaps.fold(f64::INFINITY, f64::min) / 2.0);
     let own = knots(target, rigid);
@@ -178,8 +218,11 @@ fn table(sources: &[Source<'_>], target: [f64; 3], x_gap: Option<f64>, tail: Tai
         let (mut real, mut imaginary) = (0.0, 0.0);
         for (source, map) in sources.iter().zip(&maps) {
             let (n, mut k) = source.table.at(EV_M / mapped(energy, &own, map).max(1e-3), 0.0);
-            if energy < e0 && !source.is_direct {
-                k = source.table.at(EV_M / source.points[0], 0.0).1 * ((energy - e0) / tail.urbach_ev).exp();
+            // Where the map is no longer rigid it would stretch the tail of a relative with a small gap.
+            let from = if source.is_direct { rigid } else { 0.0 };
+            if energy < e0 - from {
+                k = source.table.at(EV_M / (source.points[0] - from), 0.0).1
+                    * ((energy - (e0 - from)) / tail.urbach_ev).exp();
             }
             real += source.weight * (1.0 + source.scale * (n * n - k * k - 1.0));
             imaginary += source.weight * source.scale * 2.0 * n * k;
@@ -211,7 +254,7 @@ fn table(sources: &[Source<'_>], target: [f64; 3], x_gap: Option<f64>, tail: Tai
         ns.push(n);
         ks.push(k);
     }
-    Optics::Table(Arc::new(IndexTable { wavelength_m, n: ns, k: ks, gap_ev: Some(e0), edge_is_direct: true }))
+    Optics::Table(Arc::new(IndexTable { wavelength_m, n: ns, k: ks, gap_ev: Some(e0), edge_is_direct }))
 }
 
 /// Wavelengths of a blended table, m: round numbers that many materials share, and points close
@@ -226,8 +269,9 @@ fn grid(e0: f64, x_gap: Option<f64>, urbach_ev: f64) -> Vec<f64> {
     let onset = x_gap.map(|x| [0.0, 0.02, 0.05, 0.1].map(|step| x + step));
     let energies = above.into_iter().chain(below).chain(onset.into_iter().flatten());
     let mut all: Vec<f64> = rounds.map(|nm| nm * 1e-9).collect();
-    all.extend(energies.filter(|&energy| energy > 0.1).map(|energy| EV_M / energy));
-    all.retain(|wavelength| (279e-9..=4e-6).contains(wavelength));
+    // Of narrow gaps too, so that the end of the table, which is held beyond, is dark.
+    all.extend(energies.filter(|&energy| energy > 0.02).map(|energy| EV_M / energy));
+    all.retain(|&wavelength| wavelength >= 279e-9);
     all.sort_by(f64::total_cmp);
     // Points closer than 0.01 nm are one point.
     all.dedup_by(|a, b| (*a - *b).abs() < 1e-11);

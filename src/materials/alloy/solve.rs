@@ -221,20 +221,33 @@ fn between(from: &Composition, to: &Composition, t: f64) -> Composition {
 }
 
 /// The point of a line with the lattice constant wanted. One sublattice varies along a line, so
-/// Vegard's rule is linear on it.
+/// Vegard's rule is linear on it; where the lattice bows, the root is bracketed by the ends.
 fn on_lattice(
     family: &Family,
     (from, to): &(Composition, Composition),
     (angstrom, temperature_k): (f64, f64),
 ) -> Result<Composition, Unsolved> {
-    let at = |composition| family.lattice_constant(composition, temperature_k).ok_or(Unsolved::NoData);
+    let at = |composition: &Composition| {
+        family.lattice_constant(composition, temperature_k).ok_or(Unsolved::NoData)
+    };
     let (start, end) = (at(from)?, at(to)?);
     let t = (angstrom - start) / (end - start);
     // One part in 1e9 of the way is far below what any growth can set.
     if !(-1e-9..=1.0 + 1e-9).contains(&t) {
         return Err(Unsolved::Lattice(start.min(end), start.max(end)));
     }
-    Ok(between(from, to, t.clamp(0.0, 1.0)))
+    let linear = between(from, to, t.clamp(0.0, 1.0));
+    if (at(&linear)? - angstrom).abs() < 1e-9 {
+        return Ok(linear);
+    }
+    let (mut low, mut high) = (0.0, 1.0);
+    for _ in 0..60 {
+        let middle = (low + high) / 2.0;
+        let composition = between(from, to, middle);
+        let below = at(&composition)? < angstrom;
+        if below == (start < end) { low = middle } else { high = middle }
+    }
+    Ok(between(from, to, (low + high) / 2.0))
 }
 
 /// The matched compositions of a family with two free fractions, by the fraction of its first
@@ -359,12 +372,16 @@ fn edges(family: &Family) -> Vec<Composition> {
     let corner = |row: usize, column: usize| {
         let mut corner = [vec![0.0; family.sites[0].len()], vec![0.0; family.sites[1].len()]];
         corner[0][row] = 1.0;
-        corner[1][column] = 1.0;
+        if let Some(slot) = corner[1].get_mut(column) {
+            *slot = 1.0;
+        }
         corner
     };
     let rows = 0..family.sites[0].len();
+    // Group IV has no second list.
+    let columns = family.sites[1].len().max(1);
     let corners: Vec<Composition> = rows
-        .flat_map(|row| (0..family.sites[1].len()).map(move |column| (row, column)))
+        .flat_map(|row| (0..columns).map(move |column| (row, column)))
         .map(|(row, column)| corner(row, column))
         .collect();
     let steps = 20;

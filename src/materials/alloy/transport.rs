@@ -7,7 +7,7 @@
 //! never leaves the range of its neighbours. Alloy scattering enters only through the measured
 //! compositions.
 
-use crate::materials::alloy::{Composition, Family};
+use crate::materials::alloy::{Composition, Family, partners};
 use crate::materials::carriers::{Carriers, MobilityLaw, PerCarrier};
 use crate::materials::{Origin, OriginKind};
 
@@ -70,15 +70,15 @@ impl Family {
                 for b in a + 1..elements.len() {
                     let product = fractions[a] * fractions[b];
                     weights += product;
-                    for (other, fraction) in composition[1 - site].iter().enumerate() {
+                    for (other, fraction) in partners(&composition[1 - site]).iter().enumerate() {
                         let weight = product * fraction;
                         if weight <= 0.0 {
                             continue;
                         }
                         let first = (1.0 + fractions[a] - fractions[b]) / 2.0;
-                        let with = &self.sites[1 - site][other];
+                        let with = self.sites[1 - site].get(other).map_or("", String::as_str);
                         let stated = self.carriers.ternaries.iter().find(|ternary| {
-                            ternary.with == *with
+                            ternary.with == with
                                 && ternary.pair.contains(&elements[a])
                                 && ternary.pair.contains(&elements[b])
                         });

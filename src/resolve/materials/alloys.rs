@@ -5,7 +5,7 @@ use std::sync::Arc;
 
 use crate::finding::Finding;
 use crate::materials::alloy::transport::FamilyCarriers;
-use crate::materials::alloy::{Bowing, BowingLaw, Compound, Family, FamilyIndex, Ordering};
+use crate::materials::alloy::{Bowing, BowingLaw, Compound, Family, FamilyIndex, LATTICE, Ordering};
 use crate::materials::elements::{Site, site};
 use crate::materials::{Origin, formula};
 use crate::resolve::materials::blocks::Reader;
@@ -65,11 +65,12 @@ impl Reader<'_> {
         let (sites, members) = self.grid(item, members)?;
         if let Some(group) = find("bowing") {
             let pair: Vec<&Vec<String>> = sites.iter().filter(|site| site.len() == 2).collect();
-            let with: Vec<&Vec<String>> = sites.iter().filter(|site| site.len() == 1).collect();
+            let with: Vec<&Vec<String>> = sites.iter().filter(|site| site.len() < 2).collect();
             if let ([pair], [with]) = (&pair[..], &with[..]) {
                 let laws = self.bowing(group, pair);
                 let pair = [pair[0].clone(), pair[1].clone()];
-                bowings.push(Bowing { pair, with: with[0].clone(), laws });
+                let with = with.first().cloned().unwrap_or_default();
+                bowings.push(Bowing { pair, with, laws });
             } else {
                 self.scope.report(
                     Finding::error("material.statement", "`bowing` belongs to a ternary")
@@ -215,7 +216,8 @@ impl Reader<'_> {
             let place = match site(element) {
                 Some(Site::Three) => 0,
                 Some(Site::Five) => 1,
-                _ => continue,
+                Some(Site::Four) => 0,
+                None => continue,
             };
             if !sites[place].contains(element) {
                 sites[place].push(element.clone());
@@ -238,7 +240,14 @@ impl Reader<'_> {
             .map(|three| sites[1].iter().map(|five| find(three, five).cloned()).collect())
             .collect();
         let freedom = sites[0].len() + sites[1].len();
-        if let (Some(rows), 3..=5) = (rows, freedom) {
+        if let (Some(rows), 3..=5, false) = (rows, freedom, sites[1].is_empty()) {
+            return Some((sites, rows));
+        }
+        // Elements of group IV share both sublattices: each member is one element.
+        let is_four = sites[0].iter().all(|element| site(element) == Some(Site::Four));
+        let element = |name: &String| members.iter().find(|member| member.material.name == *name).cloned();
+        let rows: Option<Vec<_>> = sites[0].iter().map(|name| element(name).map(|it| vec![it])).collect();
+        if let (Some(rows), true, 2) = (rows, is_four && sites[1].is_empty(), sites[0].len()) {
             return Some((sites, rows));
         }
         self.scope.report(
@@ -264,9 +273,11 @@ impl Reader<'_> {
                 "l" => ("l", Kind::ENERGY),
                 "split_off" => ("split_off", Kind::ENERGY),
                 "electron" => ("mass.electron", Kind::PLAIN),
+                "lattice" => (LATTICE, Kind::ANGSTROM),
                 "cite" => continue,
                 _ => {
-                    self.unknown_in("bowing", property, &["direct", "x", "l", "split_off", "electron"]);
+                    let known = ["direct", "x", "l", "split_off", "electron", "lattice"];
+                    self.unknown_in("bowing", property, &known);
                     continue;
                 }
             };

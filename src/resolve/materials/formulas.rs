@@ -66,7 +66,7 @@ pub(super) fn composition_of(
         return None;
     }
     let mut composition = [Vec::new(), Vec::new()];
-    for (at, elements) in family.sites.iter().enumerate() {
+    for (at, elements) in family.sites.iter().enumerate().filter(|(_, elements)| !elements.is_empty()) {
         let times = family.times(at);
         let per_atom = |share: &Share| Share {
             element: share.element.clone(),

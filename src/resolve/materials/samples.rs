@@ -4,7 +4,7 @@ use std::sync::Arc;
 
 use crate::finding::Finding;
 use crate::materials::ROOM_TEMPERATURE_K;
-use crate::materials::alloy::blend::{Blend, Sample, Shifted, Tail};
+use crate::materials::alloy::blend::{Blend, End, Sample, Shifted, Tail};
 use crate::materials::alloy::{Composition, Compound, Family, FamilyIndex};
 use crate::materials::optics::{IndexTable, Optics};
 use crate::resolve::materials::blocks::Reader;
@@ -23,12 +23,14 @@ impl Reader<'_> {
         let (mut samples, mut parent) = (Vec::new(), None);
         let mut tail = Tail { urbach_ev: 0.01, indirect_per_m_ev2: 0.0 };
         let (mut along, mut moves_ev, mut scale) = (None, [(0.0, 0.0); 2], (0.0, 0.0));
+        let mut end = None;
         for property in self.inside(group) {
             match property.name.value.as_str() {
                 "sample" => samples.extend(self.sample(property, family)),
                 "samples" => samples.extend(self.member_samples(property, family)),
                 "parent" => parent = self.parent(property),
                 "along" => along = self.along(property),
+                "end" => end = self.end(property, family),
                 "move_e1" => moves_ev[0] = self.pair(property, Kind::ENERGY).unwrap_or_default(),
                 "move_e2" => moves_ev[1] = self.pair(property, Kind::ENERGY).unwrap_or_default(),
                 "scale" => scale = self.pair(property, Kind::PLAIN).unwrap_or_default(),
@@ -39,8 +41,8 @@ impl Reader<'_> {
                 "cite" => {}
                 _ => {
                     let known = [
-                        "sample", "samples", "parent", "along", "move_e1", "move_e2", "scale", "urbach",
-                        "indirect",
+                        "sample", "samples", "parent", "along", "move_e1", "move_e2", "scale", "end",
+                        "urbach", "indirect",
                     ];
                     self.unknown_in("index", property, &known);
                 }
@@ -48,7 +50,7 @@ impl Reader<'_> {
         }
         self.origin(group, "index");
         if let (Some((table, parent_ev)), Some(along)) = (parent, along) {
-            return FamilyIndex::Shifted(Shifted { table, parent_ev, along, moves_ev, scale, tail });
+            return FamilyIndex::Shifted(Shifted { table, parent_ev, along, moves_ev, scale, end, tail });
         }
         if samples.is_empty() {
             return FamilyIndex::None;
@@ -61,7 +63,8 @@ impl Reader<'_> {
     }
 
     /// `sample Al 0.198 "AlGaAs_198.csv" { gap 1.7 eV; e1 3.1 eV; e2 4.7 eV }`, or
-    /// `sample Ga 1 GaP` for a material with a table and critical points of its own.
+    /// `sample Ga 1 GaP` for a material with a table and critical points of its own, or with the
+    /// points of this family: `sample Si 0 Ge { gap 0.66 eV; e1 2.33 eV; e2 4.25 eV }`.
     fn sample(&mut self, property: &Property, family: &Family) -> Option<Sample> {
         let mut arguments = Arguments::of(property);
         let element = arguments.word()?;
@@ -82,14 +85,21 @@ impl Reader<'_> {
         composition[site][at] = fraction;
         if let Some(name) = arguments.word() {
             let member = self.member(name)?;
-            return self.sample_of(&member, composition);
+            let sample = self.sample_of(&member, composition, property.block.is_none());
+            if property.block.is_none() {
+                return sample;
+            }
+            let (e0_ev, critical_ev) = self.points(property)?;
+            return sample.map(|sample| Sample { e0_ev, critical_ev, ..sample });
         }
         let file = arguments.text()?;
         let mut table = self.table(file)?;
         let (e0_ev, critical_ev) = self.points(property)?;
         // Below its gap a table is read logarithmically.
-        let own = family.bands(&composition).gamma.map(|gamma| gamma.at(ROOM_TEMPERATURE_K));
-        table.gap_ev = e0_ev.or(own);
+        let bands = family.bands(&composition);
+        let direct = bands.gamma.as_ref().map(|gamma| gamma.at(ROOM_TEMPERATURE_K));
+        let lowest = bands.gap(ROOM_TEMPERATURE_K).map(|gap| gap.ev);
+        table.gap_ev = e0_ev.or(direct).or(lowest);
         Some(Sample { composition, table: Arc::new(table), e0_ev, critical_ev })
     }
 
@@ -100,22 +110,31 @@ impl Reader<'_> {
         arguments.end(self.scope);
         let corner = |len: usize, at: usize| {
             let mut fractions = vec![0.0; len];
-            fractions[at] = 1.0;
+            if let Some(own) = fractions.get_mut(at) {
+                *own = 1.0;
+            }
             fractions
         };
         let mut samples = Vec::new();
         for (row, members) in family.members.iter().enumerate() {
             for (column, member) in members.iter().enumerate() {
                 let composition = [corner(family.sites[0].len(), row), corner(family.sites[1].len(), column)];
-                samples.extend(self.sample_of(member, composition));
+                samples.extend(self.sample_of(member, composition, true));
             }
         }
         samples
     }
 
-    fn sample_of(&mut self, member: &Compound, composition: Composition) -> Option<Sample> {
+    /// The table of an end member, with its own critical points where `needs_points`.
+    fn sample_of(
+        &mut self,
+        member: &Compound,
+        composition: Composition,
+        needs_points: bool,
+    ) -> Option<Sample> {
         let material = &member.material;
-        if let (Optics::Table(table), Some(critical_ev)) = (&material.optics, member.critical_ev) {
+        let critical_ev = member.critical_ev.or((!needs_points).then_some((0.0, 0.0)));
+        if let (Optics::Table(table), Some(critical_ev)) = (&material.optics, critical_ev) {
             let e0_ev = table.gap_ev;
             return Some(Sample { composition, table: table.clone(), e0_ev, critical_ev });
         }
@@ -173,6 +192,17 @@ impl Reader<'_> {
         let second = arguments.word()?.value.clone();
         arguments.end(self.scope);
         Some([first, second])
+    }
+
+    /// `end In 0.49 InP`: from that fraction of indium on InP takes over.
+    fn end(&mut self, property: &Property, family: &Family) -> Option<End> {
+        let mut arguments = Arguments::of(property);
+        let element = arguments.word()?.value.clone();
+        let from = quantity(&mut arguments, "end", Kind::FRACTION, self.scope)?;
+        let member = self.member(arguments.word()?)?;
+        arguments.end(self.scope);
+        let sample = self.sample_of(&member, family.corner(), true)?;
+        (family.position(&element).is_some() && from < 1.0).then_some(End { element, from, sample })
     }
 
     /// A linear and a quadratic coefficient.
