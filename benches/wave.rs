@@ -1,8 +1,9 @@
 //! The wave-optics kernel: time by layer and wavelength, against the machine and against Python.
 //!
-//! `cargo bench --bench wave`. Medians of repeated runs on one thread; the other programs on the
-//! machine show in the load printed with them. With a Python that has `numpy` and `tmm` the same
-//! stack is timed there by `benches/reference/thin_films.py` and the ratios are printed.
+//! `cargo bench --bench wave`, on one thread. What is compared is measured in turns, so that other
+//! work on the machine falls on all alike (its load is printed), and the least of the turns is
+//! given. With a Python that has `numpy` and `tmm` the same stack is timed there, in the same
+//! turns, by `benches/reference/thin_films.py`.
 
 #![expect(
     clippy::print_stdout,
@@ -11,61 +12,134 @@
 )]
 
 use std::hint::black_box;
-use std::process::Command;
+use std::io::{BufRead, BufReader, Write};
+use std::process::{Child, Command, Stdio};
 use std::sync::Arc;
 use std::time::Instant;
 
 use bandloom::optics::wave::slopes::Merit;
-use bandloom::optics::wave::{Index, Sheet, Stack};
+use bandloom::optics::wave::{Index, Kernel, Sheet, Stack};
 
 const LAYERS: usize = 15;
 const WAVELENGTHS: usize = 2000;
 
-/// Additions and multiplications per layer and wavelength, counted in the source: sine and cosine
-/// 42, decay 33, fields 35, flux and gain up 8, down 3.
-const OPERATIONS: f64 = 121.0;
+/// Turns; the least of each row over them is printed.
+const TURNS: usize = 41;
+
+/// Additions and multiplications per layer and wavelength, counted in the source, a fused one as
+/// two: decay 25, sine and cosine 34, their arguments and product 6, fields 26, flux and gain up
+/// 8, down 3.
+const OPERATIONS: f64 = 102.0;
+
+const KERNELS: [(&str, Kernel); 4] = [
+    ("widest registers", Kernel::Widest),
+    ("AVX2", Kernel::Avx2),
+    ("baseline (SSE2)", Kernel::Baseline),
+    ("fused", Kernel::Fused),
+];
+
+/// Least ratio to the Python library and to numpy, and least efficiency, of each kernel on a
+/// machine with AVX-512.
+const TARGETS: [Option<(f64, f64, f64)>; 4] =
+    [Some((3300.0, 12.0, 0.25)), Some((2000.0, 8.0, 0.25)), None, Some((5500.0, 20.0, 0.40))];
 
 fn main() {
     if std::env::args().any(|argument| argument == "--test") {
         return;
     }
     println!("load average before: {}", load());
-    let cells = (LAYERS * WAVELENGTHS) as f64;
+    println!(
+        "registers: {}; {LAYERS} layers x {WAVELENGTHS} wavelengths, one thread, R, T and every A",
+        widest()
+    );
     let films = stack(LAYERS, WAVELENGTHS, 0.0);
-    let evaluation = median(41, || drop(black_box(films.solve())));
-    let peak = peak_operations();
-    println!("{LAYERS} layers x {WAVELENGTHS} wavelengths, one thread, R, T and every A");
-    let nanoseconds = 1e9 * evaluation / cells;
-    println!("evaluation        {nanoseconds:8.2} ns per layer and wavelength");
-    println!("peak              {:8.1} GFLOP/s (multiply, then add; not fused)", peak * 1e-9);
-    println!("efficiency        {:8.3}", OPERATIONS / (nanoseconds * 1e-9 * peak));
+    let by_kernel = KERNELS.map(|(_, kernel)| films.clone().with_kernel(usable(kernel)));
     let oblique = stack(LAYERS, WAVELENGTHS, 0.7);
-    let both = median(21, || drop(black_box(oblique.solve())));
-    println!("40 degrees, s + p {:8.2} ns per layer and wavelength", 1e9 * both / cells);
     let merit = Merit {
         light: vec![1.0; WAVELENGTHS],
         reflected: 1.0,
         transmitted: 0.5,
         absorbed: (0..LAYERS).map(|layer| layer as f64).collect(),
     };
-    let gradient = median(21, || drop(black_box(films.solve_with_gradient(&merit))));
-    println!("gradient          {:8.2} evaluations", gradient / evaluation);
-    let slopes = median(21, || drop(black_box(films.solve_with_slopes())));
-    println!("every slope       {:8.2} evaluations", slopes / evaluation);
+    let one = films.change_of(7);
+    let mut python = Python::start();
+    let (mut times, mut peaks) = (vec![Vec::new(); 11], [0.0f64; 2]);
+    for _ in 0..TURNS {
+        for (row, stack) in by_kernel.iter().enumerate() {
+            times[row].push(seconds(|| drop(black_box(stack.solve()))));
+        }
+        times[4].push(seconds(|| drop(black_box(oblique.solve()))));
+        times[5].push(seconds(|| drop(black_box(films.solve_with_gradient(&merit)))));
+        times[6].push(seconds(|| drop(black_box(films.solve_with_slopes()))));
+        times[7].push(seconds(|| drop(black_box(one.solve(black_box(251e-9))))));
+        if let Some(python) = python.as_mut().and_then(Python::turn) {
+            times[8..].iter_mut().zip(python).for_each(|(times, time)| times.push(time));
+        }
+        for (peak, chains) in peaks.iter_mut().zip([chains as fn(usize) -> f64, fused_chains]) {
+            *peak = peak.max(operations_a_second(chains));
+        }
+    }
+    let times: Vec<f64> = times.into_iter().map(least).collect();
+    let cells = (LAYERS * WAVELENGTHS) as f64;
+    println!(
+        "peak                {:8.1} GFLOP/s multiply, then add; {:.1} fused",
+        1e-9 * peaks[0],
+        1e-9 * peaks[1]
+    );
+    for (row, (name, kernel)) in KERNELS.iter().enumerate() {
+        let nanoseconds = 1e9 * times[row] / cells;
+        let peak = peaks[usize::from(*kernel == Kernel::Fused)];
+        let efficiency = OPERATIONS / (nanoseconds * 1e-9 * peak);
+        print!("{name:19} {nanoseconds:8.2} ns per layer and wavelength, efficiency {efficiency:.2}");
+        if times[8] > 0.0 {
+            // Those from Python are per layer and wavelength.
+            let [plain, reusing, tmm] = [8, 9, 10].map(|row| times[row] / nanoseconds);
+            print!(", {tmm:.0} times tmm, {plain:.1} times numpy ({reusing:.1} where it reuses arrays)");
+        }
+        if let Some((tmm, numpy, least)) = TARGETS[row] {
+            print!(" (at least {tmm:.0}, {numpy:.0}, efficiency {least:.2})");
+        }
+        println!();
+    }
+    if times[8] > 0.0 {
+        println!(
+            "numpy, tmm          {:8.1} ({:.1} where it reuses arrays), {:.0} ns per layer and wavelength",
+            times[8], times[9], times[10]
+        );
+    }
+    println!("40 degrees, s + p   {:8.2} ns per layer and wavelength", 1e9 * times[4] / cells);
+    println!("gradient            {:8.2} evaluations (at most 3)", times[5] / times[0]);
+    println!("every slope         {:8.2} evaluations", times[6] / times[0]);
+    println!("one layer changed   {:8.2} times cheaper than an evaluation (at least 6)", times[0] / times[7]);
     exponents();
-    python(nanoseconds);
     println!("load average after: {}", load());
 }
 
-/// Growth of time with layers and with wavelengths, as the exponent between a small and a large case.
+/// The kernel, or what stands in for it on a machine that has no fused operations.
+fn usable(kernel: Kernel) -> Kernel {
+    if kernel == Kernel::Fused { Kernel::fused() } else { kernel }
+}
+
+/// Growth of time with layers and with wavelengths: slope of `ln t` fitted by least squares.
 fn exponents() {
-    let time = |layers, wavelengths| {
-        let stack = stack(layers, wavelengths, 0.0);
-        median(21, || drop(black_box(stack.solve())))
-    };
-    let base = time(10, 1600);
-    println!("exponent, layers  {:8.2}", (time(40, 1600) / base).ln() / 4f64.ln());
-    println!("exponent, waves   {:8.2}", (time(10, 6400) / base).ln() / 4f64.ln());
+    let layers = [5, 10, 20, 40, 80].map(|layers| (layers as f64, stack(layers, 1600, 0.0)));
+    let waves = [400, 800, 1600, 3200, 6400].map(|waves| (waves as f64, stack(15, waves, 0.0)));
+    for (name, cases) in [("layers", &layers), ("wavelengths", &waves)] {
+        let mut times = vec![Vec::new(); cases.len()];
+        for _ in 0..TURNS {
+            for (times, (_, stack)) in times.iter_mut().zip(cases) {
+                times.push(seconds(|| drop(black_box(stack.solve()))));
+            }
+        }
+        let points: Vec<(f64, f64)> =
+            cases.iter().zip(times).map(|((size, _), times)| (size.ln(), least(times).ln())).collect();
+        let count = points.len() as f64;
+        let mean = |of: fn(&(f64, f64)) -> f64| points.iter().map(of).sum::<f64>() / count;
+        let (x, y) = (mean(|point| point.0), mean(|point| point.1));
+        let slope = points.iter().map(|point| (point.0 - x) * (point.1 - y)).sum::<f64>()
+            / points.iter().map(|point| (point.0 - x).powi(2)).sum::<f64>();
+        println!("exponent            {slope:8.3} of the time in {name}");
+    }
 }
 
 /// Layers of high and low index in turn, all absorbing a little, as the script in Python has them.
@@ -87,29 +161,29 @@ fn stack(layers: usize, wavelengths: usize, incidence_rad: f64) -> Stack {
     Stack::new(&wavelength_m, (1.0, incidence_rad), sheets, index(3.6, 0.05))
 }
 
-/// Seconds.
-fn median(runs: usize, mut work: impl FnMut()) -> f64 {
-    let mut times: Vec<f64> = (0..runs)
-        .map(|_| {
-            let start = Instant::now();
-            work();
-            start.elapsed().as_secs_f64()
-        })
-        .collect();
-    times.sort_by(f64::total_cmp);
-    times[runs / 2]
+/// The better of two runs after one to warm up.
+fn seconds(mut work: impl FnMut()) -> f64 {
+    work();
+    let mut once = || {
+        let start = Instant::now();
+        work();
+        start.elapsed().as_secs_f64()
+    };
+    once().min(once())
 }
 
-/// Additions and multiplications a second of independent chains in registers, best of several.
-fn peak_operations() -> f64 {
-    const STEPS: usize = 1_000_000;
-    (0..30)
-        .map(|_| {
-            let start = Instant::now();
-            black_box(chains(black_box(STEPS)));
-            (2 * CHAINS * WIDTH * STEPS) as f64 / start.elapsed().as_secs_f64()
-        })
-        .fold(0.0, f64::max)
+/// 0 of none.
+fn least(times: Vec<f64>) -> f64 {
+    times.into_iter().reduce(f64::min).unwrap_or(0.0)
+}
+
+/// Additions and multiplications a second of independent chains in registers.
+fn operations_a_second(chains: fn(usize) -> f64) -> f64 {
+    const STEPS: usize = 200_000;
+    let time = seconds(|| {
+        black_box(chains(black_box(STEPS)));
+    });
+    (2 * CHAINS * WIDTH * STEPS) as f64 / time
 }
 
 const CHAINS: usize = 10;
@@ -140,21 +214,74 @@ fn chains(steps: usize) -> f64 {
     [a, b, c, d, e, f, g, h, i, j].iter().flatten().sum()
 }
 
-fn python(own_nanoseconds: f64) {
-    let script = concat!(env!("CARGO_MANIFEST_DIR"), "/benches/reference/thin_films.py");
-    let Ok(output) = Command::new("python3").arg(script).output() else {
-        println!("no python3: ratios left out");
-        return;
-    };
-    let text = String::from_utf8_lossy(&output.stdout);
-    for line in text.lines() {
-        let Some((name, value)) = line.rsplit_once(' ') else { continue };
-        let Ok(nanoseconds) = value.parse::<f64>() else { continue };
-        println!("{name:17} {:8.1} times slower ({nanoseconds:.0} ns)", nanoseconds / own_nanoseconds);
+/// The same chains with fused operations.
+#[multiversion::multiversion(targets(
+    "x86_64+avx512f+avx512bw+avx512cd+avx512dq+avx512vl+avx2+fma",
+    "x86_64+avx2+fma"
+))]
+fn fused_chains(steps: usize) -> f64 {
+    if Kernel::fused() != Kernel::Fused {
+        return chains(steps);
     }
-    if !output.status.success() {
-        println!("numpy or tmm is not there: ratios left out");
+    // One chain of 32 a lane: as many lanes as the machine has room for run side by side.
+    let mut lanes = [1.0f64; CHAINS * WIDTH];
+    for _ in 0..steps / 32 {
+        for lane in &mut lanes {
+            let mut x = *lane;
+            for _ in 0..32 {
+                x = x.mul_add(0.999_999, 1e-7);
+            }
+            *lane = x;
+        }
     }
+    lanes.iter().sum()
+}
+
+/// A Python that measures one turn for each line it is sent.
+struct Python(Child, BufReader<std::process::ChildStdout>);
+
+impl Python {
+    fn start() -> Option<Self> {
+        let script = concat!(env!("CARGO_MANIFEST_DIR"), "/benches/reference/thin_films.py");
+        let mut command = Command::new("python3");
+        command.arg(script).stdin(Stdio::piped()).stdout(Stdio::piped()).stderr(Stdio::null());
+        let mut child = command.spawn().ok()?;
+        let mut lines = BufReader::new(child.stdout.take()?);
+        let mut versions = String::new();
+        lines.read_line(&mut versions).ok().filter(|read| *read > 0)?;
+        println!("compared with {}", versions.trim());
+        Some(Self(child, lines))
+    }
+
+    /// ns per layer and wavelength of numpy as usually written, numpy with reused arrays, and tmm.
+    fn turn(&mut self) -> Option<[f64; 3]> {
+        self.0.stdin.as_mut()?.write_all(b"turn\n").ok()?;
+        let mut line = String::new();
+        self.1.read_line(&mut line).ok()?;
+        let times: Vec<f64> = line.split_whitespace().map_while(|time| time.parse().ok()).collect();
+        times.try_into().ok()
+    }
+}
+
+impl Drop for Python {
+    fn drop(&mut self) {
+        // With its input closed it ends by itself.
+        drop(self.0.stdin.take());
+        let _ = self.0.wait();
+    }
+}
+
+fn widest() -> &'static str {
+    #[cfg(target_arch = "x86_64")]
+    {
+        if std::arch::is_x86_feature_detected!("avx512f") {
+            return "AVX-512";
+        }
+        if std::arch::is_x86_feature_detected!("avx2") {
+            return "AVX2";
+        }
+    }
+    "baseline"
 }
 
 fn load() -> String {

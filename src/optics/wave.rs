@@ -19,6 +19,7 @@ mod change;
 mod films;
 mod growing;
 mod lanes;
+pub mod one_changed;
 pub mod profile;
 pub mod slopes;
 mod thick;
@@ -76,6 +77,32 @@ pub enum Polarization {
     P,
 }
 
+/// How the fields are worked out.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
+pub enum Kernel {
+    /// With the widest registers the machine has.
+    #[default]
+    Widest,
+    /// With those of AVX2 at most; the same bits, to be measured and compared.
+    Avx2,
+    /// With those every machine has; the same bits.
+    Baseline,
+    /// Products and sums in one rounding: faster, and other last digits from machine to machine.
+    /// For searches, never for a number that is shown.
+    Fused,
+}
+
+impl Kernel {
+    /// [`Kernel::Fused`] where the machine has the instruction, else [`Kernel::Widest`].
+    pub fn fused() -> Self {
+        #[cfg(target_arch = "x86_64")]
+        let has = std::arch::is_x86_feature_detected!("fma") && std::arch::is_x86_feature_detected!("avx2");
+        #[cfg(not(target_arch = "x86_64"))]
+        let has = cfg!(target_arch = "aarch64");
+        if has { Self::Fused } else { Self::Widest }
+    }
+}
+
 /// A stack at a set of wavelengths and one angle.
 #[derive(Clone, Debug)]
 pub struct Stack {
@@ -89,6 +116,7 @@ pub struct Stack {
     rear: Arc<Index>,
     /// Sheets of each run of films; between two runs stands one thick sheet.
     runs: Vec<Range<usize>>,
+    kernel: Kernel,
 }
 
 /// Shares of the flux that falls on the front, by wavelength.
@@ -141,7 +169,13 @@ impl Stack {
             sheets,
             rear,
             runs,
+            kernel: Kernel::Widest,
         }
+    }
+
+    /// The same stack worked out by `kernel`.
+    pub fn with_kernel(self, kernel: Kernel) -> Self {
+        Self { kernel, ..self }
     }
 
     /// m, as given.
@@ -172,7 +206,7 @@ impl Stack {
     /// Light of one polarisation.
     pub fn solve_polarized(&self, polarization: Polarization) -> Shares {
         let mut shares = self.empty_shares();
-        self.each_block(polarization, |block, part| shares.take(block, part));
+        self.each_block((polarization, false), |block, part| shares.take(block, part));
         shares
     }
 
@@ -185,11 +219,16 @@ impl Stack {
         }
     }
 
-    /// Calls `visit` with each solved block and the wavelengths it stands for, in order.
-    fn each_block(&self, polarization: Polarization, mut visit: impl FnMut(&Block, Range<usize>)) {
+    /// Calls `visit` with each solved block and the wavelengths it stands for, in order; fields are
+    /// there where `keep`.
+    fn each_block(
+        &self,
+        (polarization, keep): (Polarization, bool),
+        mut visit: impl FnMut(&Block, Range<usize>),
+    ) {
         let mut block = Block::default();
         for at in 0..self.k0.len() {
-            block.solve(self, polarization, at);
+            block.solve(self, (polarization, keep), at);
             visit(&block, at * LANES..self.wavelength_m.len().min((at + 1) * LANES));
         }
     }

@@ -150,12 +150,12 @@ impl Sides<'_> {
             }
         }
         for l in 0..LANES {
-            row[l] += change.down[run][l] * block.front_fields[run].absorbed(of, l);
+            row[l] += change.down[run][l] * block.front_fields[run].absorbed[of][l];
         }
         if block.lit_from_rear[run] {
             let (fields, last) = (&block.rear_fields[run], self.stack.runs[run].len() - 1);
             for l in 0..LANES {
-                row[l] += change.up[run][l] * fields.absorbed(last - of, l);
+                row[l] += change.up[run][l] * fields.absorbed[last - of][l];
             }
             if let Some(film) = own {
                 let slope = self.rears[run].absorbed(fields, last - of, last - film);
@@ -175,9 +175,9 @@ impl Sides<'_> {
             for (film, sheet) in films.clone().enumerate() {
                 let mirrored = films.len() - 1 - film;
                 for l in 0..LANES {
-                    let mut row = change.down[run][l] * self.block.front_fields[run].absorbed(film, l);
+                    let mut row = change.down[run][l] * self.block.front_fields[run].absorbed[film][l];
                     if self.block.lit_from_rear[run] {
-                        row += change.up[run][l] * self.block.rear_fields[run].absorbed(mirrored, l);
+                        row += change.up[run][l] * self.block.rear_fields[run].absorbed[mirrored][l];
                     }
                     slope[l] += weights[sheet] * row;
                 }

@@ -7,7 +7,7 @@
 //! interface by every thickness is one product each. The same is done by prefixes and suffixes of
 //! a product of matrices; here nothing can overflow.
 
-use crate::optics::wave::films::{Fields, Run};
+use crate::optics::wave::films::{Fields, Medium, Run, is_scaled};
 use crate::optics::wave::lanes::{LANES, Lane};
 
 /// What one run, lit from one side, does when a film grows.
@@ -110,7 +110,7 @@ pub(super) fn grow(run: Run<'_>, fields: &Fields, growing: &mut Growing) {
 
 /// `W(U, V) = −a₀` (with `a₀ = H + Y₀E` on top) is the same at every interface; the derivative of a
 /// film's fields by its thickness is `−ik₀q (H/Y, YE)`. With `Q_j` the product of
-/// `(2Yc)² exp(2iδ)` over the films above `j`:
+/// `(2Yc)² exp(2iδ)` over the films above `j`, whose size is that of the weights:
 /// `α_j = ik₀q (H_U H_V/Y − Y E_U E_V)/a₀`, `C_j = −ik₀ (q/Y) (H² − Y²E²) Q_j/a₀`,
 /// `dr/dd = 2Y₀ C_j/a₀`, `B_j = C_j · 4|Y₀|²/(Re Y₀ |a₀|²)`,
 /// `Z_i = (E_V H_U* + E_U* H_V) Q_i*/|Q_i|`.
@@ -120,77 +120,137 @@ pub(super) fn grow(run: Run<'_>, fields: &Fields, growing: &mut Growing) {
 ))]
 fn grow_block(run: Run<'_>, fields: &Fields, growing: &mut Growing) {
     let films = run.films.len();
-    let (y0r, y0i) = (run.front.y.re, run.front.y.im);
-    let (mut er, mut ei) = ([1.0; LANES], [0.0; LANES]);
-    let (mut hr, mut hi) = ([0.0; LANES], [0.0; LANES]);
-    let (mut pr, mut pi): (Lane, Lane) = ([1.0; LANES], [0.0; LANES]);
-    // 1/a₀, 4|Y₀|²/(Re Y₀ |a₀|²), and 2 r* · 2Y₀/a₀.
-    let (mut inverse_r, mut inverse_i) = ([0.0; LANES], [0.0; LANES]);
-    let (mut turn_r, mut turn_i) = ([0.0; LANES], [0.0; LANES]);
-    for l in 0..LANES {
-        (hr[l], hi[l]) = (-y0r[l], -y0i[l]);
-        let y0 = (y0r[l], y0i[l]);
-        let h = (fields.h_re[0][l], fields.h_im[0][l]);
-        let ye = times(y0, (fields.e_re[0][l], fields.e_im[0][l]));
-        let a = (h.0 + ye.0, h.1 + ye.1);
-        let b = (h.0 - ye.0, h.1 - ye.1);
-        let inverse = over((1.0, 0.0), a);
-        (inverse_r[l], inverse_i[l]) = inverse;
-        // r = −b/a.
-        let r = times((-b.0, -b.1), inverse);
-        let turn = times((4.0 * r.0, -4.0 * r.1), times(y0, inverse));
-        (turn_r[l], turn_i[l]) = turn;
-    }
+    let top = on_top(run, fields);
+    let mut v = Second {
+        e: [[1.0; LANES], [0.0; LANES]],
+        h: [run.front.y.re.map(|y| -y), run.front.y.im.map(|y| -y)],
+        phase: [[1.0; LANES], [0.0; LANES]],
+    };
     for j in 0..=films {
-        let [z_re, z_im] = &mut growing.z[j];
-        let (ue_r, ue_i) = (&fields.e_re[j], &fields.e_im[j]);
-        let (uh_r, uh_i) = (&fields.h_re[j], &fields.h_im[j]);
-        for l in 0..LANES {
-            let (ue, uh) = ((ue_r[l], -ue_i[l]), (uh_r[l], -uh_i[l]));
-            let (first, second) = (times((er[l], ei[l]), uh), times(ue, (hr[l], hi[l])));
-            let size = (pr[l] * pr[l] + pi[l] * pi[l]).sqrt();
-            let inverse = 1.0 / if size > f64::MIN_POSITIVE { size } else { f64::MIN_POSITIVE };
-            let z = times((first.0 + second.0, first.1 + second.1), (pr[l] * inverse, -pi[l] * inverse));
-            (z_re[l], z_im[l]) = z;
-        }
+        v.meets(fields, j, &mut growing.z[j]);
         if j == films {
             break;
         }
         let medium = &run.films[j].medium;
-        let (yr, yi, qr, qi) = (medium.y.re, medium.y.im, medium.q.re, medium.q.im);
-        let scale = fields.scale[j];
-        let (reflected, below) = (&mut growing.reflected[j], &mut growing.below[j]);
-        let [b_re, b_im] = &mut growing.b[j];
-        let (front, turn_re, turn_im) = (&fields.weight[0], &fields.turn_re[j], &fields.turn_im[j]);
+        if std::ptr::eq(medium.y.re, medium.q.re) {
+            v.effect::<true>((run.k0, medium), (fields, j), &top, growing);
+        } else {
+            v.effect::<false>((run.k0, medium), (fields, j), &top, growing);
+        }
+        v.descend(medium, fields, j);
+        if is_scaled(films, j) {
+            let scale = fields.scale(films, j);
+            for row in v.e.iter_mut().chain(&mut v.h) {
+                for l in 0..LANES {
+                    row[l] *= scale[l];
+                }
+            }
+        }
+    }
+}
+
+/// `1/a₀`, and `2 r* · 2Y₀/a₀` over `4|Y₀|²/(Re Y₀ |a₀|²)`.
+struct Top {
+    inverse: [Lane; 2],
+    turn: [Lane; 2],
+}
+
+#[inline(always)]
+fn on_top(run: Run<'_>, fields: &Fields) -> Top {
+    let mut top = Top { inverse: [[0.0; LANES]; 2], turn: [[0.0; LANES]; 2] };
+    let front = &fields.weight[0];
+    for l in 0..LANES {
+        let y0 = (run.front.y.re[l], run.front.y.im[l]);
+        let h = (fields.h_re[0][l], fields.h_im[0][l]);
+        let ye = times(y0, (fields.e_re[0][l], fields.e_im[0][l]));
+        let (a, b) = ((h.0 + ye.0, h.1 + ye.1), (h.0 - ye.0, h.1 - ye.1));
+        let inverse = over((1.0, 0.0), a);
+        // r = −b/a.
+        let r = times((-b.0, -b.1), inverse);
+        let unweighted = 4.0 / front[l];
+        let turn = times((unweighted * r.0, -unweighted * r.1), times(y0, inverse));
+        for (own, value) in [(&mut top.inverse, inverse), (&mut top.turn, turn)] {
+            (own[0][l], own[1][l]) = value;
+        }
+    }
+    top
+}
+
+/// The second solution on its way down, and `Q/|Q|`.
+struct Second {
+    e: [Lane; 2],
+    h: [Lane; 2],
+    phase: [Lane; 2],
+}
+
+impl Second {
+    #[inline(always)]
+    fn meets(&self, fields: &Fields, at: usize, [z_re, z_im]: &mut [Lane; 2]) {
+        let (ue_r, ue_i) = (&fields.e_re[at], &fields.e_im[at]);
+        let (uh_r, uh_i) = (&fields.h_re[at], &fields.h_im[at]);
         for l in 0..LANES {
-            let (y, k0) = ((yr[l], yi[l]), run.k0[l]);
-            let inverse = (inverse_r[l], inverse_i[l]);
+            let (ue, uh) = ((ue_r[l], -ue_i[l]), (uh_r[l], -uh_i[l]));
+            let first = times((self.e[0][l], self.e[1][l]), uh);
+            let second = times(ue, (self.h[0][l], self.h[1][l]));
+            let sum = (first.0 + second.0, first.1 + second.1);
+            (z_re[l], z_im[l]) = times(sum, (self.phase[0][l], -self.phase[1][l]));
+        }
+    }
+
+    /// What film `at` does when it grows; `PLAIN` where `q = Y`.
+    #[inline(always)]
+    fn effect<const PLAIN: bool>(
+        &self,
+        (k0, medium): (&Lane, &Medium<'_>),
+        (fields, at): (&Fields, usize),
+        top: &Top,
+        growing: &mut Growing,
+    ) {
+        let (reflected, below) = (&mut growing.reflected[at], &mut growing.below[at]);
+        let [b_re, b_im] = &mut growing.b[at];
+        let (ue_r, ue_i) = (&fields.e_re[at], &fields.e_im[at]);
+        let (uh_r, uh_i) = (&fields.h_re[at], &fields.h_im[at]);
+        let weight = &fields.weight[at];
+        for l in 0..LANES {
+            let y = (medium.y.re[l], medium.y.im[l]);
             let (ue, uh) = ((ue_r[l], ue_i[l]), (uh_r[l], uh_i[l]));
             let ye = times(y, ue);
-            let down = (uh.0 + ye.0, uh.1 + ye.1);
-            let up = (uh.0 - ye.0, uh.1 - ye.1);
-            let ratio = over((qr[l], qi[l]), y);
+            let (down, up) = ((uh.0 + ye.0, uh.1 + ye.1), (uh.0 - ye.0, uh.1 - ye.1));
+            let mut over_a0 = (top.inverse[0][l], top.inverse[1][l]);
+            if !PLAIN {
+                over_a0 = times(over_a0, over((medium.q.re[l], medium.q.im[l]), y));
+            }
             // −2 Re α, with i z = (−z.1, z.0).
+            let yve = times(y, (self.e[0][l], self.e[1][l]));
+            let (hh, ee) = (times(uh, (self.h[0][l], self.h[1][l])), times(ye, yve));
+            let alpha = times((hh.0 - ee.0, hh.1 - ee.1), over_a0);
+            below[l] = 2.0 * k0[l] * alpha.1;
+            let c = times(times(times(down, up), over_a0), (self.phase[0][l], self.phase[1][l]));
+            let size = weight[l] * k0[l];
+            let b = (size * c.1, -size * c.0);
+            (b_re[l], b_im[l]) = b;
+            reflected[l] = b.0 * top.turn[0][l] - b.1 * top.turn[1][l];
+        }
+    }
+
+    /// One film down.
+    #[inline(always)]
+    fn descend(&mut self, medium: &Medium<'_>, fields: &Fields, at: usize) {
+        let (turn_re, turn_im, size) = (&fields.turn_re[at], &fields.turn_im[at], &fields.size[at]);
+        let [er, ei] = &mut self.e;
+        let [hr, hi] = &mut self.h;
+        let [phase_re, phase_im] = &mut self.phase;
+        for l in 0..LANES {
+            let (y, p) = ((medium.y.re[l], medium.y.im[l]), (turn_re[l], turn_im[l]));
             let yve = times(y, (er[l], ei[l]));
-            let (hh, ee) = (times(uh, (hr[l], hi[l])), times(ye, yve));
-            let alpha = times(times(ratio, (hh.0 - ee.0, hh.1 - ee.1)), inverse);
-            below[l] = 2.0 * k0 * alpha.1;
-            let q_product = (pr[l], pi[l]);
-            let c = times(times(times(ratio, times(down, up)), inverse), q_product);
-            let c = (k0 * c.1, -k0 * c.0);
-            reflected[l] = c.0 * turn_r[l] - c.1 * turn_i[l];
-            (b_re[l], b_im[l]) = (front[l] * c.0, front[l] * c.1);
-            // V and Q one film down.
-            let p = (turn_re[l], turn_im[l]);
             let a = times(p, (hr[l] + yve.0, hi[l] + yve.1));
             let b = (hr[l] - yve.0, hi[l] - yve.1);
-            (er[l], ei[l]) = (scale * (a.0 - b.0), scale * (a.1 - b.1));
-            let h = times(y, (scale * (a.0 + b.0), scale * (a.1 + b.1)));
-            (hr[l], hi[l]) = h;
+            (er[l], ei[l]) = (a.0 - b.0, a.1 - b.1);
+            (hr[l], hi[l]) = times(y, (a.0 + b.0, a.1 + b.1));
             let square = times(y, y);
-            let four = 4.0 * scale * scale;
-            let q = times(times((four * square.0, four * square.1), p), q_product);
-            (pr[l], pi[l]) = q;
+            let unit = 1.0 / (size[l] * (y.0 * y.0 + y.1 * y.1));
+            let turned = times((unit * square.0, unit * square.1), p);
+            (phase_re[l], phase_im[l]) = times(turned, (phase_re[l], phase_im[l]));
         }
     }
 }

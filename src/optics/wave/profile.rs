@@ -126,7 +126,7 @@ impl Stack {
 
     fn profiles_polarized(&self, polarization: Polarization, sheets: &[usize]) -> Vec<Vec<Profile>> {
         let mut profiles = vec![vec![Profile::default(); self.wavelength_m.len()]; sheets.len()];
-        self.each_block(polarization, |block, part| {
+        self.each_block((polarization, true), |block, part| {
             let media = block.media(self, part.start / LANES);
             for (row, &sheet) in profiles.iter_mut().zip(sheets) {
                 for (l, profile) in row[part.clone()].iter_mut().enumerate() {

@@ -193,7 +193,7 @@ impl Stack {
         mut visit: impl FnMut(&Sides<'_>, Range<usize>),
     ) {
         let (mut fronts, mut rears) = (Vec::new(), Vec::new());
-        self.each_block(polarization, |block, part| {
+        self.each_block((polarization, true), |block, part| {
             shares.take(block, part.clone());
             self.grow_runs(block, part.start / LANES, (&mut fronts, &mut rears));
             visit(&Sides { stack: self, block, fronts: &fronts, rears: &rears }, part);

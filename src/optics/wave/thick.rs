@@ -22,12 +22,12 @@ pub(super) struct Between {
 }
 
 /// What returns to the rear of a run: through the thick layer below it and back.
-pub(super) fn returned(pass: &Lane, below: &Lane) -> Lane {
+fn returned(pass: &Lane, below: &Lane) -> Lane {
     std::array::from_fn(|l| pass[l] * pass[l] * below[l])
 }
 
 /// Reflectance of a run over something that sends `g` back, and `1/(1 − r g)`.
-pub(super) fn added(front: &Faces, rear: &Faces, g: &Lane) -> (Lane, Lane) {
+fn added(front: &Faces, rear: &Faces, g: &Lane) -> (Lane, Lane) {
     let echo: Lane = std::array::from_fn(|l| 1.0 / (1.0 - rear.reflected[l] * g[l]).max(f64::EPSILON));
     let sum = std::array::from_fn(|l| {
         front.reflected[l] + front.transmitted[l] * g[l] * rear.transmitted[l] * echo[l]
@@ -36,9 +36,34 @@ pub(super) fn added(front: &Faces, rear: &Faces, g: &Lane) -> (Lane, Lane) {
 }
 
 impl Between {
-    /// From the front down, once `reflectance` and `echo` of every run are known; `pass` is the
-    /// share each thick layer lets through, one fewer than runs.
-    pub(super) fn descend(&mut self, fronts: &[Faces], pass: &[Lane]) {
+    /// Of runs with these faces, lit from the front and from the rear (nothing where no light can
+    /// come back), `pass` being the share each thick layer between lets through.
+    pub(super) fn fill(&mut self, (fronts, rears): (&[Faces], &[Faces]), pass: &[Lane]) {
+        let last = pass.len();
+        self.reflectance.resize(last + 1, [0.0; LANES]);
+        self.echo.resize(last + 1, [1.0; LANES]);
+        self.reflectance[last] = fronts[last].reflected;
+        for at in (0..last).rev() {
+            let back = returned(&pass[at], &self.reflectance[at + 1]);
+            (self.reflectance[at], self.echo[at]) = added(&fronts[at], &rears[at], &back);
+        }
+        self.descend(fronts, pass);
+    }
+
+    /// Share absorbed in the thick layer below run `at`: fluxes at its faces, less each other.
+    pub(super) fn absorbed(&self, (fronts, rears): (&[Faces], &[Faces]), at: usize) -> Lane {
+        let (above, below) = (at, at + 1);
+        std::array::from_fn(|l| {
+            let enters = self.down[above][l] * fronts[above].transmitted[l]
+                - self.up[above][l] * rears[above].entering[l];
+            let leaves = self.down[below][l] * fronts[below].entering[l]
+                - self.up[below][l] * rears[below].transmitted[l];
+            enters - leaves
+        })
+    }
+
+    /// From the front down, once `reflectance` and `echo` of every run are known.
+    fn descend(&mut self, fronts: &[Faces], pass: &[Lane]) {
         let mut down = [1.0; LANES];
         self.down.clear();
         self.up.clear();
