@@ -8,7 +8,7 @@ use crate::resolve::properties::{self, Kept, conflict, pending};
 use crate::resolve::quantities::{Expected, Role};
 use crate::resolve::slots::slot;
 use crate::resolve::tree::LayerNode;
-use crate::resolve::{Resolver, names};
+use crate::resolve::{Resolver, names, spilled};
 use crate::source::{Span, Spanned};
 use crate::syntax::{Attribute, Expression, MaterialPhrase, Property, Statement, Value};
 use crate::units::{Dimension, trade};
@@ -63,12 +63,13 @@ pub(super) fn draft<'b, 's>(
     let (node, path, place) = what;
     let duty = Duty::of_word(&node.duty.value).unwrap_or(Duty::Layer);
     let layer = blank(duty, path, place, node);
-    let mut draft = Draft { layer, node, step, phrase: None, wrong: false };
+    let spilled = spilled::over(resolver, node);
+    let mut draft = Draft { layer, node, step, phrase: None, material_wrong: spilled.material, wrong: false };
     let here = resolver.scope.here();
     let mut thickness: Option<Span> = None;
     let mut skip = false;
     for (at, (attribute, frame)) in node.attributes.iter().enumerate() {
-        if std::mem::take(&mut skip) {
+        if std::mem::take(&mut skip) || spilled.attributes.contains(&at) {
             continue;
         }
         resolver.scope.enter(*frame);

@@ -67,6 +67,9 @@ impl Walk {
         all: &[Draft<'_, '_>],
     ) -> Option<SharedMaterial> {
         let layer = &draft.layer;
+        if draft.material_wrong {
+            return None;
+        }
         let (phrase, frame) = match (&draft.node.material, &draft.phrase) {
             (Some((phrase, frame)), _) => (*phrase, *frame),
             (None, Some(phrase)) => (phrase, resolver.scope.here()),

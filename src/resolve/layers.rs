@@ -24,6 +24,8 @@ pub(super) struct Draft<'b, 's> {
     pub(super) step: Option<(usize, usize)>,
     /// A phrase read out of a word that stood in the place of a thickness.
     pub(super) phrase: Option<MaterialPhrase>,
+    /// Whether its material was reported to be unreadable.
+    pub(super) material_wrong: bool,
     /// Whether something of it was reported that leaves it without a thickness.
     pub(super) wrong: bool,
 }

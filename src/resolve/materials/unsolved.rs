@@ -245,7 +245,11 @@ fn open(asked: &Asked<'_>, count: usize, gap: Option<f64>) -> Finding {
         .at(asked.span(), format!("{} more to say", if count == 1 { "one thing" } else { "some things" }));
     if family.frame().first().is_some() {
         let whole = family.label(&middle(family));
-        return finding.help(format!("write `{name} of gap 1.68 eV`, or a formula such as `{whole}`"));
+        let reach = gap_reach(family, None).map_or((0.0, 9.0), |reach| (reach.low.0.ev, reach.high.0.ev));
+        // Gaps people build tandems with, well inside the family.
+        let gap = [1.68, 1.15].into_iter().find(|gap| (reach.0 + 0.05..reach.1 - 0.05).contains(gap));
+        let gap = gap.unwrap_or(round((reach.0 + reach.1) / 2.0, 2));
+        return finding.help(format!("write `{name} of gap {}`, or a formula such as `{whole}`", ev(gap)));
     }
     let mixed = family.sites.iter().find(|site| site.len() > 1);
     let element = mixed.and_then(|site| site.first()).map_or("Al", String::as_str);
