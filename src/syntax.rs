@@ -76,6 +76,8 @@ pub struct Let {
 pub struct Named {
     /// The name.
     pub name: Spanned<String>,
+    /// Where `replaces` stands, if it does.
+    pub replaces: Option<Span>,
     /// Its body.
     pub block: Block,
     /// The whole item.

@@ -2,6 +2,8 @@
 //!
 //! The files are embedded as text and read only when a name is asked for.
 
+use crate::materials::formula;
+
 /// Every material and alloy with the text that defines it: elements and compounds of the groups
 /// III, IV and V, their alloys, perovskites, compounds of the group VI and amorphous silicon, then
 /// coats, glasses, contacts and metals.
@@ -175,9 +177,14 @@ const TABLES: &[(&str, &str)] = &[
 /// Families that are called by a word, and the elements that stand in a formula of theirs.
 const FORMULAS: &[(&str, &str)] = &[("perovskite", "CsFAMAPbIBr"), ("CIGS", "CuInGaSe2")];
 
-/// What to read the elements of a name from: the name itself, or the formula behind it.
-pub fn formula_of(name: &str) -> &str {
-    FORMULAS.iter().find(|(word, _)| *word == name).map_or(name, |(_, formula)| formula)
+/// The elements in whose formulas a name is meant, if it is made of elements. A name with digits
+/// (`GaInP2`) means itself alone.
+pub fn family_elements(name: &str) -> Option<Vec<String>> {
+    match FORMULAS.iter().find(|(word, _)| *word == name) {
+        Some((_, formula)) => formula::elements(formula),
+        None if name.contains(|c: char| c.is_ascii_digit()) => None,
+        None => formula::elements(name),
+    }
 }
 
 /// The table of that name: `nm,n,k` lines.

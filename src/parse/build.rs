@@ -119,16 +119,17 @@ impl<'a> Builder<'a> {
 
     fn named(&mut self, node: Node<'_>) -> Item {
         let span = self.span(&node);
-        let (mut kind, mut name, mut block) = ("", None, None);
+        let (mut kind, mut name, mut block, mut replaces) = ("", None, None, None);
         for part in node.into_inner() {
             match part.as_rule() {
                 Rule::named_kind => kind = part.as_str(),
+                Rule::replaces => replaces = Some(self.span(&part)),
                 Rule::block => block = Some(self.block(part)),
                 _ => name = Some(self.word(&part)),
             }
         }
         let (Some(name), Some(block)) = (name, block) else { return Item::Invalid(span) };
-        let named = Named { name, block, span };
+        let named = Named { name, replaces, block, span };
         match kind {
             "condition" => Item::Condition(named),
             "spectrum" => Item::Spectrum(named),

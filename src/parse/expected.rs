@@ -85,7 +85,15 @@ impl<'a> Trouble<'a> {
     /// What would have fitted, without what may stand almost anywhere and tells nobody anything.
     fn wanted(&self) -> Vec<Rule> {
         let noise = |rule: &Rule| {
-            matches!(rule, Rule::unit | Rule::operator | Rule::sign | Rule::group_word | Rule::nested_formula)
+            matches!(
+                rule,
+                Rule::unit
+                    | Rule::operator
+                    | Rule::sign
+                    | Rule::group_word
+                    | Rule::nested_formula
+                    | Rule::replaces
+            )
         };
         let telling = |rule: &Rule| !noise(rule) && !matches!(rule, Rule::open | Rule::EOI);
         let wanted: Vec<Rule> = self.rules.iter().copied().filter(telling).collect();

@@ -6,7 +6,7 @@ use crate::finding::Finding;
 use crate::parse;
 use crate::resolve::files::Files;
 use crate::resolve::quantities::Scope;
-use crate::resolve::{names, properties};
+use crate::resolve::{names, properties, shadowing};
 use crate::source::{SourceId, Span, Spanned};
 use crate::syntax::{self, Item, Named, Part, Stack};
 
@@ -143,12 +143,15 @@ pub(super) fn items<'s>(scope: &mut Scope, files: &'s [syntax::File], first: Sou
             Item::Use(_) | Item::Invalid(_) => {}
             Item::Let(it) => scope.define(&it.name, &it.value),
             Item::Condition(it) => {
+                shadowing::condition(scope, it);
                 items.conditions.add(scope, "condition", it, |it| &it.name);
             }
             Item::Spectrum(it) => {
+                shadowing::spectrum(scope, it);
                 items.spectra.add(scope, "spectrum", it, |it| &it.name);
             }
             Item::Material(it) | Item::Alloy(it) => {
+                shadowing::chemistry(scope, it, matches!(item, Item::Alloy(_)));
                 if items.materials.add(scope, "material", it, |it| &it.name) {
                     items.chemistry.push((it, matches!(item, Item::Alloy(_))));
                 }

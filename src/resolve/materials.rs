@@ -25,6 +25,7 @@ mod index;
 mod listing;
 mod misplaced;
 mod models;
+mod own_tables;
 mod phrases;
 mod samples;
 mod transport;
@@ -127,7 +128,7 @@ impl Library {
         let mut found: Vec<(usize, String)> = self
             .names()
             .into_iter()
-            .filter_map(|name| Some((formula::elements(library::formula_of(name))?, name)))
+            .filter_map(|name| Some((library::family_elements(name)?, name)))
             .filter(|(all, _)| holds(all))
             .map(|(all, name)| (all.len(), name.to_owned()))
             .collect();
@@ -155,9 +156,7 @@ impl Library {
             elements
         };
         let wanted = sorted(elements.to_vec());
-        let same = |name: &&str| {
-            formula::elements(library::formula_of(name)).is_some_and(|own| sorted(own) == wanted)
-        };
+        let same = |name: &&str| library::family_elements(name).is_some_and(|own| sorted(own) == wanted);
         let found = self.names().into_iter().find(same)?.to_owned();
         self.named(&found, scope)
     }

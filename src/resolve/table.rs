@@ -163,8 +163,9 @@ impl<'s> Resolver<'_, 's> {
         let mut rows = Rows::new(id, &text);
         let at = [self.position(&rows, wavelength)?, self.position(&rows, value)?];
         let (mut x, mut y): (Vec<f64>, Vec<f64>) = (Vec::new(), Vec::new());
+        // Where the row of each point stands.
+        let mut places: Vec<Span> = Vec::new();
         let mut faults = 0;
-        let mut last = f64::NEG_INFINITY;
         while let Some(row) = rows.next_row() {
             let cells = [cell(&row, at[0]), cell(&row, at[1])];
             let numbers = cells.map(|cell| cell.and_then(|(_, text)| text.parse::<f64>().ok()));
@@ -181,12 +182,6 @@ impl<'s> Resolver<'_, 's> {
                             format!("a wavelength of {}", numbers[0].unwrap_or(0.0)),
                             "not above zero",
                         ))
-                    } else if a <= last {
-                        Some((
-                            whole,
-                            "the wavelength does not rise from row to row".to_owned(),
-                            "not above the row before",
-                        ))
                     } else if b < 0.0 {
                         Some((
                             cells[1].map_or(whole, |cell| cell.0),
@@ -196,9 +191,9 @@ impl<'s> Resolver<'_, 's> {
                     } else {
                         x.push(a);
                         y.push(b);
+                        places.push(whole);
                         None
                     };
-                    last = last.max(a);
                     fault
                 }
                 _ => {
@@ -225,8 +220,23 @@ impl<'s> Resolver<'_, 's> {
                 }
             }
         }
+        let counts_down = x.first() > x.last();
+        faults += self.order(path, (&x, &places), MOST_FAULTS - faults);
         if faults > 0 {
             return None;
+        }
+        if counts_down {
+            self.scope.report(
+                Finding::advice(
+                    "spectrum.table",
+                    format!("`{}` counts its wavelengths down, and is read backwards", path.value),
+                )
+                .at(places.first().copied().unwrap_or(path.span), "the longest comes first")
+                .beside(path.span, "read from here")
+                .help("sort the rows by rising wavelength"),
+            );
+            x.reverse();
+            y.reverse();
         }
         if x.len() < 2 {
             self.scope.report(
@@ -240,6 +250,39 @@ impl<'s> Resolver<'_, 's> {
             return None;
         }
         Some((x, y))
+    }
+
+    /// Reports rows that stand twice or out of order, at most so many; gives how many.
+    fn order(&mut self, path: &Spanned<String>, (x, places): (&[f64], &[Span]), most: usize) -> usize {
+        let counts_down = x.first() > x.last();
+        let (mut last, mut faults) = (0, 0);
+        for at in 1..x.len() {
+            let twice = x[at] == x[last];
+            if !twice && (x[last] > x[at]) == counts_down {
+                last = at;
+                continue;
+            }
+            if faults >= most {
+                break;
+            }
+            faults += 1;
+            let (message, label, help) = if twice {
+                ("the wavelength stands twice", "the second row of it", "keep one of the two rows")
+            } else {
+                (
+                    "the wavelength does not go on from row to row",
+                    "out of order",
+                    "sort the rows by rising wavelength, each once",
+                )
+            };
+            self.scope.report(
+                Finding::error("spectrum.table", message)
+                    .at(places[at], label)
+                    .beside(path.span, "read from here")
+                    .help(help),
+            );
+        }
+        faults
     }
 
     /// The column's position from 0.
@@ -266,7 +309,6 @@ impl<'s> Resolver<'_, 's> {
 
 fn help_for(label: &str) -> &'static str {
     match label {
-        "not above the row before" => "sort the rows by rising wavelength, each once",
         "below zero" => "replace noise below zero by `0`",
         "not above zero" => "state the wavelength column, such as `wavelength column 1 in nm`",
         "a column is missing" => "fill the row, or name another column",

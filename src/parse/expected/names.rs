@@ -70,6 +70,7 @@ pub(super) fn human(rule: Rule) -> &'static str {
         Rule::place => "`place NAME(…)`",
         Rule::place_argument => "an argument",
         Rule::place_arguments => "arguments in brackets",
+        Rule::replaces => "`replaces`",
         Rule::plus_minus | Rule::tolerance | Rule::inner_tolerance => "a tolerance such as `± 3 % sigma`",
         Rule::points => "`40 points`",
         Rule::polarity => "`n` or `p`",

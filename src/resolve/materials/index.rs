@@ -3,19 +3,18 @@
 use std::sync::Arc;
 
 use crate::finding::Finding;
-use crate::materials::library;
 use crate::materials::optics::{IndexTable, Optics};
-use crate::materials::table::{self, TableError};
+use crate::materials::table;
 use crate::materials::{Bands, ROOM_TEMPERATURE_K};
-use crate::resolve::materials::blocks::{Reader, Texts};
+use crate::resolve::materials::blocks::Reader;
 use crate::resolve::materials::values::{Arguments, Kind, quantity, single};
-use crate::source::{Span, Spanned};
+use crate::source::Spanned;
 use crate::syntax::Property;
 
 /// What gives n and k.
 const LAWS: &[&str] = &["table", "constant", "sellmeier", "cauchy"];
 
-const WORDS: &[&str] = &["table", "constant", "sellmeier", "cauchy", "range", "edge", "at"];
+const WORDS: &[&str] = &["table", "constant", "sellmeier", "cauchy", "range", "edge", "at", "n"];
 
 impl Reader<'_> {
     /// The optics of a material with these bands.
@@ -24,6 +23,7 @@ impl Reader<'_> {
     /// table holds at (`at 300 K` unless stated), or from a stated `edge 1.88 eV`.
     pub(super) fn index(&mut self, group: &Property, bands: Option<&Bands>) -> Optics {
         let (mut table, mut edge, mut at_k, mut range) = (None, None, ROOM_TEMPERATURE_K, None);
+        let (mut file, mut n, mut rows): (Option<&Spanned<String>>, _, _) = (None, None, Vec::new());
         let mut stated: Option<&Property> = None;
         for property in self.inside(group) {
             if LAWS.contains(&property.name.value.as_str()) {
@@ -45,9 +45,9 @@ impl Reader<'_> {
             match property.name.value.as_str() {
                 "table" => {
                     let mut arguments = Arguments::of(property);
-                    match arguments.text() {
-                        Some(file) => table = self.table(file),
-                        None => self.no_file(property.span),
+                    file = arguments.text();
+                    if file.is_none() {
+                        self.no_file(property.span);
                     }
                     arguments.end(self.scope);
                 }
@@ -56,19 +56,33 @@ impl Reader<'_> {
                 "cauchy" => table = self.cauchy(property),
                 "range" => range = self.range(property),
                 "edge" => edge = single(property, Kind::GAP, self.scope),
+                "n" => {
+                    n = single(property, Kind::NOT_NEGATIVE, self.scope).map(|value| (value, property.span))
+                }
                 "at" => at_k = single(property, Kind::KELVIN, self.scope).unwrap_or(at_k),
                 "cite" => {}
                 _ => self.unknown_in("index", property, WORDS),
             }
         }
         self.origin(group, "index");
+        if let Some(file) = file {
+            if let Some(own) = self.table_beside(file, n.map(|(value, _)| value)) {
+                (table, rows) = (Some(own.0), own.1);
+            }
+        } else if let Some((_, span)) = n {
+            self.n_alone(span);
+        }
         let Some(mut table) = table else {
             // What is stated and wrong was reported where it stands.
-            if stated.is_none() {
+            if stated.is_none() && n.is_none() {
                 self.nothing_said(group);
             }
             return Optics::None;
         };
+        if let Some(file) = file {
+            let gap = edge.or_else(|| bands.and_then(|bands| bands.gap(at_k)).map(|gap| gap.ev));
+            self.doubts(file, &table, (gap, &rows));
+        }
         if let Some((low, high)) = range {
             table.clip(low, high);
         }
@@ -95,47 +109,6 @@ impl Reader<'_> {
                     .at(group.name.span, "no table, constant or law")
                     .help("state one, such as `constant 1.9` or `table \"film.csv\"`"),
             );
-        }
-    }
-
-    fn no_file(&mut self, place: Span) {
-        self.scope.report(
-            Finding::error("material.incomplete", "`table` names no file")
-                .at(place, "a file name in quotes is due")
-                .help("write `table \"film.csv\"`, with columns `nm,n,k`"),
-        );
-    }
-
-    /// Reads an n,k table.
-    pub(super) fn table(&mut self, file: &Spanned<String>) -> Option<IndexTable> {
-        let name = file.value.as_str();
-        match self.texts {
-            Texts::BuiltIn => {
-                let found = library::table(name).map(table::read);
-                if !matches!(found, Some(Ok(_))) {
-                    // Kept out of a release by the test that reads the whole library.
-                    let message = format!("the library has no sound table `{name}`");
-                    self.scope.report(Finding::error("material.table", message).at(file.span, "named here"));
-                }
-                found?.ok()
-            }
-            // A file that is not there was reported when the item was added.
-            Texts::User(texts) => {
-                let (source, text) = texts.get(name)?;
-                match table::read(text) {
-                    Ok(table) => Some(table),
-                    Err(error) => {
-                        let TableError { start, end, message, help } = error;
-                        self.scope.report(
-                            Finding::error("material.table", format!("`{name}`: {message}"))
-                                .at(Span::new(*source, start, end), "here")
-                                .beside(file.span, "the table is named here")
-                                .help(help),
-                        );
-                        None
-                    }
-                }
-            }
         }
     }
 

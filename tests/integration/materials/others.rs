@@ -72,6 +72,22 @@ fn every_index_is_finite_over_the_spectrum_and_says_where_it_comes_from() {
     }
 }
 
+/// What a user's table would be doubted for, no table of the library has: absorption far below the gap,
+/// edges that n does not show, n that rises where nothing is absorbed.
+#[test]
+fn no_table_of_the_library_is_doubtful() {
+    for (name, material) in whole_library() {
+        let Optics::Table(table) = &material.optics else { continue };
+        // A table moved to the gap in force is drawn at the gap of its sample.
+        let own = table.gap_ev.unwrap_or(f64::INFINITY);
+        let gap = material.gap(300.0).map(|gap| gap.ev.min(own));
+        // The gap of amorphous silicon is optical: its tail reaches further than a crystal's.
+        let gap = gap.filter(|_| name != "aSiH");
+        let found = bandloom::materials::table::doubts::doubts(table, gap);
+        assert!(found.is_empty(), "{name}: {found:?}");
+    }
+}
+
 #[test]
 fn the_library_is_small() {
     let files: usize = library::FILES.iter().map(|(_, text)| text.len()).sum();
