@@ -14,12 +14,14 @@ use crate::units::{self, Dimension};
 mod absorption;
 mod accept;
 mod current_mismatch;
+mod doping_limit;
 mod doping_missing;
 mod families;
 mod free;
 mod free_on_bound;
 mod free_outside;
 mod free_unsettled;
+mod gap_band_offset;
 mod gap_bsf_low;
 mod gap_equal;
 mod gap_indirect_absorber;
@@ -40,12 +42,14 @@ mod polarity_same;
 mod require_failed;
 mod show;
 mod structure_no_absorber;
+mod structure_no_contact;
 mod structure_no_wafer;
 mod structure_order;
 mod tunnel_absorbs;
 mod tunnel_missing;
 mod tunnel_peak;
 mod tunnel_polarity;
+mod unit_unlikely;
 
 pub use accept::Settled;
 pub(crate) use accept::unused_in_file;
@@ -56,12 +60,15 @@ pub static RULES: &[&Rule] = &[
     &structure_no_absorber::RULE,
     &structure_order::RULE,
     &structure_no_wafer::RULE,
+    &structure_no_contact::RULE,
+    &unit_unlikely::RULE,
     &optics_no_index::RULE,
     &gap_order::RULE,
     &gap_equal::RULE,
     &gap_indirect_absorber::RULE,
     &gap_bsf_low::RULE,
     &gap_window_absorbs::RULE,
+    &gap_band_offset::RULE,
     &lattice_mismatch::RULE,
     &lattice_critical_thickness::RULE,
     &lattice_needless_relaxed::RULE,
@@ -71,6 +78,7 @@ pub static RULES: &[&Rule] = &[
     &polarity_same::RULE,
     &polarity_flipped::RULE,
     &doping_missing::RULE,
+    &doping_limit::RULE,
     &tunnel_missing::RULE,
     &tunnel_polarity::RULE,
     &tunnel_peak::RULE,

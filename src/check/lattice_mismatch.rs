@@ -25,6 +25,9 @@ pub(super) static RULE: Rule = Rule {
     run,
 };
 
+/// Share of the threshold that holds for an alloy another composition of which fits.
+const NEAR_MISS: f64 = 0.5;
+
 /// Nobody grows a closed layer thinner than this, m.
 const LEAST_LAYER_M: f64 = 3e-9;
 
@@ -79,6 +82,23 @@ fn too_thick(context: &Context, speaks: fn(Strain) -> bool) -> Vec<(Slab, f64, C
     judged.collect()
 }
 
+/// Whether another composition of the layer's own alloy fits: then a small mismatch is a slip of
+/// composition. An alloy that only fits as one of its end members is as near as it gets.
+fn could_match(context: &Context, index: usize, beneath: usize) -> bool {
+    let (design, state) = (context.design, context.lattice[index]);
+    let of = |at: usize| design.layers[at].material.as_ref();
+    let found = of(index)
+        .zip(of(beneath))
+        .zip(state)
+        .and_then(|((material, ground), state)| matched(material, ground, state.growth_temperature_k));
+    found.is_some_and(|(label, _)| is_mixed(&label))
+}
+
+/// Whether a label is that of a mixture and not of an end member.
+fn is_mixed(label: &str) -> bool {
+    label.contains(|c: char| c.is_ascii_digit())
+}
+
 /// The coherent slabs beyond the threshold, in growth order.
 fn slabs(context: &Context, speaks: fn(Strain) -> bool) -> Vec<Slab> {
     let limit = context.threshold(&RULE);
@@ -89,7 +109,13 @@ fn slabs(context: &Context, speaks: fn(Strain) -> bool) -> Vec<Slab> {
         let LayerGrowth { beneath: Some(beneath), mismatch_at_growth: mismatch, .. } = *state else {
             continue;
         };
-        if !speaks(context.design.layers[index].strain) || mismatch.abs() <= limit {
+        let layer = &context.design.layers[index];
+        let allowed = if mismatch.abs() > NEAR_MISS * limit && could_match(context, index, beneath) {
+            NEAR_MISS * limit
+        } else {
+            limit
+        };
+        if !speaks(layer.strain) || mismatch.abs() <= allowed {
             open = false;
             continue;
         }
@@ -155,7 +181,7 @@ fn finding(
     Some(match (found, thin) {
         // A whole alloy, such as GaInP on GaAs; an alloy that only fits as one of its end members
         // was meant to be strained.
-        (Some((label, phrase)), _) if label.contains(|c: char| c.is_ascii_digit()) => finding
+        (Some((label, phrase)), _) if is_mixed(&label) => finding
             .help(format!("`{label}` matches; write `{phrase}`"))
             .fix(layer.spans.material, phrase, false),
         (Some((label, _)), Some(thin)) => finding.help(format!("{thin}, or write `{label}`, which matches")),
