@@ -191,6 +191,7 @@ fn rules() -> Vec<Rule> {
         rule(&format!("u{n}"), "fill:none;stroke-width:1.1", &|t| format!("stroke:{}", colours(t).on_fill));
         rule(&format!("g{n}"), "fill:none;stroke-width:.8", &|t| format!("stroke:{}", colours(t).on_fill));
         rule(&format!("hj{n}"), "fill:none;stroke-width:1.6", &|t| format!("stroke:{}", colours(t).line));
+        rule(&format!("q{n}"), "fill:none;stroke-width:1", &|t| format!("stroke:{}", colours(t).line));
         rule(&format!("t{n}"), "fill-opacity:.22", &|t| format!("fill:{}", colours(t).fill));
         rule(&format!("mk{n}"), "stroke-width:1", &|t| format!("fill:{};stroke:{}", colours(t).fill, t.ink));
     }

@@ -14,7 +14,9 @@ use crate::report::text::{Text, visible};
 
 pub mod account;
 pub mod bands;
+pub mod carriers;
 pub mod cautions;
+pub mod conditions;
 pub mod dark;
 pub mod electrical;
 pub mod findings;
@@ -57,6 +59,8 @@ pub struct Sheet {
     pub gap: Section,
     /// Photon current by destination, and quantum efficiency.
     pub light: Section,
+    /// Minority carriers of each layer.
+    pub carriers: Section,
     /// Current against voltage.
     pub curves: Section,
     /// Power, line by line.
@@ -119,6 +123,7 @@ impl Sheet {
             &self.layers,
             &self.gap,
             &self.light,
+            &self.carriers,
             &self.curves,
             &self.ledger,
             &self.conditions,
@@ -143,6 +148,7 @@ impl Sheet {
             &mut self.layers,
             &mut self.gap,
             &mut self.light,
+            &mut self.carriers,
             &mut self.curves,
             &mut self.ledger,
             &mut self.conditions,
@@ -193,9 +199,10 @@ pub fn sheet(input: &ReportInput<'_>) -> Option<Sheet> {
         layers: layers::layers(&context, &mut sources),
         gap: gap::gap(&context),
         light: optical::light(&context),
+        carriers: carriers::carriers(&context),
         curves: electrical::curves(&context),
         ledger: account::section(&context),
-        conditions: electrical::conditions(&context),
+        conditions: conditions::conditions(&context),
         bands: bands::bands(&context),
         models: sources::models(&context, &mut sources),
         assumptions: assumptions(&context),

@@ -182,6 +182,29 @@ fn band_edges_bend_by_the_built_in_voltage() {
     assert_eq!(bands.steps.iter().filter(|step| step.keeps_in && step.barrier_ev > 0.1).count(), 4);
 }
 
+/// What irradiation does, in the order every handbook has it: the base with the longest way loses
+/// most, nothing gains, and the table says what is left of each.
+#[test]
+fn begin_and_end_of_life_stand_side_by_side() {
+    let case = every_case().iter().find(|case| case.name == "Begin and end of life").expect("there");
+    let sheet = case.sheet();
+    let caption = |table: &bandloom::report::view::Table| table.caption.plain();
+    let life =
+        sheet.conditions.tables.iter().find(|t| caption(t).starts_with("Begin and end")).expect("a table");
+    let rows = &life.groups[0].rows;
+    let remains = |figure: &str| -> f64 {
+        let row = rows.iter().find(|row| row[0].plain() == figure).expect(figure);
+        row[3].plain().trim_end_matches("\u{a0}%").parse().expect("a number")
+    };
+    assert!(remains("efficiency") < 95.0 && remains("efficiency") > 40.0);
+    assert!(remains("bottom, photocurrent") < remains("top, photocurrent"));
+    assert!(remains("bottom, photocurrent") < 100.0 && remains("Voc") < 100.0);
+    // Each layer that collects has its minority carriers stated.
+    let table = &sheet.carriers.tables[0];
+    let minority: Vec<String> = table.groups[0].rows.iter().map(|row| row[3].plain()).collect();
+    assert_eq!(minority, ["holes", "electrons", "holes", "electrons"]);
+}
+
 /// Numbers become words in one place; a template that got a float could print `0.30000000000000004`.
 #[test]
 fn the_view_holds_no_float() {

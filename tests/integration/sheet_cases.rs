@@ -150,6 +150,15 @@ fn twelve_conditions() -> String {
     text + &stack.join("\n").replace("Kittiwake 3J", "Twelve conditions")
 }
 
+/// The demo of two junctions with its voltages from the layers, new and after years in orbit.
+pub(super) fn begin_and_end_of_life() -> String {
+    let kept: Vec<&str> = SANDPIPER.lines().filter(|line| !line.contains("voltage from")).collect();
+    kept.join("\n")
+        .replace("temperature  65 degC", "temperature  25 degC\n    fluence 1e15 /cm2 of electrons 1 MeV")
+        .replace("Sandpiper 2J", "Begin and end of life")
+        + "\n"
+}
+
 /// Every duty, inverted growth, removed layers, five conditions, tolerances.
 const ZOO: &str = r#"condition a { light AM1.5G
  temperature 25 degC }
@@ -224,6 +233,7 @@ fn make_cases() -> Vec<Case> {
     }
     all.extend(cases("sixty.stack", &many_layers()));
     all.extend(cases("zoo.stack", ZOO));
+    all.extend(cases("life.stack", &begin_and_end_of_life()));
     all.extend(cases("twelve.stack", &twelve_conditions()));
     all.extend(cases("a<b>|`c`.stack", &hostile()));
     all

@@ -1,4 +1,5 @@
-//! External quantum efficiency of each junction against wavelength, and what is not reflected.
+//! Quantum efficiency of each junction against wavelength: what it collects, what it absorbs, the
+//! ratio of both, and what is not reflected.
 
 use crate::report::context::Context;
 use crate::report::figure::plot::{Scale, axis_below, axis_left, cut, interpolate, thin};
@@ -19,6 +20,37 @@ pub fn range(context: &Context<'_>) -> Option<(f64, f64)> {
     Some((((first - room) / 10.0).floor() * 10.0, ((last + room) / 10.0).ceil() * 10.0))
 }
 
+/// Whether a junction's carriers are followed, so that absorbed and collected differ.
+pub fn follows_carriers(context: &Context<'_>) -> bool {
+    context.drawn.junctions.iter().any(|junction| junction.collection_efficiency.is_some())
+}
+
+/// Below this share absorbed the internal efficiency is a ratio of two small numbers.
+const ABSORBS: f64 = 0.02;
+
+/// Wavelength in nm and internal quantum efficiency, where the junction absorbs enough to speak of.
+pub fn internal(context: &Context<'_>, junction: &str) -> Option<Vec<(f64, f64)>> {
+    let spectral = &context.drawn.spectral;
+    let (eqe, iqe) = (spectral.eqe.get(junction)?, spectral.iqe.get(junction)?);
+    let points = spectral.wavelength_nm.iter().zip(eqe).zip(iqe);
+    let shown = points.filter(|((_, eqe), iqe)| **iqe > 0.0 && **eqe / **iqe > ABSORBS);
+    Some(shown.map(|((nm, _), iqe)| (*nm, *iqe)).collect())
+}
+
+/// Share absorbed in the layers a junction collects from.
+fn absorbed(context: &Context<'_>, junction: usize) -> Vec<f64> {
+    let spectral = &context.drawn.spectral;
+    let mut sum = vec![0.0; spectral.wavelength_nm.len()];
+    for row in context.layers().filter(|row| row.junction() == Some(junction) && row.makes_current()) {
+        for (sum, share) in
+            sum.iter_mut().zip(spectral.absorptance.get(&row.result.name).into_iter().flatten())
+        {
+            *sum += share;
+        }
+    }
+    sum
+}
+
 /// Both drawings.
 pub fn draw(context: &Context<'_>, range: (f64, f64)) -> (Drawing, Drawing) {
     (draw_in(context, range, (WIDE, 44.0, 210.0)), draw_in(context, range, (SLIM, 34.0, 170.0)))
@@ -35,6 +67,26 @@ fn draw_in(context: &Context<'_>, range: (f64, f64), (width, left, height): (f64
         spectral.wavelength_nm.iter().zip(values).map(|(nm, v)| (x.of(*nm), y.of(100.0 * of(*v)))).collect()
     };
     let frame = ((x.at.0, top), (x.at.1, foot));
+    let followed = follows_carriers(context);
+    for index in (0..context.drawn.junctions.len()).filter(|_| followed) {
+        for run in cut(&curve(&absorbed(context, index), &|a| a), frame.0, frame.1) {
+            let mut area = thin(&run, 0.2);
+            if let (Some(first), Some(last)) = (area.first().copied(), area.last().copied()) {
+                area.extend([(last.0, foot), (first.0, foot)]);
+            }
+            drawing.polygon(&format!("t{}", style_number(index)), &area);
+        }
+    }
+    for (index, junction) in context.drawn.junctions.iter().enumerate().filter(|_| followed) {
+        let points: Vec<(f64, f64)> = internal(context, &junction.name)
+            .unwrap_or_default()
+            .into_iter()
+            .map(|(nm, iqe)| (x.of(nm), y.of(100.0 * iqe)))
+            .collect();
+        for run in cut(&points, frame.0, frame.1) {
+            drawing.polyline(&format!("q{}", style_number(index)), &thin(&run, 0.15));
+        }
+    }
     for run in cut(&curve(&spectral.reflectance, &|r| 1.0 - r), frame.0, frame.1) {
         drawing.polyline("cq", &thin(&run, 0.12));
     }
@@ -62,7 +114,7 @@ fn draw_in(context: &Context<'_>, range: (f64, f64), (width, left, height): (f64
 fn labels(context: &Context<'_>, drawing: &mut Drawing, (x, y): (Scale, Scale), (top, foot): (f64, f64)) {
     let spectral = &context.drawn.spectral;
     let mut unnamed = Vec::new();
-    drawing.text(Label::at(x.at.1, top - 11.0, "dashed: not reflected").size(11.5).class("q").end());
+    drawing.text(Label::at(x.at.1, top - 11.0, "grey dashes: not reflected").size(11.5).class("q").end());
     for (index, junction) in context.drawn.junctions.iter().enumerate() {
         let Some(eqe) = spectral.eqe.get(&junction.name) else { continue };
         // The centre of the range where it takes more than half of its own greatest share.

@@ -4,7 +4,7 @@ use crate::report::context::{Context, under};
 use crate::report::figure::curves::{draw, short_circuit_voltages};
 use crate::report::figure::power::{self, power_words, shared_scale};
 use crate::report::figure::{Figure, SLIM, WIDE};
-use crate::report::number::{celsius, current, fixed, percent, significant, with_unit};
+use crate::report::number::{current, fixed, percent, with_unit};
 use crate::report::text::{Text, visible};
 use crate::report::view::dark;
 use crate::report::view::further::{folds, words};
@@ -12,12 +12,12 @@ use crate::report::view::layers::{capital, joined};
 use crate::report::view::{Beside, Column, Section, Table, condition_words};
 use crate::results::{ConditionResult, JunctionResult};
 
-fn volts(value: f64) -> String {
+pub(super) fn volts(value: f64) -> String {
     with_unit(&fixed(value, 3), "V")
 }
 
 /// One head a condition after the first column.
-fn by_condition(context: &Context<'_>, caption: &str) -> Table {
+pub(super) fn by_condition(context: &Context<'_>, caption: &str) -> Table {
     let mut table = Table::new(Text::of(caption), &["figure"]);
     for condition in &context.results.conditions {
         table.columns.push(Column { head: Text::of(condition.name.clone()), right: true });
@@ -26,7 +26,7 @@ fn by_condition(context: &Context<'_>, caption: &str) -> Table {
 }
 
 /// A row with one cell a condition; left out where no condition has the figure.
-fn row(
+pub(super) fn row(
     table: &mut Table,
     context: &Context<'_>,
     name: Text,
@@ -280,62 +280,6 @@ fn operating(context: &Context<'_>, short: &[Option<f64>], series: bool) -> Tabl
             number(first.vmp_v, 3),
             Text::of(fixed(0.0, 3)),
         ]);
-    }
-    table
-}
-
-/// Every junction under every condition.
-pub fn conditions(context: &Context<'_>) -> Section {
-    let several = context.results.conditions.len() > 1;
-    let mut section =
-        Section::new("conditions", if several { "Conditions side by side" } else { "Junction by junction" });
-    section.tables.push(conditions_table(context, several));
-    if several {
-        let mut words: Vec<String> = Vec::new();
-        for condition in context.results.conditions.iter().skip(1) {
-            let points = (condition.efficiency - context.drawn.efficiency) * 100.0;
-            words.push(format!(
-                "{} {} points",
-                visible(&condition.name),
-                crate::report::number::signed(points, 2)
-            ));
-        }
-        section.lede = Some(Text::of(format!(
-            "Efficiency against {}: {}.",
-            visible(&context.drawn.name),
-            joined(&words)
-        )));
-    }
-    section.notes.push(Text::of(format!(
-        "{} are each junction’s by itself; the voltage at the greatest power is its share of the stack’s.",
-        capital("open circuit, short circuit and fill factor")
-    )));
-    section
-}
-
-fn conditions_table(context: &Context<'_>, several: bool) -> Table {
-    let caption = if several { "The same stack under each condition" } else { "The stack and its junctions" };
-    let mut table = by_condition(context, caption);
-    table.kind = if context.results.conditions.len() > 4 { "roomy" } else { "" };
-    table.group(Text::of("cell"));
-    row(&mut table, context, Text::of("light"), &|c| Some(visible(&c.light)));
-    row(&mut table, context, Text::of("received"), &|c| Some(power_words(c.incident_w_per_m2)));
-    row(&mut table, context, Text::of("temperature"), &|c| Some(celsius(c.temperature_k)));
-    row(&mut table, context, Text::of("reflected"), &|c| Some(current(c.reflected_ma_per_cm2)));
-    for (index, junction) in context.drawn.junctions.iter().enumerate() {
-        table.group(Text::of("junction ").p(junction.name.clone()));
-        let mut add = |name: Text, of: &dyn Fn(&JunctionResult) -> String| {
-            row(&mut table, context, name, &|c| c.junctions.get(index).map(of));
-        };
-        add(Text::of("gap"), &|j| with_unit(&fixed(j.gap_ev, 3), "eV"));
-        add(Text::of("photocurrent"), &|j| current(j.photocurrent_ma_per_cm2));
-        add(Text::new().symbol("J", "sc"), &|j| current(j.jsc_ma_per_cm2));
-        add(Text::new().symbol("V", "oc"), &|j| volts(j.voc_v));
-        add(Text::of("fill factor"), &|j| percent(j.fill_factor, 2));
-        add(Text::of("voltage at the greatest power"), &|j| volts(j.voltage_at_mpp_v));
-        add(Text::of("radiative dark current"), &|j| {
-            with_unit(&significant(j.dark_current_radiative_a_per_cm2, 3), "A/cm²")
-        });
     }
     table
 }

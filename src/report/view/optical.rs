@@ -5,6 +5,7 @@ use crate::report::figure::light::{Light, draw};
 use crate::report::figure::{Figure, eqe, plot};
 use crate::report::number::{fixed, trimmed, with_unit};
 use crate::report::text::{Text, visible};
+use crate::report::view::carriers;
 use crate::report::view::further::{folds, same_light, words};
 use crate::report::view::layers::{capital, joined};
 use crate::report::view::{Beside, Section, Table};
@@ -35,6 +36,7 @@ pub fn light(context: &Context<'_>) -> Section {
 
     section.figures.push(destinations(context, &light));
     section.figures.extend(efficiency(context));
+    section.tables.extend(carriers::losses(context));
     section.more = folds(context, &same_light, &|context| {
         let figures = Light::of(context).map(|light| destinations(context, &light)).into_iter();
         let figures = figures.chain(efficiency(context)).map(|figure| figure.folded(context.index));
@@ -112,25 +114,32 @@ fn table(context: &Context<'_>, light: &Light) -> Table {
 fn efficiency(context: &Context<'_>) -> Option<Figure> {
     let range = eqe::range(context)?;
     let (wide, slim) = eqe::draw(context, range);
+    let internal = eqe::follows_carriers(context);
     let names: Vec<String> = context.drawn.junctions.iter().map(|j| visible(&j.name)).collect();
     let mut figure = Figure::new(
         "eqe",
-        "External quantum efficiency",
+        "Quantum efficiency",
         format!(
-            "External quantum efficiency of {} against wavelength from {} to {} nm, with the share of the light that is not reflected.",
+            "External quantum efficiency of {} against wavelength from {} to {} nm, with the share of the light that is not reflected{}.",
             joined(&names),
             fixed(range.0, 0),
-            fixed(range.1, 0)
+            fixed(range.1, 0),
+            if internal { ", what each absorbs, and the internal quantum efficiency" } else { "" }
         ),
     )
     .drawn(wide, Some(slim));
-    figure.caption = Text::of(format!(
-        "Electrons per photon that reaches the cell between the fingers, {}.",
-        under(context.drawn)
-    ));
+    let mut caption =
+        format!("Electrons per photon that reaches the cell between the fingers, {}.", under(context.drawn));
+    if internal {
+        caption.push_str(" Heavy lines: collected; tinted: absorbed in the junction; thin lines: collected of what is absorbed, the internal efficiency.");
+    }
+    figure.caption = Text::of(caption);
     let spectral = &context.drawn.spectral;
     let mut heads = vec![">wavelength, nm".to_string()];
     heads.extend(names.iter().map(|name| format!(">{name}, %")));
+    if internal {
+        heads.extend(names.iter().map(|name| format!(">{name}, internal, %")));
+    }
     heads.push(">reflected, %".into());
     let heads: Vec<&str> = heads.iter().map(String::as_str).collect();
     let mut table = Table::new(Text::of("Quantum efficiency and reflectance"), &heads);
@@ -147,6 +156,15 @@ fn efficiency(context: &Context<'_>) -> Option<Figure> {
         let mut cells = vec![Text::of(fixed(nm, 0).replace('\u{202f}', ""))];
         for junction in &context.drawn.junctions {
             cells.push(Text::of(spectral.eqe.get(&junction.name).map(|eqe| at(eqe)).unwrap_or_default()));
+        }
+        for junction in context.drawn.junctions.iter().filter(|_| internal) {
+            let shown = eqe::internal(context, &junction.name);
+            let value = shown.and_then(|points| {
+                let (x, y): (Vec<f64>, Vec<f64>) = points.into_iter().unzip();
+                let inside = x.first()? <= &nm && &nm <= x.last()?;
+                inside.then(|| plot::interpolate(&x, &y, nm)).flatten()
+            });
+            cells.push(Text::of(value.map(|v| fixed(v * 100.0, 1)).unwrap_or_else(|| "–".into())));
         }
         cells.push(Text::of(at(&spectral.reflectance)));
         table.row(cells);
