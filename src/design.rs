@@ -15,9 +15,12 @@ mod request;
 
 pub use crate::syntax::{Accept, Comparison, Polarity, ToleranceMeaning};
 pub use faces::{BARE_M_PER_S, COVERED_M_PER_S, Face};
-pub use junction::{DiodeFit, Fingers, Interconnect, InterconnectKind, Junction, VoltageModel};
+pub use junction::{DiodeFit, FingerShape, Fingers, Interconnect, InterconnectKind, Junction, VoltageModel};
 pub use layer::{Doping, Duty, Extent, Layer, LayerSpans, Place, Strain, Transport};
-pub use request::{Chart, FreeValue, Limit, Measured, Requirement, Seek, Tolerance};
+pub use request::{
+    AxisKind, Chart, ChartAxis, FreeValue, Limit, Measured, MeasuredKind, Requirement, Season, SeasonRow,
+    Seek, Tolerance,
+};
 
 /// Absolute zero of the Celsius scale, K.
 pub const ZERO_CELSIUS_K: f64 = 273.15;
@@ -61,6 +64,8 @@ pub struct Design {
     pub tolerances: Vec<Tolerance>,
     /// `vary together`, as written.
     pub vary_together: Vec<Spanned<String>>,
+    /// Weighted conditions, if given.
+    pub season: Option<Season>,
     /// Measurements to lay over.
     pub measured: Vec<Measured>,
     /// Rules silenced in this stack.

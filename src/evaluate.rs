@@ -1,6 +1,7 @@
 //! [`Design`] → [`Results`]: the physics rooms, called in order for each condition.
 
 pub mod bands;
+mod charts;
 mod collect;
 mod condition;
 mod coupling;
@@ -8,18 +9,24 @@ mod dark;
 mod findings;
 mod finite;
 mod gap_map;
+mod grid;
 mod growth;
 mod hash;
 mod junctions;
 mod layers;
 mod ledger;
 mod lit;
+mod measured;
 pub mod metrics;
 mod models;
+mod season;
 mod spectral;
+mod temperature;
 mod transport;
 mod tunnels;
 mod wiring;
+
+use std::sync::Arc;
 
 use rayon::prelude::*;
 
@@ -44,16 +51,20 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
     if !is_whole(design) {
         return Outcome::nothing(findings);
     }
-    let Some(lit) = lit_by_condition(design) else {
+    let around = warmer_and_colder(design);
+    let mut lit = lit_by_condition(design, &around);
+    let warmth = lit.split_off(design.conditions.len());
+    let Some(lit) = lit.into_iter().collect::<Option<Vec<Arc<Lit>>>>() else {
         findings.extend(findings::too_short_waves(design));
         return Outcome::nothing(findings);
     };
-    let conditions: Vec<ConditionResult> = design
+    let mut conditions: Vec<ConditionResult> = design
         .conditions
         .par_iter()
         .zip(lit.par_iter())
         .map(|(condition, lit)| condition::condition_result(design, condition, lit, Detail::All))
         .collect();
+    warm(design, &mut conditions, (&around, &warmth));
     let mut results = Results {
         schema_version: SCHEMA_VERSION,
         tool: concat!("bandloom ", env!("CARGO_PKG_VERSION")).to_owned(),
@@ -77,6 +88,17 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
         findings.push(finding);
         return Outcome::nothing(findings);
     }
+    results.season = design.season.as_ref().and_then(|season| {
+        let here = results.conditions.get(season.condition)?;
+        Some(season::season(design, season, here)).filter(|it| it.energy_kwh_per_m2.is_finite())
+    });
+    results.charts = charts::charts(design);
+    results.measured = design
+        .measured
+        .iter()
+        .filter_map(|it| measured::measured(design, it, lit.get(it.condition)?))
+        .filter(|it| it.predicted.iter().chain([&it.rms]).all(|value| value.is_finite()))
+        .collect();
     findings.extend(findings::after(design, &results, &lit));
     let under = design.conditions.iter().zip(lit.iter().map(|lit| &**lit));
     findings.extend(transport::findings(design, under));
@@ -96,18 +118,46 @@ fn is_whole(design: &Design) -> bool {
     resolved && settled && thick && !design.junctions.is_empty() && !design.conditions.is_empty()
 }
 
-/// One [`Lit`] per condition; conditions that share light, angle and temperature share the work.
-fn lit_by_condition(design: &Design) -> Option<Vec<std::sync::Arc<Lit>>> {
-    let first_of = |condition: &Condition| {
-        design.conditions.iter().position(|other| lit::same_light(other, condition)).unwrap_or(0)
+/// Conditions a little colder and a little warmer than each, two for each that has them, in order.
+fn warmer_and_colder(design: &Design) -> Vec<(usize, Condition)> {
+    let both = |(index, condition): (usize, &Condition)| {
+        temperature::around(condition).into_iter().flatten().map(move |it| (index, it))
     };
-    let firsts: Vec<usize> = design.conditions.iter().map(first_of).collect();
-    let made: Vec<Option<std::sync::Arc<Lit>>> = design
-        .conditions
+    design.conditions.iter().enumerate().flat_map(both).collect()
+}
+
+/// Fills in what a kelvin does, out of figures at the temperatures `around`.
+fn warm(
+    design: &Design,
+    conditions: &mut [ConditionResult],
+    (around, lit): (&[(usize, Condition)], &[Option<Arc<Lit>>]),
+) {
+    let figures: Vec<Option<ConditionResult>> = around
+        .par_iter()
+        .zip(lit.par_iter())
+        .map(|((_, condition), lit)| {
+            Some(condition::condition_result(design, condition, lit.as_deref()?, Detail::Figures))
+        })
+        .collect();
+    for (pair, both) in around.chunks(2).zip(figures.chunks(2)) {
+        let ([(index, _), _], [Some(below), Some(above)]) = (pair, both) else { continue };
+        conditions[*index].temperature_coefficients =
+            temperature::coefficients(&conditions[*index], below, above);
+    }
+}
+
+/// One [`Lit`] per condition, then one for each of `more`; those that share light, angle,
+/// temperature and fluence share the work. `None` where there is no light or no gap.
+fn lit_by_condition(design: &Design, more: &[(usize, Condition)]) -> Vec<Option<Arc<Lit>>> {
+    let all: Vec<&Condition> = design.conditions.iter().chain(more.iter().map(|(_, it)| it)).collect();
+    let first_of =
+        |condition: &&Condition| all.iter().position(|other| lit::same_light(other, condition)).unwrap_or(0);
+    let firsts: Vec<usize> = all.iter().map(first_of).collect();
+    let made: Vec<Option<Arc<Lit>>> = all
         .par_iter()
         .enumerate()
         .map(|(index, condition)| {
-            (firsts[index] == index).then(|| Lit::new(design, condition)).flatten().map(std::sync::Arc::new)
+            (firsts[index] == index).then(|| Lit::new(design, condition)).flatten().map(Arc::new)
         })
         .collect();
     firsts.iter().map(|&first| made[first].clone()).collect()

@@ -142,7 +142,7 @@ pub enum Statement {
     /// `vary together top.* ± 2 % sigma`
     Vary(Box<Vary>),
     /// `measured eqe "run-17.csv" of top under noon`
-    Measured(Measured),
+    Measured(Box<Measured>),
     /// `accept lattice.mismatch on buffer because "…"`
     Accept(Accept),
     /// `limit lattice.mismatch 0.05 %`

@@ -9,7 +9,7 @@ pub mod table;
 pub mod text;
 
 pub use dimension::Dimension;
-pub use format::{in_unit, number, trade};
+pub use format::{in_unit, number, trade, value_in};
 pub use text::{Unit, UnknownUnit, parse};
 
 /// Elementary charge, C (exact, SI 2019). One electronvolt is this many joules.

@@ -86,8 +86,29 @@ pub enum InterconnectKind {
 pub struct Fingers {
     /// Share of the area that is covered, 0..1.
     pub shading: f64,
-    /// Series resistance, ohm m2.
+    /// Series resistance, ohm m2; 0 where its shape tells it.
     pub series_resistance_ohm_m2: f64,
+    /// Its shape, where the resistance follows from that.
+    pub shape: Option<FingerShape>,
     /// The whole statement.
     pub span: Span,
+}
+
+/// The shape of parallel fingers and what they are made of.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct FingerShape {
+    /// From finger to finger, m.
+    pub pitch_m: f64,
+    /// m.
+    pub width_m: f64,
+    /// m.
+    pub height_m: f64,
+    /// From the bus bar to the tip, m.
+    pub length_m: f64,
+    /// Of the metal, ohm m.
+    pub resistivity_ohm_m: f64,
+    /// Between metal and semiconductor, ohm m2.
+    pub contact_ohm_m2: f64,
+    /// Of the front layers, ohm per square, if stated.
+    pub sheet_ohm: Option<f64>,
 }

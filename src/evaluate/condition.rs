@@ -5,6 +5,7 @@ use crate::circuit::diode::Diode;
 use crate::circuit::series::{Point, Series};
 use crate::design::{Condition, Design};
 use crate::evaluate::dark::dark_curve;
+use crate::evaluate::grid::grid;
 use crate::evaluate::junctions::diodes;
 use crate::evaluate::ledger::account;
 use crate::evaluate::lit::Lit;
@@ -35,18 +36,37 @@ struct Alone {
     open_v: f64,
 }
 
+/// What multiplies the light that falls on the open front: concentration, obliquity, what fingers
+/// leave.
+pub(super) fn open_light(design: &Design, condition: &Condition) -> f64 {
+    let shading = design.fingers.as_ref().map_or(0.0, |fingers| fingers.shading);
+    condition.concentration * condition.incidence_rad.cos() * (1.0 - shading)
+}
+
 /// Greatest power of `condition`, W/m2, and nothing else.
 pub(super) fn power_w_per_m2(design: &Design, condition: &Condition, lit: &Lit) -> f64 {
-    let shading = design.fingers.as_ref().map_or(0.0, |fingers| fingers.shading);
-    let open = condition.concentration * condition.incidence_rad.cos() * (1.0 - shading);
-    let diodes = diodes(design, condition, lit, open);
-    let strings = strings(design, fingers_ohm_m2(design));
+    let diodes = diodes(design, condition, lit, open_light(design, condition));
+    let strings = strings(design, grid(design, condition).0);
     operating(strings, &diodes).0.iter().map(Operating::power).sum()
 }
 
-/// Series resistance of the front, ohm m2.
-fn fingers_ohm_m2(design: &Design) -> f64 {
-    design.fingers.as_ref().map_or(0.0, |fingers| fingers.series_resistance_ohm_m2)
+/// Current at each of `voltages`, A/m2: of a junction by itself, else of the stack; nothing for a
+/// stack of several strings.
+pub(super) fn predicted_current(
+    design: &Design,
+    (condition, lit): (&Condition, &Lit),
+    junction: Option<usize>,
+    voltages: &[f64],
+) -> Vec<f64> {
+    let diodes = diodes(design, condition, lit, open_light(design, condition));
+    let along = |series: &Series| voltages.iter().map(|&at| series.at_voltage(at).current).collect();
+    if let Some(junction) = junction {
+        return along(&Series::new(std::slice::from_ref(&diodes[junction]), 0.0, &[]));
+    }
+    match strings(design, grid(design, condition).0).as_slice() {
+        [one] => along(&one.series(&one.own(&diodes))),
+        _ => Vec::new(),
+    }
 }
 
 /// Every figure of `condition`.
@@ -56,11 +76,11 @@ pub(super) fn condition_result(
     lit: &Lit,
     detail: Detail,
 ) -> ConditionResult {
-    let shading = design.fingers.as_ref().map_or(0.0, |fingers| fingers.shading);
     let received = condition.concentration * condition.incidence_rad.cos();
-    let open = received * (1.0 - shading);
+    let open = open_light(design, condition);
     let diodes = diodes(design, condition, lit, open);
-    let wirings = strings(design, fingers_ohm_m2(design));
+    let (fingers_ohm_m2, grid) = grid(design, condition);
+    let wirings = strings(design, fingers_ohm_m2);
     let (operating, flows) = operating(wirings.clone(), &diodes);
     let power_w_per_m2: f64 = operating.iter().map(Operating::power).sum();
     let incident = condition.incident_w_per_m2();
@@ -88,6 +108,7 @@ pub(super) fn condition_result(
         reflected_ma_per_cm2: MA_PER_CM2 * open * reflected(lit),
         junctions: junction_results(design, lit, (&operating, &flows), &alone, &photocurrents),
         tunnels: tunnel_results(design, &operating),
+        grid,
         ..ConditionResult::default()
     };
     if detail == Detail::Figures {

@@ -3,6 +3,7 @@
 use std::sync::Arc;
 
 use crate::design::{Design, OpticsModel, VoltageModel};
+use crate::evaluate::grid;
 use crate::evaluate::junctions::fit_at;
 use crate::evaluate::lit::{Lit, junction_gap};
 use crate::finding::{Finding, Findings};
@@ -45,6 +46,7 @@ pub(super) fn after(design: &Design, results: &Results, lit: &[Arc<Lit>]) -> Fin
     findings.extend(no_index(design));
     findings.extend(held_ends(design, results, lit));
     findings.extend(fits_below_the_limit(design, lit));
+    findings.extend(no_sheet(design));
     findings
 }
 
@@ -150,6 +152,23 @@ fn fits_below_the_limit(design: &Design, lit: &[Arc<Lit>]) -> Findings {
             } else {
                 format!("write `j01 {} A/cm2` or more", per_cm2(limit * 1.001))
             }),
+        );
+    }
+    findings
+}
+
+/// A grid whose resistance follows from its shape over layers that do not tell what they conduct.
+fn no_sheet(design: &Design) -> Findings {
+    let mut findings = Findings::new();
+    let shape = design.fingers.as_ref().and_then(|fingers| Some((fingers, fingers.shape.as_ref()?)));
+    let (Some((fingers, shape)), Some(condition)) = (shape, design.conditions.first()) else {
+        return findings;
+    };
+    if grid::sheet_ohm(design, shape, condition.temperature_k).is_none() {
+        findings.push(
+            Finding::error("value.missing", "no front layer tells the sheet resistance under the fingers")
+                .at(fingers.span, "needs doping and mobility of the emitter")
+                .help("write `sheet_resistance 300 ohm/sq` in `fingers`"),
         );
     }
     findings

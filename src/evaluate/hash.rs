@@ -41,9 +41,28 @@ pub fn design_hash(design: &Design) -> String {
     });
     hash.optional(design.fingers.as_ref().map(|fingers| fingers.shading));
     hash.optional(design.fingers.as_ref().map(|fingers| fingers.series_resistance_ohm_m2));
+    if let Some(shape) = design.fingers.as_ref().and_then(|fingers| fingers.shape) {
+        hash.numbers(&[
+            shape.pitch_m,
+            shape.width_m,
+            shape.height_m,
+            shape.length_m,
+            shape.resistivity_ohm_m,
+            shape.contact_ohm_m2,
+        ]);
+        hash.optional(shape.sheet_ohm);
+    }
     hash.optional(design.area_m2);
     hash.debug(&design.switches);
     hash.list(&design.conditions, Canonical::condition);
+    if let Some(season) = &design.season {
+        hash.list(&season.rows, |hash, row| {
+            hash.number(row.seconds);
+            let it = &row.condition;
+            hash.text(&it.light.name);
+            hash.numbers(&[it.concentration, it.temperature_k, it.incidence_rad]);
+        });
+    }
     hash.list(&design.requirements, |hash, requirement| {
         hash.text(&requirement.metric.value);
         hash.debug(&requirement.comparison);

@@ -5,11 +5,13 @@ use crate::design::{Condition, Design, Requirement, ZERO_CELSIUS_K};
 use crate::evaluate::lit::junction_gap;
 use crate::finding::suggest::near;
 use crate::finding::{Finding, Findings};
-use crate::results::{ConditionResult, JunctionResult, LayerResult, Results};
+use crate::results::{ConditionResult, JunctionResult, LayerResult, Results, SeasonResult};
+use crate::source::Spanned;
 use crate::units::Dimension;
 
 type OfCondition = fn(&ConditionResult) -> Option<f64>;
 type OfJunction = fn(&JunctionResult) -> f64;
+type OfSeason = fn(&SeasonResult) -> f64;
 type OfLayer = fn(&LayerResult) -> Option<f64>;
 
 /// What a figure is measured in: dimension, unit shown, and SI over that unit.
@@ -23,6 +25,9 @@ const IRRADIANCE: Measure = Measure(Dimension::IRRADIANCE, "W/m2", 1.0);
 const GAP: Measure = Measure(Dimension::ENERGY, "eV", 1.0 / crate::units::ELEMENTARY_CHARGE);
 const THICKNESS: Measure = Measure(Dimension::LENGTH, "nm", 1e9);
 const LATTICE: Measure = Measure(Dimension::LENGTH, "Å", 1e10);
+const PER_KELVIN: Measure = Measure(Dimension::PER_TEMPERATURE, "%/K", 100.0);
+const VOLT_PER_KELVIN: Measure = Measure(Dimension::VOLTAGE_PER_TEMPERATURE, "mV/K", 1e3);
+const ENERGY: Measure = Measure(Dimension::ENERGY_PER_AREA, "kWh/m2", 1.0 / 3.6e6);
 const DENSITY: Measure = Measure(Dimension::PER_VOLUME, "/cm3", 1e-6);
 
 const OF_CONDITION: &[(&str, Measure, OfCondition)] = &[
@@ -35,7 +40,17 @@ const OF_CONDITION: &[(&str, Measure, OfCondition)] = &[
     ("jmp", CURRENT, |c| c.jmp_ma_per_cm2),
     ("current_mismatch", PLAIN, |c| c.current_mismatch),
     ("reflected_current", CURRENT, |c| Some(c.reflected_ma_per_cm2)),
+    ("voc_temperature_coefficient", VOLT_PER_KELVIN, |c| c.temperature_coefficients.as_ref()?.voc_mv_per_k),
+    ("jsc_temperature_coefficient", PER_KELVIN, |c| {
+        Some(100.0 * c.temperature_coefficients.as_ref()?.jsc_relative_per_k?)
+    }),
+    ("efficiency_temperature_coefficient", PER_KELVIN, |c| {
+        Some(100.0 * c.temperature_coefficients.as_ref()?.efficiency_relative_per_k)
+    }),
 ];
+
+const OF_SEASON: &[(&str, Measure, OfSeason)] =
+    &[("energy", ENERGY, |s| s.energy_kwh_per_m2), ("harvest_ratio", PLAIN, |s| s.harvest_ratio)];
 
 const OF_JUNCTION: &[(&str, Measure, OfJunction)] = &[
     ("photocurrent", CURRENT, |j| j.photocurrent_ma_per_cm2),
@@ -44,6 +59,7 @@ const OF_JUNCTION: &[(&str, Measure, OfJunction)] = &[
     ("fill_factor", PLAIN, |j| j.fill_factor),
     ("power", IRRADIANCE, |j| j.power_w_per_m2),
     ("voltage_at_mpp", VOLT, |j| j.voltage_at_mpp_v),
+    ("coupled", CURRENT, |j| j.coupled_ma_per_cm2),
 ];
 
 const OF_LAYER: &[(&str, Measure, OfLayer)] = &[
@@ -72,6 +88,7 @@ enum Metric {
     JunctionGap(usize),
     Layer(usize, OfLayer),
     GrownThickness,
+    Season(OfSeason),
     Pending,
 }
 
@@ -81,7 +98,9 @@ enum Metric {
 pub fn dimension(path: &str) -> Option<Dimension> {
     let find = |word: &str| {
         let of_parts = OF_JUNCTION.iter().map(|m| (m.0, m.1)).chain(OF_LAYER.iter().map(|m| (m.0, m.1)));
+        let of_season = OF_SEASON.iter().map(|m| (m.0, m.1));
         let of_stack = OF_CONDITION.iter().map(|m| (m.0, m.1)).chain(OF_STACK.iter().chain(PENDING).copied());
+        let of_stack = of_stack.chain(of_season);
         let mut all: Box<dyn Iterator<Item = (&str, Measure)>> =
             if path.contains('.') { Box::new(of_parts) } else { Box::new(of_stack) };
         all.find(|(name, _)| *name == word).map(|(_, measure)| measure.0)
@@ -93,6 +112,7 @@ pub fn dimension(path: &str) -> Option<Dimension> {
 pub fn names(design: &Design) -> Vec<String> {
     let mut names: Vec<String> = OF_CONDITION.iter().map(|m| m.0.to_owned()).collect();
     names.extend(OF_STACK.iter().chain(PENDING).map(|m| m.0.to_owned()));
+    names.extend(OF_SEASON.iter().filter(|_| design.season.is_some()).map(|m| m.0.to_owned()));
     for junction in &design.junctions {
         names.push(format!("{}.gap", junction.name.value));
         names.extend(OF_JUNCTION.iter().map(|m| format!("{}.{}", junction.name.value, m.0)));
@@ -109,6 +129,7 @@ fn lookup(design: &Design, path: &str) -> Option<(Metric, Measure)> {
         return of_condition
             .map(|m| (Metric::Condition(m.2), m.1))
             .or_else(|| OF_STACK.iter().find(|m| m.0 == path).map(|m| (Metric::GrownThickness, m.1)))
+            .or_else(|| OF_SEASON.iter().find(|m| m.0 == path).map(|m| (Metric::Season(m.2), m.1)))
             .or_else(|| PENDING.iter().find(|m| m.0 == path).map(|m| (Metric::Pending, m.1)));
     };
     if let Some((index, _)) = design.junction(owner) {
@@ -119,6 +140,22 @@ fn lookup(design: &Design, path: &str) -> Option<(Metric, Measure)> {
     }
     let index = design.layers.iter().position(|layer| layer.path == owner)?;
     OF_LAYER.iter().find(|m| m.0 == word).map(|m| (Metric::Layer(index, m.2), m.1))
+}
+
+/// The figure `path` of one condition, in the unit [`unit`] tells; `None` where it has none there,
+/// or belongs to the whole stack.
+pub(super) fn under(design: &Design, path: &str, result: &ConditionResult) -> Option<f64> {
+    match lookup(design, path)?.0 {
+        Metric::Condition(of) => of(result),
+        Metric::Junction(index, of) => result.junctions.get(index).map(of),
+        Metric::JunctionGap(index) => result.junctions.get(index).map(|junction| junction.gap_ev),
+        _ => None,
+    }
+}
+
+/// The unit a metric is shown in.
+pub(super) fn unit(design: &Design, path: &str) -> Option<&'static str> {
+    lookup(design, path).map(|(_, measure)| measure.1)
 }
 
 /// Metrics nobody knows, with the near name, and those that are not evaluated yet.
@@ -133,25 +170,44 @@ pub(super) fn check(design: &Design) -> Findings {
                     .help("require `efficiency` or `power` instead"),
             ),
             Some(_) => {}
-            None => {
-                let names = names(design);
-                let finding = Finding::error(
-                    "require.unknown-metric",
-                    format!("no metric is called `{}`", metric.value),
-                );
-                findings.push(match near(&metric.value, names.iter().map(String::as_str)) {
-                    Some(near) => finding
-                        .at(metric.span, format!("did you mean `{near}`?"))
-                        .help(format!("write `{near}`"))
-                        .fix(metric.span, near, false),
-                    None => finding
-                        .at(metric.span, "an unknown metric")
-                        .help(format!("write one of {}", examples(design))),
-                });
+            None => findings.push(unknown(design, metric)),
+        }
+    }
+    for chart in design.charts.iter().filter(|chart| !chart.axes.is_empty()) {
+        match lookup(design, &chart.metric.value) {
+            None => findings.push(unknown(design, &chart.metric)),
+            // A temperature coefficient at every point would be three points each.
+            Some((Metric::Condition(_), _)) if chart.metric.value.ends_with("_coefficient") => {
+                findings.push(not_charted(&chart.metric));
             }
+            Some((Metric::Condition(_) | Metric::Junction(..) | Metric::JunctionGap(_), _)) => {}
+            Some(_) => findings.push(not_charted(&chart.metric)),
         }
     }
     findings
+}
+
+fn not_charted(metric: &Spanned<String>) -> Finding {
+    Finding::error(
+        "require.unknown-metric",
+        format!("`{}` does not change along the axes of a chart", metric.value),
+    )
+    .at(metric.span, "not a figure of one condition")
+    .help("chart `efficiency`, `voc` or another figure of a condition")
+}
+
+fn unknown(design: &Design, metric: &Spanned<String>) -> Finding {
+    let names = names(design);
+    let finding = Finding::error("require.unknown-metric", format!("no metric is called `{}`", metric.value));
+    match near(&metric.value, names.iter().map(String::as_str)) {
+        Some(near) => finding
+            .at(metric.span, format!("did you mean `{near}`?"))
+            .help(format!("write `{near}`"))
+            .fix(metric.span, near, false),
+        None => {
+            finding.at(metric.span, "an unknown metric").help(format!("write one of {}", examples(design)))
+        }
+    }
 }
 
 fn examples(design: &Design) -> String {
@@ -214,6 +270,7 @@ pub(super) fn judge(design: &Design, results: &Results) -> (Vec<Judged>, Finding
             }
             Metric::Layer(layer, of) => add(None, results.layers.get(layer).and_then(of)),
             Metric::GrownThickness => add(None, Some(grown_thickness_nm(design))),
+            Metric::Season(of) => add(None, results.season.as_ref().map(of)),
             Metric::Condition(_) | Metric::Junction(..) => {
                 for (at, result) in results.conditions.iter().enumerate() {
                     let Some(condition) = design.conditions.get(at) else { continue };
@@ -249,12 +306,18 @@ fn without_value(design: &Design, requirement: &Requirement) -> Finding {
     let finding =
         Finding::error("require.unknown-metric", format!("`{}` has no value in this stack", metric.value));
     let whole = !metric.value.contains('.');
+    let of_season = OF_SEASON.iter().any(|of| of.0 == metric.value);
     match design.junctions.first() {
-        Some(junction) if whole && design.junctions.len() > 1 && metric.value != "current_mismatch" => {
+        Some(junction)
+            if whole && design.junctions.len() > 1 && !of_season && metric.value != "current_mismatch" =>
+        {
             finding
                 .at(metric.span, "each junction has its own terminals")
                 .help(format!("write `{}.{}`", junction.name.value, metric.value))
         }
+        _ if of_season => finding
+            .at(metric.span, "no weighted conditions are given")
+            .help("give them, such as `season \"mast-site.csv\" { … }`, or require `power`"),
         Some(_) if metric.value == "current_mismatch" => finding
             .at(metric.span, "needs two junctions under light")
             .help("remove this `require`, or add a second junction"),

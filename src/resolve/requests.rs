@@ -1,21 +1,21 @@
 //! What is asked of a stack: requirements, what is sought, charts, measurements, rules accepted
 //! and thresholds set.
 
-use crate::design::{Chart, Design, Limit, Measured, Requirement, Seek};
+use crate::design::{Design, Limit, Requirement, Seek};
 use crate::finding::{Finding, Severity};
 use crate::resolve::properties::pending;
 use crate::resolve::quantities::{Expected, Role};
 use crate::resolve::tree::Body;
-use crate::resolve::{Resolver, names};
+use crate::resolve::{Resolver, charts, measured, names};
 use crate::source::Spanned;
 use crate::syntax::{self, SeekTarget, Statement, Value};
 use crate::units::{Dimension, parse};
 
 /// Resolves every request of `body`; `conditions_whole` where every condition of the stack is right.
-pub(super) fn requests(
-    resolver: &mut Resolver<'_, '_>,
+pub(super) fn requests<'s>(
+    resolver: &mut Resolver<'_, 's>,
     design: &mut Design,
-    body: &Body<'_>,
+    body: &Body<'s>,
     conditions_whole: bool,
 ) {
     resolver.conditions_whole = conditions_whole;
@@ -25,9 +25,21 @@ pub(super) fn requests(
         match statement {
             Statement::Require(it) => require(resolver, design, it),
             Statement::Seek(it) => seek(resolver, design, it),
-            Statement::Chart(it) => chart(resolver, design, it),
+            Statement::Chart(it) => {
+                if let Some(under) = conditions(resolver, design, &it.under) {
+                    charts::chart(resolver, design, it, under);
+                }
+            }
             Statement::Vary(it) => vary(resolver, design, it),
-            Statement::Measured(it) => measured(resolver, design, it),
+            Statement::Measured(it) => {
+                let named = it.under.as_ref().map(|under| {
+                    conditions(resolver, design, std::slice::from_ref(under)).and_then(|_| {
+                        design.conditions.iter().position(|condition| condition.name == under.value)
+                    })
+                });
+                let first = (!design.conditions.is_empty()).then_some(0);
+                measured::measured(resolver, design, it, named.unwrap_or(first));
+            }
             Statement::Accept(it) => accept(resolver, design, it),
             Statement::Limit(it) => limit(resolver, design, it),
             _ => {}
@@ -96,6 +108,9 @@ fn measure(metric: &str) -> Option<(Dimension, Role)> {
         "efficiency" => Role::Share,
         "current_mismatch" | "mismatch" => Role::Ratio,
         "gap" => Role::Gap,
+        "voc_temperature_coefficient"
+        | "jsc_temperature_coefficient"
+        | "efficiency_temperature_coefficient" => Role::Any,
         "strain" | "voc" | "jsc" | "vmp" | "jmp" | "voltage_at_mpp" | "power" => Role::Any,
         _ => Role::NotNegative,
     };
@@ -171,32 +186,6 @@ fn seek(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Seek)
     design.seek.push(Seek { text: resolver.text(it.span), span: it.span });
 }
 
-fn chart(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Chart) {
-    conditions(resolver, design, &it.under);
-    for axis in &it.axes {
-        if axis.over.up_to.is_none() {
-            resolver.scope.report(
-                Finding::error("value.range", format!("the chart has no range of `{}`", axis.path.value))
-                    .at(axis.over.span, "one value")
-                    .help("write a range, such as `over 0.2 .. 1.5 um`"),
-            );
-        } else if let Some((dimension, false)) = resolver.scope.dimension(&axis.over) {
-            resolver.scope.slot(&axis.over, Expected::new("over", dimension, Role::Any));
-        }
-        if let Some(points) = &axis.points {
-            resolver.scope.quantity(points, Expected::new("points", Dimension::NONE, Role::Any));
-        }
-    }
-    pending(
-        &mut resolver.scope,
-        Severity::Advice,
-        "charts are",
-        it.span,
-        "set the value from the command line, such as `--set d=\"700 nm\"`, once for each point",
-    );
-    design.charts.push(Chart { text: resolver.text(it.span), span: it.span });
-}
-
 fn vary(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Vary) {
     if it.tolerance.meaning.is_none() {
         let text = resolver.text(it.tolerance.span);
@@ -214,34 +203,6 @@ fn vary(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Vary)
         "read the figures as those of the nominal design",
     );
     design.vary_together.push(Spanned::new(resolver.text(it.span), it.span));
-}
-
-fn measured(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Measured) {
-    const KINDS: &[&str] = &["eqe", "jv"];
-    if !KINDS.contains(&it.what.value.as_str()) {
-        let finding =
-            names::unknown("kind of measurement", &it.what, KINDS.iter().copied(), "write `eqe` or `jv`");
-        resolver.scope.report(finding);
-    }
-    if let Some(of) = &it.of
-        && design.junction(&of.value).is_none()
-    {
-        let known = design.junctions.iter().map(|junction| junction.name.value.as_str());
-        let finding = names::unknown("junction", of, known, "name a junction of this stack");
-        resolver.scope.report(finding);
-    }
-    if let Some(under) = &it.under {
-        conditions(resolver, design, std::slice::from_ref(under));
-    }
-    resolver.files.read(&mut resolver.scope, it.span.source, &it.file, "table");
-    pending(
-        &mut resolver.scope,
-        Severity::Advice,
-        "comparison with measurements is",
-        it.span,
-        "read the figures as predicted",
-    );
-    design.measured.push(Measured { text: resolver.text(it.span), span: it.span });
 }
 
 fn accept(resolver: &mut Resolver<'_, '_>, design: &mut Design, it: &syntax::Accept) {

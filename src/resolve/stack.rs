@@ -1,11 +1,11 @@
 //! One stack's body to its [`Design`].
 
-use crate::design::{Design, Fingers, Growth, OpticsModel, Switches, Terminals};
+use crate::design::{Design, Growth, OpticsModel, Switches, Terminals};
 use crate::finding::{Finding, Severity};
 use crate::resolve::properties::{self, pending, quantity, word};
 use crate::resolve::quantities::{Expected, Role};
 use crate::resolve::tree::Body;
-use crate::resolve::{Resolver, chemistry, junctions, layers, names, requests, strain};
+use crate::resolve::{Resolver, chemistry, fingers, junctions, layers, names, requests, season, strain};
 use crate::source::Span;
 use crate::syntax::{Argument, Property, Stack};
 use crate::units::Dimension;
@@ -25,6 +25,12 @@ pub(super) fn design<'s>(
     let mut design = empty(stack);
     body_properties(resolver, &mut design, body);
     let conditions_whole = conditions(resolver, &mut design, body);
+    resolver.conditions_whole = conditions_whole;
+    if let Some((property, frame)) = body.properties.iter().find(|(it, _)| it.name.value == "season") {
+        let here = resolver.scope.enter(*frame);
+        season::season(resolver, &mut design, property);
+        resolver.scope.close(here);
+    }
     let mut drafts = layers::drafts(resolver, &mut design, body);
     let terminals = body.properties.iter().find(|(property, _)| property.name.value == "terminals");
     junctions::separate(resolver, &design, terminals.map(|(property, _)| property.span));
@@ -57,6 +63,7 @@ fn empty(stack: &Stack) -> Design {
         charts: Vec::new(),
         tolerances: Vec::new(),
         vary_together: Vec::new(),
+        season: None,
         measured: Vec::new(),
         accepts: Vec::new(),
         file_accepts: Vec::new(),
@@ -69,6 +76,7 @@ fn empty(stack: &Stack) -> Design {
 fn body_properties(resolver: &mut Resolver<'_, '_>, design: &mut Design, body: &Body<'_>) {
     let here = resolver.scope.here();
     let mut stated: Vec<&str> = Vec::new();
+    let mut grid = None;
     for (property, frame) in &body.properties {
         resolver.scope.enter(*frame);
         let name = property.name.value.as_str();
@@ -83,7 +91,7 @@ fn body_properties(resolver: &mut Resolver<'_, '_>, design: &mut Design, body: &
             }
             "terminals" => terminals(resolver, design, property),
             "optics" => optics(resolver, design, property),
-            "fingers" => fingers(resolver, design, property),
+            "fingers" => grid = fingers::read(resolver, property),
             "area" => {
                 let expected = Expected::new("area", Dimension::AREA, Role::Positive);
                 design.area_m2 = quantity(&mut resolver.scope, property, expected);
@@ -113,6 +121,9 @@ fn body_properties(resolver: &mut Resolver<'_, '_>, design: &mut Design, body: &
         }
     }
     resolver.scope.close(here);
+    if let Some(grid) = grid {
+        fingers::finish(resolver, design, grid);
+    }
     let mut assume = |name: &str, sentence: &str| {
         if !stated.contains(&name) {
             design.assumptions.push(sentence.to_owned());
@@ -182,59 +193,6 @@ fn front_reflectance(resolver: &mut Resolver<'_, '_>, property: &Property) -> Op
         scope.close(outer);
     }
     found
-}
-
-fn fingers(resolver: &mut Resolver<'_, '_>, design: &mut Design, property: &Property) {
-    const KNOWN: &[&str] = &["shading", "series_resistance", "pitch", "width", "height"];
-    let scope = &mut resolver.scope;
-    properties::no_more(scope, property, 0);
-    let Some(block) = &property.block else {
-        properties::missing(
-            scope,
-            property,
-            "write `fingers { shading 3 %; series_resistance 20 mohm cm2 }`",
-        );
-        return;
-    };
-    let (mut shading, mut resistance) = (None, None);
-    let outer = scope.open();
-    let stated = properties::of_block(scope, block, "`fingers`", KNOWN);
-    for inner in &stated {
-        let name = inner.name.value.as_str();
-        match name {
-            "shading" => {
-                shading = quantity(scope, inner, Expected::new(name, Dimension::NONE, Role::Loss));
-            }
-            "series_resistance" => {
-                let expected = Expected::new(name, Dimension::RESISTANCE_AREA, Role::NotNegative);
-                resistance = quantity(scope, inner, expected);
-            }
-            _ => {
-                quantity(scope, inner, Expected::new(name, Dimension::LENGTH, Role::Positive));
-                pending(
-                    scope,
-                    Severity::Warning,
-                    "shading and resistance from the shape of the grid are",
-                    inner.span,
-                    "state `shading 3 %` and `series_resistance 20 mohm cm2`",
-                );
-            }
-        }
-    }
-    scope.close(outer);
-    for (word, sentence) in [
-        ("shading", "the front grid shades nothing, as nothing is stated"),
-        ("series_resistance", "the front grid adds no series resistance, as nothing is stated"),
-    ] {
-        if !stated.iter().any(|inner| inner.name.value == word) {
-            design.assumptions.push(sentence.to_owned());
-        }
-    }
-    design.fingers = Some(Fingers {
-        shading: shading.unwrap_or(0.0),
-        series_resistance_ohm_m2: resistance.unwrap_or(0.0),
-        span: property.span,
-    });
 }
 
 fn switch(resolver: &mut Resolver<'_, '_>, design: &mut Design, property: &Property) {

@@ -20,12 +20,13 @@ pub(super) struct Columns<'s> {
 /// One column of a table.
 pub(super) struct Column {
     /// What it holds, for wording.
-    what: String,
-    which: Which,
-    unit: Unit,
+    pub(super) what: String,
+    pub(super) which: Which,
+    pub(super) unit: Unit,
 }
 
-enum Which {
+/// By number or by heading.
+pub(super) enum Which {
     /// From 0.
     Number(usize),
     Heading(Spanned<String>),
@@ -47,6 +48,14 @@ impl<'s> Resolver<'_, 's> {
         let (number, unit_text) = match word {
             "wavelength" => (1, "nm"),
             "transmittance" => (2, "percent"),
+            "eqe" => (2, "percent"),
+            "voltage" => (1, "V"),
+            "current" => (2, "mA/cm2"),
+            "hours" => (1, "h"),
+            "temperature" => (2, "degC"),
+            "irradiance" if dimensions == [Dimension::IRRADIANCE] => (3, "W/m2"),
+            "concentration" => (3, "times"),
+            "incidence" => (4, "deg"),
             _ => (2, "W/m2/nm"),
         };
         let example = format!("{word} column {number} in {unit_text}");
@@ -286,7 +295,7 @@ impl<'s> Resolver<'_, 's> {
     }
 
     /// The column's position from 0.
-    fn position(&mut self, rows: &Rows<'_>, column: &Column) -> Option<usize> {
+    pub(super) fn position(&mut self, rows: &Rows<'_>, column: &Column) -> Option<usize> {
         match &column.which {
             Which::Number(at) => Some(*at),
             Which::Heading(heading) => {
@@ -329,7 +338,7 @@ fn cell<'t>(row: &[(Span, &'t str)], at: usize) -> Option<(Span, &'t str)> {
 }
 
 /// Rows of a text, cells split at comma, semicolon, tab or space, whichever the text uses.
-struct Rows<'t> {
+pub(super) struct Rows<'t> {
     source: SourceId,
     text: &'t str,
     at: usize,
@@ -337,7 +346,7 @@ struct Rows<'t> {
 }
 
 impl<'t> Rows<'t> {
-    fn new(source: SourceId, text: &'t str) -> Self {
+    pub(super) fn new(source: SourceId, text: &'t str) -> Self {
         let first = text.lines().find(|line| !skipped(line)).unwrap_or_default();
         let separator = ['\t', ';', ','].into_iter().find(|mark| first.contains(*mark));
         Self { source, text, at: 0, separator }
@@ -349,7 +358,7 @@ impl<'t> Rows<'t> {
         row.iter().map(|(_, text)| text.trim_matches('"').to_owned()).collect()
     }
 
-    fn next_row(&mut self) -> Option<Vec<(Span, &'t str)>> {
+    pub(super) fn next_row(&mut self) -> Option<Vec<(Span, &'t str)>> {
         while self.at < self.text.len() {
             let start = self.at;
             let line = self.text[start..].split('\n').next().unwrap_or_default();

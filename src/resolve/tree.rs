@@ -300,6 +300,7 @@ pub(super) const OF_STACK: &[&str] = &[
     "optics",
     "photon_recycling",
     "samples",
+    "season",
     "temperature",
     "terminals",
     "texture",

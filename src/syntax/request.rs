@@ -120,7 +120,7 @@ pub struct Vary {
     pub span: Span,
 }
 
-/// `measured eqe "run-17.csv" of top under noon`
+/// `measured eqe "run-17.csv" of top under noon { … }`
 #[derive(Clone, Debug, PartialEq)]
 pub struct Measured {
     /// `eqe`, `jv`
@@ -131,6 +131,8 @@ pub struct Measured {
     pub of: Option<Spanned<String>>,
     /// `under noon`
     pub under: Option<Spanned<String>>,
+    /// Which column is what, and the reference device.
+    pub block: Option<Block>,
     /// The whole statement.
     pub span: Span,
 }

@@ -71,6 +71,8 @@ impl Dimension {
     pub const DENSITY: Self = Self::whole([-3, 1, 0, 0, 0, 0]);
     /// kg/m2
     pub const AREAL_MASS: Self = Self::whole([-2, 1, 0, 0, 0, 0]);
+    /// J/m2
+    pub const ENERGY_PER_AREA: Self = Self::whole([0, 1, -2, 0, 0, 0]);
     /// W/kg
     pub const SPECIFIC_POWER: Self = Self::whole([2, 0, -3, 0, 0, 0]);
     /// J/K
@@ -194,6 +196,7 @@ const NAMES: &[(Dimension, &str)] = &[
     (Dimension::PRESSURE, "a pressure"),
     (Dimension::DENSITY, "a mass per volume"),
     (Dimension::AREAL_MASS, "a mass per area"),
+    (Dimension::ENERGY_PER_AREA, "an energy per area"),
     (Dimension::SPECIFIC_POWER, "a power per mass"),
     (Dimension::ENERGY_PER_TEMPERATURE, "an energy per temperature"),
     (Dimension::VOLTAGE_PER_TEMPERATURE, "a voltage per temperature"),

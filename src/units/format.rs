@@ -30,12 +30,17 @@ fn trimmed(text: &str) -> String {
     text.to_owned()
 }
 
-/// `si` in `unit`, `612 nm`. The unit is written as given.
-pub fn in_unit(si: f64, unit: &str) -> String {
-    let value = match parse(unit) {
+/// `si` as a number of `unit`; as it is where that is no unit.
+pub fn value_in(si: f64, unit: &str) -> f64 {
+    match parse(unit) {
         Ok(read) => (si - read.offset) / read.factor,
         Err(_) => si,
-    };
+    }
+}
+
+/// `si` in `unit`, `612 nm`. The unit is written as given.
+pub fn in_unit(si: f64, unit: &str) -> String {
+    let value = value_in(si, unit);
     if unit.is_empty() { number(value) } else { format!("{} {unit}", number(value)) }
 }
 

@@ -41,6 +41,7 @@ pub const SYMBOLS: &[Symbol] = &[
     symbol("J", 1.0, Dimension::ENERGY, "mkM"),
     symbol("V", 1.0, Dimension::VOLTAGE, "umk"),
     symbol("W", 1.0, Dimension::POWER, "numkM"),
+    symbol("Wh", 3600.0, Dimension::ENERGY, "mkM"),
     symbol("ohm", 1.0, Dimension::RESISTANCE, "umkM"),
     symbol("Pa", 1.0, Dimension::PRESSURE, "hkMG"),
     symbol("deg", std::f64::consts::PI / 180.0, Dimension::ANGLE, ""),

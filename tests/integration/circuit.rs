@@ -265,6 +265,7 @@ fn five_thousand_suns_through_ten_ohm_end() {
         design.fingers = Some(bandloom::design::Fingers {
             shading: 0.0,
             series_resistance_ohm_m2: ohm_m2,
+            shape: None,
             span: Span::default(),
         });
         let result = first(&design);

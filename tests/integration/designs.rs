@@ -112,6 +112,7 @@ pub(crate) fn empty() -> Design {
         charts: Vec::new(),
         tolerances: Vec::new(),
         vary_together: Vec::new(),
+        season: None,
         measured: Vec::new(),
         accepts: Vec::new(),
         file_accepts: Vec::new(),

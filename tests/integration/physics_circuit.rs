@@ -131,7 +131,8 @@ fn ledger(result: &ConditionResult, line: &str) -> f64 {
 fn resistances_cost_what_ohm_says() {
     let mut design = limit_stack(&[1.88, 1.42]);
     design.conditions[0].concentration = 100.0;
-    design.fingers = Some(Fingers { shading: 0.04, series_resistance_ohm_m2: 2e-6, span: Span::default() });
+    design.fingers =
+        Some(Fingers { shading: 0.04, series_resistance_ohm_m2: 2e-6, shape: None, span: Span::default() });
     design.interconnects.push(Interconnect {
         name: named("tunnel1"),
         kind: InterconnectKind::Tunnel,

@@ -126,6 +126,7 @@ fn design(case: &Case) -> Design {
     design.fingers = Some(Fingers {
         shading: case.shading,
         series_resistance_ohm_m2: case.fingers_ohm_m2,
+        shape: None,
         span: Span::default(),
     });
     design.switches.luminescent_coupling = case.coupling;

@@ -101,16 +101,17 @@ impl Builder<'_> {
 
     pub(super) fn measured(&mut self, node: Node<'_>) -> Option<Statement> {
         let span = self.span(&node);
-        let (mut what, mut file, mut of, mut under) = (None, None, None, None);
+        let (mut what, mut file, mut of, mut under, mut block) = (None, None, None, None, None);
         for part in node.into_inner() {
             match part.as_rule() {
                 Rule::name => what = Some(self.word(&part)),
                 Rule::string => file = Some(self.text(&part)),
                 Rule::of_path => of = self.only_word(part),
+                Rule::block => block = Some(self.block(part)),
                 _ => under = self.only_word(part),
             }
         }
-        Some(Statement::Measured(Measured { what: what?, file: file?, of, under, span }))
+        Some(Statement::Measured(Box::new(Measured { what: what?, file: file?, of, under, block, span })))
     }
 
     pub(super) fn accept(&mut self, node: Node<'_>) -> Option<Statement> {
