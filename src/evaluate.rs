@@ -8,7 +8,7 @@ mod coupling;
 mod dark;
 mod findings;
 mod finite;
-mod gap_map;
+pub mod gap_map;
 mod grid;
 mod growth;
 mod hash;

@@ -8,6 +8,7 @@ mod integration {
     mod carriers;
     mod circuit;
     mod cli;
+    mod cli_materials;
     mod conditions;
     mod designs;
     mod docs;

@@ -1,21 +1,31 @@
 //! `bandloom materials`: what the library holds.
 
-use clap::Args;
+use std::path::PathBuf;
+
+use clap::{Args, ValueEnum};
 
 use crate::cli::Exit;
 use crate::cli::console::{Console, Stream};
-use crate::materials::{Material, Origin, OriginKind, ROOM_TEMPERATURE_K};
-use crate::resolve::materials::{Entry, entries, look_up, with_gap};
+use crate::cli::materials::detail::Detail;
+use crate::materials::{Material, ROOM_TEMPERATURE_K, SharedMaterial};
+use crate::resolve::materials::{Wish, entries, look_up, search};
 
+mod arguments;
+mod detail;
 mod family;
+mod found;
+mod list;
+mod map;
+mod table;
 
 const EXAMPLES: &str = "\
 Examples:
-  bandloom materials                           the whole library, a line each
-  bandloom materials GaAs Ga0.51In0.49P        gap, lattice, index, sources
-  bandloom materials GaInP                     what a family reaches
+  bandloom materials                        the whole library, a line each
+  bandloom materials GaAs Ga0.51In0.49P     gap, index, transport, sources
+  bandloom materials GaAs --at 350K,650nm,850nm --doping 1e18/cm3
+  bandloom materials GaInP                  what a family reaches
   bandloom materials \"AlGaInP matched of gap 2.1 eV\" --on GaAs
-  bandloom materials --gap 1.7..1.9 --on GaAs  what has that gap and fits";
+  bandloom materials --over gap 1.7..1.9 --on GaAs --figure gaps.svg";
 
 /// Show what the material library holds
 #[derive(Args, Clone, Debug)]
@@ -25,75 +35,200 @@ pub(crate) struct Materials {
     #[arg(value_name = "MATERIAL")]
     phrases: Vec<String>,
     /// The wafer: what `matched` is to, and what a mismatch is against
-    #[arg(long, value_name = "MATERIAL")]
+    #[arg(long, value_name = "WAFER")]
     on: Option<String>,
-    /// Only what has a gap in this range, eV at 300 K
-    #[arg(long, value_name = "LOW..HIGH", value_parser = range, conflicts_with = "phrases")]
-    gap: Option<(f64, f64)>,
-    /// The wavelength of the index shown, nm
-    #[arg(long, value_name = "NM", default_value_t = 589.3, value_parser = wavelength)]
-    at: f64,
+    /// Search for what has a gap in this range, in eV, and fits the wafer of `--on`
+    #[arg(long, num_args = 2, value_names = ["gap", "LOW..HIGH"], conflicts_with = "phrases")]
+    over: Option<Vec<String>>,
+    /// How far off the wafer's lattice still fits
+    #[arg(long, value_name = "SHARE", default_value = "0.1%", value_parser = arguments::share, requires = "over")]
+    within: f64,
+    /// Wavelengths of the index and a temperature, each with its unit: `650nm`, `350K`
+    #[arg(long, value_name = "VALUE", value_delimiter = ',', value_parser = arguments::at)]
+    at: Vec<arguments::At>,
+    /// The doping at which transport is shown
+    #[arg(long, value_name = "DOPING", default_value = "1e17/cm3", value_parser = arguments::doping)]
+    doping: f64,
+    /// human or json
+    #[arg(long, value_enum, default_value_t, value_name = "human|json", hide_possible_values = true)]
+    format: Format,
+    /// Write gap against mismatch to the wafer of `--on` as an SVG file, `-` for standard output
+    #[arg(long, value_name = "FILE", requires = "on")]
+    figure: Option<PathBuf>,
 }
 
-fn range(text: &str) -> Result<(f64, f64), String> {
-    let wanted = || "write LOW..HIGH in eV, as in `1.7..1.9`".to_owned();
-    let (low, high) = text.trim().trim_end_matches("eV").split_once("..").ok_or_else(wanted)?;
-    let (low, high) = (low.trim().parse::<f64>(), high.trim().parse::<f64>());
-    match (low, high) {
-        (Ok(low), Ok(high)) if low >= 0.0 && low <= high && high.is_finite() => Ok((low, high)),
-        _ => Err(wanted()),
-    }
+/// How it is written.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+enum Format {
+    /// For people.
+    #[default]
+    Human,
+    /// For programs.
+    Json,
 }
 
-fn wavelength(text: &str) -> Result<f64, String> {
-    match text.trim().trim_end_matches("nm").trim().parse::<f64>() {
-        Ok(nm) if nm.is_finite() && nm > 0.0 => Ok(nm),
-        _ => Err("write a wavelength in nm above zero, as in `650`".to_owned()),
-    }
+/// Where and at what materials are shown.
+#[derive(Clone, Debug)]
+struct Setting {
+    /// K.
+    temperature_k: f64,
+    /// m.
+    wavelengths_m: Vec<f64>,
+    /// 1/m3.
+    doping_per_m3: f64,
+    /// What a mismatch is against.
+    wafer: Option<SharedMaterial>,
 }
 
-/// Runs the command: the list or the sheets on standard output.
+/// The refractive index of handbooks: the sodium D line, m.
+const SODIUM_M: f64 = 589.3e-9;
+
+/// Runs the command: the list, the search or the sheets on standard output.
 pub(crate) fn run(command: &Materials, console: &Console) -> Exit {
-    let wafer = match command.on.as_deref().map(|phrase| (phrase, found(phrase, None, console))) {
-        Some((_, None)) => return Exit::Trouble,
-        Some((phrase, Some(wafer))) => Some((phrase, wafer)),
+    let wafer = match command.on.as_deref().map(|phrase| wafer(phrase, console)) {
+        Some(None) => return Exit::Trouble,
+        Some(found) => found,
         None => None,
     };
-    let on = wafer.as_ref().map(|(_, wafer)| wafer);
-    if let Some((low, high)) = command.gap {
-        let fits = with_gap((low + high) / 2.0, (high - low) / 2.0, on);
-        return match fits.as_slice() {
-            [] => console
-                .trouble("nothing in the library has such a gap", &["widen `--gap`, or leave `--on` out"]),
-            fits => console.result(&fits.iter().map(|material| line(material, on)).collect::<String>()),
-        };
-    }
-    if command.phrases.is_empty() {
-        return console.result(&list(&entries()));
-    }
-    let mut exit = Exit::Fine;
-    let mut text = String::new();
-    for phrase in &command.phrases {
-        let width = console.look(Stream::Out).width;
-        let shown = match crate::resolve::materials::family(phrase) {
-            Some(family) => Some(family::sheet(&family, on, width)),
-            None => found(phrase, command.on.as_deref(), console)
-                .map(|material| sheet(&material, on, command.at, width)),
-        };
-        let Some(shown) = shown else {
-            exit = Exit::Trouble;
-            continue;
-        };
-        if !text.is_empty() {
-            text.push('\n');
+    let mut setting = Setting {
+        temperature_k: ROOM_TEMPERATURE_K,
+        wavelengths_m: Vec::new(),
+        doping_per_m3: command.doping,
+        wafer,
+    };
+    for at in &command.at {
+        match at {
+            arguments::At::Temperature(kelvin) => setting.temperature_k = *kelvin,
+            arguments::At::Wavelength(metres) => setting.wavelengths_m.push(*metres),
         }
-        text.push_str(&shown);
     }
-    exit.max(console.result(&text))
+    if setting.wavelengths_m.is_empty() {
+        setting.wavelengths_m.push(SODIUM_M);
+    }
+    match &command.over {
+        Some(over) => over_range(command, over, &setting, console),
+        None if command.phrases.is_empty() => {
+            let entries = entries();
+            let shown = match command.format {
+                Format::Human => list::table(&entries),
+                Format::Json => list::json(&entries),
+            };
+            console.result(&shown).max(figure(command, &setting, Vec::new(), &[], console))
+        }
+        None => details(command, &setting, console),
+    }
+}
+
+/// `--over gap LOW..HIGH`
+fn over_range(command: &Materials, over: &[String], setting: &Setting, console: &Console) -> Exit {
+    let gap_ev = match over {
+        [what, range] if what == "gap" => arguments::range(range),
+        [what, _] => Err((format!("`--over {what}` is no search"), "write `--over gap 1.7..1.9`".to_owned())),
+        _ => Err(("`--over` needs a word and a range".to_owned(), "write `--over gap 1.7..1.9`".to_owned())),
+    };
+    let gap_ev = match gap_ev {
+        Ok(gap_ev) => gap_ev,
+        Err((message, help)) => return console.trouble(&message, &[&help]),
+    };
+    let wish = Wish {
+        gap_ev,
+        wafer: setting.wafer.as_deref(),
+        mismatch: command.within,
+        temperature_k: setting.temperature_k,
+    };
+    let found = search(&wish);
+    let shown = match command.format {
+        Format::Human => found::table(&found, &wish, console.look(Stream::Out).width),
+        Format::Json => found::json(&found, &wish),
+    };
+    if found.fits.is_empty() && command.format == Format::Human {
+        let nearest = found::nearest(&found, &wish);
+        let helps: Vec<&str> = nearest.iter().map(String::as_str).collect();
+        return console.trouble(&found::nothing(&wish), &helps);
+    }
+    let mut families = Vec::new();
+    for fit in &found.fits {
+        families.extend(crate::resolve::materials::family(&fit.material.name));
+    }
+    let drawn = figure(command, setting, families, &found.fits, console);
+    if writes_figure_to_out(command) { drawn } else { console.result(&shown).max(drawn) }
+}
+
+/// The materials and families named, one after the other.
+fn details(command: &Materials, setting: &Setting, console: &Console) -> Exit {
+    let width = console.look(Stream::Out).width;
+    let (mut exit, mut texts, mut documents) = (Exit::Fine, Vec::new(), Vec::new());
+    let (mut families, mut fits) = (Vec::new(), Vec::new());
+    for phrase in &command.phrases {
+        if let Some(family) = crate::resolve::materials::family(phrase) {
+            texts.push(family::sheet(&family, setting.wafer.as_deref(), width));
+            documents.push(family::document(&family));
+            families.push(family);
+        } else if let Some(material) = found(phrase, command.on.as_deref(), console) {
+            let detail = Detail::of(&material, setting);
+            texts.push(detail.sheet(&material, width));
+            documents.push(table::value(&detail));
+            families.extend(crate::resolve::materials::family(&material.name));
+            fits.extend(found::fit(material, setting));
+        } else {
+            exit = Exit::Trouble;
+        }
+    }
+    let drawn =
+        if texts.is_empty() { Exit::Fine } else { figure(command, setting, families, &fits, console) };
+    let shown = match command.format {
+        Format::Human => texts.join("\n"),
+        Format::Json => table::document(serde_json::json!({ "materials": documents })),
+    };
+    if writes_figure_to_out(command) {
+        return exit.max(drawn);
+    }
+    exit.max(drawn).max(console.result(&shown))
+}
+
+fn writes_figure_to_out(command: &Materials) -> bool {
+    command.figure.as_ref().is_some_and(|path| path.as_os_str() == "-")
+}
+
+/// Writes the figure if one was asked for.
+fn figure(
+    command: &Materials,
+    setting: &Setting,
+    families: Vec<std::sync::Arc<crate::materials::alloy::Family>>,
+    fits: &[crate::resolve::materials::Fit],
+    console: &Console,
+) -> Exit {
+    let (Some(path), Some(wafer)) = (&command.figure, &setting.wafer) else { return Exit::Fine };
+    let Some(svg) = map::svg(families, fits, wafer, setting.temperature_k) else {
+        return console.trouble("nothing here has a lattice to draw", &["name a family, such as `GaInP`"]);
+    };
+    if writes_figure_to_out(command) {
+        return console.result(&svg);
+    }
+    match crate::cli::output::write(path, svg.as_bytes()) {
+        Ok(_) => Exit::Fine,
+        Err(why) => console.trouble(
+            &format!("cannot write `{}`: {}", why.path.display(), why.message),
+            &["name another file"],
+        ),
+    }
+}
+
+/// The material of `--on`, which needs a lattice.
+fn wafer(phrase: &str, console: &Console) -> Option<SharedMaterial> {
+    let material = found(phrase, None, console)?;
+    if material.lattice_constant(ROOM_TEMPERATURE_K).is_none() {
+        console.trouble(
+            &format!("`{}` has no lattice constant to match", material.label),
+            &["name a wafer such as GaAs, Ge, InP or Si"],
+        );
+        return None;
+    }
+    Some(material)
 }
 
 /// The material of a phrase; what is wrong with it is told.
-fn found(phrase: &str, on: Option<&str>, console: &Console) -> Option<Material> {
+fn found(phrase: &str, on: Option<&str>, console: &Console) -> Option<SharedMaterial> {
     let (outcome, _) = look_up(phrase, on);
     for finding in outcome.findings.iter() {
         let helps: Vec<&str> = finding.helps.iter().map(String::as_str).collect();
@@ -102,143 +237,11 @@ fn found(phrase: &str, on: Option<&str>, console: &Console) -> Option<Material> 
     if outcome.value.is_none() && outcome.findings.is_empty() {
         console.trouble(&format!("`{phrase}` is no material"), &["`bandloom materials` lists the library"]);
     }
-    outcome.value.filter(|_| !outcome.findings.has_errors()).map(|material| (*material).clone())
+    outcome.value.filter(|_| !outcome.findings.has_errors())
 }
 
-fn list(entries: &[Entry]) -> String {
-    let width = entries.iter().map(|entry| entry.name.chars().count()).max().unwrap_or(0);
-    let row = |entry: &Entry| {
-        let gap = match entry.gap_ev {
-            Some((low, high)) if entry.is_family && high > low => format!("{low:.2} to {high:.2} eV"),
-            Some((low, _)) => format!("{low:.3} eV"),
-            None => String::new(),
-        };
-        let index = if entry.has_index { "n,k" } else { "" };
-        format!("{:width$}  {gap:<15}  {index:3}  {}", entry.name, entry.about).trim_end().to_owned() + "\n"
-    };
-    let head = format!("{:width$}  {:<15}  {:3}  what\n", "name", "gap at 300 K", "");
-    head + &entries.iter().map(row).collect::<String>()
-}
-
-fn mismatch(material: &Material, on: Option<&Material>) -> Option<f64> {
-    let own = material.lattice_constant(ROOM_TEMPERATURE_K)?;
-    Some(own / on?.lattice_constant(ROOM_TEMPERATURE_K)? - 1.0)
-}
-
-/// One line: label, gap, lattice constant, mismatch.
-fn line(material: &Material, on: Option<&Material>) -> String {
-    let mut cells = vec![format!("{:<28}", material.label)];
-    if let Some(gap) = material.gap(ROOM_TEMPERATURE_K) {
-        cells.push(format!("{:.3} eV {:<12}", gap.ev, gap.kind.word()));
-    }
-    if let Some(a) = material.lattice_constant(ROOM_TEMPERATURE_K) {
-        cells.push(format!("{a:.4} Å"));
-    }
-    if let Some(mismatch) = mismatch(material, on) {
-        cells.push(format!("{:+.3} %", mismatch * 100.0));
-    }
-    cells.join("  ").trim_end().to_owned() + "\n"
-}
-
-/// Everything known of one material, a line each.
-fn sheet(material: &Material, on: Option<&Material>, at_nm: f64, width: usize) -> String {
-    let mut rows: Vec<(&str, String)> = Vec::new();
-    if let Some(gap) = material.gap(ROOM_TEMPERATURE_K) {
-        rows.push(("gap", format!("{:.4} eV at 300 K, {}", gap.ev, gap.kind.word())));
-    }
-    if let Some(bands) = &material.bands {
-        let valleys = [("Γ", &bands.gamma), ("X", &bands.x), ("L", &bands.l)];
-        let known: Vec<String> = valleys
-            .into_iter()
-            .filter_map(|(name, valley)| {
-                Some(format!("{name} {:.3} eV", valley.as_ref()?.at(ROOM_TEMPERATURE_K)))
-            })
-            .collect();
-        if known.len() > 1 {
-            rows.push(("valleys", known.join(", ")));
-        }
-    }
-    if let Some(a) = material.lattice_constant(ROOM_TEMPERATURE_K) {
-        rows.push(("lattice", format!("{a:.5} Å at 300 K")));
-    }
-    if let (Some(mismatch), Some(on)) = (mismatch(material, on), on) {
-        rows.push(("mismatch", format!("{:+.4} % on {}", mismatch * 100.0, on.label)));
-    }
-    rows.push((
-        "index",
-        match material.index(at_nm * 1e-9, ROOM_TEMPERATURE_K) {
-            Some((n, k)) => format!("n = {n:.4}, k = {k:.3e} at {at_nm} nm"),
-            None => format!("no data at {at_nm} nm"),
-        },
-    ));
-    if let Some(density) = material.density_g_per_cm3 {
-        rows.push(("density", format!("{density:.3} g/cm3")));
-    }
-    if !material.cautions.is_empty() {
-        rows.push(("caution", material.cautions.join(", ")));
-    }
-    written(&material.label, &rows, &material.origins, width)
-}
-
-/// A heading, rows of two columns, and the sources.
-fn written(label: &str, rows: &[(&str, String)], origins: &[Origin], width: usize) -> String {
-    let mut text = format!("{label}\n");
-    for (what, value) in rows {
-        text.push_str(&format!("  {what:<10}{value}\n"));
-    }
-    // What comes from one publication stands in one entry.
-    let mut cited: Vec<(String, Vec<&str>)> = Vec::new();
-    for origin in origins {
-        let kind = match origin.kind {
-            OriginKind::Published => String::new(),
-            kind => format!(" [{}]", kind.word()),
-        };
-        let cite = format!("{}{kind}", origin.cite);
-        match cited.iter_mut().find(|(known, _)| *known == cite) {
-            Some((_, what)) if what.contains(&origin.what.as_str()) => {}
-            Some((_, what)) => what.push(&origin.what),
-            None => cited.push((cite, vec![&origin.what])),
-        }
-    }
-    if !cited.is_empty() {
-        text.push_str("  sources\n");
-    }
-    for (cite, what) in cited {
-        text.push_str(&hanging(&format!("{}: {cite}", what.join(", ").replace('_', " ")), width));
-    }
-    text
-}
-
-/// An entry indented by four, its further lines by six, broken at spaces.
-fn hanging(text: &str, width: usize) -> String {
-    let mut out = String::from("   ");
-    let mut used = 3;
-    for word in text.split_whitespace() {
-        let length = word.chars().count();
-        if used + 1 + length > width && used > 6 {
-            out.push_str("\n     ");
-            used = 5;
-        }
-        out.push(' ');
-        out.push_str(word);
-        used += 1 + length;
-    }
-    out.push('\n');
-    out
-}
-
-#[cfg(test)]
-mod tests {
-    use super::*;
-
-    #[test]
-    fn ranges_and_wavelengths_are_numbers_in_their_unit() {
-        assert_eq!(range("1.7..1.9"), Ok((1.7, 1.9)));
-        assert_eq!(range("1.7 .. 1.9 eV"), Ok((1.7, 1.9)));
-        for bad in ["1.7", "1.9..1.7", "a..b", "-1..2", "1..inf", ""] {
-            assert!(range(bad).is_err(), "{bad}");
-        }
-        assert_eq!(wavelength("650 nm"), Ok(650.0));
-        assert!(wavelength("0").is_err() && wavelength("NaN").is_err());
-    }
+/// Relaxed, against the wafer, at a temperature in K.
+fn mismatch(material: &Material, wafer: Option<&Material>, temperature_k: f64) -> Option<f64> {
+    let own = material.lattice_constant(temperature_k)?;
+    Some(own / wafer?.lattice_constant(temperature_k)? - 1.0)
 }

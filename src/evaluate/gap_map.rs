@@ -1,6 +1,7 @@
 //! Gap against mismatch to this wafer: the layers, and the families they are taken from.
 
 use std::collections::BTreeSet;
+use std::sync::Arc;
 
 use crate::design::{Design, Duty};
 use crate::growth::critical::{Cover, critical_mismatch};
@@ -27,28 +28,51 @@ pub(super) fn gap_map(design: &Design) -> Option<GapMap> {
         compounds: Vec::new(),
         layers: marks(design, wafer_at, lattice),
     };
-    let mut drawn: BTreeSet<BTreeSet<&str>> = BTreeSet::new();
     let mut families: Vec<&Family> = Vec::new();
     for layer in &design.layers {
         let family = layer.material.as_ref().and_then(|material| material.family.as_deref());
         families.extend(family.filter(|family| !families.iter().any(|known| known.name == family.name)));
     }
-    for family in families {
-        for (ends, elements) in edges(family) {
-            if drawn.insert(elements.iter().copied().collect()) {
-                map.add(family, &ends, &elements, lattice);
-            }
-        }
-    }
+    map.draw(families.into_iter(), ROOM_K);
+    Some(map)
+}
+
+/// The map of some families against a wafer at a temperature in K, without layers. `None` where
+/// the wafer has no lattice.
+pub fn of_families(families: &[Arc<Family>], wafer: &Material, temperature_k: f64) -> Option<GapMap> {
+    let lattice = wafer.lattice_constant(temperature_k)?;
+    let mut map = GapMap {
+        wafer: wafer.label.clone(),
+        lattice_constant_angstrom: lattice,
+        families: Vec::new(),
+        compounds: Vec::new(),
+        layers: Vec::new(),
+    };
+    map.draw(families.iter().map(Arc::as_ref), temperature_k);
     Some(map)
 }
 
 impl GapMap {
-    fn add(&mut self, family: &Family, ends: &[Composition; 2], elements: &[&str], lattice: f64) {
+    /// Adds the ternaries around each family, every one once.
+    fn draw<'f>(&mut self, families: impl Iterator<Item = &'f Family>, temperature_k: f64) {
+        let mut drawn: BTreeSet<Vec<String>> = BTreeSet::new();
+        for family in families {
+            for (ends, elements) in edges(family) {
+                let mut sorted: Vec<String> = elements.iter().map(|&element| element.to_owned()).collect();
+                sorted.sort_unstable();
+                if drawn.insert(sorted) {
+                    self.add(family, &ends, &elements, temperature_k);
+                }
+            }
+        }
+    }
+
+    fn add(&mut self, family: &Family, ends: &[Composition; 2], elements: &[&str], temperature_k: f64) {
+        let lattice = self.lattice_constant_angstrom;
         let point = |share: f64| {
             let mixed = mix(ends, share);
-            let gap = family.bands(&mixed).gap(ROOM_K)?;
-            Some((family.lattice_constant(&mixed, ROOM_K)? / lattice - 1.0, gap))
+            let gap = family.bands(&mixed).gap(temperature_k)?;
+            Some((family.lattice_constant(&mixed, temperature_k)? / lattice - 1.0, gap))
         };
         let mut shares: Vec<f64> = (0..=STEPS).map(|step| step as f64 / STEPS as f64).collect();
         let kind = |share: f64| point(share).map(|(_, gap)| gap.kind);

@@ -22,6 +22,7 @@ pub mod blend;
 mod label;
 mod ordering;
 pub mod solve;
+pub mod trace;
 pub mod transport;
 
 pub use ordering::Ordering;

@@ -28,13 +28,15 @@ mod models;
 mod own_tables;
 mod phrases;
 mod samples;
+mod search;
 mod transport;
 mod unsolved;
 mod values;
 
-pub use listing::{Entry, entries, family, look_up, with_gap};
+pub use listing::{Entry, Group, entries, family, look_up};
 pub use models::MODEL_PROPERTIES;
 pub use phrases::{FreePart, Phrase, Reference, Resolved, materials_of};
+pub use search::{End, Fit, Search, Wish, search};
 
 /// What a name stands for.
 #[derive(Clone, Debug)]

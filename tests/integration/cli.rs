@@ -317,21 +317,6 @@ fn output_is_read_by_a_pager_that_stops_early() {
 }
 
 #[test]
-fn a_family_is_shown_without_a_composition() {
-    let place = Place::with(&[]);
-    let family = place.run(&["materials", "GaInP"]).ends(0);
-    for part in ["members   GaP, InP", "crossing", "bowing    Ga–In with P: Γ 0.65 eV", "sources"] {
-        assert!(family.out.contains(part) && family.err.is_empty(), "{part}\n{}{}", family.out, family.err);
-    }
-    // Relaxed lattice constants of 300 K, Vurgaftman et al. (2001): 5.4505, 5.8697 and 5.65325 Å, so
-    // that Vegard's rule gives Ga 0.5163.
-    assert!(family.out.contains("matched   to GaAs: 1.880 eV, direct, `Ga0.516In0.484P`"), "{}", family.out);
-    let elsewhere = place.run(&["materials", "GaAsP", "--on", "InP"]).ends(0);
-    assert!(elsewhere.out.contains("not to InP") && !elsewhere.out.contains("to GaAs"), "{}", elsewhere.out);
-    place.run(&["materials", "GaInN"]).ends(2);
-}
-
-#[test]
 fn helps_name_values_of_their_own_slot() {
     let file = "stack \"A\" {
         mirror { }

@@ -1,9 +1,11 @@
 //! Materials against handbooks and papers: lattices, gaps, compositions, and what the library holds.
 
+use std::collections::BTreeSet;
+
 use bandloom::materials::alloy::Family;
 use bandloom::materials::alloy::solve::crossing;
 use bandloom::materials::{GapKind, Material, OriginKind, SharedMaterial, library, table};
-use bandloom::resolve::materials::{Definition, Library, entries, look_up, with_gap};
+use bandloom::resolve::materials::{Definition, Library, Wish, entries, look_up, search};
 use bandloom::resolve::quantities::Scope;
 
 mod families;
@@ -199,10 +201,15 @@ fn lists_and_searches() {
     near(low, 1.35, 0.01, "InP end");
     assert!(high > 2.2 && high < 2.3, "{high}");
     let gaas = found("GaAs");
-    let labels: Vec<String> = with_gap(1.88, 0.02, Some(&gaas)).into_iter().map(|it| it.label).collect();
-    assert!(labels.contains(&"Ga0.516In0.484P".to_owned()), "{labels:?}");
+    let on_gaas = |gap_ev: (f64, f64)| {
+        search(&Wish { gap_ev, wafer: Some(&gaas), mismatch: 1e-3, temperature_k: 300.0 }).fits
+    };
+    let fits = on_gaas((1.86, 1.90));
+    let labels: Vec<&str> = fits.iter().map(|fit| fit.material.label.as_str()).collect();
+    assert!(labels.contains(&"Ga0.516In0.484P"), "{labels:?}");
     assert!(!labels.iter().any(|label| label.contains("Sb")), "{labels:?}");
     // AlGaAs is within 0.1 % of GaAs up to far beyond its crossing.
-    let wide: Vec<String> = with_gap(1.95, 0.02, Some(&gaas)).into_iter().map(|it| it.name).collect();
-    assert_eq!(wide, ["AlGaAs", "AlGaInP"]);
+    let fits = on_gaas((1.93, 1.97));
+    let names: BTreeSet<&str> = fits.iter().map(|fit| fit.material.name.as_str()).collect();
+    assert_eq!(names.into_iter().collect::<Vec<_>>(), ["AlGaAs", "AlGaInP"]);
 }

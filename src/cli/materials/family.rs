@@ -1,5 +1,6 @@
 //! `bandloom materials GaInP`: what a family reaches before its composition is said.
 
+use crate::cli::materials::{detail, table};
 use crate::materials::alloy::solve::{crossing, gap_reach, lattice_reach};
 use crate::materials::alloy::{BowingLaw, Family};
 use crate::materials::{Material, ROOM_TEMPERATURE_K, trim};
@@ -11,21 +12,24 @@ const WAFERS: &[&str] = &["GaAs", "Ge", "InP"];
 /// Everything known of a family at any composition, a line each.
 pub(super) fn sheet(family: &Family, on: Option<&Material>, width: usize) -> String {
     let members = family.members.iter().flatten().map(|member| member.material.label.clone());
-    let mut rows =
-        vec![("family", family.about.clone()), ("members", members.collect::<Vec<_>>().join(", "))];
+    let mut rows = vec![
+        ("family".to_owned(), family.about.clone()),
+        ("members".to_owned(), members.collect::<Vec<_>>().join(", ")),
+    ];
+    let mut row = |what: &str, value: String| rows.push((what.to_owned(), value));
     if let Some(reach) = gap_reach(family, None) {
         for (what, (gap, composition)) in [("gap", &reach.low), ("to", &reach.high)] {
             let label = family.label(composition);
-            rows.push((what, format!("{:.3} eV at 300 K, {}, `{label}`", gap.ev, gap.kind.word())));
+            row(what, format!("{:.3} eV at 300 K, {}, `{label}`", gap.ev, gap.kind.word()));
         }
     }
     if let Some((low, high)) = lattice_reach(family, ROOM_TEMPERATURE_K) {
-        rows.push(("lattice", format!("{low:.4} to {high:.4} Å at 300 K")));
+        row("lattice", format!("{low:.4} to {high:.4} Å at 300 K"));
     }
     if let (1, Some(at)) = (family.freedom(), crossing(family)) {
         let site = family.sites.iter().find(|site| site.len() > 1);
         if let Some(element) = site.and_then(|site| site.first()) {
-            rows.push(("crossing", format!("between direct and indirect at {element} {at:.3}, 300 K")));
+            row("crossing", format!("between direct and indirect at {element} {at:.3}, 300 K"));
         }
     }
     for bowing in &family.bowings {
@@ -39,7 +43,7 @@ pub(super) fn sheet(family: &Family, on: Option<&Material>, width: usize) -> Str
             let [first, second] = &bowing.pair;
             // Silicon and germanium share both sublattices.
             let with = if bowing.with.is_empty() { String::new() } else { format!(" with {}", bowing.with) };
-            rows.push(("bowing", format!("{first}–{second}{with}: {}", laws.join(", "))));
+            row("bowing", format!("{first}–{second}{with}: {}", laws.join(", ")));
         }
     }
     let named: Vec<Material> = match on {
@@ -49,9 +53,27 @@ pub(super) fn sheet(family: &Family, on: Option<&Material>, width: usize) -> Str
         }
     };
     for wafer in &named {
-        rows.push(("matched", matched(family, wafer)));
+        row("matched", matched(family, wafer));
     }
-    super::written(&family.name, &rows, &family.origins, width)
+    table::written(&family.name, &rows, &family.origins, width)
+}
+
+/// A family for programs, at 300 K.
+pub(super) fn document(family: &Family) -> serde_json::Value {
+    let members: Vec<&str> =
+        family.members.iter().flatten().map(|member| member.material.label.as_str()).collect();
+    let reach = gap_reach(family, None);
+    let end = |(gap, composition): &(crate::materials::Gap, crate::materials::alloy::Composition)| serde_json::json!({ "gap_ev": gap.ev, "gap_kind": gap.kind.word(), "label": family.label(composition) });
+    serde_json::json!({
+        "name": family.name,
+        "about": family.about,
+        "members": members,
+        "lowest": reach.as_ref().map(|reach| end(&reach.low)),
+        "highest": reach.as_ref().map(|reach| end(&reach.high)),
+        "lattice_constant_angstrom":
+            lattice_reach(family, ROOM_TEMPERATURE_K).map(|(low, high)| [low, high]),
+        "origins": detail::origins(&family.origins),
+    })
 }
 
 /// `0.65 eV`, `-0.127 + 1.31·x eV with x of Al`

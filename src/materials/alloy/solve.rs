@@ -47,12 +47,12 @@ pub struct GapReach {
 
 /// A path through the composition space, from 0 to 1. `None` where the wishes that define the
 /// path cannot be met.
-struct Path<'a> {
+pub(super) struct Path<'a> {
     at: Box<dyn Fn(f64) -> Option<Composition> + 'a>,
 }
 
 /// Points in which a path is looked at; between two of them a gap is taken as monotonic.
-const STEPS: usize = 120;
+pub(super) const STEPS: usize = 120;
 
 /// The composition that meets every wish.
 ///
@@ -150,9 +150,9 @@ pub fn crossing(family: &Family) -> Option<f64> {
 }
 
 /// A fraction that was asked for: sublattice, place, value.
-type Fixed = (usize, usize, f64);
+pub(super) type Fixed = (usize, usize, f64);
 
-fn fixed(family: &Family, wanted: &[Wanted]) -> Result<Vec<Fixed>, Unsolved> {
+pub(super) fn fixed(family: &Family, wanted: &[Wanted]) -> Result<Vec<Fixed>, Unsolved> {
     let mut fixed = Vec::new();
     for wish in wanted {
         let Wanted::Fraction(element, value) = wish else { continue };
@@ -184,7 +184,7 @@ fn complete(family: &Family, fixed: &[Fixed]) -> Result<Composition, Unsolved> {
 
 /// The straight line of compositions that is left once all but one fraction are fixed: its two
 /// ends. `None` where more or fewer are open.
-fn line(family: &Family, fixed: &[Fixed]) -> Option<(Composition, Composition)> {
+pub(super) fn line(family: &Family, fixed: &[Fixed]) -> Option<(Composition, Composition)> {
     let mut ends = [family.corner(), family.corner()];
     let mut moving = 0;
     for (site, elements) in family.sites.iter().enumerate() {
@@ -215,7 +215,7 @@ fn line(family: &Family, fixed: &[Fixed]) -> Option<(Composition, Composition)> 
     (moving == 1).then_some((from, to))
 }
 
-fn between(from: &Composition, to: &Composition, t: f64) -> Composition {
+pub(super) fn between(from: &Composition, to: &Composition, t: f64) -> Composition {
     let mix = |a: &Vec<f64>, b: &Vec<f64>| a.iter().zip(b).map(|(a, b)| a + t * (b - a)).collect();
     [mix(&from[0], &to[0]), mix(&from[1], &to[1])]
 }
@@ -252,7 +252,7 @@ fn on_lattice(
 
 /// The matched compositions of a family with two free fractions, by the fraction of its first
 /// element.
-fn matched_path(family: &Family, lattice: (f64, f64)) -> Path<'_> {
+pub(super) fn matched_path(family: &Family, lattice: (f64, f64)) -> Path<'_> {
     Path {
         at: Box::new(move |t| {
             let line = line(family, &[(0, 0, t)])?;
@@ -261,7 +261,7 @@ fn matched_path(family: &Family, lattice: (f64, f64)) -> Path<'_> {
     }
 }
 
-fn samples(path: &Path<'_>) -> Vec<(f64, Composition)> {
+pub(super) fn samples(path: &Path<'_>) -> Vec<(f64, Composition)> {
     let steps = (0..=STEPS).map(|step| step as f64 / STEPS as f64);
     let mut found: Vec<(f64, Composition)> =
         steps.filter_map(|t| (path.at)(t).map(|composition| (t, composition))).collect();

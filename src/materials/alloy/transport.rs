@@ -46,6 +46,11 @@ struct Share<'a> {
 }
 
 impl Family {
+    /// Every element in equal parts of its sublattice.
+    pub fn middle(&self) -> Composition {
+        [0, 1].map(|site| vec![1.0 / self.sites[site].len().max(1) as f64; self.sites[site].len()])
+    }
+
     /// The carriers' laws at a composition.
     pub fn carriers_at(&self, composition: &Composition) -> Carriers {
         let shares = self.shares(composition);

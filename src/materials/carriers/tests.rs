@@ -231,6 +231,19 @@ fn an_indirect_alloy_has_states_too() {
 }
 
 #[test]
+fn silicon_germanium_lies_between_its_ends() {
+    let mixed = material("Si0.5Ge0.5");
+    let lifetime = |material: &Material| {
+        material.non_radiative_lifetime_s(Carrier::Electron, 1e22, 300.0).expect("a lifetime")
+    };
+    let (silicon, germanium) = (material("Si"), material("Ge"));
+    assert!(lifetime(&mixed) < lifetime(&silicon) && lifetime(&mixed) > lifetime(&germanium));
+    // Alloy scattering: slower than either end.
+    within(mixed.mobility_m2_per_vs(Carrier::Electron, 1e20, 300.0), 500.0 * CM2, 1400.0 * CM2);
+    within(mixed.static_permittivity(), 11.7, 16.2);
+}
+
+#[test]
 fn unknown_stays_unknown() {
     let coat = material("MgF2");
     assert_eq!(coat.mobility_m2_per_vs(Carrier::Hole, 1e22, 300.0), None);

@@ -3,9 +3,10 @@
 use std::sync::Arc;
 
 use crate::finding::{Finding, Outcome};
-use crate::materials::alloy::solve::{Wanted, gap_reach, solve};
-use crate::materials::alloy::{Composition, Family};
-use crate::materials::{Material, ROOM_TEMPERATURE_K, SharedMaterial};
+use crate::materials::alloy::Family;
+use crate::materials::alloy::solve::gap_reach;
+use crate::materials::carriers::Carriers;
+use crate::materials::{MaterialClass, ROOM_TEMPERATURE_K, SharedMaterial};
 use crate::resolve::materials::phrases::{Phrase, Reference, materials_of};
 use crate::resolve::materials::{Definition, Library};
 use crate::resolve::quantities::Scope;
@@ -16,11 +17,57 @@ use crate::syntax::{Item, MaterialPhrase, Statement};
 const BEFORE: &str = "part it { layer ";
 const AFTER: &str = " }";
 
+/// What people look for a material by, in the order of the list.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, serde::Serialize)]
+#[serde(rename_all = "snake_case")]
+pub enum Group {
+    /// Elements and compounds.
+    Semiconductor,
+    /// Alloys whose composition has to be said.
+    Family,
+    /// Lead and tin halides, compounds and alloys.
+    Perovskite,
+    /// Transparent conductors and contact layers.
+    Contact,
+    /// Coats, glasses, adhesives, air.
+    Dielectric,
+    /// Metals.
+    Metal,
+}
+
+impl Group {
+    /// As a heading.
+    pub fn heading(self) -> &'static str {
+        match self {
+            Self::Semiconductor => "semiconductors",
+            Self::Family => "families of alloys",
+            Self::Perovskite => "halide perovskites",
+            Self::Contact => "contact layers and transparent conductors",
+            Self::Dielectric => "coats, glass, adhesives",
+            Self::Metal => "metals",
+        }
+    }
+
+    fn of(about: &str, class: MaterialClass, is_family: bool) -> Self {
+        let halide = ["iodide", "bromide", "chloride", "halide"].iter().any(|word| about.contains(word));
+        match class {
+            MaterialClass::Contact => Self::Contact,
+            MaterialClass::Metal => Self::Metal,
+            MaterialClass::Dielectric => Self::Dielectric,
+            _ if halide && (about.contains("lead") || about.contains("tin ")) => Self::Perovskite,
+            _ if is_family => Self::Family,
+            MaterialClass::Semiconductor | MaterialClass::GapModel => Self::Semiconductor,
+        }
+    }
+}
+
 /// One line of the list.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Entry {
     /// The name to write in a stack.
     pub name: String,
+    /// Where it stands in the list.
+    pub group: Group,
     /// What it is.
     pub about: String,
     /// Whether its composition has to be said.
@@ -29,6 +76,9 @@ pub struct Entry {
     pub gap_ev: Option<(f64, f64)>,
     /// Whether it has an index.
     pub has_index: bool,
+    /// Whether mobilities of both carriers are known; of a family, at all of its end members or at
+    /// compositions between them.
+    pub has_transport: bool,
 }
 
 /// Every built-in material, in the library's own order.
@@ -45,20 +95,28 @@ fn entry(name: &str, found: &Definition) -> Entry {
             let gap = compound.material.gap(ROOM_TEMPERATURE_K).map(|gap| gap.ev);
             Entry {
                 name: name.to_owned(),
+                group: Group::of(&compound.about, compound.material.class, false),
                 about: compound.about.clone(),
                 is_family: false,
+                has_transport: moves(&compound.material.carriers),
                 gap_ev: gap.map(|ev| (ev, ev)),
                 has_index: compound.material.optics != crate::materials::optics::Optics::None,
             }
         }
         Definition::Family(family) => Entry {
             name: name.to_owned(),
+            group: Group::of(&family.about, MaterialClass::Semiconductor, true),
             about: family.about.clone(),
             is_family: true,
+            has_transport: moves(&family.carriers_at(&family.middle())),
             gap_ev: gap_reach(family, None).map(|reach| (reach.low.0.ev, reach.high.0.ev)),
             has_index: family.index != crate::materials::alloy::FamilyIndex::None,
         },
     }
+}
+
+fn moves(carriers: &Carriers) -> bool {
+    carriers.mobility.electron.is_some() && carriers.mobility.hole.is_some()
 }
 
 /// The material of a phrase as it would stand in a layer (`GaAs`, `Ga0.51In0.49P`,
@@ -132,51 +190,4 @@ pub fn family(name: &str) -> Option<Arc<Family>> {
         Some(Definition::Family(family)) => Some(family),
         _ => None,
     }
-}
-
-/// Materials with a gap at 300 K within `tolerance_ev` of `gap_ev`: compounds, and of each family
-/// the composition that comes nearest to it. With a substrate only what fits its lattice: matched
-/// exactly where the family can, else within 0.1 %, which the trade calls matched.
-pub fn with_gap(gap_ev: f64, tolerance_ev: f64, substrate: Option<&Material>) -> Vec<Material> {
-    let mut library = Library::new();
-    let mut scope = Scope::new();
-    let names: Vec<String> = library.names().into_iter().map(str::to_owned).collect();
-    let lattice = substrate.and_then(|material| material.lattice_constant(ROOM_TEMPERATURE_K));
-    let suits = |material: &Material| {
-        let gap = material.gap(ROOM_TEMPERATURE_K);
-        let own = material.lattice_constant(ROOM_TEMPERATURE_K);
-        gap.is_some_and(|gap| (gap.ev - gap_ev).abs() <= tolerance_ev)
-            && lattice.is_none_or(|a| own.is_some_and(|own| (own / a - 1.0).abs() <= 1e-3))
-    };
-    let mut found = Vec::new();
-    for name in names {
-        match library.find(&name, &mut scope) {
-            Some(Definition::Compound(compound)) => {
-                found.extend(Some((*compound.material).clone()).filter(|material| suits(material)));
-            }
-            Some(Definition::Family(family)) => {
-                let candidates = nearest(&family, gap_ev, lattice);
-                let mut materials = candidates.into_iter().map(|composition| family.at(&composition, None));
-                found.extend(materials.find(|material| suits(material)));
-            }
-            None => {}
-        }
-    }
-    found
-}
-
-/// Compositions of a family worth a look for a gap on a lattice, the best first.
-fn nearest(family: &Family, gap_ev: f64, lattice: Option<f64>) -> Vec<Composition> {
-    let matched = lattice.map(|angstrom| Wanted::Lattice { angstrom, temperature_k: ROOM_TEMPERATURE_K });
-    let within = lattice.map(|angstrom| (angstrom, ROOM_TEMPERATURE_K)).filter(|_| family.freedom() > 1);
-    let Some(reach) = gap_reach(family, within) else { return Vec::new() };
-    let gap = Wanted::Gap(gap_ev.clamp(reach.low.0.ev, reach.high.0.ev));
-    let wishes = match (family.freedom(), matched) {
-        (1, Some(matched)) => vec![vec![matched], vec![gap]],
-        (1, None) => vec![vec![gap]],
-        (_, Some(matched)) => vec![vec![matched, gap]],
-        // Two open fractions and one wish: nothing to choose by.
-        (_, None) => Vec::new(),
-    };
-    wishes.iter().filter_map(|wishes| solve(family, wishes).ok()).collect()
 }

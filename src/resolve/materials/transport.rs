@@ -61,7 +61,7 @@ impl Reader<'_> {
             return;
         };
         let pair = [family.sites[site][0].clone(), family.sites[site][1].clone()];
-        let with = family.sites[1 - site][0].clone();
+        let with = family.sites[1 - site].first().cloned().unwrap_or_default();
         family.carriers.ternaries.push(TernaryCarriers { pair, with, all, samples });
     }
 
