@@ -113,6 +113,13 @@ impl Walk {
                 span: free.span,
             });
         }
+        if let (Some(taken), Some(made)) = (&resolved.taken, resolved.materials.first()) {
+            let (path, name) = (&layer.path, &made.name);
+            let sentence = format!("`{path}`, {name}, has {taken}, as its other fractions are not stated");
+            if !design.assumptions.contains(&sentence) {
+                design.assumptions.push(sentence);
+            }
+        }
         self.graded = resolved.materials;
         self.graded.first().cloned()
     }

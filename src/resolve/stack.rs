@@ -1,6 +1,6 @@
 //! One stack's body to its [`Design`].
 
-use crate::design::{Design, Growth, OpticsModel, Switches, Terminals};
+use crate::design::{Design, Growth, Layer, OpticsModel, Switches, Terminals};
 use crate::finding::{Finding, Severity};
 use crate::resolve::properties::{self, pending, quantity, word};
 use crate::resolve::quantities::{Expected, Role};
@@ -36,11 +36,30 @@ pub(super) fn design<'s>(
     junctions::separate(resolver, &design, terminals.map(|(property, _)| property.span));
     chemistry::materials(resolver, &mut design, &mut drafts);
     layers::finish(resolver, &mut design, drafts);
+    assume_optics(&mut design);
     strain::strain(resolver, &mut design);
     junctions::voltages(&mut design);
     requests::requests(resolver, &mut design, body, conditions_whole);
     resolver.scope.close(outer);
     design
+}
+
+/// What light does where nothing is said of it: interference as soon as every lit layer has an
+/// index.
+fn assume_optics(design: &mut Design) {
+    if !matches!(design.optics, OpticsModel::Interference { stated: None }) {
+        return;
+    }
+    let without = |layer: &Layer| {
+        let material = layer.material.as_ref();
+        material.is_some_and(|material| material.optics.index(500e-9, 0.0).is_none())
+    };
+    let sentence = if design.lit_layers().any(|(_, layer)| without(layer)) {
+        "one pass of light without reflection at the front, as no optics are stated"
+    } else {
+        "interference of light in the layers, as no optics are stated and each has an index"
+    };
+    design.assumptions.push(sentence.to_owned());
 }
 
 fn empty(stack: &Stack) -> Design {
@@ -131,7 +150,6 @@ fn body_properties(resolver: &mut Resolver<'_, '_>, design: &mut Design, body: &
     };
     assume("growth", "grown upright, as nothing is stated");
     assume("terminals", "two terminals, as nothing is stated");
-    assume("optics", "one pass of light without reflection at the front, as no optics are stated");
     assume("fingers", "no front grid: neither shading nor series resistance, as nothing is stated");
 }
 

@@ -72,6 +72,8 @@ pub struct Resolved {
     pub materials: Vec<SharedMaterial>,
     /// What it leaves free.
     pub free: Vec<FreePart>,
+    /// Fractions that nobody stated and the family took: `MA 0, Cs 0.2`.
+    pub taken: Option<String>,
 }
 
 /// Resolves a phrase. `None` where it is wrong, which is reported in `scope`.
@@ -90,7 +92,7 @@ pub fn materials_of(library: &mut Library, scope: &mut Scope, request: &Phrase<'
                 scope.report(finding);
                 return None;
             }
-            Some(Resolved { materials: vec![compound.material.clone()], free: Vec::new() })
+            Some(Resolved { materials: vec![compound.material.clone()], ..Resolved::default() })
         }
         Some(Definition::Family(family)) => of_family(library, scope, request, (&family, None)),
         // Defined, but wrong, which was reported where it stands.
@@ -251,6 +253,9 @@ fn of_family(
             });
         }
     }
+    if !asked.taken.is_empty() {
+        resolved.taken = Some(taken_text(&asked.taken));
+    }
     let graded = wishes.iter().any(|wish| wish.ends.1.is_some());
     let steps = if graded { request.steps.max(1) } else { 1 };
     for step in 0..steps {
@@ -347,6 +352,15 @@ fn lattice_beneath(scope: &mut Scope, reference: &Reference, span: Span, tempera
     found
 }
 
+/// `MA 0, Cs 0.2`
+fn taken_text(taken: &[(String, f64)]) -> String {
+    let parts: Vec<String> = taken
+        .iter()
+        .map(|(element, fraction)| format!("{element} {}", crate::units::number(*fraction)))
+        .collect();
+    parts.join(", ")
+}
+
 /// How the composition came to be.
 fn composition_origin(asked: &Asked<'_>, material: &Material, wanted: &[Wanted], stated: bool) -> Origin {
     let what = "composition".to_owned();
@@ -366,16 +380,18 @@ fn composition_origin(asked: &Asked<'_>, material: &Material, wanted: &[Wanted],
             Wanted::Gap(ev) => {
                 parts.push(format!("the gap asked for, {} eV at 300 K", crate::units::number(*ev)))
             }
-            Wanted::Fraction(element, fraction) if asked.taken.contains(&(element.clone(), *fraction)) => {
-                let fraction = crate::units::number(*fraction);
-                parts.push(format!("the fraction of {element} taken as {fraction}, since none was stated"));
-            }
+            // Said at the end.
+            Wanted::Fraction(element, fraction) if asked.taken.contains(&(element.clone(), *fraction)) => {}
             Wanted::Fraction(element, fraction) => {
                 parts.push(format!("the fraction of {element} stated, {}", crate::units::number(*fraction)));
             }
         }
     }
     let family = &material.name;
-    let cite = format!("worked out from {} by Vegard's rule and the bowing of {family}", parts.join(" and "));
+    let mut cite =
+        format!("worked out from {} by Vegard's rule and the bowing of {family}", parts.join(" and "));
+    if !asked.taken.is_empty() {
+        cite.push_str(&format!("; {} taken, since nothing was stated", taken_text(&asked.taken)));
+    }
     Origin { what, kind: OriginKind::Model, cite }
 }
