@@ -3,11 +3,8 @@
 //! A family mixes elements on one or both sublattices of zinc blende. Lattice and elastic
 //! constants follow Vegard's rule; gaps and the constants that bow follow
 //! `P = Σ w·P_member − bowing`, at each temperature, so that the laws of the end members stay
-//! laws. Quaternaries take the bowing of the ternaries around them by the surface interpolation
-//! of Glisson et al., J. Electron. Mater. 7, 1 (1978) and Williams et al., J. Electron. Mater. 7,
-//! 639 (1978), written for both kinds in one formula.
+//! laws.
 
-use std::collections::BTreeMap;
 use std::sync::Arc;
 
 use crate::materials::constants::Constants;
@@ -19,12 +16,14 @@ use crate::materials::{
 };
 
 pub mod blend;
+pub mod bowing;
 mod label;
 mod ordering;
 pub mod solve;
 pub mod trace;
 pub mod transport;
 
+pub use bowing::{Bowing, BowingLaw, LATTICE, Surface};
 pub use ordering::Ordering;
 
 /// Avogadro constant, 1/mol (exact, SI 2019).
@@ -54,30 +53,6 @@ fn law(material: &Material, kind: GapKind) -> Option<GapLaw> {
 
 /// Fractions of the elements of the group III and the group V sublattice, each summing to 1.
 pub type Composition = [Vec<f64>; 2];
-
-/// A bowing parameter `constant + slope·x`, `x` the fraction of the pair's first element.
-#[derive(Clone, Copy, Debug, PartialEq, Default)]
-pub struct BowingLaw {
-    /// At `x` = 0.
-    pub constant: f64,
-    /// Per unit of `x`.
-    pub slope: f64,
-}
-
-/// The bowing of one ternary: two elements mixed on one sublattice, one element on the other.
-#[derive(Clone, Debug, PartialEq)]
-pub struct Bowing {
-    /// The mixed elements; the first is the one a slope counts.
-    pub pair: [String; 2],
-    /// The element of the other sublattice; empty where both are shared.
-    pub with: String,
-    /// By quantity: `direct`, `x`, `l`, [`LATTICE`], or a name of
-    /// [`constants::NAMES`](crate::materials::constants::NAMES).
-    pub laws: BTreeMap<&'static str, BowingLaw>,
-}
-
-/// The quantity under which a family's lattice constant bows, Å.
-pub const LATTICE: &str = "lattice";
 
 /// Fractions of the second sublattice; all of it where both are shared.
 fn partners(fractions: &[f64]) -> &[f64] {
@@ -109,6 +84,8 @@ pub struct Family {
     pub members: Vec<Vec<Arc<Compound>>>,
     /// Bowing of every ternary around it.
     pub bowings: Vec<Bowing>,
+    /// How they are put together.
+    pub surface: Surface,
     /// Ordering, where the family shows it.
     pub ordering: Option<Ordering>,
     /// Fractions taken where a phrase leaves them open, the first one first.
@@ -164,49 +141,6 @@ impl Family {
         }
         sum.a300_angstrom -= self.bowing(composition, LATTICE);
         Some(sum)
-    }
-
-    /// What bowing takes off a quantity:
-    /// `Σ p_ab y_c u(1−u) C_abc(u) / Σ p_ab` over pairs `ab` of either sublattice and elements
-    /// `c` of the other, with `p_ab = x_a x_b` and `u = (1 + x_a − x_b)/2`.
-    fn bowing(&self, composition: &Composition, quantity: &str) -> f64 {
-        let (mut sum, mut weights) = (0.0, 0.0);
-        for site in 0..2 {
-            let (elements, fractions) = (&self.sites[site], &composition[site]);
-            for first in 0..elements.len() {
-                for second in first + 1..elements.len() {
-                    let pair = fractions[first] * fractions[second];
-                    if pair <= 0.0 {
-                        continue;
-                    }
-                    weights += pair;
-                    let share = (1.0 + fractions[first] - fractions[second]) / 2.0;
-                    let others = self.sites[1 - site].iter().map(String::as_str);
-                    let others = others.chain(self.sites[1 - site].is_empty().then_some(""));
-                    for (other, fraction) in others.zip(partners(&composition[1 - site])) {
-                        let names = [&elements[first], &elements[second]];
-                        let law = self.bowing_law(names, other, quantity, share);
-                        sum += pair * fraction * share * (1.0 - share) * law;
-                    }
-                }
-            }
-        }
-        if weights > 0.0 { sum / weights } else { 0.0 }
-    }
-
-    fn bowing_law(&self, pair: [&String; 2], with: &str, quantity: &str, share: f64) -> f64 {
-        for bowing in self.bowings.iter().filter(|bowing| bowing.with == with) {
-            let of_first = if [&bowing.pair[0], &bowing.pair[1]] == pair {
-                share
-            } else if [&bowing.pair[1], &bowing.pair[0]] == pair {
-                1.0 - share
-            } else {
-                continue;
-            };
-            let law = bowing.laws.get(quantity).copied().unwrap_or_default();
-            return law.constant + law.slope * of_first;
-        }
-        0.0
     }
 
     /// The valleys at a composition with the default ordering.

@@ -24,6 +24,7 @@ mod groups;
 mod index;
 mod listing;
 mod misplaced;
+mod mixing;
 mod models;
 mod own_tables;
 mod phrases;

@@ -10,6 +10,7 @@ use bandloom::resolve::quantities::Scope;
 
 mod families;
 mod files;
+mod handbook;
 mod optics;
 mod others;
 mod strain;

@@ -22,6 +22,34 @@ pub struct Tail {
     pub urbach_ev: f64,
     /// `C` in `α = C (E − E_X)²` for the indirect gap, 1/m/eV².
     pub indirect_per_m_ev2: f64,
+    /// A law for the edge in the middle of a family, where both ends say too little.
+    pub form: Option<EdgeForm>,
+}
+
+/// `α = a (1 + (E − E0)/E′)` above the gap (the form of O. D. Miller, E. Yablonovitch and S. R. Kurtz,
+/// IEEE J. Photovolt. 2, 303 (2012)), in full halfway between the ends of a family, not at all at an end.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct EdgeForm {
+    /// `a`, 1/m.
+    pub per_m: f64,
+    /// `E′`, eV.
+    pub over_ev: f64,
+    /// Where the tables take over again, eV; the law fades over the last [`FADING_EV`].
+    pub to_ev: f64,
+    /// Share of the law here.
+    pub weight: f64,
+}
+
+/// See [`EdgeForm::to_ev`], eV.
+const FADING_EV: f64 = 0.2;
+
+impl EdgeForm {
+    /// The factor on an absorption of `per_m` at `energy`, both above the gap `e0`.
+    fn factor(&self, energy: f64, e0: f64, per_m: f64) -> f64 {
+        let fading = ((self.to_ev - energy) / FADING_EV).clamp(0.0, 1.0);
+        let law = self.per_m * (1.0 + (energy - e0) / self.over_ev);
+        if per_m > 0.0 { 1.0 + self.weight * fading * (law / per_m - 1.0) } else { 1.0 }
+    }
 }
 
 /// A table of one composition and its critical points.
@@ -104,7 +132,12 @@ impl Blend {
         let mean = |at: usize| sources.iter().map(|source| source.weight * source.points[at]).sum::<f64>();
         let target = [e0, mean(1), mean(2)];
         let is_direct = bands.gamma.is_some();
-        table(&sources, target, (indirect_gap(bands), is_direct), self.tail)
+        let mut tail = self.tail;
+        if let Some(form) = &mut tail.form {
+            let site = usize::from(family.sites[0].len() == 1);
+            form.weight = 4.0 * composition[site].iter().product::<f64>();
+        }
+        table(&sources, target, (indirect_gap(bands), is_direct), tail)
     }
 
     /// The samples that speak for a composition, with weights that sum to 1: its neighbours along
@@ -233,7 +266,13 @@ fn table(
         (n, if n > 0.0 { imaginary / (2.0 * n) } else { 0.0 })
     };
     let per_k = |energy: f64| 4.0 * std::f64::consts::PI * energy / EV_M;
-    let at_gap = index_at(e0).1 * per_k(e0);
+    let raised = |energy: f64, k: f64| match &tail.form {
+        Some(form) => k * form.factor(energy, e0, k * per_k(energy)),
+        None => k,
+    };
+    let k_at_gap = index_at(e0).1;
+    let at_gap = raised(e0, k_at_gap) * per_k(e0);
+    let tail_factor = if k_at_gap > 0.0 { raised(e0, k_at_gap) / k_at_gap } else { 1.0 };
     // The indirect law holds up to E0 and takes at most four fifths of the absorption there, so
     // that what is left of the direct tail meets the table without a step.
     let law = |energy: f64| x_gap.map_or(0.0, |x| tail.indirect_per_m_ev2 * (energy - x).max(0.0).powi(2));
@@ -244,9 +283,9 @@ fn table(
         let energy = EV_M / wavelength;
         let (n, k) = index_at(energy);
         let k = if energy >= e0 {
-            k
+            raised(energy, k)
         } else {
-            let alpha = direct_share * k * per_k(energy) + share * law(energy);
+            let alpha = direct_share * tail_factor * k * per_k(energy) + share * law(energy);
             // Under 0.1 /m (1e-3 /cm) a metre absorbs a tenth: nothing, in a thin film.
             if alpha < 0.1 { 0.0 } else { alpha / per_k(energy) }
         };

@@ -4,7 +4,7 @@ use std::sync::Arc;
 
 use crate::finding::Finding;
 use crate::materials::ROOM_TEMPERATURE_K;
-use crate::materials::alloy::blend::{Blend, End, Sample, Shifted, Tail};
+use crate::materials::alloy::blend::{Blend, EdgeForm, End, Sample, Shifted, Tail};
 use crate::materials::alloy::{Composition, Compound, Family, FamilyIndex};
 use crate::materials::optics::{IndexTable, Optics};
 use crate::resolve::materials::blocks::Reader;
@@ -21,7 +21,7 @@ fn indirect_kind() -> Kind {
 impl Reader<'_> {
     pub(super) fn family_index(&mut self, group: &Property, family: &Family) -> FamilyIndex {
         let (mut samples, mut parent) = (Vec::new(), None);
-        let mut tail = Tail { urbach_ev: 0.01, indirect_per_m_ev2: 0.0 };
+        let mut tail = Tail { urbach_ev: 0.01, indirect_per_m_ev2: 0.0, form: None };
         let (mut along, mut moves_ev, mut scale) = (None, [(0.0, 0.0); 2], (0.0, 0.0));
         let mut end = None;
         for property in self.inside(group) {
@@ -38,11 +38,21 @@ impl Reader<'_> {
                 "indirect" => {
                     tail.indirect_per_m_ev2 = single(property, indirect_kind(), self.scope).unwrap_or(0.0);
                 }
+                "edge_form" => tail.form = self.edge_form(property, family),
                 "cite" => {}
                 _ => {
                     let known = [
-                        "sample", "samples", "parent", "along", "move_e1", "move_e2", "scale", "end",
-                        "urbach", "indirect",
+                        "sample",
+                        "samples",
+                        "parent",
+                        "along",
+                        "move_e1",
+                        "move_e2",
+                        "scale",
+                        "end",
+                        "urbach",
+                        "indirect",
+                        "edge_form",
                     ];
                     self.unknown_in("index", property, &known);
                 }
@@ -192,6 +202,19 @@ impl Reader<'_> {
         let second = arguments.word()?.value.clone();
         arguments.end(self.scope);
         Some([first, second])
+    }
+
+    /// `edge_form 5e3 /cm per 0.15 eV up_to 1.5 eV`, in a ternary.
+    fn edge_form(&mut self, property: &Property, family: &Family) -> Option<EdgeForm> {
+        let mut arguments = Arguments::of(property);
+        let per_length = Kind::of(Dimension::PER_LENGTH, 1.0, "5e3 /cm");
+        let per_m = quantity(&mut arguments, "edge_form", per_length, self.scope)?;
+        arguments.keyword("per");
+        let over_ev = quantity(&mut arguments, "edge_form", Kind::GAP, self.scope)?;
+        arguments.keyword("up_to");
+        let to_ev = quantity(&mut arguments, "edge_form", Kind::GAP, self.scope)?;
+        arguments.end(self.scope);
+        (family.freedom() == 1).then_some(EdgeForm { per_m, over_ev, to_ev, weight: 0.0 })
     }
 
     /// `end In 0.49 InP`: from that fraction of indium on InP takes over.

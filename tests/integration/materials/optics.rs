@@ -154,6 +154,7 @@ fn a_measured_composition_is_predicted_from_its_neighbours() {
     let family = family("AlGaAs");
     let FamilyIndex::Blend(blend) = &family.index else { panic!("a blend") };
     let (mut mapped, mut plain) = (0.0, 0.0);
+    println!("Al        n     k   mapped     n     k   plain");
     for at in 2..blend.samples.len() - 2 {
         let [left, sample, right] = [at - 1, at, at + 1].map(|at| &blend.samples[at]);
         let mut without = (*family).clone();
@@ -181,11 +182,13 @@ fn a_measured_composition_is_predicted_from_its_neighbours() {
             count += 1.0;
         }
         let rms = |sums: [f64; 2]| sums.map(|sum: f64| (sum / count).sqrt());
-        let [n, k] = rms(own_way);
+        let ([n, k], [plain_n, plain_k]) = (rms(own_way), rms(other_way));
+        println!("{:.3}  {n:.4} {k:.4}         {plain_n:.4} {plain_k:.4}", x(sample));
         // The scatter of the samples' compositions leaves some hundredths.
-        assert!(n < 0.05 && k < 0.05, "Al {}: n off by {n}, k by {k}", x(sample));
+        assert!(n <= 0.035, "Al {}: n off by {n}", x(sample));
+        assert!(k <= 0.05, "Al {}: k off by {k}", x(sample));
         mapped += n + k;
-        plain += rms(other_way).iter().sum::<f64>();
+        plain += plain_n + plain_k;
     }
     assert!(mapped < 0.8 * plain, "mapped {mapped}, averaged {plain}");
 }
