@@ -38,6 +38,8 @@ pub struct Design {
     pub terminals: Terminals,
     /// Which optics were asked for.
     pub optics: OpticsModel,
+    /// How faces scatter; `None` where all are flat.
+    pub texture: Option<Texture>,
     /// Every layer, sunward first, with those that are removed or stand under fingers only.
     pub layers: Vec<Layer>,
     /// Every junction, sunward first.
@@ -145,6 +147,17 @@ pub enum OpticsModel {
         /// Where it was asked for; `None` where it is the default.
         stated: Option<Span>,
     },
+}
+
+/// Faces that scatter.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Texture {
+    /// Pyramids of silicon's slow planes, upright or inverted, on the sunward face of the wafer.
+    pub pyramids: bool,
+    /// A rear face that sends light back in all directions alike.
+    pub lambertian_rear: bool,
+    /// The first statement of it.
+    pub span: Span,
 }
 
 /// Switches of the electrical model; `None` where the user said nothing.

@@ -44,6 +44,9 @@ pub(super) fn too_short_waves(design: &Design) -> Findings {
 pub(super) fn after(design: &Design, results: &Results, lit: &[Arc<Lit>]) -> Findings {
     let mut findings = Findings::new();
     findings.extend(no_index(design));
+    if let Some(finding) = texture_in_one_pass(design) {
+        findings.push(finding);
+    }
     findings.extend(held_ends(design, results, lit));
     findings.extend(fits_below_the_limit(design, lit));
     findings.extend(no_sheet(design));
@@ -76,6 +79,18 @@ fn no_index(design: &Design) -> Findings {
         );
     }
     findings
+}
+
+/// Faces that scatter where light goes straight through once.
+fn texture_in_one_pass(design: &Design) -> Option<Finding> {
+    let texture = design.texture?;
+    let help = match (&design.optics, layers_without_index(design).first()) {
+        (OpticsModel::OnePass { .. }, _) => "leave out `optics one_pass`".to_owned(),
+        (_, Some(&layer)) => format!("give `{}` an index", design.layers[layer].path),
+        _ => return None,
+    };
+    let message = "texture in one pass of light is not evaluated yet";
+    Some(Finding::warning("feature.pending", message).at(texture.span, "has no effect here").help(help))
 }
 
 /// Current absorbed where a table's end value is held, worst condition of each layer. Beyond the

@@ -24,6 +24,9 @@ pub fn design_hash(design: &Design) -> String {
         }
         OpticsModel::Interference { .. } => hash.text("interference"),
     }
+    if let Some(texture) = design.texture {
+        hash.debug(&("texture", texture.pyramids, texture.lambertian_rear));
+    }
     hash.list(&design.layers, Canonical::layer);
     hash.list(&design.junctions, |hash, junction| {
         hash.text(&junction.name.value);

@@ -33,6 +33,7 @@ pub(super) fn model_notes(design: &Design, lit: &Lit) -> Vec<ModelNote> {
         ));
     }
     notes.push(optics(design));
+    notes.extend(texture(design));
     if has(design, |optics| matches!(optics, Optics::Table(_))) {
         notes.push(note(
             "optical tables",
@@ -139,12 +140,40 @@ fn interference(design: &Design) -> ModelNote {
              what leaves them."
         ),
         blind_to:
-            "Rough and textured faces, scattering, light that the front metal sends back, layers whose \
+            "Rough faces, scattering (but for a texture stated), light that the front metal sends back, layers whose \
                    thickness varies across the cell."
                 .to_owned(),
         cite: "Macleod, Thin-Film Optical Filters (2010); Katsidis and Siapkas, Appl. Opt. 41, 3978 (2002)"
             .to_owned(),
     }
+}
+
+fn texture(design: &Design) -> Option<ModelNote> {
+    let texture = design.texture.filter(|_| by_waves(design))?;
+    let name = match (texture.pyramids, texture.lambertian_rear) {
+        (true, true) => "texture pyramids lambertian_rear: an estimate",
+        (true, false) => "texture pyramids: an estimate",
+        _ => "texture lambertian_rear: an estimate",
+    };
+    let mut does = String::new();
+    if texture.pyramids {
+        does.push_str(
+            "Light meets two facets at 54.74° to the face in turn and is reflected by both by the waves in the films \
+             at its angle there, and runs obliquely through the wafer. ",
+        );
+    }
+    does.push_str(
+        "After its first return from the rear light fills all directions of the wafer (without one: of the thickest \
+         layer that collects) alike, fades by 2E3 from face to face, and 1/n² of it is inside the front's escape cone.",
+    );
+    Some(note(
+        name,
+        &does,
+        "Third facets, facets seen from oblique planes, films of another thickness on a facet, emission into the \
+         layers below by rays that scatter.",
+        "Campbell and Green, J. Appl. Phys. 62, 243 (1987); Tiedje et al., IEEE Trans. Electron Devices 31, 711 \
+         (1984); Green, Prog. Photovolt. 10, 235 (2002)",
+    ))
 }
 
 fn optics(design: &Design) -> ModelNote {

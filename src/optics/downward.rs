@@ -73,32 +73,11 @@ pub(super) fn downward(
     mut halves: impl FnMut(&Ray) -> Vec<[Half; 2]>,
 ) -> Downward {
     let mut sum = Downward { lost: vec![0.0; n.len()], to: vec![vec![0.0; n.len()]; junctions] };
-    // With u = n² sin²θ: inside the cone in the cosine outside, where what leaves the front is
-    // smooth, beyond it in the cosine inside.
-    let within = GAUSS4.iter().map(|node| (true, *node));
-    let beyond = GAUSS8.iter().map(|node| (false, *node));
-    for (inside, (node, weight)) in within.chain(beyond) {
-        let square = |n: f64| if inside { 1.0 } else { n * n };
-        let range = |n: f64| match (inside, n > 1.0) {
-            (true, true) => (0.0, 1.0),
-            (true, false) => ((1.0 - n * n).sqrt(), 1.0),
-            (false, true) => (0.0, (1.0 - n.powi(-2)).sqrt()),
-            (false, false) => (0.0, 0.0),
-        };
-        let cosine = |n: f64| {
-            let (from, to) = range(n);
-            from + 0.5 * (1.0 + node) * (to - from)
-        };
-        let u: Vec<f64> = n.iter().map(|&n| square(n) * (1.0 - cosine(n).powi(2))).collect();
-        let along: Vec<f64> = u.iter().map(|u| u.sqrt()).collect();
-        let cos = n.iter().zip(&u).map(|(n, u)| (1.0 - u / (n * n)).max(0.0).sqrt()).collect();
-        let ray = Ray { along, cos };
+    for (ray, shares) in rays(n) {
         let pairs = halves(&ray);
         for [upper, lower] in &pairs {
             for at in 0..n.len() {
-                let (from_cosine, to_cosine) = range(n[at]);
-                let width = weight * cosine(n[at]) * (to_cosine - from_cosine);
-                let share = square(n[at]) * width / pairs.len() as f64;
+                let share = shares[at] / pairs.len() as f64;
                 let (r, s) = (lower.returned[at].min(1.0), upper.returned[at].min(1.0));
                 let sent = share * upper.by_junction[from][at] / (1.0 - r * s).max(f64::EPSILON);
                 sum.lost[at] += sent * (1.0 - r);
@@ -109,4 +88,30 @@ pub(super) fn downward(
         }
     }
     sum
+}
+
+/// Rays over the hemisphere of a medium of index `n`, with their shares of `∫₀^{n²} du`,
+/// `u = n² sin²θ`, by wavelength: inside the escape cone to a front with index 1 by the cosine
+/// outside, where what leaves the front is smooth, beyond it by the cosine inside.
+pub(super) fn rays(n: &[f64]) -> impl Iterator<Item = (Ray, Vec<f64>)> {
+    let within = GAUSS4.iter().map(|node| (true, *node));
+    let beyond = GAUSS8.iter().map(|node| (false, *node));
+    within.chain(beyond).map(move |(inside, (node, weight))| {
+        let ray = |n: f64| {
+            let square = if inside { 1.0 } else { n * n };
+            let (from, to) = match (inside, n > 1.0) {
+                (true, true) => (0.0, 1.0),
+                (true, false) => ((1.0 - n * n).sqrt(), 1.0),
+                (false, true) => (0.0, (1.0 - n.powi(-2)).sqrt()),
+                (false, false) => (0.0, 0.0),
+            };
+            let cosine = from + 0.5 * (1.0 + node) * (to - from);
+            let u = square * (1.0 - cosine * cosine);
+            // du = 2 square cosine d(cosine), over an interval of that width.
+            (u.sqrt(), (1.0 - u / (n * n)).max(0.0).sqrt(), square * weight * cosine * (to - from))
+        };
+        let all: Vec<(f64, f64, f64)> = n.iter().map(|&n| ray(n)).collect();
+        let column = |of: fn(&(f64, f64, f64)) -> f64| all.iter().map(of).collect::<Vec<f64>>();
+        (Ray { along: column(|ray| ray.0), cos: column(|ray| ray.1) }, column(|ray| ray.2))
+    })
 }

@@ -2,10 +2,13 @@
 
 use std::sync::Arc;
 
+mod texture;
+
 use crate::design::{Design, Duty, Layer, Place};
 use crate::materials::optics::Optics;
 use crate::numerics::quadrature::GAUSS4;
 use crate::optics::downward::{Downward, Half, Ray, downward};
+use crate::optics::interference::texture::Scatter;
 use crate::optics::media::Media;
 use crate::optics::model::Shares;
 use crate::optics::wave::profile::Profile;
@@ -23,6 +26,7 @@ pub struct Interference {
     /// Layer and medium of a metal or mirror without end; air where there is none.
     rear: Option<(usize, usize)>,
     incidence_rad: f64,
+    scatter: Option<Scatter>,
 }
 
 #[derive(Clone, Debug)]
@@ -54,7 +58,9 @@ impl Interference {
     /// The lit layers of `design`, all of which have an index, at `temperature_k` and
     /// `incidence_rad` from the normal.
     pub fn new(design: &Design, temperature_k: f64, incidence_rad: f64) -> Self {
-        let mut model = Self { media: Media::default(), slabs: Vec::new(), rear: None, incidence_rad };
+        let mut model =
+            Self { media: Media::default(), slabs: Vec::new(), rear: None, incidence_rad, scatter: None };
+        let mut wafer = None;
         for (index, layer) in passed(design) {
             let Some(material) = &layer.material else { continue };
             let medium = model.media.find_or_add(material, temperature_k);
@@ -67,9 +73,15 @@ impl Interference {
                 Place::Junction(junction) if layer.collects() => Some(junction),
                 _ => None,
             };
+            if layer.duty == Duty::Wafer {
+                wafer = Some(index);
+            }
             let coherent = layer.duty != Duty::Wafer && thickness_m <= THICK_M;
             model.slabs.push(Slab { layer: index, junction, medium, thickness_m, coherent });
         }
+        let host = model.host(wafer);
+        model.scatter =
+            design.texture.zip(host).map(|(texture, host)| Scatter { pyramids: texture.pyramids, host });
         model
     }
 
@@ -105,6 +117,9 @@ impl Interference {
     /// Shares at vacuum wavelengths in m, mean of s and p. At every wavelength reflected, absorbed
     /// and passing sum to 1.
     pub fn shares(&self, wavelength_m: &[f64]) -> Shares {
+        if let Some(scatter) = self.scatter {
+            return self.scattered(scatter, (wavelength_m, self.incidence_rad)).0;
+        }
         let columns = self.columns(wavelength_m);
         let solved = self.stack(wavelength_m, self.incidence_rad, &indices(&columns)).solve();
         let mut absorbed: Vec<Vec<f64>> = solved.absorbed;
@@ -120,6 +135,13 @@ impl Interference {
 
     /// See [`LightModel::profiles`](crate::optics::model::LightModel::profiles).
     pub fn profiles(&self, rows: &[usize], wavelength_m: &[f64]) -> Vec<Option<Vec<Profile>>> {
+        match self.scatter {
+            Some(scatter) => self.scattered_profiles(scatter, rows, wavelength_m),
+            None => self.flat_profiles(rows, wavelength_m),
+        }
+    }
+
+    fn flat_profiles(&self, rows: &[usize], wavelength_m: &[f64]) -> Vec<Option<Vec<Profile>>> {
         let stack = self.stack(wavelength_m, self.incidence_rad, &indices(&self.columns(wavelength_m)));
         let sheets: Vec<usize> = rows.iter().copied().filter(|row| *row < self.slabs.len()).collect();
         let mut profiles = stack.profiles(&sheets).into_iter();
@@ -133,8 +155,11 @@ impl Interference {
         let indices = indices(&self.columns(wavelength_m));
         for (node, weight) in GAUSS4 {
             let incidence_rad = (0.5 * (1.0 + node)).sqrt().asin();
-            let solved = self.stack(wavelength_m, incidence_rad, &indices).solve();
-            for (slab, row) in self.slabs.iter().zip(&solved.absorbed) {
+            let rows = match self.scatter {
+                Some(scatter) => self.scattered(scatter, (wavelength_m, incidence_rad)).0.absorbed,
+                None => self.stack(wavelength_m, incidence_rad, &indices).solve().absorbed,
+            };
+            for (slab, row) in self.slabs.iter().zip(&rows) {
                 if slab.junction == Some(junction) {
                     sum.iter_mut().zip(row).for_each(|(sum, part)| *sum += 0.5 * weight * part.max(0.0));
                 }

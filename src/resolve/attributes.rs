@@ -1,14 +1,14 @@
 //! What is said of one layer on its line and in its block.
 
 use crate::design::{Design, Doping, Duty, Extent, Place, Strain};
-use crate::finding::{Finding, Severity};
+use crate::finding::Finding;
 use crate::resolve::layers::{Draft, blank};
 use crate::resolve::materials::MODEL_PROPERTIES;
-use crate::resolve::properties::{self, Kept, conflict, pending};
+use crate::resolve::properties::{self, Kept, conflict};
 use crate::resolve::quantities::{Expected, Role};
 use crate::resolve::slots::slot;
 use crate::resolve::tree::LayerNode;
-use crate::resolve::{Resolver, names, spilled};
+use crate::resolve::{Resolver, names, spilled, stack};
 use crate::source::{Span, Spanned};
 use crate::syntax::{Attribute, Expression, MaterialPhrase, Property, Statement, Value};
 use crate::units::{Dimension, trade};
@@ -333,13 +333,7 @@ fn property_of_layer(
         "growth_temperature" => (Dimension::TEMPERATURE, Role::GrowthTemperature),
         "rate" => (Dimension::VELOCITY, Role::GrowthRate),
         "texture" => {
-            pending(
-                &mut resolver.scope,
-                Severity::Warning,
-                "texture is",
-                property.span,
-                "read the figures as those of planar faces",
-            );
+            stack::texture(&mut resolver.scope, design, property);
             return;
         }
         // `note` is for the reader, the rest belongs to the material.

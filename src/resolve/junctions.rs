@@ -5,13 +5,13 @@ use crate::design::{
     BARE_M_PER_S, COVERED_M_PER_S, Design, DiodeFit, Duty, Face, InterconnectKind, Place, Terminals,
     VoltageModel, ZERO_CELSIUS_K,
 };
-use crate::finding::{Finding, Severity};
+use crate::finding::Finding;
 use crate::materials::MaterialClass;
-use crate::resolve::Resolver;
 use crate::resolve::layers::Placed;
-use crate::resolve::properties::{self, Kept, pending, quantity};
+use crate::resolve::properties::{self, Kept, quantity};
 use crate::resolve::quantities::{Expected, Role};
 use crate::resolve::tree::{GroupNode, OF_INTERCONNECT, OF_JUNCTION, OF_RECOMBINATION, near_or};
+use crate::resolve::{Resolver, stack};
 use crate::source::Span;
 use crate::syntax::{Argument, Property};
 use crate::units::{Dimension, in_unit};
@@ -82,13 +82,7 @@ fn junction<'s>(resolver: &mut Resolver<'_, 's>, design: &mut Design, index: usi
                 let expected = Expected::new("breakdown", Dimension::VOLTAGE, Role::Positive);
                 design.junctions[index].breakdown_v = quantity(&mut resolver.scope, property, expected);
             }
-            "texture" => pending(
-                &mut resolver.scope,
-                Severity::Warning,
-                "texture is",
-                property.span,
-                "read the figures as those of planar faces",
-            ),
+            "texture" => stack::texture(&mut resolver.scope, design, property),
             _ => {}
         }
     }

@@ -1,11 +1,13 @@
 //! One stack's body to its [`Design`].
 
-use crate::design::{Design, Growth, Layer, OpticsModel, Switches, Terminals};
+use crate::design::{Design, Growth, Layer, OpticsModel, Switches, Terminals, Texture};
 use crate::finding::{Finding, Severity};
 use crate::resolve::properties::{self, pending, quantity, word};
 use crate::resolve::quantities::{Expected, Role};
 use crate::resolve::tree::Body;
-use crate::resolve::{Resolver, chemistry, fingers, junctions, layers, names, requests, season, strain};
+use crate::resolve::{
+    Resolver, Scope, chemistry, fingers, junctions, layers, names, requests, season, strain,
+};
 use crate::source::Span;
 use crate::syntax::{Argument, Property, Stack};
 use crate::units::Dimension;
@@ -69,6 +71,7 @@ fn empty(stack: &Stack) -> Design {
         growth: Growth::Upright,
         terminals: Terminals::Two,
         optics: OpticsModel::Interference { stated: None },
+        texture: None,
         layers: Vec::new(),
         junctions: Vec::new(),
         interconnects: Vec::new(),
@@ -118,13 +121,7 @@ fn body_properties(resolver: &mut Resolver<'_, '_>, design: &mut Design, body: &
             "luminescent_coupling" | "photon_recycling" | "gap_narrowing" => {
                 switch(resolver, design, property)
             }
-            "texture" => pending(
-                &mut resolver.scope,
-                Severity::Warning,
-                "texture is",
-                property.span,
-                "read the figures as those of planar faces",
-            ),
+            "texture" => texture(&mut resolver.scope, design, property),
             "samples" => {
                 let expected = Expected::new("samples", Dimension::NONE, Role::Count);
                 quantity(&mut resolver.scope, property, expected);
@@ -151,6 +148,25 @@ fn body_properties(resolver: &mut Resolver<'_, '_>, design: &mut Design, body: &
     assume("growth", "grown upright, as nothing is stated");
     assume("terminals", "two terminals, as nothing is stated");
     assume("fingers", "no front grid: neither shading nor series resistance, as nothing is stated");
+}
+
+/// `texture pyramids` or `texture lambertian_rear`, or both words: of the stack, wherever stated.
+pub(super) fn texture(scope: &mut Scope, design: &mut Design, property: &Property) {
+    const WORDS: &[&str] = &["pyramids", "inverted_pyramids", "lambertian_rear"];
+    let Some(first) = word(scope, property, WORDS) else { return };
+    let second = property.arguments.get(1).and_then(|argument| match argument {
+        Argument::Word(word) => WORDS.iter().find(|known| **known == word.value).copied(),
+        _ => None,
+    });
+    properties::no_more(scope, property, if second.is_some() { 2 } else { 1 });
+    let span = design.texture.map_or(property.span, |texture| texture.span);
+    let texture = design.texture.get_or_insert(Texture { pyramids: false, lambertian_rear: false, span });
+    for word in [Some(first), second].into_iter().flatten() {
+        match word {
+            "lambertian_rear" => texture.lambertian_rear = true,
+            _ => texture.pyramids = true,
+        }
+    }
 }
 
 fn terminals(resolver: &mut Resolver<'_, '_>, design: &mut Design, property: &Property) {

@@ -99,6 +99,7 @@ pub(crate) fn empty() -> Design {
         growth: Growth::Upright,
         terminals: Terminals::Two,
         optics: OpticsModel::OnePass { front_reflectance: 0.0, stated: false },
+        texture: None,
         layers: Vec::new(),
         junctions: Vec::new(),
         interconnects: Vec::new(),

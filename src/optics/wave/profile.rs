@@ -69,6 +69,20 @@ impl Profile {
         down + up + cr * re - ci * im
     }
 
+    /// The same shape with another absorptance in all; evenly spread where it had none.
+    pub fn scale_to(&mut self, absorbed: f64) {
+        let own = self.between(0.0, self.thickness_m);
+        if !(own > 1e-30) {
+            let even = if self.thickness_m > 0.0 { absorbed / self.thickness_m } else { 0.0 };
+            (self.decay_per_m, self.down, self.up, self.cosine, self.sine) = (0.0, even, 0.0, 0.0, 0.0);
+            return;
+        }
+        let factor = absorbed / own;
+        for part in [&mut self.down, &mut self.up, &mut self.cosine, &mut self.sine] {
+            *part *= factor;
+        }
+    }
+
     fn add(&mut self, share: f64, other: &Self) {
         self.down += share * other.down;
         self.up += share * other.up;
