@@ -14,6 +14,7 @@ use crate::units::{self, Dimension};
 mod absorption;
 mod accept;
 mod current_mismatch;
+mod current_resistance;
 mod doping_limit;
 mod doping_missing;
 mod families;
@@ -85,6 +86,7 @@ pub static RULES: &[&Rule] = &[
     &tunnel_absorbs::RULE,
     &light_range::RULE,
     &current_mismatch::RULE,
+    &current_resistance::RULE,
     &free_unsettled::RULE,
     &free_outside::RULE,
     &free_on_bound::RULE,

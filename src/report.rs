@@ -100,7 +100,8 @@ pub enum Format {
     Markdown,
     /// `results.json`, the numbers file.
     Json,
-    /// `curves.csv`: the current–voltage curves.
+    /// `curves.csv`: the current–voltage curves; `charts.csv` and `season.csv` where they are asked
+    /// for.
     Csv,
 }
 
@@ -201,6 +202,15 @@ pub fn render(
     }
     if wants(Format::Csv) {
         files.push(OutputFile { name: "curves.csv".into(), bytes: numbers::csv(input.results).into_bytes() });
+        let asked = [
+            ("charts.csv", numbers::charts_csv(input.results)),
+            ("season.csv", numbers::season_csv(input.results)),
+        ];
+        files.extend(
+            asked
+                .into_iter()
+                .filter_map(|(name, text)| Some(OutputFile { name: name.into(), bytes: text?.into_bytes() })),
+        );
     }
     Ok(files)
 }

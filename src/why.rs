@@ -8,6 +8,7 @@ pub const PAGES: &[(&str, &str)] = &[
     ("accept.no-reason", include_str!("why/accept.no-reason.md")),
     ("accept.unused", include_str!("why/accept.unused.md")),
     ("current.mismatch", include_str!("why/current.mismatch.md")),
+    ("current.resistance", include_str!("why/current.resistance.md")),
     ("data.table", include_str!("why/data.table.md")),
     ("depletion.full", include_str!("why/depletion.full.md")),
     ("doping.degenerate", include_str!("why/doping.degenerate.md")),

@@ -5,7 +5,7 @@
 //! the junctions below now live on photons that the limiting one could absorb itself. The rest of a
 //! mismatch, as in the surplus of a germanium junction, belongs to the gaps and is no fault.
 
-use super::show::{current, ev, length, percent};
+use super::show::{current, current_beside, ev, length, percent};
 use super::{Context, Report, Rule, Threshold};
 use crate::design::Terminals;
 use crate::finding::{Finding, Severity};
@@ -65,14 +65,14 @@ fn finding(context: &Context, condition: &ConditionResult, shift: &Shift) -> Opt
         format!(
             "`{}` limits the stack to {} under `{}` while `{}` makes {}, {} more",
             limiting.name,
-            current(low),
+            current_beside(low, high),
             condition.name,
             rich.name,
             current(high),
             percent(high / low - 1.0)
         ),
     )
-    .at(place(shift.to)?, format!("limits: {}", current(low)))
+    .at(place(shift.to)?, format!("limits: {}", current_beside(low, high)))
     .beside(place(shift.from)?, format!("surplus: {}", current(high)));
     Some(match help(context, condition, shift) {
         Some(help) => finding.help(help),
@@ -80,9 +80,16 @@ fn finding(context: &Context, condition: &ConditionResult, shift: &Shift) -> Opt
     })
 }
 
-/// What would balance the currents under `condition`, whatever the threshold.
+/// What would lift the limiting current under `condition`, whatever the threshold.
 pub(super) fn balance_help(context: &Context, condition: &ConditionResult) -> Option<String> {
     let shift = shift(condition).filter(|shift| shift.excess > 0.0)?;
+    help(context, condition, &shift)
+}
+
+/// The same where it brings the mismatch of all junctions to `bound`; a surplus that no light can
+/// be moved from, as that of a germanium junction, stays.
+pub(super) fn balance_within(context: &Context, condition: &ConditionResult, bound: f64) -> Option<String> {
+    let shift = shift(condition).filter(|it| it.excess > 0.0 && it.mismatch_after(condition) <= bound)?;
     help(context, condition, &shift)
 }
 

@@ -31,19 +31,21 @@ fn run(context: &Context, report: &mut Report) {
             .condition
             .as_ref()
             .and_then(|name| results.conditions.iter().find(|condition| condition.name == *name));
-        let help =
-            condition
-                .and_then(|condition| match requirement.metric.value.as_str() {
-                    "efficiency" | "power" => largest_loss(condition),
-                    "current_mismatch" => super::current_mismatch::balance_help(context, condition)
-                        .or_else(|| extremes(condition)),
-                    "jsc" | "jmp" => super::current_mismatch::balance_help(context, condition)
-                        .or_else(|| limiting(condition)),
-                    "voc" | "vmp" => largest_deficit(condition),
-                    "fill_factor" => resistance(condition),
-                    _ => None,
-                })
-                .unwrap_or_else(|| margin_help(requirement, worst));
+        let help = condition
+            .and_then(|condition| match requirement.metric.value.as_str() {
+                "efficiency" | "power" => largest_loss(condition),
+                "current_mismatch" => {
+                    super::current_mismatch::balance_within(context, condition, worst.bound)
+                        .or_else(|| extremes(condition))
+                }
+                "jsc" | "jmp" => {
+                    super::current_mismatch::balance_help(context, condition).or_else(|| limiting(condition))
+                }
+                "voc" | "vmp" => largest_deficit(condition),
+                "fill_factor" => resistance(condition),
+                _ => None,
+            })
+            .unwrap_or_else(|| margin_help(requirement, worst));
         report.push([requirement.metric.value.as_str()], finding.help(help));
     }
 }

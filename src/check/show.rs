@@ -57,6 +57,14 @@ pub(super) fn current(ma_per_cm2: f64) -> String {
     }
 }
 
+/// [`current`] in the unit of another, to be compared with: `0.98 A/cm2` beside `1.02 A/cm2`.
+pub(super) fn current_beside(ma_per_cm2: f64, other: f64) -> String {
+    if other.abs() < 1000.0 || ma_per_cm2.abs() < 10.0 {
+        return current(ma_per_cm2);
+    }
+    format!("{} A/cm2", significant(ma_per_cm2 / 1000.0, 3))
+}
+
 /// `1 layer`, `2 layers`
 pub(super) fn count(number: usize, noun: &str) -> String {
     format!("{number} {noun}{}", if number == 1 { "" } else { "s" })

@@ -1,7 +1,7 @@
 //! `tunnel.peak`: the current the stack would work at is above what a tunnel junction carries by
 //! tunnelling.
 
-use super::show::{current, significant};
+use super::show::{current, current_beside, significant};
 use super::{Context, Report, Rule};
 use crate::finding::{Finding, Severity};
 
@@ -37,9 +37,9 @@ fn run(context: &Context, report: &mut Report) {
                 RULE.code,
                 format!(
                     "`{name}` has to carry {} under `{}`, above its peak of {}: past the peak it drops into its valley and the voltage collapses",
-                    current(demanded),
+                    current_beside(demanded, peak),
                     condition.name,
-                    current(peak)
+                    current_beside(peak, demanded)
                 ),
             )
             .at(tunnel.span, format!("peak {}", current(peak)))

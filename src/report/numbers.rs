@@ -222,6 +222,56 @@ pub fn csv(results: &Results) -> String {
     out
 }
 
+/// Every point of every chart, one a row; the second axis is empty for a curve. `None` without
+/// charts.
+pub fn charts_csv(results: &Results) -> Option<String> {
+    if results.charts.is_empty() {
+        return None;
+    }
+    let mut out = String::from("chart,condition,x,x_value,x_unit,y,y_value,y_unit,metric,value,unit\n");
+    for (index, chart) in results.charts.iter().enumerate() {
+        let inner = chart.axes.get(1).map_or(1, |axis| axis.values.len()).max(1);
+        for (at, value) in chart.values.iter().enumerate() {
+            let axis = |axis: usize, place: usize| match chart.axes.get(axis) {
+                Some(axis) => [
+                    field(&axis.path),
+                    axis.values.get(place).map_or(String::new(), |value| float(*value)),
+                    field(&axis.unit),
+                ],
+                None => [const { String::new() }; 3],
+            };
+            let row: Vec<String> = [(index + 1).to_string(), field(&chart.condition)]
+                .into_iter()
+                .chain(axis(0, at / inner))
+                .chain(axis(1, at % inner))
+                .chain([field(&chart.metric), value.map_or(String::new(), float), field(&chart.unit)])
+                .collect();
+            out.push_str(&row.join(","));
+            out.push('\n');
+        }
+    }
+    Some(out)
+}
+
+/// The rows of the season with the power of each; `None` without one.
+pub fn season_csv(results: &Results) -> Option<String> {
+    let season = results.season.as_ref()?;
+    let mut out = String::from("hours,light,temperature_k,concentration,incident_w_per_m2,power_w_per_m2\n");
+    for row in &season.rows {
+        let cells = [
+            float(row.hours),
+            field(&row.light),
+            float(row.temperature_k),
+            float(row.concentration),
+            float(row.incident_w_per_m2),
+            float(row.power_w_per_m2),
+        ];
+        out.push_str(&cells.join(","));
+        out.push('\n');
+    }
+    Some(out)
+}
+
 fn field(name: &str) -> String {
     let name = if name.starts_with(['=', '+', '-', '@']) { format!("'{name}") } else { name.to_string() };
     if name.contains([',', '"', '\n', '\r']) { format!("\"{}\"", name.replace('"', "\"\"")) } else { name }

@@ -13,13 +13,13 @@ use crate::units::{Dimension, in_unit};
 
 const KNOWN: &[(&str, Dimension, Role)] = &[
     ("shading", Dimension::NONE, Role::Loss),
-    ("series_resistance", Dimension::RESISTANCE_AREA, Role::NotNegative),
+    ("series_resistance", Dimension::RESISTANCE_AREA, Role::SeriesResistance),
     ("pitch", Dimension::LENGTH, Role::Positive),
     ("width", Dimension::LENGTH, Role::Positive),
     ("height", Dimension::LENGTH, Role::Positive),
     ("length", Dimension::LENGTH, Role::Positive),
     ("resistivity", Dimension::RESISTIVITY, Role::Positive),
-    ("contact_resistance", Dimension::RESISTANCE_AREA, Role::NotNegative),
+    ("contact_resistance", Dimension::RESISTANCE_AREA, Role::SeriesResistance),
     ("sheet_resistance", Dimension::RESISTANCE, Role::Positive),
 ];
 

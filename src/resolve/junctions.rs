@@ -128,7 +128,8 @@ fn interconnect<'s>(
         let scope = &mut resolver.scope;
         match property.name.value.as_str() {
             "resistance" => {
-                let expected = Expected::new("resistance", Dimension::RESISTANCE_AREA, Role::NotNegative);
+                let expected =
+                    Expected::new("resistance", Dimension::RESISTANCE_AREA, Role::SeriesResistance);
                 design.interconnects[index].resistance_ohm_m2 = quantity(scope, property, expected);
             }
             "peak" => {

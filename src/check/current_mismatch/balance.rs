@@ -20,6 +20,22 @@ pub(super) struct Shift {
     pub(super) upper_target: f64,
 }
 
+impl Shift {
+    /// Mismatch of all photocurrents once the light is moved, (max − min)/min.
+    pub(super) fn mismatch_after(&self, condition: &ConditionResult) -> f64 {
+        let mut currents: Vec<f64> =
+            condition.junctions.iter().map(|junction| junction.photocurrent_ma_per_cm2).collect();
+        if self.from < self.to {
+            currents[self.from..=self.to].fill(self.balanced);
+        } else {
+            currents[self.from] -= self.balanced - currents[self.to];
+            currents[self.to] = self.balanced;
+        }
+        let least = currents.iter().copied().fold(f64::INFINITY, f64::min);
+        currents.iter().copied().fold(0.0, f64::max) / least - 1.0
+    }
+}
+
 /// The shift that would help the limiting junction most; `None` where nothing can be moved.
 pub(super) fn shift(condition: &ConditionResult) -> Option<Shift> {
     let limiting = condition.limiting_junction.as_ref()?;

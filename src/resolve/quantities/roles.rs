@@ -52,6 +52,8 @@ pub enum Role {
     SourceTemperature,
     /// Power per area of a light.
     Irradiance,
+    /// A resistance in series with the whole area.
+    SeriesResistance,
 }
 
 /// Lowest and highest value a role allows, SI, and whether the ends belong to it.
@@ -72,7 +74,9 @@ impl Role {
     pub(crate) fn bounds(self) -> Option<Bounds> {
         Some(match self {
             Self::Any | Self::Difference => return None,
-            Self::NotNegative | Self::Ratio => bounds(0.0, true, f64::INFINITY, false),
+            Self::NotNegative | Self::Ratio | Self::SeriesResistance => {
+                bounds(0.0, true, f64::INFINITY, false)
+            }
             Self::Share | Self::Fraction => bounds(0.0, true, 1.0, true),
             Self::Loss => bounds(0.0, true, 1.0, false),
             Self::PositiveShare => bounds(0.0, false, 1.0, true),
@@ -98,6 +102,8 @@ impl Role {
             Self::GrowthRate => (1e-13, 1e-6),
             Self::Concentration => (1e-4, 10_000.0),
             Self::Irradiance => (1e-2, 1e7),
+            // From nothing to 100 ohm cm2, which a milliampere drops a tenth of a volt over.
+            Self::SeriesResistance => (0.0, 1e-2),
             _ => return None,
         })
     }
@@ -116,6 +122,7 @@ impl Role {
             Self::Concentration => &["times"],
             Self::Irradiance => &["W/m2", "kW/m2"],
             Self::Incidence => &["deg"],
+            Self::SeriesResistance => &["ohm cm2", "mohm cm2"],
             Self::Difference if dimension == Dimension::TEMPERATURE => &["K"],
             // Dark currents and tunnel peaks are told per A, photocurrents per mA.
             Self::Positive | Self::NotNegative if dimension == Dimension::CURRENT_DENSITY => {
@@ -143,9 +150,13 @@ impl Role {
         units.iter().copied().find(|unit| self.plausible(value, unit)).or_else(|| units.first().copied())
     }
 
-    /// Whether `value` in `unit` is both possible and met in practice.
+    /// Whether `value` in `unit` is both possible and met in practice. A number near 0 is no
+    /// temperature anybody meant on the Celsius scale, unless it is 0 itself.
     pub(crate) fn plausible(self, value: f64, unit: &str) -> bool {
         let Ok(unit) = parse(unit) else { return false };
+        if unit.offset != 0.0 && value != 0.0 && value.abs() < 1.0 {
+            return false;
+        }
         let si = value * unit.factor + unit.offset;
         self.possible(si) && self.likely().is_none_or(|(low, high)| (low..=high).contains(&si))
     }
