@@ -216,7 +216,7 @@ impl Detail {
             }
         }
         let auger = |name: &str, value: Option<f64>| {
-            value.map(|value| format!("Auger {name}\u{a0}{}\u{a0}cm6/s", table::short(value, 2)))
+            value.map(|value| format!("Auger\u{a0}{name}\u{a0}{}\u{a0}cm6/s", table::short(value, 2)))
         };
         let radiative = self.radiative_coefficient_cm3_per_s;
         let recombination: Vec<String> = radiative

@@ -96,7 +96,7 @@ pub(super) fn short(value: f64, digits: usize) -> String {
     let trimmed = |text: String| {
         if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.').to_owned() } else { text }
     };
-    if (-3..6).contains(&magnitude) {
+    if (-3..5).contains(&magnitude) {
         let decimals = usize::try_from(digits as i32 - 1 - magnitude).unwrap_or(0);
         return trimmed(format!("{value:.decimals$}"));
     }
