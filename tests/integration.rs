@@ -28,6 +28,7 @@ mod integration {
     mod sheet;
     mod sheet_cases;
     mod sheet_page;
+    mod slips;
     mod texture;
     mod tool;
     mod watching;

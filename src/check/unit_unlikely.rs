@@ -1,5 +1,5 @@
-//! `unit.unlikely`, where the material must be known to tell: a direct absorber as thick as a wafer,
-//! a barrier layer with next to no doping. What a number alone shows is told where it is read.
+//! `unit.unlikely`, where the material must be known to tell: a direct absorber as thick as a wafer
+//! or as thin as a barrier, a window in micrometres, a barrier layer with next to no doping. What a number alone shows is told where it is read.
 
 use super::junctions::{describe, letter};
 use super::show::{length, significant};
@@ -18,7 +18,13 @@ pub(super) static RULE: Rule = Rule {
 };
 
 /// A direct absorber takes all it can within a few micrometres, m.
-const MOST_DIRECT_M: f64 = 20e-6;
+const DIRECT_M: (f64, f64) = (10e-9, 20e-6);
+/// Indirect absorbers may be wafers; below this even they take next to nothing, m.
+const LEAST_ABSORBER_M: f64 = 10e-9;
+/// Layers that carriers cross between two others, and that light has to cross too, m. What is
+/// thicker than any thin layer was told when the number was read.
+const MOST_BARRIER_M: f64 = 2e-6;
+const TOLD_M: f64 = 20e-6;
 /// Graded buffers of the largest mismatch end near 20 um, m.
 const MOST_BUFFER_M: f64 = 50e-6;
 /// A transparent conductor thicker than this absorbs more than it conducts, m.
@@ -38,21 +44,27 @@ fn thickness(context: &Context, layer: &Layer) -> Option<Finding> {
     let (thickness, material) = (layer.thickness_m?, layer.material.as_ref()?);
     let direct = || material.gap(crate::growth::ROOM_K).is_some_and(|gap| gap.kind.is_direct());
     let grown = material.class == MaterialClass::Semiconductor;
-    let most = match layer.duty {
-        Duty::Base | Duty::Absorber | Duty::Intrinsic if grown && direct() => MOST_DIRECT_M,
-        Duty::Buffer if grown => MOST_BUFFER_M,
-        Duty::Contact | Duty::ElectronContact | Duty::HoleContact => MOST_CONTACT_M,
+    let barrier = matches!(layer.duty, Duty::Window | Duty::Bsf)
+        || (layer.duty == Duty::Layer && matches!(layer.place, Place::Interconnect(_)));
+    let (least, most) = match layer.duty {
+        Duty::Base | Duty::Absorber if grown && direct() => DIRECT_M,
+        Duty::Base | Duty::Absorber if grown => (LEAST_ABSORBER_M, f64::INFINITY),
+        Duty::Intrinsic if grown && direct() => (0.0, DIRECT_M.1),
+        Duty::Buffer if grown => (0.0, MOST_BUFFER_M),
+        Duty::Contact | Duty::ElectronContact | Duty::HoleContact => (0.0, MOST_CONTACT_M),
+        _ if barrier && thickness <= TOLD_M => (0.0, MOST_BARRIER_M),
         _ => return None,
     };
-    if thickness <= most {
+    if (least..=most).contains(&thickness) {
         return None;
     }
-    let meant = length(thickness * 1e-3);
+    let (size, factor) = if thickness > most { ("more", 1e-3) } else { ("less", 1e3) };
+    let meant = length(thickness * factor);
     Some(
         Finding::warning(
             RULE.code,
             format!(
-                "{} is {} thick, far more than is met in practice",
+                "{} is {} thick, far {size} than is met in practice",
                 describe(context.design, layer),
                 length(thickness)
             ),
