@@ -476,3 +476,69 @@ fn every_slip_in_every_demo_is_told() {
     assert!(planted > 200, "only {planted} slips planted");
     assert!(missed.is_empty(), "{} missed:\n{}", missed.len(), missed.join("\n"));
 }
+
+#[test]
+fn everything_wrong_is_told_once_by_as_many_codes() {
+    let root = Path::new(env!("CARGO_MANIFEST_DIR"));
+    let path = root.join("stacks/mistakes.stack");
+    let text = std::fs::read_to_string(&path).expect("readable");
+    let demo = Demo { name: "mistakes".to_owned(), path, text };
+    let found = demo.found(&demo.text, true);
+    let twice: Vec<_> = found.iter().filter(|(_, count)| **count > 1).collect();
+    assert!(twice.is_empty(), "told more than once: {twice:?}");
+    assert!(found.len() >= 55, "only {} codes", found.len());
+}
+
+/// Slips that cannot hide each other, one to a stack, up to fifty in one file.
+#[test]
+fn k_slips_are_k_findings() {
+    const SLIPS: &[(&str, &str, &str)] = &[
+        ("unit.missing", "emitter  GaAs  100 nm", "emitter  GaAs  100"),
+        ("unit.dimension", "p 1e17 /cm3", "p 1e17 /cm2"),
+        ("unit.unlikely", "100 nm", "100 um"),
+        ("unit.unknown", "3 um", "3 Um"),
+        ("number.decimal-comma", "ere 1.5 %", "ere 1,5 %"),
+        ("name.unknown", "base     GaAs", "base     GaAS"),
+        ("name.unknown", "voltage", "voltge"),
+        ("syntax.unexpected", "wafer  GaAs", "wafer  GaAs,"),
+        ("polarity.same", "n 2e18", "p 2e18"),
+        ("value.range", "ere 1.5 %", "ere 150 %"),
+        ("formula.sum", "base     GaAs", "base     Al0.5Ga0.6As"),
+        ("formula.unknown-element", "base     GaAs", "base     Al0.5Xy0.5As"),
+        ("name.look-alike", "light    AM1.5G", "light    АM1.5G"),
+        ("lattice.mismatch", "base     GaAs", "base     InP"),
+        ("value.missing", "  3 um", ""),
+        ("accept.unused", "light    AM1.5G", "light    AM1.5G; accept gap.order because \"so\""),
+        ("doping.limit", "n 2e18", "n 2e21"),
+    ];
+    let good = |number: usize| {
+        format!(
+            "stack \"Number {number}\" {{
+    light    AM1.5G
+    optics   one_pass {{ front_reflectance 3 % }}
+    junction only {{
+        emitter  GaAs  100 nm   n 2e18 /cm3 Si
+        base     GaAs  3 um   p 1e17 /cm3 Zn
+        voltage  from ere 1.5 %
+    }}
+    wafer  GaAs  350 um   p 1e18 /cm3 Zn
+}}
+"
+        )
+    };
+    let demo = Demo { name: String::new(), path: PathBuf::from("many.stack"), text: String::new() };
+    for k in [1, SLIPS.len(), 50] {
+        let mut wanted: BTreeMap<&str, usize> = BTreeMap::new();
+        let mut text = String::new();
+        for number in 0..k {
+            let (code, from, to) = SLIPS[number % SLIPS.len()];
+            let stack = good(number);
+            let slipped = stack.replacen(from, to, 1);
+            assert_ne!(stack, slipped, "{code}: nothing was planted");
+            text.push_str(&slipped);
+            *wanted.entry(code).or_default() += 1;
+        }
+        let found = demo.found(&text, true);
+        assert_eq!(found, wanted, "{k} slips planted");
+    }
+}
