@@ -46,6 +46,18 @@ fn main() {
     table.time("parse 10,000 lines, in process", parsed, Some(22));
     let static_check = time(RUNS, || run(&["check", "--static"], &path, folder.path()));
     table.time("check --static 10,000 lines, whole process", static_check, Some(80));
+    let wrong = folder.path().join("wrong.stack");
+    std::fs::write(&wrong, wrong_file()).unwrap();
+    let told = command(&["check", "--format", "json"], &wrong, folder.path())
+        .stdout(Stdio::piped())
+        .output()
+        .unwrap();
+    let document: serde_json::Value = serde_json::from_slice(&told.stdout).unwrap();
+    assert_eq!(document["findings"].as_array().unwrap().len(), MISTAKES, "each mistake told once");
+    let all = &["check", "--max-findings", "0"];
+    let wrong_check = time(RUNS, || run(all, &wrong, folder.path()));
+    table.time("check 10,000 layers with 500 mistakes, all told", wrong_check, Some(400));
+    table.memory("check of the same, peak", peak(all, &wrong, folder.path()), 150);
     let check = time(3, || run(&["check"], &path, folder.path()));
     let stacks = long.matches("stack \"").count();
     table.time(&format!("check 10,000 lines, {stacks} stacks evaluated"), check, None);
@@ -103,6 +115,36 @@ fn long_file() -> String {
         text.push_str(&one(number));
     }
     text
+}
+
+const MISTAKES: usize = 500;
+
+/// As many stacks of twenty layers as there are mistakes, one in each, ten kinds in turn.
+fn wrong_file() -> String {
+    const SLIPS: &[(&str, &str)] = &[
+        ("20 nm   n 2e18", "20   n 2e18"),
+        ("48 nm", "48 um"),
+        ("emitter  GaAs", "emitter  GaAS"),
+        ("ere 2 %", "ere 0.02"),
+        ("3.5 um", "3,5 um"),
+        ("p 8e19 /cm3", "p 8e19 /cm2"),
+        ("wafer    GaAs ", "wafer    GaAs,"),
+        ("emitter  GaInP matched   70 nm   n", "emitter  GaInP matched   70 nm   p"),
+        ("gap 2.1 eV", "gap 590 nm"),
+        ("Al0.3Ga0.7As", "Al0.3Ga0.8As"),
+    ];
+    (0..MISTAKES)
+        .map(|number| {
+            let zns = "    coat        ZnS   48 nm\n";
+            let more = "    coat        SiO2  90 nm\n".repeat(7);
+            let stack =
+                one(number).replace("MgF2  coat", "MgF2  95 nm").replace(zns, &format!("{zns}{more}"));
+            let (from, to) = SLIPS[number % SLIPS.len()];
+            let slipped = stack.replacen(from, to, 1);
+            assert_ne!(stack, slipped, "{from} was not found");
+            slipped
+        })
+        .collect()
 }
 
 fn one(number: usize) -> String {

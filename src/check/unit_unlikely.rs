@@ -76,8 +76,10 @@ fn thickness(context: &Context, layer: &Layer) -> Option<Finding> {
 
 fn doping(context: &Context, layer: &Layer) -> Option<Finding> {
     let doping = layer.doping.as_ref()?;
-    let for_its_doping = matches!(layer.duty, Duty::Emitter | Duty::Window | Duty::Bsf | Duty::Cap)
-        || matches!(layer.place, Place::Interconnect(_));
+    let for_its_doping = matches!(
+        layer.duty,
+        Duty::Emitter | Duty::Window | Duty::Bsf | Duty::Cap | Duty::ElectronContact | Duty::HoleContact
+    ) || matches!(layer.place, Place::Interconnect(_));
     let grown = layer.material.as_ref()?.class == MaterialClass::Semiconductor;
     // Below the least that any layer has it was told when the number was read.
     let told = doping.density_per_m3 < 1e19;
