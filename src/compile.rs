@@ -13,7 +13,7 @@ use crate::evaluate;
 use crate::finding::{Findings, Severity};
 use crate::resolve::{self, Overrides};
 use crate::results::Results;
-use crate::source::{Sources, shown};
+use crate::source::{Sources, portable};
 use crate::world::{ReadError, World};
 
 /// What a run may be told.
@@ -94,7 +94,7 @@ pub fn compile(world: &dyn World, path: &Path, options: &Options) -> Compiled {
     let blocked = shared.has_errors();
     compiled.findings.extend(shared);
 
-    let source = shown(path);
+    let source = portable(path);
     let no_evaluation = blocked || options.no_evaluation;
     // Collected in the order of the file, whatever the number of threads.
     let work: Vec<(Design, Findings)> = designs.into_iter().zip(own).collect();

@@ -22,7 +22,7 @@ pub struct Results {
     pub stack: String,
     /// SHA-256 of the resolved design, hexadecimal.
     pub design_hash: String,
-    /// The file, as given.
+    /// The file: as given, or its name where an absolute path was given.
     pub source: String,
     /// In the order of the design.
     pub conditions: Vec<ConditionResult>,

@@ -154,6 +154,15 @@ pub fn shown(path: &Path) -> String {
     path.to_string_lossy().replace('\\', "/")
 }
 
+/// A path as it may stand in a file that is handed on: a relative one as given, of an absolute one
+/// the last part, since the rest tells where somebody keeps his work and differs from host to host.
+pub fn portable(path: &Path) -> String {
+    match path.file_name() {
+        Some(name) if path.is_absolute() => shown(Path::new(name)),
+        _ => shown(path),
+    }
+}
+
 /// Every source read in one run, so that a span can be shown whichever file it lies in.
 #[derive(Clone, Debug, Default)]
 pub struct Sources {

@@ -15,7 +15,7 @@ use crate::finding::json::{Entry as Row, Place};
 use crate::report::{
     AcceptedRow, FindingRow, FixRow, Format, OutputFile, ReportError, ReportInput, Templates, render,
 };
-use crate::source::shown;
+use crate::source::{portable, shown};
 use crate::world::disk::Disk;
 use crate::world::{ReadError, World};
 
@@ -277,7 +277,7 @@ fn finding_row(row: Row) -> FindingRow {
         code: row.code.to_owned(),
         severity: row.severity.to_owned(),
         message: row.message,
-        file: place.map(|place| place.file.clone()),
+        file: place.map(|place| portable(Path::new(&place.file))),
         line: place.map(|place| place.line),
         column: place.map(|place| place.column),
         end_line: place.map(|place| place.end_line),
@@ -285,6 +285,7 @@ fn finding_row(row: Row) -> FindingRow {
         help: row.help,
         fix: row.fix.map(|fix| {
             let Place { file, line, column, end_line, end_column, .. } = fix.place;
+            let file = portable(Path::new(&file));
             let (replacement, safe) = (fix.replacement, fix.safe);
             FixRow { file, line, column, end_line, end_column, replacement, safe }
         }),

@@ -4,6 +4,7 @@ use std::collections::BTreeSet;
 use std::fs;
 use std::io::{ErrorKind, Write};
 use std::path::{Path, PathBuf};
+use std::time::Duration;
 
 /// What became of a file.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -66,8 +67,29 @@ pub(crate) fn replace(path: &Path, bytes: &[u8]) -> Result<Wrote, WriteError> {
     put(&target, bytes, Some(permissions))
 }
 
+/// How old what an interrupted run left must be before it is removed: writing takes no such time,
+/// so no other run is still at it.
+const ABANDONED: Duration = Duration::from_secs(60);
+
+/// Removes what interrupted runs left of `name` in `folder`.
+fn sweep(folder: &Path, name: &str) {
+    let Ok(entries) = fs::read_dir(folder) else { return };
+    for entry in entries.flatten() {
+        let found = entry.file_name().to_string_lossy().into_owned();
+        let middle = found.strip_prefix(&format!(".{name}.")).and_then(|rest| rest.strip_suffix(".part"));
+        let ours = middle.is_some_and(|id| !id.is_empty() && id.bytes().all(|byte| byte.is_ascii_digit()));
+        let age = || entry.metadata().ok()?.modified().ok()?.elapsed().ok();
+        if ours && age().is_some_and(|age| age > ABANDONED) {
+            // What cannot be removed is no fault of this run.
+            let _ = fs::remove_file(entry.path());
+        }
+    }
+}
+
 fn put(path: &Path, bytes: &[u8], permissions: Option<fs::Permissions>) -> Result<Wrote, WriteError> {
     let name = path.file_name().map(|name| name.to_string_lossy().into_owned()).unwrap_or_default();
+    let folder = path.parent().filter(|folder| !folder.as_os_str().is_empty());
+    sweep(folder.unwrap_or(Path::new(".")), &name);
     let temporary = path.with_file_name(format!(".{name}.{}.part", std::process::id()));
     let written = fs::File::create(&temporary)
         .and_then(|mut file| file.write_all(bytes))
@@ -149,6 +171,26 @@ mod tests {
         let mut slugs = Slugs::default();
         let taken: Vec<_> = ["A b", "a-B", "a b 2", "a.b"].map(|name| slugs.take(name)).into();
         assert_eq!(taken, ["a-b", "a-b-2", "a-b-2-2", "a-b-3"]);
+    }
+
+    #[test]
+    fn what_an_interrupted_run_left_is_removed() {
+        let folder = tempfile::tempdir().expect("temporary folder");
+        let make = |name: &str, seconds: u64| {
+            let file = fs::File::create(folder.path().join(name)).expect("a file");
+            let then = std::time::SystemTime::now() - Duration::from_secs(seconds);
+            file.set_modified(then).expect("a time");
+        };
+        make(".a.txt.4711.part", 3600);
+        make(".a.txt.4712.part", 1);
+        make(".b.txt.4711.part", 3600);
+        make(".a.txt.notes.part", 3600);
+        assert_eq!(write(&folder.path().join("a.txt"), b"one"), Ok(Wrote::New));
+        let listing = fs::read_dir(folder.path()).expect("listing");
+        let mut left: Vec<String> =
+            listing.flatten().map(|entry| entry.file_name().to_string_lossy().into_owned()).collect();
+        left.sort();
+        assert_eq!(left, [".a.txt.4712.part", ".a.txt.notes.part", ".b.txt.4711.part", "a.txt"]);
     }
 
     #[test]

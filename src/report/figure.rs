@@ -16,6 +16,7 @@ use crate::report::view::Table;
 pub use label::{Anchor, Label, LabelBox};
 
 pub mod bands;
+pub mod chart;
 pub mod curves;
 pub mod dark;
 pub mod eqe;
@@ -24,6 +25,7 @@ pub mod hatch;
 pub mod label;
 pub mod ledger;
 pub mod light;
+pub mod measured;
 pub mod plot;
 pub mod power;
 pub mod section;
@@ -85,6 +87,14 @@ impl Figure {
     /// The full drawing as a file of its own.
     pub fn standalone(&self) -> String {
         self.wide.standalone(self)
+    }
+
+    /// One of several of its kind, from 1.
+    #[must_use]
+    pub fn counted(mut self, nth: usize) -> Self {
+        self.id = format!("fig-{}-{nth}", self.kind);
+        self.file = format!("figure-{}-{nth}.svg", self.kind);
+        self
     }
 
     /// The same under the condition of that index, small enough to stand two abreast.

@@ -163,6 +163,19 @@ fn rules() -> Vec<Rule> {
     rule("cq", "fill:none;stroke-width:1.2;stroke-dasharray:4 3", &|t| format!("stroke:{}", t.quiet));
     rule("fam", "fill:none;stroke-width:1.1;stroke-linejoin:round", &|t| format!("stroke:{}", t.quiet));
     rule("famx", "fill:none;stroke-width:1.1;stroke-dasharray:4 3", &|t| format!("stroke:{}", t.quiet));
+    rule("ring", "stroke-width:1.3", &|t| format!("fill:{};stroke:{}", t.paper, t.ink));
+    for (index, dash) in DASHES.iter().enumerate().skip(1) {
+        rule(&format!("d{}", index + 1), &format!("fill:none;stroke-width:1.6;stroke-dasharray:{dash}"), &|t| {
+            format!("stroke:{}", t.ink)
+        });
+    }
+    // Bands of a map: the first junction's colour on the ground, ever more of it.
+    for step in 0..=8u8 {
+        rule(&format!("z{step}"), "stroke-width:.5;shape-rendering:crispEdges", &|t| {
+            let colour = mixed(t.paper, t.junctions[0].line, 0.04 + 0.075 * f64::from(step));
+            format!("fill:{colour};stroke:{colour}")
+        });
+    }
     rule("edge", "fill:none;stroke-width:1.8;stroke-linejoin:round", &|t| format!("stroke:{}", t.ink));
     rule("holds", "fill:none;stroke-width:4", &|t| format!("stroke:{}", t.ink));
     rule("blocks", "fill:none;stroke-width:4", &|t| format!("stroke:{}", t.fail));
@@ -196,6 +209,15 @@ fn rules() -> Vec<Rule> {
         rule(&format!("mk{n}"), "stroke-width:1", &|t| format!("fill:{};stroke:{}", colours(t).fill, t.ink));
     }
     rules
+}
+
+/// `share` of colour `b` on `a`.
+fn mixed(a: &str, b: &str, share: f64) -> String {
+    let channel = |colour: &str, at: usize| {
+        f64::from(colour.get(at..at + 2).and_then(|hex| u8::from_str_radix(hex, 16).ok()).unwrap_or(0))
+    };
+    let mix = |at: usize| (channel(a, at) * (1.0 - share) + channel(b, at) * share).round() as u8;
+    format!("#{:02x}{:02x}{:02x}", mix(1), mix(3), mix(5))
 }
 
 /// The style of the figures: all classes, or those that occur in `used` (a drawing's text).

@@ -16,6 +16,7 @@ pub mod account;
 pub mod bands;
 pub mod carriers;
 pub mod cautions;
+pub mod charts;
 pub mod conditions;
 pub mod dark;
 pub mod electrical;
@@ -23,6 +24,7 @@ pub mod findings;
 pub mod further;
 pub mod gap;
 pub mod layers;
+pub mod measured;
 pub mod optical;
 pub mod parts;
 pub mod sources;
@@ -67,6 +69,12 @@ pub struct Sheet {
     pub ledger: Section,
     /// Conditions side by side.
     pub conditions: Section,
+    /// Measurements over the prediction.
+    pub measured: Section,
+    /// Charts asked for.
+    pub charts: Section,
+    /// Energy over weighted conditions.
+    pub energy: Section,
     /// Band edges through the stack.
     pub bands: Section,
     /// Models used and their blind spots.
@@ -127,6 +135,9 @@ impl Sheet {
             &self.curves,
             &self.ledger,
             &self.conditions,
+            &self.measured,
+            &self.charts,
+            &self.energy,
             &self.bands,
             &self.models,
             &self.assumptions,
@@ -152,6 +163,9 @@ impl Sheet {
             &mut self.curves,
             &mut self.ledger,
             &mut self.conditions,
+            &mut self.measured,
+            &mut self.charts,
+            &mut self.energy,
             &mut self.bands,
             &mut self.models,
             &mut self.assumptions,
@@ -166,13 +180,15 @@ impl Sheet {
     fn number_figures(&mut self) {
         let mut kinds: Vec<&'static str> = Vec::new();
         for figure in self.sections_mut().flat_map(Section::drawings_mut) {
-            let at = kinds.iter().position(|kind| *kind == figure.kind).unwrap_or_else(|| {
-                kinds.push(figure.kind);
-                kinds.len() - 1
-            });
             figure.number = match figure.further {
-                Some(condition) => format!("{}.{}", at + 1, condition + 1),
-                None => (at + 1).to_string(),
+                Some(condition) => {
+                    let at = kinds.iter().position(|kind| *kind == figure.kind).unwrap_or(0);
+                    format!("{}.{}", at + 1, condition + 1)
+                }
+                None => {
+                    kinds.push(figure.kind);
+                    kinds.len().to_string()
+                }
             };
         }
     }
@@ -203,6 +219,9 @@ pub fn sheet(input: &ReportInput<'_>) -> Option<Sheet> {
         curves: electrical::curves(&context),
         ledger: account::section(&context),
         conditions: conditions::conditions(&context),
+        measured: measured::measured(&context),
+        charts: charts::charts(&context),
+        energy: charts::energy(&context),
         bands: bands::bands(&context),
         models: sources::models(&context, &mut sources),
         assumptions: assumptions(&context),

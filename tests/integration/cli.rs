@@ -351,3 +351,23 @@ fn no_file_is_named_that_could_not_be_written() {
     assert!(run.err.contains("cannot write"), "{}", run.err);
     assert!(run.out.contains("Pair") && !run.out.contains("sheet.html"), "{}", run.out);
 }
+
+/// A sheet is mailed around: it says nothing of the host it was made on.
+#[test]
+fn no_file_tells_where_the_work_lies() {
+    let place = Place::new();
+    let text = include_str!("../../stacks/sandpiper.stack").replace("voc >= 2.3 V", "voc >= 9.3 V");
+    place.write("deep/mast.stack", text);
+    let file = place.path("deep/mast.stack").to_string_lossy().into_owned();
+    let folder = place.path("deep").to_string_lossy().into_owned();
+    place.run(&["build", "--into", "sheets", &file]).ends(1);
+    let made = place.path("sheets/sandpiper-2j");
+    let mut seen = 0;
+    for entry in std::fs::read_dir(made).expect("built") {
+        let path = entry.expect("readable").path();
+        let text = std::fs::read_to_string(&path).expect("text");
+        assert!(!text.contains(&folder), "{} names {folder}", path.display());
+        seen += usize::from(text.contains("mast.stack"));
+    }
+    assert!(seen >= 3, "sheet.html, sheet.md and results.json name the file");
+}

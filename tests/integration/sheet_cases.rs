@@ -7,6 +7,9 @@ use std::sync::OnceLock;
 use bandloom::compile::{Options, compile};
 use bandloom::report::view::{self, Sheet};
 use bandloom::report::{AcceptedRow, FindingRow, Format, OutputFile, ReportInput, Templates, render};
+use bandloom::results::{
+    ChartAxisResult, ChartResult, MeasuredResult, Results, SeasonResult, SeasonRowResult,
+};
 use bandloom::world::memory::Memory;
 
 pub(super) const SANDPIPER: &str = include_str!("../../stacks/sandpiper.stack");
@@ -150,6 +153,95 @@ fn twelve_conditions() -> String {
     text + &stack.join("\n").replace("Kittiwake 3J", "Twelve conditions")
 }
 
+/// Charts, measurements and a season by hand, as wide and as narrow as they come.
+fn asked_for(results: &mut Results) {
+    let axis = |path: &str, unit: &str, values: Vec<f64>| ChartAxisResult {
+        path: path.into(),
+        unit: unit.into(),
+        values,
+    };
+    let times: Vec<f64> = (0..=40).map(|i| 10f64.powf(f64::from(i) / 40.0 * 3.0)).collect();
+    let warm: Vec<f64> = (0..=20).map(|i| -20.0 + 6.0 * f64::from(i)).collect();
+    let efficiency = |times: f64, celsius: f64| {
+        0.30 + 0.012 * times.ln() - 4e-5 * times - 4e-4 * (celsius - 25.0)
+    };
+    for (condition, shift) in [("noon", 0.0), ("summer_roof", 40.0)] {
+        results.charts.push(ChartResult {
+            text: "chart efficiency against concentration over 1 .. 1000 times, 41 points".into(),
+            metric: "efficiency".into(),
+            unit: "1".into(),
+            condition: condition.into(),
+            axes: vec![axis("concentration", "times", times.clone())],
+            values: times.iter().map(|t| Some(efficiency(*t, 25.0 + shift))).collect(),
+        });
+    }
+    results.charts.push(ChartResult {
+        text: "chart top.voc against temperature over 100 .. -20 degC, 21 points".into(),
+        metric: "top.voc".into(),
+        unit: "V".into(),
+        condition: "noon".into(),
+        axes: vec![axis("temperature", "degC", warm.iter().rev().copied().collect())],
+        values: warm.iter().rev().map(|c| (*c > 0.0).then_some(1.4 - 0.002 * c)).collect(),
+    });
+    results.charts.push(ChartResult {
+        text: "chart efficiency against concentration over 1 .. 1000 times, temperature over -20 .. 100 degC".into(),
+        metric: "efficiency".into(),
+        unit: "1".into(),
+        condition: "noon".into(),
+        axes: vec![axis("concentration", "times", times.clone()), axis("temperature", "degC", warm.clone())],
+        values: times.iter().flat_map(|t| warm.iter().map(move |c| Some(efficiency(*t, *c)))).collect(),
+    });
+    let at: Vec<f64> = (0..=40).map(|i| 300.0 + 10.0 * f64::from(i)).collect();
+    let predicted: Vec<f64> = at.iter().map(|nm| 0.9 - ((nm - 480.0) / 260.0).powi(2)).collect();
+    results.measured.push(MeasuredResult {
+        kind: "eqe".into(),
+        file: "runs/<17>.csv".into(),
+        junction: Some("top".into()),
+        condition: "noon".into(),
+        measured: predicted.iter().enumerate().map(|(i, p)| p - 0.01 * (i % 3) as f64).collect(),
+        predicted,
+        at,
+        rms: 0.0129,
+        bias: -0.01,
+        measured_jsc_ma_per_cm2: Some(14.1),
+        predicted_jsc_ma_per_cm2: Some(14.4),
+        spectral_mismatch_factor: Some(1.002),
+        ..MeasuredResult::default()
+    });
+    let curve = results.conditions[0].curve.clone();
+    results.measured.push(MeasuredResult {
+        kind: "jv".into(),
+        file: "jv.csv".into(),
+        condition: "noon".into(),
+        measured: curve.current_ma_per_cm2.iter().map(|j| j - 0.12).collect(),
+        predicted: curve.current_ma_per_cm2,
+        at: curve.voltage_v,
+        rms: 0.12,
+        bias: -0.12,
+        measured_voc_v: Some(2.46),
+        measured_power_w_per_m2: Some(322.0),
+        ..MeasuredResult::default()
+    });
+    let row = |index: usize| SeasonRowResult {
+        hours: 80.0 + index as f64,
+        light: "AM1.5G".into(),
+        temperature_k: 280.0 + index as f64,
+        concentration: 0.02 * index as f64,
+        incident_w_per_m2: 20.0 * index as f64,
+        power_w_per_m2: 6.1 * index as f64,
+    };
+    results.season = Some(SeasonResult {
+        file: "mast_year.csv".into(),
+        condition: "noon".into(),
+        hours: 4380.0,
+        incident_kwh_per_m2: 1680.0,
+        energy_kwh_per_m2: 510.0,
+        efficiency: 0.3036,
+        harvest_ratio: 0.921,
+        rows: (0..40).map(row).collect(),
+    });
+}
+
 /// The demo of two junctions with its voltages from the layers, new and after years in orbit.
 pub(super) fn begin_and_end_of_life() -> String {
     let kept: Vec<&str> = SANDPIPER.lines().filter(|line| !line.contains("voltage from")).collect();
@@ -233,6 +325,15 @@ fn make_cases() -> Vec<Case> {
     }
     all.extend(cases("sixty.stack", &many_layers()));
     all.extend(cases("zoo.stack", ZOO));
+    let mut asked = cases("stacks/sandpiper.stack", SANDPIPER);
+    for case in &mut asked {
+        case.name = "Charts and measurements".into();
+        if let Some(results) = &mut case.stack.results {
+            asked_for(results);
+        }
+        case.files = case.rendered();
+    }
+    all.extend(asked);
     all.extend(cases("life.stack", &begin_and_end_of_life()));
     all.extend(cases("twelve.stack", &twelve_conditions()));
     all.extend(cases("a<b>|`c`.stack", &hostile()));

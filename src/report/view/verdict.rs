@@ -193,7 +193,7 @@ fn figure(result: &RequirementResult, value: f64, decimals: usize) -> String {
     with_unit(&fixed(value, decimals), &unit_words(&result.unit))
 }
 
-fn unit_words(unit: &str) -> String {
+pub(super) fn unit_words(unit: &str) -> String {
     unit.replace("cm2", "cm²")
         .replace("m2", "m²")
         .replace("cm3", "cm³")
