@@ -165,9 +165,11 @@ fn rules() -> Vec<Rule> {
     rule("famx", "fill:none;stroke-width:1.1;stroke-dasharray:4 3", &|t| format!("stroke:{}", t.quiet));
     rule("ring", "stroke-width:1.3", &|t| format!("fill:{};stroke:{}", t.paper, t.ink));
     for (index, dash) in DASHES.iter().enumerate().skip(1) {
-        rule(&format!("d{}", index + 1), &format!("fill:none;stroke-width:1.6;stroke-dasharray:{dash}"), &|t| {
-            format!("stroke:{}", t.ink)
-        });
+        rule(
+            &format!("d{}", index + 1),
+            &format!("fill:none;stroke-width:1.6;stroke-dasharray:{dash}"),
+            &|t| format!("stroke:{}", t.ink),
+        );
     }
     // Bands of a map: the first junction's colour on the ground, ever more of it.
     for step in 0..=8u8 {

@@ -162,9 +162,8 @@ fn asked_for(results: &mut Results) {
     };
     let times: Vec<f64> = (0..=40).map(|i| 10f64.powf(f64::from(i) / 40.0 * 3.0)).collect();
     let warm: Vec<f64> = (0..=20).map(|i| -20.0 + 6.0 * f64::from(i)).collect();
-    let efficiency = |times: f64, celsius: f64| {
-        0.30 + 0.012 * times.ln() - 4e-5 * times - 4e-4 * (celsius - 25.0)
-    };
+    let efficiency =
+        |times: f64, celsius: f64| 0.30 + 0.012 * times.ln() - 4e-5 * times - 4e-4 * (celsius - 25.0);
     for (condition, shift) in [("noon", 0.0), ("summer_roof", 40.0)] {
         results.charts.push(ChartResult {
             text: "chart efficiency against concentration over 1 .. 1000 times, 41 points".into(),
@@ -184,7 +183,8 @@ fn asked_for(results: &mut Results) {
         values: warm.iter().rev().map(|c| (*c > 0.0).then_some(1.4 - 0.002 * c)).collect(),
     });
     results.charts.push(ChartResult {
-        text: "chart efficiency against concentration over 1 .. 1000 times, temperature over -20 .. 100 degC".into(),
+        text: "chart efficiency against concentration over 1 .. 1000 times, temperature over -20 .. 100 degC"
+            .into(),
         metric: "efficiency".into(),
         unit: "1".into(),
         condition: "noon".into(),

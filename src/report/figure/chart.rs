@@ -48,7 +48,8 @@ impl Axis {
         }
         let (first, last) = (self.scale.from.floor() as i32, self.scale.to.ceil() as i32);
         let steps: &[f64] = if last - first > 3 { &[1.0] } else { &[1.0, 2.0, 5.0] };
-        let values = (first..=last).flat_map(|decade| steps.iter().map(move |step| step * 10f64.powi(decade)));
+        let values =
+            (first..=last).flat_map(|decade| steps.iter().map(move |step| step * 10f64.powi(decade)));
         let inside = |v: &f64| (self.scale.from - 1e-9..=self.scale.to + 1e-9).contains(&v.log10());
         (self.scale, values.filter(inside).map(|v| (v.log10(), short(v))).collect())
     }

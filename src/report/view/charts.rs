@@ -23,7 +23,9 @@ pub fn charts(context: &Context<'_>) -> Section {
         .results
         .charts
         .iter()
-        .filter(|chart| chart.values.iter().any(Option::is_some) && chart.axes.iter().all(|a| a.values.len() > 1))
+        .filter(|chart| {
+            chart.values.iter().any(Option::is_some) && chart.axes.iter().all(|a| a.values.len() > 1)
+        })
         .collect();
     let mut peaks = Vec::new();
     let mut texts: Vec<&str> = Vec::new();
@@ -123,8 +125,9 @@ fn line(
         lines.iter().filter_map(|line| Some(format!("{} under {}", peak(line)?, line.name))).collect();
     let title = format!("{} against {}", capital(&chart.metric.replace('_', " ")), visible(&axis.path));
     let desc = format!("{metric} against {}. Highest: {}.", Axis::words(axis), joined(&peaks));
-    let mut figure =
-        Figure::new("chart", &visible(&title), desc).counted(number).drawn(chart::lines(&lines, axis, &metric), None);
+    let mut figure = Figure::new("chart", &visible(&title), desc)
+        .counted(number)
+        .drawn(chart::lines(&lines, axis, &metric), None);
     figure.half = true;
     figure.caption = Text::code(chart.text.clone());
     if let [one] = lines.as_slice() {
@@ -147,9 +150,8 @@ fn line(
     }
     figure.data = table;
     let first = lines.first().and_then(|line| Some((peak(line)?, line.name.clone())));
-    let sentence = first.map(|(peak, name)| {
-        format!("{} under {name} is highest, {peak}", chart.metric.replace('_', " "))
-    });
+    let sentence = first
+        .map(|(peak, name)| format!("{} under {name} is highest, {peak}", chart.metric.replace('_', " ")));
     (figure, sentence)
 }
 
@@ -197,15 +199,13 @@ fn area(chart: &ChartResult, grid: &Grid, number: usize) -> (Figure, Option<Stri
     let mut figure =
         Figure::new("chart", &visible(&title), desc).counted(number).drawn(map::draw(grid, &metric), None);
     figure.half = true;
-    figure.caption = Text::code(chart.text.clone())
-        .p(format!(", under {}. The deeper the colour, the more; the dot is the highest point.", visible(&chart.condition)));
+    figure.caption = Text::code(chart.text.clone()).p(format!(
+        ", under {}. The deeper the colour, the more; the dot is the highest point.",
+        visible(&chart.condition)
+    ));
     figure.data = map_table(grid, &metric);
     let sentence = peak.map(|peak| {
-        format!(
-            "{} under {} is highest, {peak}",
-            chart.metric.replace('_', " "),
-            visible(&chart.condition)
-        )
+        format!("{} under {} is highest, {peak}", chart.metric.replace('_', " "), visible(&chart.condition))
     });
     (figure, sentence)
 }
@@ -273,7 +273,17 @@ pub fn energy(context: &Context<'_>) -> Section {
     };
     let mut table = Table::new(
         Text::of(caption),
-        &[">row", ">hours", "light", ">temperature", ">times the light", ">received", ">delivered", ">efficiency", ">energy, kWh/m²"],
+        &[
+            ">row",
+            ">hours",
+            "light",
+            ">temperature",
+            ">times the light",
+            ">received",
+            ">delivered",
+            ">efficiency",
+            ">energy, kWh/m²",
+        ],
     );
     table.kind = "roomy";
     for index in order {

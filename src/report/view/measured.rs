@@ -15,8 +15,12 @@ const ROWS: usize = 41;
 /// The section; empty where nothing was measured.
 pub fn measured(context: &Context<'_>) -> Section {
     let mut section = Section::new("measured", "Measured against predicted");
-    let all: Vec<&MeasuredResult> =
-        context.results.measured.iter().filter(|it| it.at.len() > 1 && it.at.len() == it.measured.len()).collect();
+    let all: Vec<&MeasuredResult> = context
+        .results
+        .measured
+        .iter()
+        .filter(|it| it.at.len() > 1 && it.at.len() == it.measured.len())
+        .collect();
     if all.is_empty() {
         return section;
     }
@@ -26,7 +30,9 @@ pub fn measured(context: &Context<'_>) -> Section {
         section.beside.figures.push(figure(context, it, index + 1));
     }
     section.tables.push(table(&all));
-    section.notes.push(Text::of("Dots are measured, lines predicted; stems beneath show what they differ by, at each point."));
+    section.notes.push(Text::of(
+        "Dots are measured, lines predicted; stems beneath show what they differ by, at each point.",
+    ));
     if all.iter().any(|it| it.spectral_mismatch_factor.is_some()) {
         section.notes.push(Text::of(
             "Spectral mismatch factor in the form of IEC 60904-7, of the condition’s light against AM1.5G.",
@@ -104,9 +110,7 @@ fn figure(context: &Context<'_>, it: &MeasuredResult, number: usize) -> Figure {
 /// The prediction between the measured points, where the results hold more of it.
 fn curve(condition: &ConditionResult, it: &MeasuredResult) -> Option<Vec<(f64, f64)>> {
     let (x, y): (&[f64], &[f64]) = match (&it.junction, is_eqe(it)) {
-        (Some(junction), true) => {
-            (&condition.spectral.wavelength_nm, condition.spectral.eqe.get(junction)?)
-        }
+        (Some(junction), true) => (&condition.spectral.wavelength_nm, condition.spectral.eqe.get(junction)?),
         (Some(junction), false) => {
             let own = condition.junction_curves.iter().find(|curve| curve.name == *junction)?;
             (&own.voltage_v, &own.current_ma_per_cm2)
@@ -122,7 +126,8 @@ fn points_table(overlay: &Overlay) -> Table {
         Text::of(overlay.value),
         &[&format!(">{}", overlay.at), ">measured", ">predicted", ">difference"],
     );
-    for (at, measured, predicted) in overlay.points.iter().step_by(overlay.points.len().div_ceil(ROWS).max(1)) {
+    for (at, measured, predicted) in overlay.points.iter().step_by(overlay.points.len().div_ceil(ROWS).max(1))
+    {
         table.row(vec![
             Text::of(significant(*at, 4).replace('\u{202f}', "")),
             Text::of(fixed(*measured, 2)),
@@ -153,7 +158,8 @@ fn table(all: &[&MeasuredResult]) -> Table {
     let none = || "–".to_string();
     for it in all {
         let amount = |value: f64, with_sign: bool| {
-            let number = |v: f64, decimals: usize| if with_sign { signed(v, decimals) } else { fixed(v, decimals) };
+            let number =
+                |v: f64, decimals: usize| if with_sign { signed(v, decimals) } else { fixed(v, decimals) };
             if is_eqe(it) {
                 with_unit(&number(value * 100.0, 2), "points")
             } else {

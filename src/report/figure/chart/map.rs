@@ -87,12 +87,7 @@ pub fn draw(grid: &Grid, metric: &str) -> Drawing {
         drawing.dot("mk", at, 3.4);
         let words = trimmed(value);
         let label = |dx: f64, dy: f64| Label::at(at.0 + dx, at.1 + dy, &words).bold().halo();
-        let places = [
-            label(8.0, -6.0),
-            label(8.0, 16.0),
-            label(-8.0, -6.0).end(),
-            label(-8.0, 16.0).end(),
-        ];
+        let places = [label(8.0, -6.0), label(8.0, 16.0), label(-8.0, -6.0).end(), label(-8.0, 16.0).end()];
         drawing.text_where_free(places.into_iter().filter(inside));
     }
     for (level, contour) in levels.iter().zip(&contours) {
