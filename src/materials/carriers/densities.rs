@@ -4,7 +4,7 @@ use crate::materials::{GapKind, Material, ROOM_TEMPERATURE_K};
 use crate::numerics::constants::{BOLTZMANN, PLANCK, thermal_voltage};
 
 /// Electron mass, kg (CODATA 2018).
-const ELECTRON_MASS: f64 = 9.109_383_7015e-31;
+const ELECTRON_MASS: f64 = 9.109_383_701_5e-31;
 
 /// Directions in which the warped valence bands are averaged, a side of an octant.
 const DIRECTIONS: usize = 12;

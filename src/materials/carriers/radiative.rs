@@ -5,12 +5,12 @@ use crate::materials::{Material, ROOM_TEMPERATURE_K};
 use crate::numerics::constants::{CHARGE, LIGHT_SPEED, PLANCK, thermal_voltage};
 
 /// Energies of the integral.
-const STEPS: usize = 600;
+const STEPS: usize = 250;
 /// How far below the lowest gap its absorption counts, eV: further down the tails of the tables
 /// are cut off.
 const BELOW_EV: f64 = 0.3;
-/// How far above, in kT: `exp(−22)` is left out.
-const ABOVE_KT: f64 = 22.0;
+/// How far above, in kT: `exp(−17)` is left out.
+const ABOVE_KT: f64 = 17.0;
 
 impl Material {
     /// Radiative coefficient `B` in m3/s: the rate is `B (np − n_i²)`, all photons counted,

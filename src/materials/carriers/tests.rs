@@ -260,6 +260,58 @@ fn films_have_carriers_too() {
 }
 
 #[test]
+fn carriers_of_every_family_are_finite_and_above_zero() {
+    use crate::resolve::materials::{Group, entries, family};
+    let shares = [0.0, 0.03, 0.5, 1.0];
+    for entry in entries().into_iter().filter(|entry| entry.is_family) {
+        let family = family(&entry.name).expect("a family");
+        for (first, second) in shares.iter().flat_map(|a| shares.iter().map(move |b| (a, b))) {
+            // Every sublattice runs from one element to the next, the rest in equal parts.
+            let fill = |length: usize, share: f64| match length {
+                0 => Vec::new(),
+                1 => vec![1.0],
+                _ => {
+                    let rest = (1.0 - share) / (length - 1) as f64;
+                    (0..length).map(|at| if at == 0 { share } else { rest }).collect()
+                }
+            };
+            let composition = [fill(family.sites[0].len(), *first), fill(family.sites[1].len(), *second)];
+            let material = family.without_optics(&composition, None);
+            let label = &material.label;
+            for kelvin in [77.0, 500.0] {
+                for doping in [0.0, 1e26] {
+                    for carrier in Carrier::BOTH {
+                        let all = [
+                            material.mobility_m2_per_vs(carrier, doping, kelvin),
+                            material.non_radiative_lifetime_s(carrier, doping, kelvin),
+                        ];
+                        for value in all.into_iter().flatten() {
+                            assert!(value.is_finite() && value > 0.0, "{label} {kelvin} {doping:e}: {value}");
+                        }
+                        let narrowing = material.gap_narrowing_ev(carrier, doping, kelvin).unwrap_or(0.0);
+                        assert!((0.0..2.0).contains(&narrowing), "{label} {doping:e}: {narrowing}");
+                    }
+                }
+                let states = [
+                    material.conduction_density_per_m3(kelvin),
+                    material.valence_density_per_m3(kelvin),
+                    material.affinity_ev(kelvin),
+                    material.static_permittivity(),
+                ];
+                for value in states.into_iter().flatten() {
+                    assert!(value.is_finite() && value > 0.0, "{label} {kelvin}: {value}");
+                }
+            }
+            let knows = material.conduction_density_per_m3(300.0).is_some()
+                && material.valence_density_per_m3(300.0).is_some()
+                && Carrier::BOTH.iter().all(|it| material.mobility_m2_per_vs(*it, 1e23, 300.0).is_some());
+            let is_film = entry.group == Group::Perovskite;
+            assert!(knows || is_film, "{label} has no states or mobilities");
+        }
+    }
+}
+
+#[test]
 fn unknown_stays_unknown() {
     let coat = material("MgF2");
     assert_eq!(coat.mobility_m2_per_vs(Carrier::Hole, 1e22, 300.0), None);
