@@ -21,6 +21,7 @@ mod label;
 mod ordering;
 pub mod solve;
 pub mod trace;
+pub mod transparent;
 pub mod transport;
 
 pub use bowing::{Bowing, BowingLaw, LATTICE, Surface};

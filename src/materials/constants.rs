@@ -61,6 +61,8 @@ pub const NAMES: &[(&str, &str, &str, ConstantUnit)] = &[
     ("deformation.conduction", "deformation", "conduction", ConstantUnit::Energy),
     ("deformation.valence", "deformation", "valence", ConstantUnit::Energy),
     ("deformation.shear", "deformation", "shear", ConstantUnit::Energy),
+    ("dispersion.a", "dispersion", "a", ConstantUnit::Plain),
+    ("dispersion.b", "dispersion", "b", ConstantUnit::Plain),
     ("permittivity.static", "permittivity", "static", ConstantUnit::Plain),
     ("permittivity.optical", "permittivity", "optical", ConstantUnit::Plain),
 ];

@@ -11,6 +11,7 @@
 
 use std::sync::Arc;
 
+use crate::materials::alloy::transparent::Transparent;
 use crate::materials::alloy::{Composition, Family};
 use crate::materials::optics::{EV_M, IndexTable, Optics};
 use crate::materials::{Bands, ROOM_TEMPERATURE_K};
@@ -63,6 +64,8 @@ pub struct Sample {
     pub e0_ev: Option<f64>,
     /// E1 and E2, eV.
     pub critical_ev: (f64, f64),
+    /// The published law of its index below the gap; end members have it.
+    pub transparent: Option<Transparent>,
 }
 
 /// Tables at some compositions.
@@ -115,6 +118,8 @@ struct Source<'a> {
     is_direct: bool,
     /// Factor on `ε − 1`.
     scale: f64,
+    /// Its index below the gap by a published law.
+    transparent: Option<Transparent>,
 }
 
 impl Blend {
@@ -127,7 +132,8 @@ impl Blend {
             let Some(own) = own else { return Optics::None };
             let points = [own, sample.critical_ev.0, sample.critical_ev.1];
             let is_direct = indirect_gap(&family.bands(&sample.composition)).is_none();
-            sources.push(Source { weight, table: &sample.table, points, is_direct, scale: 1.0 });
+            let transparent = sample.transparent;
+            sources.push(Source { weight, table: &sample.table, points, is_direct, scale: 1.0, transparent });
         }
         let mean = |at: usize| sources.iter().map(|source| source.weight * source.points[at]).sum::<f64>();
         let target = [e0, mean(1), mean(2)];
@@ -183,6 +189,7 @@ impl Shifted {
             points: self.parent_ev,
             is_direct: true,
             scale: 1.0 + polynomial(self.scale),
+            transparent: None,
         };
         let mut sources = vec![parent(1.0)];
         if let Some(End { element, from, sample }) = &self.end {
@@ -193,7 +200,14 @@ impl Shifted {
                 target[1] += share * (e1 - target[1]);
                 target[2] += share * (e2 - target[2]);
                 let points = [own, e1, e2];
-                let end = Source { weight: share, table: &sample.table, points, is_direct: true, scale: 1.0 };
+                let end = Source {
+                    weight: share,
+                    table: &sample.table,
+                    points,
+                    is_direct: true,
+                    scale: 1.0,
+                    transparent: None,
+                };
                 sources = vec![parent(1.0 - share), end];
             }
         }
@@ -230,6 +244,41 @@ fn mapped(energy: f64, target: &[f64; 6], source: &[f64; 6]) -> f64 {
     source[at - 1] + share * (source[at] - source[at - 1])
 }
 
+/// The published law of the index below the gap of a mix of end members, which lie too far apart there for
+/// a mean of their dielectric functions.
+struct Below {
+    target: Transparent,
+    /// eV.
+    e0: f64,
+}
+
+impl Below {
+    fn of(sources: &[Source<'_>], e0: f64) -> Option<Self> {
+        let laws: Option<Vec<(f64, Transparent)>> =
+            sources.iter().map(|source| Some((source.weight, source.transparent?))).collect();
+        Some(Self { target: Transparent::mixed(laws?.into_iter()), e0 })
+    }
+
+    /// What the law adds to `n` at an energy: nothing at the gap, all of it from a fifth below. The law is
+    /// bent by what it misses of each end member at the same share of its gap, so that it meets their data.
+    fn correction(&self, energy: f64, n: f64, sources: &[Source<'_>]) -> f64 {
+        if energy >= self.e0 {
+            return 0.0;
+        }
+        let bend = |source: &Source<'_>| {
+            let own_e0 = source.points[0];
+            let last = source.table.wavelength_m.last().map_or(0.0, |wavelength| EV_M / wavelength);
+            let own = (energy / self.e0 * own_e0).max(last).min(own_e0);
+            let measured = source.table.at(EV_M / own, 0.0).0;
+            Some(source.weight * measured / source.transparent?.n(own, own_e0)?)
+        };
+        let bent: Option<f64> = sources.iter().map(bend).sum();
+        let law = bent.zip(self.target.n(energy, self.e0)).map(|(bent, law)| bent * law);
+        let share = ((self.e0 - energy) / (0.2 * self.e0)).clamp(0.0, 1.0);
+        law.map_or(0.0, |law| share * (law - n))
+    }
+}
+
 /// Evaluates the mix on the common grid. `x_gap` is the X gap where it lies below E0, and the flag
 /// says whether E0 is the direct gap.
 fn table(
@@ -247,6 +296,7 @@ fn table(
         return Optics::None;
     }
     let e0 = target[0];
+    let law = Below::of(sources, e0);
     let index_at = |energy: f64| -> (f64, f64) {
         let (mut real, mut imaginary) = (0.0, 0.0);
         for (source, map) in sources.iter().zip(&maps) {
@@ -261,7 +311,10 @@ fn table(
             imaginary += source.weight * source.scale * 2.0 * n * k;
         }
         let modulus = real.hypot(imaginary);
-        let n = ((modulus + real) / 2.0).max(0.0).sqrt();
+        let mut n = ((modulus + real) / 2.0).max(0.0).sqrt();
+        if let Some(law) = &law {
+            n += law.correction(energy, n, sources);
+        }
         // ε2/2n rather than a difference of nearly equal numbers, which would leave noise in k.
         (n, if n > 0.0 { imaginary / (2.0 * n) } else { 0.0 })
     };

@@ -24,6 +24,7 @@ const GROUPS: &[&str] = &[
     "critical_points",
     "deformation",
     "density",
+    "dispersion",
     "effective_mass",
     "elastic",
     "gap",
@@ -100,7 +101,7 @@ impl<'a> Reader<'a> {
                     material.constants.0.extend(value.map(|value| ("affinity", value)));
                     self.origin(property, "affinity");
                 }
-                group @ ("effective_mass" | "deformation" | "permittivity") => {
+                group @ ("effective_mass" | "deformation" | "dispersion" | "permittivity") => {
                     self.constants(property, group, &mut material.constants);
                 }
                 word if transport::GROUPS.contains(&word) => self.carriers(property, &mut material.carriers),

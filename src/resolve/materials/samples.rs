@@ -5,6 +5,7 @@ use std::sync::Arc;
 use crate::finding::Finding;
 use crate::materials::ROOM_TEMPERATURE_K;
 use crate::materials::alloy::blend::{Blend, EdgeForm, End, Sample, Shifted, Tail};
+use crate::materials::alloy::transparent::Transparent;
 use crate::materials::alloy::{Composition, Compound, Family, FamilyIndex};
 use crate::materials::optics::{IndexTable, Optics};
 use crate::resolve::materials::blocks::Reader;
@@ -110,7 +111,7 @@ impl Reader<'_> {
         let direct = bands.gamma.as_ref().map(|gamma| gamma.at(ROOM_TEMPERATURE_K));
         let lowest = bands.gap(ROOM_TEMPERATURE_K).map(|gap| gap.ev);
         table.gap_ev = e0_ev.or(direct).or(lowest);
-        Some(Sample { composition, table: Arc::new(table), e0_ev, critical_ev })
+        Some(Sample { composition, table: Arc::new(table), e0_ev, critical_ev, transparent: None })
     }
 
     /// `samples members`: the tables of all end members.
@@ -146,7 +147,8 @@ impl Reader<'_> {
         let critical_ev = member.critical_ev.or((!needs_points).then_some((0.0, 0.0)));
         if let (Optics::Table(table), Some(critical_ev)) = (&material.optics, critical_ev) {
             let e0_ev = table.gap_ev;
-            return Some(Sample { composition, table: table.clone(), e0_ev, critical_ev });
+            let transparent = Transparent::of(&material.constants);
+            return Some(Sample { composition, table: table.clone(), e0_ev, critical_ev, transparent });
         }
         self.scope.report(Finding::error(
             "material.incomplete",

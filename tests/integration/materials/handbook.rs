@@ -118,6 +118,20 @@ fn absorption_of_handbooks() {
     near(at("In0.01Ga0.99As", 1.4074) / at("GaAs", 1.4224), 1.0, 0.05, "GaInAs for germanium");
 }
 
+/// Index of alloys at 1550 nm: Al0.48In0.52As 3.20 (M. J. Mondry, D. I. Babic, J. E. Bowers, L. A. Coldren,
+/// IEEE Photon. Technol. Lett. 4, 627 (1992)) and InGaAsP of 1.3 µm matched to InP 3.40 (P. Chandra, L. A.
+/// Coldren, K. E. Strege, Electron. Lett. 17, 6 (1981)), both from memory.
+#[test]
+fn transparent_index_of_alloys() {
+    let n = |material: &bandloom::materials::Material| material.index(1550e-9, 300.0).expect("an index").0;
+    near(n(&found("Al0.48In0.52As")), 3.20, 0.05, "AlInAs");
+    near(n(&matched("InGaAsP matched of gap 0.954 eV", "InP")), 3.40, 0.05, "InGaAsP");
+    // At an end nothing but the end member's own data is left.
+    for (alloy, end) in [("GaInAs with In 0", "GaAs"), ("InGaAsP with Ga 0 with As 0", "InP")] {
+        near(n(&found(alloy)), n(&found(end)), 1e-3, alloy);
+    }
+}
+
 /// Single-pass currents under AM1.5G, mA/cm2, by tests/reference/absorbed_currents.py (numpy 2.4.6) from the
 /// published absorption.
 #[test]
