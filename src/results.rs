@@ -193,6 +193,9 @@ pub struct ConditionResult {
     pub junctions: Vec<JunctionResult>,
     /// Photon current absorbed per layer of [`Results::layers`], same order.
     pub layers: Vec<LayerLight>,
+    /// By how much the terminal voltage and the sum of its parts disagree at short circuit and at
+    /// the maximum power point, the larger of both and of all strings: how far the solver got.
+    pub curve_residual_v: f64,
     /// What joins the junctions, sunward first.
     pub tunnels: Vec<TunnelResult>,
     /// The front grid at this temperature; `None` without one.

@@ -107,6 +107,7 @@ pub(super) fn condition_result(
         current_mismatch: mismatch(&photocurrents),
         reflected_ma_per_cm2: MA_PER_CM2 * open * reflected(lit),
         junctions: junction_results(design, lit, (&operating, &flows), &alone, &photocurrents),
+        curve_residual_v: operating.iter().map(Operating::residual_v).fold(0.0, f64::max),
         tunnels: tunnel_results(design, &operating),
         grid,
         ..ConditionResult::default()

@@ -4,6 +4,10 @@ use crate::design::Design;
 use crate::finding::Finding;
 use crate::results::{ConditionResult, Results};
 
+/// By how much terminal voltage and its parts may disagree at a solved point, V: a millionth of
+/// what a junction gives.
+const RESIDUAL_V: f64 = 1e-6;
+
 /// A finding for the first figure that is not finite, or negative where it cannot be. Only inputs beyond all measure lead there
 /// (a concentration of 1e300), so the condition is blamed.
 pub(super) fn first_not_finite(design: &Design, results: &Results) -> Option<Finding> {
@@ -11,8 +15,11 @@ pub(super) fn first_not_finite(design: &Design, results: &Results) -> Option<Fin
         // A junction in light delivers current and power; less than nothing is left of differences
         // of emission and absorption that have lost every digit, as in a cell of 3000 K.
         let lost = |figure: &str, value: f64| ["power", "jsc"].contains(&figure) && value < -1e-9;
-        let (figure, _) =
-            figures(result).find(|(figure, value)| !value.is_finite() || lost(figure, *value))?;
+        // The solvers stop after a fixed number of steps whatever they have reached.
+        let unsolved = (result.curve_residual_v > RESIDUAL_V).then_some(("current-voltage curve", 0.0));
+        let (figure, _) = figures(result)
+            .find(|(figure, value)| !value.is_finite() || lost(figure, *value))
+            .or(unsolved)?;
         let message = format!("`{figure}` under `{}` is beyond what can be computed", condition.name);
         Some(
             Finding::error("value.range", message)
@@ -45,6 +52,8 @@ fn figures(result: &ConditionResult) -> impl Iterator<Item = (&'static str, f64)
             ("power", junction.power_w_per_m2),
             ("voltage at the maximum power point", junction.voltage_at_mpp_v),
             ("dark current", junction.dark_current_radiative_a_per_cm2),
+            ("voltage at short circuit", junction.voltage_at_short_circuit_v),
+            ("coupled current", junction.coupled_ma_per_cm2),
             ("dark current", junction.dark_current_diffusion_a_per_cm2.unwrap_or(0.0)),
             ("dark current", junction.dark_current_depletion_a_per_cm2.unwrap_or(0.0)),
             ("depletion width", junction.depletion_width_nm.unwrap_or(0.0)),
@@ -56,6 +65,10 @@ fn figures(result: &ConditionResult) -> impl Iterator<Item = (&'static str, f64)
         .iter()
         .flat_map(|layer| [layer.absorbed_ma_per_cm2, layer.collected_ma_per_cm2])
         .map(|value| ("absorbed current", value));
+    let tunnels = result.tunnels.iter().flat_map(|tunnel| {
+        [("tunnel current", tunnel.demanded_ma_per_cm2), ("tunnel voltage", tunnel.voltage_at_mpp_v)]
+    });
+    let grid = result.grid.iter().map(|grid| ("series resistance", grid.series_resistance_ohm_cm2));
     let ledger = result.ledger_w_per_m2.iter().map(|line| ("ledger", line.value));
     let spectral = [&result.spectral.wavelength_nm, &result.spectral.photon_current_ma_per_cm2_per_nm]
         .into_iter()
@@ -77,6 +90,8 @@ fn figures(result: &ConditionResult) -> impl Iterator<Item = (&'static str, f64)
         .into_iter()
         .filter_map(|(name, value)| Some((name, value?)))
         .chain(junctions)
+        .chain(tunnels)
+        .chain(grid)
         .chain(layers)
         .chain(ledger)
         .chain(spectral)

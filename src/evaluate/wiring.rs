@@ -53,6 +53,19 @@ pub(super) struct Operating {
 }
 
 impl Operating {
+    /// Terminal voltage less its parts at short circuit or at the maximum power point, whichever is
+    /// more, V; over the largest part where that is above a volt.
+    pub(super) fn residual_v(&self) -> f64 {
+        let ohm_m2 = self.wiring.fingers_ohm_m2 + self.wiring.tunnels_ohm_m2;
+        let off = |point: &Point| {
+            let drops = point.tunnels.iter().copied().chain([point.current * ohm_m2]).map(|drop| -drop);
+            let parts: Vec<f64> = point.junctions.iter().copied().chain(drops).collect();
+            let largest = parts.iter().fold(1.0, |most: f64, part| most.max(part.abs()));
+            (parts.iter().sum::<f64>() - point.voltage).abs() / largest
+        };
+        off(&self.short).max(off(&self.best))
+    }
+
     /// Delivered, W/m2.
     pub(super) fn power(&self) -> f64 {
         self.best.current * self.best.voltage

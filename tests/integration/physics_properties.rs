@@ -80,7 +80,7 @@ fn absorber() -> impl Strategy<Value = Absorber> {
 }
 
 fn case() -> impl Strategy<Value = Case> {
-    let absorbers = proptest::collection::vec(absorber(), 1..=4);
+    let absorbers = proptest::collection::vec(absorber(), 1..=6);
     let sun = (0..5_usize, 0.0..3.0_f64, 200.0..400.0_f64, prop_oneof![Just(0.0), 0.0..1.4_f64]);
     let losses = (0.0..0.3_f64, 0.0..0.2_f64, 0.0..1e-4_f64, 0.0..1e-5_f64);
     let window = prop_oneof![Just(0.0), 0.0..0.5_f64];
