@@ -2,6 +2,7 @@
 //!
 //! Currents are A/m2, positive when the cell delivers; voltages V; resistances ohm m2.
 
+mod best;
 pub mod curve;
 pub mod diode;
 pub mod radiative;

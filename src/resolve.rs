@@ -26,6 +26,7 @@ mod chemistry;
 mod conditions;
 pub mod files;
 mod fingers;
+mod interconnects;
 mod junctions;
 mod layers;
 mod light;

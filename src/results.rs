@@ -8,8 +8,12 @@ use std::collections::BTreeMap;
 
 use serde::Serialize;
 
+mod asked;
+mod electrical;
 mod maps;
 
+pub use asked::{ChartAxisResult, ChartResult, MeasuredResult, SeasonResult, SeasonRowResult};
+pub use electrical::{GridResult, JunctionTemperature, TemperatureCoefficients, TunnelResult};
 pub use maps::{BandDiagram, BandLayer, BandStep, EndMember, FamilyCurve, GapMap, GapMark};
 
 /// Version of the numbers file.
@@ -53,107 +57,6 @@ pub struct Results {
     pub measured: Vec<MeasuredResult>,
     /// Models used, with their blind spots, for the sheet.
     pub models: Vec<ModelNote>,
-}
-
-/// A set of weighted conditions.
-#[derive(Clone, Debug, Default, Serialize)]
-pub struct SeasonResult {
-    /// The table, as named.
-    pub file: String,
-    /// The condition the rows start from.
-    pub condition: String,
-    /// Together.
-    pub hours: f64,
-    /// Light received over them.
-    pub incident_kwh_per_m2: f64,
-    /// Delivered over them.
-    pub energy_kwh_per_m2: f64,
-    /// Energy over light.
-    pub efficiency: f64,
-    /// `efficiency` over that of the condition the rows start from.
-    pub harvest_ratio: f64,
-    /// In the order of the table.
-    pub rows: Vec<SeasonRowResult>,
-}
-
-/// One row of it.
-#[derive(Clone, Debug, Default, Serialize)]
-pub struct SeasonRowResult {
-    /// Its weight.
-    pub hours: f64,
-    /// The light's name.
-    pub light: String,
-    /// Cell temperature.
-    pub temperature_k: f64,
-    /// Multiple of the light given.
-    pub concentration: f64,
-    /// Received.
-    pub incident_w_per_m2: f64,
-    /// At the maximum power point.
-    pub power_w_per_m2: f64,
-}
-
-/// A figure against one or two quantities.
-#[derive(Clone, Debug, Default, Serialize)]
-pub struct ChartResult {
-    /// As written.
-    pub text: String,
-    /// Dotted path.
-    pub metric: String,
-    /// Of the values; `1` for plain fractions.
-    pub unit: String,
-    /// The condition it starts from.
-    pub condition: String,
-    /// One or two.
-    pub axes: Vec<ChartAxisResult>,
-    /// One per point of the axes, the last axis fastest; `None` where the figure has no value.
-    pub values: Vec<Option<f64>>,
-}
-
-/// One axis of a chart.
-#[derive(Clone, Debug, Default, Serialize)]
-pub struct ChartAxisResult {
-    /// `temperature`, `concentration`, `top.base.thickness`
-    pub path: String,
-    /// Of the values.
-    pub unit: String,
-    /// Ascending as written; evenly in the logarithm for a concentration over a decade or more.
-    pub values: Vec<f64>,
-}
-
-/// One measurement beside the prediction.
-#[derive(Clone, Debug, Default, Serialize)]
-pub struct MeasuredResult {
-    /// `eqe` or `jv`
-    pub kind: String,
-    /// The table, as named.
-    pub file: String,
-    /// `None` for the whole stack.
-    pub junction: Option<String>,
-    /// What it is laid over.
-    pub condition: String,
-    /// Wavelength in nm, or voltage in V, as measured.
-    pub at: Vec<f64>,
-    /// Quantum efficiency (plain), or current in mA/cm2.
-    pub measured: Vec<f64>,
-    /// The same of the model, at the same places.
-    pub predicted: Vec<f64>,
-    /// Root of the mean square of measured less predicted.
-    pub rms: f64,
-    /// Mean of measured less predicted.
-    pub bias: f64,
-    /// Current under the condition's light from the measured quantum efficiency, fingers shading as
-    /// in the stack; at no voltage for a curve.
-    pub measured_jsc_ma_per_cm2: Option<f64>,
-    /// The same of the model, over the wavelengths measured.
-    pub predicted_jsc_ma_per_cm2: Option<f64>,
-    /// Of a measured curve that reaches it.
-    pub measured_voc_v: Option<f64>,
-    /// Greatest power of a measured curve.
-    pub measured_power_w_per_m2: Option<f64>,
-    /// IEC 60904-7: of the condition's light against AM1.5G, with the response of the reference
-    /// device stated, else of the model, and the measured one as the device under test.
-    pub spectral_mismatch_factor: Option<f64>,
 }
 
 /// One condition.
@@ -253,76 +156,6 @@ pub struct JunctionResult {
     /// Collected over absorbed in the layers it collects from; `None` where carriers are not
     /// followed and all is taken as collected.
     pub collection_efficiency: Option<f64>,
-}
-
-/// A tunnel junction or a recombination contact under one condition.
-#[derive(Clone, Debug, Default, Serialize)]
-pub struct TunnelResult {
-    /// `tunnel1`, or the name given.
-    pub name: String,
-    /// The most it tunnels, if stated.
-    pub peak_ma_per_cm2: Option<f64>,
-    /// What would flow at the maximum power point if it carried any current; 0 where no string
-    /// crosses it.
-    pub demanded_ma_per_cm2: f64,
-    /// Lost over it at the stack's maximum power point.
-    pub voltage_at_mpp_v: f64,
-    /// Whether it works beyond its peak, on the way over its barrier.
-    pub beyond_peak: bool,
-}
-
-/// The front grid under one condition.
-#[derive(Clone, Debug, Default, Serialize)]
-pub struct GridResult {
-    /// Share of the area covered.
-    pub shading: f64,
-    /// All of the front in series with the cell.
-    pub series_resistance_ohm_cm2: f64,
-    /// The part of the current's way to the fingers through the front layers; `None` where the
-    /// whole is stated.
-    pub lateral_ohm_cm2: Option<f64>,
-    /// The part under the fingers; `None` where the whole is stated.
-    pub contact_ohm_cm2: Option<f64>,
-    /// The part along the fingers; `None` where the whole is stated.
-    pub metal_ohm_cm2: Option<f64>,
-    /// Of the front layers together; `None` where the whole is stated.
-    pub sheet_ohm_per_square: Option<f64>,
-}
-
-/// Change per kelvin of cell temperature, the light kept: central differences.
-#[derive(Clone, Debug, Default, Serialize)]
-pub struct TemperatureCoefficients {
-    /// Evaluated at this much above and below.
-    pub step_k: f64,
-    /// `None` with separate terminals.
-    pub voc_mv_per_k: Option<f64>,
-    /// Of `voc_v`; `None` with separate terminals.
-    pub voc_relative_per_k: Option<f64>,
-    /// `None` with separate terminals.
-    pub jsc_ma_per_cm2_per_k: Option<f64>,
-    /// Of `jsc_ma_per_cm2`; `None` with separate terminals.
-    pub jsc_relative_per_k: Option<f64>,
-    /// `None` with separate terminals.
-    pub fill_factor_per_k: Option<f64>,
-    /// Plain fraction: −0.0005 is −0.05 points.
-    pub efficiency_per_k: f64,
-    /// Of `efficiency`.
-    pub efficiency_relative_per_k: f64,
-    /// Sunward first, each by itself.
-    pub junctions: Vec<JunctionTemperature>,
-}
-
-/// One junction by itself, per kelvin.
-#[derive(Clone, Debug, Default, Serialize)]
-pub struct JunctionTemperature {
-    /// Its name.
-    pub name: String,
-    /// Its gap.
-    pub gap_mev_per_k: f64,
-    /// Its open-circuit voltage.
-    pub voc_mv_per_k: f64,
-    /// Its photocurrent.
-    pub photocurrent_ma_per_cm2_per_k: f64,
 }
 
 /// Light and one layer under one condition.

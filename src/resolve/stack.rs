@@ -6,7 +6,7 @@ use crate::resolve::properties::{self, pending, quantity, word};
 use crate::resolve::quantities::{Expected, Role};
 use crate::resolve::tree::Body;
 use crate::resolve::{
-    Resolver, Scope, chemistry, fingers, junctions, layers, names, requests, season, strain,
+    Resolver, Scope, chemistry, fingers, interconnects, junctions, layers, names, requests, season, strain,
 };
 use crate::source::Span;
 use crate::syntax::{Argument, Property, Stack};
@@ -35,7 +35,7 @@ pub(super) fn design<'s>(
     }
     let mut drafts = layers::drafts(resolver, &mut design, body);
     let terminals = body.properties.iter().find(|(property, _)| property.name.value == "terminals");
-    junctions::separate(resolver, &design, terminals.map(|(property, _)| property.span));
+    interconnects::separate(resolver, &design, terminals.map(|(property, _)| property.span));
     chemistry::materials(resolver, &mut design, &mut drafts);
     layers::finish(resolver, &mut design, drafts);
     assume_optics(&mut design);
