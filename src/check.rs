@@ -37,6 +37,7 @@ mod lattice_needless_relaxed;
 mod lattice_thermal;
 mod light_range;
 mod limits;
+mod optics_coherent_thick;
 mod optics_no_index;
 mod polarity_flipped;
 mod polarity_same;
@@ -46,6 +47,7 @@ mod structure_no_absorber;
 mod structure_no_contact;
 mod structure_no_wafer;
 mod structure_order;
+mod structure_too_many;
 mod tunnel_absorbs;
 mod tunnel_missing;
 mod tunnel_peak;
@@ -63,7 +65,9 @@ pub static RULES: &[&Rule] = &[
     &structure_no_wafer::RULE,
     &structure_no_contact::RULE,
     &unit_unlikely::RULE,
+    &structure_too_many::RULE,
     &optics_no_index::RULE,
+    &optics_coherent_thick::RULE,
     &gap_order::RULE,
     &gap_equal::RULE,
     &gap_indirect_absorber::RULE,

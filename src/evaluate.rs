@@ -35,6 +35,7 @@ use crate::evaluate::condition::Detail;
 use crate::evaluate::lit::Lit;
 use crate::finding::Outcome;
 use crate::materials::optics::Optics;
+use crate::optics::model::MOST_LAYERS;
 use crate::results::{ConditionResult, FreeValueResult, RequirementResult, Results, SCHEMA_VERSION};
 
 pub use hash::design_hash;
@@ -44,7 +45,7 @@ pub use hash::design_hash;
 /// There is no value where the design is not whole, all of which is reported elsewhere: a material
 /// that could not be resolved, an absorber without a thickness (`value.missing`), a free value
 /// without a number (`free.unsettled`), no junction or one without an absorber
-/// (`structure.no-absorber`), light without photons (`light.range`). Requirements are checked for
+/// (`structure.no-absorber`), light without photons (`light.range`), more layers than are evaluated (`structure.too-many`). Requirements are checked for
 /// unknown metrics in any case. What is stated but not evaluated yet is reported by `resolve`.
 pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
     let mut findings = metrics::check(design);
@@ -115,7 +116,8 @@ fn is_whole(design: &Design) -> bool {
         let ideal = layer.material.as_ref().is_some_and(|m| matches!(m.optics, Optics::Ideal(_)));
         !layer.collects() || ideal || layer.thickness_m.is_some()
     });
-    resolved && settled && thick && !design.junctions.is_empty() && !design.conditions.is_empty()
+    let few = design.lit_layers().count() <= MOST_LAYERS;
+    resolved && settled && thick && few && !design.junctions.is_empty() && !design.conditions.is_empty()
 }
 
 /// Conditions a little colder and a little warmer than each, two for each that has them, in order.

@@ -159,6 +159,9 @@ impl LightModel {
     }
 }
 
+/// The most lit layers that are evaluated: time and memory grow with them, and no cell has as many.
+pub const MOST_LAYERS: usize = 2000;
+
 /// Lit layers light cannot be followed through as a wave, as their material has no refractive
 /// index; indices in [`Design::layers`].
 pub fn layers_without_index(design: &Design) -> Vec<usize> {
