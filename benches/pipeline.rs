@@ -12,16 +12,22 @@
     reason = "a bench prints, prepares its own files, and may stop at the first surprise"
 )]
 
+use std::hint::black_box;
 use std::io::{BufRead, BufReader};
 use std::path::{Path, PathBuf};
 use std::process::{Child, Command, Stdio};
 use std::time::{Duration, Instant};
 
+use bandloom::compile::{Options, compile};
+use bandloom::design::VoltageModel;
+use bandloom::evaluate::evaluate;
 use bandloom::materials::library;
+use bandloom::optics::model::LightModel;
 use bandloom::parse::parse;
 use bandloom::resolve::materials::Library;
 use bandloom::resolve::quantities::Scope;
 use bandloom::source::{Source, SourceId};
+use bandloom::world::memory::Memory;
 
 const TOOL: &str = env!("CARGO_BIN_EXE_bandloom");
 const DEMO: &str = concat!(env!("CARGO_MANIFEST_DIR"), "/stacks/kittiwake.stack");
@@ -32,12 +38,18 @@ fn main() {
     if std::env::args().any(|argument| argument == "--test") {
         return;
     }
+    let mut table = Table::default();
+    evaluation(&mut table);
+    // `cargo bench --bench pipeline -- evaluation` stops here.
+    if std::env::args().any(|argument| argument == "evaluation") {
+        table.print();
+        return;
+    }
     let folder = tempfile::tempdir().unwrap();
     let long = long_file();
     let path = folder.path().join("long.stack");
     std::fs::write(&path, &long).unwrap();
 
-    let mut table = Table::default();
     let source = Source::new(SourceId(0), "long.stack", &long);
     let parsed = time(RUNS, || {
         let outcome = parse(&source);
@@ -104,6 +116,82 @@ fn read(names: &[&str]) {
     for name in names {
         assert!(library.find(name, &mut scope).is_some(), "{name}");
     }
+}
+
+/// Three junctions in twenty lit layers by waves, over the whole grid of AM1.5G, in process on one
+/// thread; then its parts, told apart by leaving one out.
+const TRIPLE: &str = "stack \"Triple\" {
+    light AM1.5G; temperature 25 degC; growth upright; optics interference
+    fingers { shading 3 %; series_resistance 20 mohm cm2 }
+    coat    MgF2  95 nm
+    coat    ZnS   48 nm
+    junction top {
+        window  AlInP matched 20 nm n 2e18 /cm3 Si
+        emitter GaInP matched 70 nm n 2e18 /cm3 Si
+        base    GaInP matched 430 nm p 1e17 /cm3 Zn
+        bsf     AlGaInP matched of gap 2.1 eV 50 nm p 1e18 /cm3 Zn
+    }
+    tunnel { layer Al0.3Ga0.7As 15 nm p 8e19 /cm3 C; layer GaInP matched 15 nm n 2e19 /cm3 Te }
+    junction middle {
+        window  GaInP matched 30 nm n 2e18 /cm3 Si
+        emitter GaAs 100 nm n 2e18 /cm3 Si
+        base    GaAs 3.2 um p 1e17 /cm3 Zn
+        bsf     GaInP matched 80 nm p 2e18 /cm3 Zn
+    }
+    tunnel { layer Al0.3Ga0.7As 15 nm p 8e19 /cm3 C; layer GaInP matched 15 nm n 2e19 /cm3 Te }
+    layer GaAs 200 nm n 2e18 /cm3 Si
+    junction bottom {
+        window  GaInP matched 50 nm n 2e18 /cm3 Si
+        emitter diffused Ge 200 nm n 5e18 /cm3 P
+        wafer   Ge 170 um p 1e18 /cm3 Ga
+    }
+    metal Au
+}
+";
+
+fn evaluation(table: &mut Table) {
+    let world = Memory::new().with("triple.stack", TRIPLE);
+    let compiled = compile(&world, Path::new("triple.stack"), &Options::default());
+    let design = compiled.stacks[0].design.clone();
+    let grid = compiled.stacks[0].results.as_ref().unwrap().conditions[0].spectral.wavelength_nm.len();
+    let mut limit = design.clone();
+    limit.junctions.iter_mut().for_each(|junction| junction.voltage = VoltageModel::RadiativeLimit);
+    let light = &design.conditions[0].light;
+    let wavelength_m: Vec<f64> = light.wavelength_m.iter().copied().filter(|at| *at >= 280e-9).collect();
+    let lit = design.lit_layers().count();
+    table.time(
+        &format!("evaluation, 3 junctions, {lit} layers ({grid} points shown)"),
+        time(4 * RUNS, || drop(black_box(evaluate(&design, "triple")))),
+        Some(3),
+    );
+    table.time(
+        "  of it without carriers and light sent down",
+        time(4 * RUNS, || drop(black_box(evaluate(&limit, "triple")))),
+        None,
+    );
+    let model = LightModel::new(&design, 298.15, 0.0);
+    table.time(
+        "  light in every layer at the points of AM1.5G",
+        time(4 * RUNS, || drop(black_box(model.shares(&wavelength_m)))),
+        None,
+    );
+    let front: Vec<f64> = (0..600).map(|at| (500.0 + f64::from(at)) * 1e-9).collect();
+    table.time(
+        "  light out of the front, one junction, 600 points",
+        time(4 * RUNS, || drop(black_box(model.emissivity(1, &front)))),
+        None,
+    );
+    table.time(
+        "  light sent down, one junction, 44 points",
+        time(4 * RUNS, || drop(black_box(model.emissivity_down(1, &front[..44])))),
+        None,
+    );
+    let rows: Vec<usize> = (0..model.rows().len()).filter(|&row| model.rows()[row].1.is_some()).collect();
+    table.time(
+        "  where light is absorbed in the layers that collect",
+        time(4 * RUNS, || drop(black_box(model.profiles(&rows, &wavelength_m)))),
+        None,
+    );
 }
 
 /// Stacks of about thirty lines, all different, until there are 10,000 lines.
