@@ -167,7 +167,8 @@ fn nodes(gap_ev: f64, thermal_v: f64, breaks_ev: &[f64], lowest_ev: f64) -> (Vec
         cuts.extend((0..=count).map(|i| gap_ev + thermal_v * (from + step * i as f64)));
     };
     let lowest = (first - gap_ev) / thermal_v;
-    add(lowest.min(-16.0), -16.0, 1.0);
+    // In the cold a tail is many kT deep: no more than 200 panels.
+    add(lowest.min(-16.0), -16.0, ((-16.0 - lowest) / 200.0).max(1.0));
     add(lowest.clamp(-16.0, -4.0), -4.0, 0.25);
     add(-4.0, 4.0, 0.125);
     add(4.0, 16.0, 0.5);
