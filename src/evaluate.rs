@@ -63,7 +63,11 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
         .conditions
         .par_iter()
         .zip(lit.par_iter())
-        .map(|(condition, lit)| condition::condition_result(design, condition, lit, Detail::All))
+        .map(|(condition, lit)| {
+            let mut result = condition::condition_result(design, condition, lit, Detail::All);
+            result.remaining_factor = remaining_factor(design, condition, result.power_w_per_m2);
+            result
+        })
         .collect();
     warm(design, &mut conditions, (&around, &warmth));
     let mut results = Results {
@@ -73,7 +77,7 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
         design_hash: design_hash(design),
         source: source.to_owned(),
         conditions,
-        layers: layers::layer_results(design),
+        layers: layers::layer_results(design, &lit[0]),
         growth: growth::growth_result(design),
         bands: None,
         gap_map: gap_map::gap_map(design),
@@ -107,6 +111,15 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
     findings.extend(unjudged);
     results.requirements = judged.iter().map(|judged| requirement(design, judged)).collect();
     Outcome::with(results, findings)
+}
+
+/// Power over what the same condition gives without particles; `None` where it states none.
+fn remaining_factor(design: &Design, condition: &Condition, power_w_per_m2: f64) -> Option<f64> {
+    condition.fluence?;
+    let before = Condition { fluence: None, ..condition.clone() };
+    let lit = Lit::new(design, &before)?;
+    let power_before = condition::power_w_per_m2(design, &before, &lit);
+    (power_before > 0.0).then(|| power_w_per_m2 / power_before)
 }
 
 fn is_whole(design: &Design) -> bool {

@@ -90,6 +90,8 @@ pub struct ConditionResult {
     pub limiting_junction: Option<String>,
     /// (max − min)/min of the photocurrents; `None` for one junction.
     pub current_mismatch: Option<f64>,
+    /// Power over that of the same condition without its particles; `None` without a fluence.
+    pub remaining_factor: Option<f64>,
     /// Photon current reflected at the front, over the spectral range of the junctions.
     pub reflected_ma_per_cm2: f64,
     /// Sunward first.

@@ -105,6 +105,7 @@ pub(super) fn condition_result(
         jmp_ma_per_cm2: whole.map(|it| MA_PER_CM2 * it.best.current),
         limiting_junction: whole.and_then(|_| limiting(design, &photocurrents)),
         current_mismatch: mismatch(&photocurrents),
+        remaining_factor: None,
         reflected_ma_per_cm2: MA_PER_CM2 * open * reflected(lit),
         junctions: junction_results(design, lit, (&operating, &flows), &alone, &photocurrents),
         curve_residual_v: operating.iter().map(Operating::residual_v).fold(0.0, f64::max),

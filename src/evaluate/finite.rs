@@ -41,6 +41,7 @@ fn figures(result: &ConditionResult) -> impl Iterator<Item = (&'static str, f64)
         ("jmp", result.jmp_ma_per_cm2),
         ("current_mismatch", result.current_mismatch),
         ("reflected_current", Some(result.reflected_ma_per_cm2)),
+        ("remaining_factor", result.remaining_factor),
     ];
     let junctions = result.junctions.iter().flat_map(|junction| {
         [

@@ -2,14 +2,15 @@
 
 use crate::design::Polarity;
 use crate::design::{Condition, Design, Extent, Layer, Place};
+use crate::evaluate::lit::Lit;
 use crate::evaluate::transport::{Carrying, LayerCarriers, carrying};
 use crate::growth::{LayerGrowth, ROOM_K, lattice_states};
 use crate::results::{LayerResult, LayerTransport, OriginResult};
 
 /// One row per layer of the design, same order.
-pub(super) fn layer_results(design: &Design) -> Vec<LayerResult> {
+pub(super) fn layer_results(design: &Design, lit: &Lit) -> Vec<LayerResult> {
     let states = lattice_states(design);
-    let transport = transport(design);
+    let transport = transport(design, lit);
     design
         .layers
         .iter()
@@ -20,11 +21,13 @@ pub(super) fn layer_results(design: &Design) -> Vec<LayerResult> {
 }
 
 /// Minority carriers at room temperature and the beginning of life, one entry per layer.
-fn transport(design: &Design) -> Vec<Option<LayerTransport>> {
+fn transport(design: &Design, lit: &Lit) -> Vec<Option<LayerTransport>> {
     let mut rows = vec![None; design.layers.len()];
     let Some(condition) = design.conditions.first() else { return rows };
     let room = Condition { temperature_k: ROOM_K, fluence: None, ..condition.clone() };
-    for carrying in carrying(design, &room) {
+    let is_room = condition.temperature_k == ROOM_K && condition.fluence.is_none();
+    let known = if is_room { &lit.carrying } else { &carrying(design, &room) };
+    for carrying in known {
         let Carrying::Followed(transport) = carrying else { continue };
         for own in &transport.layers {
             rows[own.layer] = Some(layer_transport(own));

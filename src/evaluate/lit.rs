@@ -261,11 +261,26 @@ fn emission(lit: &Lit, temperature_k: f64) -> Vec<Radiative> {
             let statistics =
                 if optics.is_model(junction) { Statistics::BoseEinstein } else { Statistics::Diode };
             Radiative::new(gap, temperature_k, statistics, (&jumps, lowest), |energy| {
-                let wavelength: Vec<f64> = energy.iter().map(|energy| HC_EV / energy).collect();
-                lit.collects_of(junction, optics.emissivity(junction, &wavelength), &wavelength)
+                let shares = |energy: &[f64]| {
+                    let wavelength: Vec<f64> = energy.iter().map(|energy| HC_EV / energy).collect();
+                    lit.collects_of(junction, optics.emissivity(junction, &wavelength), &wavelength)
+                };
+                match optics {
+                    LightModel::Interference(_) if !optics.is_model(junction) => every_fourth(energy, shares),
+                    _ => shares(energy),
+                }
             })
         })
         .collect()
+}
+
+/// `shares` of ascending energies by asking for every fourth, linear between: by waves each costs
+/// eight solutions of the stack, and a fringe or a tail is wider than that.
+fn every_fourth(energy: &[f64], shares: impl Fn(&[f64]) -> Vec<f64>) -> Vec<f64> {
+    let last = energy.len().saturating_sub(1);
+    let asked: Vec<f64> =
+        energy.iter().enumerate().filter(|(at, _)| at % 4 == 0 || *at == last).map(|(_, it)| *it).collect();
+    linear_along(&asked, &shares(&asked), energy)
 }
 
 /// For each junction with a voltage from layers, all it emits over what the front lets out.

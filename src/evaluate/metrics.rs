@@ -47,6 +47,7 @@ const OF_CONDITION: &[(&str, Measure, OfCondition)] = &[
     ("efficiency_temperature_coefficient", PER_KELVIN, |c| {
         Some(100.0 * c.temperature_coefficients.as_ref()?.efficiency_relative_per_k)
     }),
+    ("remaining_factor", PLAIN, |c| c.remaining_factor),
 ];
 
 const OF_SEASON: &[(&str, Measure, OfSeason)] =
@@ -76,7 +77,6 @@ const OF_STACK: &[(&str, Measure)] = &[("grown_thickness", THICKNESS)];
 
 /// Named in the language, not evaluated yet.
 const PENDING: &[(&str, Measure)] = &[
-    ("remaining_factor", PLAIN),
     ("areal_mass", Measure(Dimension::AREAL_MASS, "mg/cm2", 100.0)),
     ("specific_power", Measure(Dimension::SPECIFIC_POWER, "W/kg", 1.0)),
 ];
@@ -277,6 +277,13 @@ pub(super) fn judge(design: &Design, results: &Results) -> (Vec<Judged>, Finding
                     if !applies(requirement, condition) {
                         continue;
                     }
+                    // Without particles nothing has to remain, if there are some elsewhere.
+                    let spared = requirement.metric.value == "remaining_factor"
+                        && condition.fluence.is_none()
+                        && results.conditions.iter().any(|other| other.remaining_factor.is_some());
+                    if spared {
+                        continue;
+                    }
                     match metric {
                         Metric::Condition(of) => add(Some(at), of(result)),
                         Metric::Junction(junction, of) => {
@@ -308,6 +315,9 @@ fn without_value(design: &Design, requirement: &Requirement) -> Finding {
     let whole = !metric.value.contains('.');
     let of_season = OF_SEASON.iter().any(|of| of.0 == metric.value);
     match design.junctions.first() {
+        _ if metric.value == "remaining_factor" => finding
+            .at(metric.span, "no condition states a fluence")
+            .help("write `fluence 1e15 /cm2 of electrons 1 MeV` in a `condition`"),
         Some(junction)
             if whole && design.junctions.len() > 1 && !of_season && metric.value != "current_mismatch" =>
         {

@@ -15,7 +15,7 @@ use crate::materials::carriers::Carrier;
 use crate::numerics::constants::thermal_voltage;
 
 pub(super) use carriers::{LayerCarriers, minority_of};
-use carriers::{Undoped, layer_carriers, undoped};
+use carriers::{Under, Undoped, layer_carriers, undoped};
 pub(super) use findings::{findings, held_at_the_limit};
 use places::{Core, Side, core};
 
@@ -71,12 +71,13 @@ pub(super) struct Transport {
 /// How each junction's carriers are taken under `condition`: followed where its voltage is to come
 /// from layers or any transport data are stated, else complete.
 pub(super) fn carrying(design: &Design, condition: &Condition) -> Vec<Carrying> {
+    let under = Under::new(design, condition);
     (0..design.junctions.len())
         .map(|junction| {
             if !design.follows_carriers(junction) {
                 return Carrying::Complete;
             }
-            match transport(design, junction, condition) {
+            match transport(design, junction, &under) {
                 Ok(transport) => Carrying::Followed(Box::new(transport)),
                 Err(lack) => Carrying::Lacking(lack),
             }
@@ -84,12 +85,13 @@ pub(super) fn carrying(design: &Design, condition: &Condition) -> Vec<Carrying> 
         .collect()
 }
 
-fn transport(design: &Design, junction: usize, condition: &Condition) -> Result<Transport, Lack> {
+fn transport(design: &Design, junction: usize, under: &Under<'_>) -> Result<Transport, Lack> {
+    let condition = under.condition;
     let core = core(design, junction)?;
     let thermal_v = thermal_voltage(condition.temperature_k);
     let outward = |side: &Side| -> Result<Vec<LayerCarriers>, Lack> {
         let minority = minority_of(side.polarity);
-        side.layers.iter().map(|&layer| layer_carriers(design, (layer, minority), condition)).collect()
+        side.layers.iter().map(|&layer| layer_carriers(design, (layer, minority), under)).collect()
     };
     let (sunward, rear) = (outward(&core.sunward)?, outward(&core.rear)?);
     let between: Vec<Undoped> =
@@ -113,7 +115,7 @@ fn transport(design: &Design, junction: usize, condition: &Condition) -> Result<
         let doped = chain.len();
         let minority = minority_of(side.polarity);
         for &layer in &side.further {
-            chain.push(layer_carriers(design, (layer, minority), condition)?);
+            chain.push(layer_carriers(design, (layer, minority), under)?);
         }
         let (stretches, dark) = followed(design, &chain, (face, depleted_m, doped));
         diffusion_a_per_m2 += dark;

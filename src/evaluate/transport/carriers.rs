@@ -1,12 +1,14 @@
 //! The minority carriers of one layer, from what it states and what its material knows.
 
+use std::sync::Arc;
+
 use crate::carriers::depletion::Doped;
 use crate::carriers::recycling::absorbed_again;
 use crate::carriers::statistics::ln_degeneracy;
-use crate::design::{Condition, Design, Layer, Polarity};
+use crate::design::{Condition, Design, Layer, Place, Polarity};
 use crate::evaluate::transport::Lack;
-use crate::materials::Material;
 use crate::materials::carriers::Carrier;
+use crate::materials::{Material, SharedMaterial};
 use crate::numerics::constants::{HC_EV, thermal_voltage};
 
 /// Where a number comes from.
@@ -81,6 +83,40 @@ pub(in crate::evaluate) fn minority_of(polarity: Polarity) -> Carrier {
     }
 }
 
+/// A condition with what is worth working out once for all layers of a material.
+pub(super) struct Under<'a> {
+    pub(super) condition: &'a Condition,
+    /// Radiative coefficient of each layer, 0 where none is known or asked for.
+    radiative_m3_per_s: Vec<f64>,
+}
+
+impl<'a> Under<'a> {
+    pub(super) fn new(design: &Design, condition: &'a Condition) -> Self {
+        let mut known: Vec<(&SharedMaterial, f64)> = Vec::new();
+        let of = |layer: &'_ Layer, material: &'_ SharedMaterial| -> Option<f64> {
+            let Place::Junction(junction) = layer.place else { return None };
+            if !layer.collects() || !design.follows_carriers(junction) {
+                return None;
+            }
+            material.radiative_coefficient_m3_per_s(condition.temperature_k)
+        };
+        let mut radiative_m3_per_s = Vec::with_capacity(design.layers.len());
+        for layer in &design.layers {
+            let Some(material) = &layer.material else {
+                radiative_m3_per_s.push(0.0);
+                continue;
+            };
+            let before = known.iter().find(|(other, _)| Arc::ptr_eq(other, material) || other == &material);
+            let value = before.map(|(_, value)| *value).unwrap_or_else(|| of(layer, material).unwrap_or(0.0));
+            if value > 0.0 && before.is_none() {
+                known.push((material, value));
+            }
+            radiative_m3_per_s.push(value);
+        }
+        Self { condition, radiative_m3_per_s }
+    }
+}
+
 /// What the bands of a layer say at the condition's temperature.
 struct States {
     ln_intrinsic: f64,
@@ -135,8 +171,9 @@ fn mobility(
 pub(super) fn layer_carriers(
     design: &Design,
     (index, minority): (usize, Carrier),
-    condition: &Condition,
+    under: &Under<'_>,
 ) -> Result<LayerCarriers, Lack> {
+    let condition = under.condition;
     let (layer, material, thickness_m) = parts(design, index)?;
     let doping_per_m3 = layer.doping.as_ref().ok_or(Lack::Doping(index))?.density_per_m3;
     let temperature_k = condition.temperature_k;
@@ -157,7 +194,7 @@ pub(super) fn layer_carriers(
                 non_radiative(layer, material, (minority, doping_per_m3), temperature_k)
                     .ok_or(Lack::Lifetime(index, minority))?;
             let again = absorbed_share(design, material, thickness_m, temperature_k);
-            let coefficient = material.radiative_coefficient_m3_per_s(temperature_k).unwrap_or(0.0);
+            let coefficient = under.radiative_m3_per_s[index];
             (non_radiative + coefficient * doping_per_m3 * (1.0 - again), non_radiative, from, Known::Derived)
         }
     };

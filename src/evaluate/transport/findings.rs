@@ -11,6 +11,9 @@ use crate::units::number;
 /// Share of the light's photon current below which a junction is dark.
 const DARK: f64 = 1e-9;
 
+/// A field that reaches further asks for doping, not for thickness, m.
+const FARTHEST_M: f64 = 1e-4;
+
 /// Findings of all conditions, each thing said once, for the first condition it holds under.
 pub(in crate::evaluate) fn findings<'a>(
     design: &Design,
@@ -168,8 +171,11 @@ fn full(design: &Design, face: Face, (condition, transport): (&Condition, &Trans
         nm(rounded(asked_m * 1e9) * 1e-9),
         condition.name
     );
-    let help =
-        format!("make it {} nm or more, or dope it higher", nm(rounded(asked_m * 1.05e9).ceil() * 1e-9));
+    let help = if asked_m < FARTHEST_M {
+        format!("make it {} nm or more, or dope it higher", nm(rounded(asked_m * 1.05e9).ceil() * 1e-9))
+    } else {
+        "dope it higher, such as 1e17 /cm3".to_owned()
+    };
     Some(
         Finding::warning("depletion.full", message)
             .at(layer.spans.thickness, "depleted throughout")
