@@ -32,5 +32,7 @@ mod integration {
     mod slips;
     mod texture;
     mod tool;
+    mod transport;
+    mod transport_properties;
     mod watching;
 }
