@@ -7,7 +7,7 @@ use clap::{Args, ValueEnum};
 use crate::cli::Exit;
 use crate::cli::console::{Console, Stream};
 use crate::cli::materials::detail::Detail;
-use crate::materials::{Material, ROOM_TEMPERATURE_K, SharedMaterial};
+use crate::materials::{Material, ROOM_TEMPERATURE_K, SharedMaterial, library};
 use crate::resolve::materials::{Wish, entries, look_up, search};
 
 mod arguments;
@@ -24,6 +24,7 @@ Examples:
   bandloom materials GaAs Ga0.51In0.49P     gap, index, transport, sources
   bandloom materials GaAs --at 350K,650nm,850nm --doping 1e18/cm3
   bandloom materials GaInP                  what a family reaches
+  bandloom materials GaInP --definition     how it is written, to copy
   bandloom materials \"AlGaInP matched of gap 2.1 eV\" --on GaAs
   bandloom materials --over gap 1.7..1.9 --on GaAs --figure gaps.svg";
 
@@ -49,6 +50,9 @@ pub(crate) struct Materials {
     /// The doping at which transport is shown
     #[arg(long, value_name = "DOPING", default_value = "1e17/cm3", value_parser = arguments::doping)]
     doping: f64,
+    /// Print materials and families as the library writes them, to copy into a file
+    #[arg(long, requires = "phrases", conflicts_with_all = ["over", "figure"])]
+    definition: bool,
     /// human or json
     #[arg(long, value_enum, default_value_t, value_name = "human|json", hide_possible_values = true)]
     format: Format,
@@ -105,6 +109,9 @@ pub(crate) fn run(command: &Materials, console: &Console) -> Exit {
     if setting.wavelengths_m.is_empty() {
         setting.wavelengths_m.push(SODIUM_M);
     }
+    if command.definition {
+        return definitions(command, console);
+    }
     match &command.over {
         Some(over) => over_range(command, over, &setting, console),
         None if command.phrases.is_empty() => {
@@ -117,6 +124,28 @@ pub(crate) fn run(command: &Materials, console: &Console) -> Exit {
         }
         None => details(command, &setting, console),
     }
+}
+
+/// `--definition`: the text of the library.
+fn definitions(command: &Materials, console: &Console) -> Exit {
+    let (mut exit, mut texts) = (Exit::Fine, Vec::new());
+    for phrase in &command.phrases {
+        // `InGaAs` is written under `GaInAs`, a formula under its family or its compound.
+        let name = match crate::resolve::materials::family(phrase) {
+            Some(family) => Some(family.name.clone()),
+            None => found(phrase, command.on.as_deref(), console).map(|material| material.name.clone()),
+        };
+        let text = name.as_deref().and_then(|name| library::FILES.iter().find(|(known, _)| *known == name));
+        match (text, name) {
+            (Some((_, text)), _) => texts.push(text.trim_end()),
+            (None, Some(name)) => {
+                exit = console.trouble(&format!("`{name}` is no material of the library"), &[]);
+            }
+            (None, None) => exit = Exit::Trouble,
+        }
+    }
+    let shown: String = texts.iter().map(|text| format!("{text}\n")).collect();
+    exit.max(console.result(&shown))
 }
 
 /// `--over gap LOW..HIGH`

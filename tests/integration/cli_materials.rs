@@ -86,3 +86,18 @@ fn gap_against_mismatch_is_written_as_a_drawing() {
     assert!(piped.out.starts_with("<svg") && !piped.out.contains("NaN"), "{}", piped.out);
     place.run(&["materials", "MgF2", "--on", "GaAs", "--figure", "gap.svg/below.svg"]).ends(2);
 }
+
+#[test]
+fn a_definition_can_be_copied_into_a_file() {
+    let place = Place::with(&[]);
+    let text = place.run(&["materials", "InGaAs", "--definition"]).ends(0).out;
+    assert!(text.starts_with("alloy GaInAs {") && text.contains("mobility {"), "{text}");
+    // Under a name of its own it is read like any other file.
+    let own = text.replacen("alloy GaInAs", "alloy GaInAs_own", 1);
+    let stack =
+        "stack \"A\" { light AM1.5G; junction a { absorber ideal of gap 1.4 eV absorbs all_above_gap } }\n";
+    let place = Place::with(&[("own.stack", &format!("{own}{stack}"))]);
+    place.run(&["check", "own.stack"]).ends(0);
+    place.run(&["materials", "Nobody", "--definition"]).ends(2);
+    place.run(&["materials", "--definition"]).ends(2);
+}

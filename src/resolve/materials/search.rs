@@ -126,6 +126,8 @@ pub fn search(wish: &Wish<'_>) -> Search {
                 };
                 match chosen(&family, &points, wish)[..] {
                     [] => near.extend(best(&points, wish).into_iter().map(|point| made(point, None))),
+                    // That is a compound, which is found by itself.
+                    [only] if is_corner(&only.composition) => {}
                     [only] => groups.push(vec![made(only, None)]),
                     [first, .., last] => {
                         groups.push(vec![made(first, Some(End::From)), made(last, Some(End::To))]);
@@ -144,6 +146,11 @@ pub fn search(wish: &Wish<'_>) -> Search {
         found.nearest = nearest(&near, wish);
     }
     found
+}
+
+/// Whether a composition is an end member.
+fn is_corner(composition: &Composition) -> bool {
+    composition.iter().flatten().all(|fraction| *fraction < 1e-9 || *fraction > 1.0 - 1e-9)
 }
 
 fn by_gap(a: &Fit, b: &Fit) -> std::cmp::Ordering {
@@ -302,6 +309,13 @@ mod tests {
             found.fits.iter().filter(|fit| fit.material.name == "GaInAs").map(|fit| fit.gap.ev).collect();
         assert_eq!(ternary.len(), 2);
         assert!((ternary[0] - 1.0).abs() < 1e-6 && (ternary[1] - 1.1).abs() < 1e-6, "{ternary:?}");
+    }
+
+    #[test]
+    fn an_end_member_is_found_once() {
+        let found = on("InP", (1.3, 1.38), 1e-3, 300.0);
+        let single = |fit: &&Fit| fit.end.is_none() && fit.material.label == "InP";
+        assert_eq!(found.fits.iter().filter(single).count(), 1);
     }
 
     #[test]
