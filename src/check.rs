@@ -38,6 +38,7 @@ mod lattice_thermal;
 mod light_range;
 mod limits;
 mod optics_coherent_thick;
+mod optics_coat;
 mod optics_no_index;
 mod polarity_flipped;
 mod polarity_same;
@@ -89,6 +90,7 @@ pub static RULES: &[&Rule] = &[
     &tunnel_peak::RULE,
     &tunnel_absorbs::RULE,
     &light_range::RULE,
+    &optics_coat::RULE,
     &current_mismatch::RULE,
     &current_resistance::RULE,
     &free_unsettled::RULE,

@@ -2,6 +2,7 @@
 
 pub mod bands;
 mod charts;
+mod coats;
 mod collect;
 mod condition;
 mod coupling;
@@ -79,6 +80,7 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
         conditions,
         layers: layers::layer_results(design, &lit[0]),
         growth: growth::growth_result(design),
+        coats: coats::coats(design, &lit[0]),
         bands: None,
         gap_map: gap_map::gap_map(design),
         requirements: Vec::new(),

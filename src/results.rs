@@ -43,6 +43,8 @@ pub struct Results {
     /// Gaps and lattices of the layers beside the families they are taken from, at 25 °C; `None`
     /// without a wafer that has a lattice.
     pub gap_map: Option<GapMap>,
+    /// Each coat over the first junction against its best thickness; empty without wave optics.
+    pub coats: Vec<CoatResult>,
     /// One per requirement and condition it holds for.
     pub requirements: Vec<RequirementResult>,
     /// In the order of the design.
@@ -267,6 +269,21 @@ pub struct LayerResult {
     pub transport: Option<LayerTransport>,
     /// Where its numbers come from.
     pub origins: Vec<OriginResult>,
+}
+
+/// One coat, the others as they are.
+#[derive(Clone, Debug, Serialize)]
+pub struct CoatResult {
+    /// Path.
+    pub layer: String,
+    /// The condition that was looked at, the first.
+    pub condition: String,
+    /// As stated.
+    pub thickness_nm: f64,
+    /// At which the current that limits the stack is largest, near the stated one.
+    pub best_thickness_nm: f64,
+    /// By how much that current would grow, a plain fraction.
+    pub gain: f64,
 }
 
 /// The layers as they grow. In-plane strain and stress are positive in tension.

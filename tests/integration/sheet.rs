@@ -278,6 +278,7 @@ fn the_numbers_file_has_its_keys_and_ten_digits() {
             "conditions",
             "layers",
             "growth",
+            "coats",
             "requirements",
             "bands",
             "gap_map",
