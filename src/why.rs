@@ -52,11 +52,8 @@ pub const PAGES: &[(&str, &str)] = &[
     ("name.shadows", include_str!("why/name.shadows.md")),
     ("name.unknown", include_str!("why/name.unknown.md")),
     ("number.decimal-comma", include_str!("why/number.decimal-comma.md")),
-<<<<<<< HEAD
-    ("optics.coherent-thick", include_str!("why/optics.coherent-thick.md")),
-=======
     ("optics.coat", include_str!("why/optics.coat.md")),
->>>>>>> 3bbdccf (Tell coats off the thickness that lets most light in)
+    ("optics.coherent-thick", include_str!("why/optics.coherent-thick.md")),
     ("optics.data-range", include_str!("why/optics.data-range.md")),
     ("optics.no-index", include_str!("why/optics.no-index.md")),
     ("polarity.flipped", include_str!("why/polarity.flipped.md")),
