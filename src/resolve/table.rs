@@ -185,7 +185,7 @@ impl<'s> Resolver<'_, 's> {
             let fault = match numbers {
                 [Some(a), Some(b)] if a.is_finite() && b.is_finite() => {
                     let (a, b) = (a * wavelength.unit.factor, b * value.unit.factor);
-                    let fault = if a <= 0.0 {
+                    if a <= 0.0 {
                         Some((
                             whole,
                             format!("a wavelength of {}", numbers[0].unwrap_or(0.0)),
@@ -202,8 +202,7 @@ impl<'s> Resolver<'_, 's> {
                         y.push(b);
                         places.push(whole);
                         None
-                    };
-                    fault
+                    }
                 }
                 _ => {
                     let bad = usize::from(numbers[0].is_some_and(f64::is_finite));

@@ -243,7 +243,7 @@ fn open(asked: &Asked<'_>, count: usize, gap: Option<f64>) -> Finding {
     };
     let finding = Finding::error("material.open", format!("`{shown}` leaves {noun} of its composition open"))
         .at(asked.span(), format!("{} more to say", if count == 1 { "one thing" } else { "some things" }));
-    if family.frame().first().is_some() {
+    if !family.frame().is_empty() {
         let whole = family.label(&middle(family));
         let reach = gap_reach(family, None).map_or((0.0, 9.0), |reach| (reach.low.0.ev, reach.high.0.ev));
         // Gaps people build tandems with, well inside the family.
