@@ -209,25 +209,56 @@ impl Reader<'_> {
     /// `edge_form 5e3 /cm per 0.15 eV up_to 1.5 eV`, in a ternary.
     fn edge_form(&mut self, property: &Property, family: &Family) -> Option<EdgeForm> {
         let mut arguments = Arguments::of(property);
-        let per_length = Kind::of(Dimension::PER_LENGTH, 1.0, "5e3 /cm");
+        let per_length = Kind::of(Dimension::PER_LENGTH, 1.0, "5e3 /cm per 0.15 eV up_to 1.5 eV");
         let per_m = quantity(&mut arguments, "edge_form", per_length, self.scope)?;
         arguments.keyword("per");
-        let over_ev = quantity(&mut arguments, "edge_form", Kind::GAP, self.scope)?;
+        let over_ev = quantity(&mut arguments, "per", Kind::GAP, self.scope)?;
         arguments.keyword("up_to");
-        let to_ev = quantity(&mut arguments, "edge_form", Kind::GAP, self.scope)?;
+        let to_ev = quantity(&mut arguments, "up_to", Kind::GAP, self.scope)?;
         arguments.end(self.scope);
-        (family.freedom() == 1).then_some(EdgeForm { per_m, over_ev, to_ev, weight: 0.0 })
+        if family.freedom() == 1 {
+            return Some(EdgeForm { per_m, over_ev, to_ev, weight: 0.0 });
+        }
+        self.scope.report(
+            Finding::error("material.statement", "`edge_form` belongs to a ternary")
+                .at(property.name.span, "this family mixes more than two elements")
+                .help("delete it, or state it in the ternary"),
+        );
+        None
     }
 
     /// `end In 0.49 InP`: from that fraction of indium on InP takes over.
     fn end(&mut self, property: &Property, family: &Family) -> Option<End> {
         let mut arguments = Arguments::of(property);
-        let element = arguments.word()?.value.clone();
-        let from = quantity(&mut arguments, "end", Kind::FRACTION, self.scope)?;
-        let member = self.member(arguments.word()?)?;
+        let (element, from, member) = (
+            arguments.word(),
+            quantity(&mut arguments, "end", Kind::FRACTION, self.scope)?,
+            arguments.word(),
+        );
+        let (Some(element), Some(member), true) = (element, member, from < 1.0) else {
+            self.scope.report(
+                Finding::error("material.statement", "`end` names an element, a fraction and a compound")
+                    .at(property.span, "not all three can be read")
+                    .help("write it such as `end In 0.49 InP`, with a fraction below 1"),
+            );
+            return None;
+        };
         arguments.end(self.scope);
+        if family.position(&element.value).is_none() {
+            let known = family.sites.concat().join(", ");
+            self.scope.report(
+                Finding::error(
+                    "material.statement",
+                    format!("`end` names {}, which is not in this alloy", element.value),
+                )
+                .at(element.span, format!("one of {known} is due"))
+                .help(format!("name an element of `{}`", family.name)),
+            );
+            return None;
+        }
+        let member = self.member(member)?;
         let sample = self.sample_of(&member, family.corner(), true)?;
-        (family.position(&element).is_some() && from < 1.0).then_some(End { element, from, sample })
+        Some(End { element: element.value.clone(), from, sample })
     }
 
     /// A linear and a quadratic coefficient.
