@@ -92,7 +92,7 @@ pub struct Shifted {
     /// `ε − 1` is scaled by `1 + a x + b x²`.
     pub scale: (f64, f64),
     /// The compound that takes over as the fraction of an element grows.
-    pub end: Option<End>,
+    pub end: Option<Box<End>>,
     /// Absorption below the direct gap.
     pub tail: Tail,
 }
@@ -192,7 +192,8 @@ impl Shifted {
             transparent: None,
         };
         let mut sources = vec![parent(1.0)];
-        if let Some(End { element, from, sample }) = &self.end {
+        if let Some(end) = &self.end {
+            let End { element, from, sample } = end.as_ref();
             let share = ((fraction(element) - from) / (1.0 - from)).clamp(0.0, 1.0);
             let (e1, e2) = sample.critical_ev;
             let Some(own) = sample.e0_ev else { return Optics::None };

@@ -228,7 +228,7 @@ impl Reader<'_> {
     }
 
     /// `end In 0.49 InP`: from that fraction of indium on InP takes over.
-    fn end(&mut self, property: &Property, family: &Family) -> Option<End> {
+    fn end(&mut self, property: &Property, family: &Family) -> Option<Box<End>> {
         let mut arguments = Arguments::of(property);
         let (element, from, member) = (
             arguments.word(),
@@ -258,7 +258,7 @@ impl Reader<'_> {
         }
         let member = self.member(member)?;
         let sample = self.sample_of(&member, family.corner(), true)?;
-        Some(End { element: element.value.clone(), from, sample })
+        Some(Box::new(End { element: element.value.clone(), from, sample }))
     }
 
     /// A linear and a quadratic coefficient.

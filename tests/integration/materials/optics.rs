@@ -148,7 +148,6 @@ fn a_blend_passes_through_its_samples() {
 /// from its two neighbours: the test by which the mapping was published (P. G. Snyder et al.,
 /// J. Appl. Phys. 68, 5925 (1990)). Averages at fixed energy have to do worse.
 #[test]
-#[expect(clippy::print_stdout, reason = "the table is what one reads when it fails")]
 fn a_measured_composition_is_predicted_from_its_neighbours() {
     use bandloom::materials::alloy::FamilyIndex;
 
