@@ -14,7 +14,7 @@ mod layer;
 mod request;
 
 pub use crate::syntax::{Accept, Comparison, Polarity, ToleranceMeaning};
-pub use faces::{BARE_M_PER_S, COVERED_M_PER_S, Face};
+pub use faces::{BARE_M_PER_S, COVERED_M_PER_S, Face, PASSIVATED_M_PER_S};
 pub use junction::{DiodeFit, FingerShape, Fingers, Interconnect, InterconnectKind, Junction, VoltageModel};
 pub use layer::{Doping, Duty, Extent, Layer, LayerSpans, Place, Strain, Transport};
 pub use request::{

@@ -15,6 +15,10 @@ pub enum Face {
 /// m/s.
 pub const COVERED_M_PER_S: f64 = 10.0;
 
+/// Recombination velocity under a layer whose duty is to passivate, m/s: what amorphous silicon on
+/// silicon keeps to in practice (trade).
+pub const PASSIVATED_M_PER_S: f64 = 0.1;
+
 /// Recombination velocity at a bare or metal face, m/s; also where the next semiconductor belongs
 /// to no junction and so is no known barrier.
 pub const BARE_M_PER_S: f64 = 1e5;
@@ -61,7 +65,8 @@ impl Design {
     }
 
     /// The velocity taken at a face of the layer `index` that states none, m/s, by what lies behind
-    /// it: 0 between parts of one emitter or base, [`COVERED_M_PER_S`] or [`BARE_M_PER_S`].
+    /// it: 0 between parts of one emitter or base, [`PASSIVATED_M_PER_S`],
+    /// [`COVERED_M_PER_S`] or [`BARE_M_PER_S`].
     pub fn default_velocity(&self, index: usize, face: Face) -> f64 {
         let layer = &self.layers[index];
         let neighbour = match face {
@@ -73,7 +78,11 @@ impl Design {
                 let polarity = |layer: &Layer| layer.doping.as_ref().map(|doping| doping.polarity);
                 let parts =
                     layer.duty.collects() && other.duty.collects() && polarity(layer) == polarity(other);
-                if parts { 0.0 } else { COVERED_M_PER_S }
+                match other.duty {
+                    _ if parts => 0.0,
+                    Duty::Passivation => PASSIVATED_M_PER_S,
+                    _ => COVERED_M_PER_S,
+                }
             }
             _ => BARE_M_PER_S,
         }

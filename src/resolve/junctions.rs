@@ -1,7 +1,8 @@
 //! What junctions state of themselves, and how a junction turns light into voltage.
 
 use crate::design::{
-    BARE_M_PER_S, COVERED_M_PER_S, Design, DiodeFit, Duty, Face, Place, VoltageModel, ZERO_CELSIUS_K,
+    BARE_M_PER_S, COVERED_M_PER_S, Design, DiodeFit, Duty, Face, PASSIVATED_M_PER_S, Place, VoltageModel,
+    ZERO_CELSIUS_K,
 };
 use crate::finding::Finding;
 use crate::materials::MaterialClass;
@@ -288,6 +289,7 @@ pub(super) fn voltages(design: &mut Design) {
 fn velocities(design: &mut Design) {
     let faces = design.default_velocities();
     for (value, text, why) in [
+        (PASSIVATED_M_PER_S, "10 cm/s", "next to a passivation"),
         (COVERED_M_PER_S, "1e3 cm/s", "next to a layer of the same junction"),
         (BARE_M_PER_S, "1e7 cm/s", "bare, or next to metal or a layer of no junction"),
     ] {
