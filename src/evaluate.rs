@@ -70,7 +70,7 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
             result
         })
         .collect();
-    warm(design, &mut conditions, (&around, &warmth));
+    warm(design, &mut conditions, &around, &warmth);
     let mut results = Results {
         schema_version: SCHEMA_VERSION,
         tool: concat!("bandloom ", env!("CARGO_PKG_VERSION")).to_owned(),
@@ -95,10 +95,15 @@ pub fn evaluate(design: &Design, source: &str) -> Outcome<Results> {
         findings.push(finding);
         return Outcome::nothing(findings);
     }
-    results.season = design.season.as_ref().and_then(|season| {
-        let here = results.conditions.get(season.condition)?;
-        Some(season::season(design, season, here)).filter(|it| it.energy_kwh_per_m2.is_finite())
-    });
+    if let Some((season, here)) =
+        design.season.as_ref().and_then(|it| Some((it, results.conditions.get(it.condition)?)))
+    {
+        match season::season(design, season, here) {
+            Ok(found) if found.energy_kwh_per_m2.is_finite() => results.season = Some(found),
+            Ok(_) => findings.push(findings::season_beyond(season)),
+            Err(light) => findings.push(findings::season_without_current(season, &light)),
+        }
+    }
     results.charts = charts::charts(design);
     results.measured = design
         .measured
@@ -147,7 +152,8 @@ fn warmer_and_colder(design: &Design) -> Vec<(usize, Condition)> {
 fn warm(
     design: &Design,
     conditions: &mut [ConditionResult],
-    (around, lit): (&[(usize, Condition)], &[Option<Arc<Lit>>]),
+    around: &[(usize, Condition)],
+    lit: &[Option<Arc<Lit>>],
 ) {
     let figures: Vec<Option<ConditionResult>> = around
         .par_iter()

@@ -2,7 +2,7 @@
 
 use std::sync::Arc;
 
-use crate::design::{Design, OpticsModel, VoltageModel};
+use crate::design::{Design, OpticsModel, Season, VoltageModel};
 use crate::evaluate::grid;
 use crate::evaluate::junctions::fit_at;
 use crate::evaluate::lit::{Lit, junction_gap};
@@ -38,6 +38,22 @@ pub(super) fn too_short_waves(design: &Design) -> Findings {
         );
     }
     findings
+}
+
+/// A light of a season's table that drives no current.
+pub(super) fn season_without_current(season: &Season, light: &str) -> Finding {
+    let message = format!("`{light}` of `{}` reaches no junction's absorption", season.file);
+    Finding::error("light.range", message)
+        .at(season.span, "so there is no energy over it")
+        .help("name a light that reaches the edges of the junctions, such as `AM1.5G`")
+}
+
+/// A season whose energy is no number.
+pub(super) fn season_beyond(season: &Season) -> Finding {
+    let message = format!("the energy over `{}` is beyond what can be computed", season.file);
+    Finding::error("value.range", message)
+        .at(season.span, "a row is beyond all measure")
+        .help("bring light and temperature of its rows to what a cell can meet")
 }
 
 /// What the figures show.

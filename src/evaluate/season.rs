@@ -26,13 +26,18 @@ struct Node<'a> {
     rows: Vec<(usize, &'a Condition, f64)>,
 }
 
-/// Power of every row and the energy over all; `here` is the condition the rows start from.
-pub(super) fn season(design: &Design, season: &Season, here: &ConditionResult) -> SeasonResult {
+/// Power of every row and the energy over all; `here` is the condition the rows start from. The
+/// error is the name of a light of the table that drives no current at all.
+pub(super) fn season(
+    design: &Design,
+    season: &Season,
+    here: &ConditionResult,
+) -> Result<SeasonResult, String> {
     let nodes = nodes(season);
-    let parts: Vec<Vec<(usize, f64)>> = nodes
+    let parts: Vec<Result<Vec<(usize, f64)>, String>> = nodes
         .par_iter()
         .map(|node| {
-            let Some(lit) = Lit::new(design, &node.condition) else { return Vec::new() };
+            let lit = Lit::new(design, &node.condition).ok_or(&node.condition.light.name)?;
             let power = |(row, condition, part): &(usize, &Condition, f64)| {
                 // At the node's temperature and angle, with the row's own strength of light: the
                 // cosine of the row goes into the concentration.
@@ -41,12 +46,14 @@ pub(super) fn season(design: &Design, season: &Season, here: &ConditionResult) -
                     Condition { concentration: condition.concentration * slanted, ..node.condition.clone() };
                 (*row, part * power_w_per_m2(design, &at, &lit))
             };
-            node.rows.iter().map(power).collect()
+            Ok(node.rows.iter().map(power).collect())
         })
         .collect();
     let mut powers = vec![0.0; season.rows.len()];
-    for (row, power) in parts.into_iter().flatten() {
-        powers[row] += power;
+    for part in parts {
+        for (row, power) in part? {
+            powers[row] += power;
+        }
     }
     let rows: Vec<SeasonRowResult> = season
         .rows
@@ -65,7 +72,7 @@ pub(super) fn season(design: &Design, season: &Season, here: &ConditionResult) -
     let incident = KWH * 3600.0 * sum(|row| row.hours * row.incident_w_per_m2);
     let energy = KWH * 3600.0 * sum(|row| row.hours * row.power_w_per_m2);
     let efficiency = if incident > 0.0 { energy / incident } else { 0.0 };
-    SeasonResult {
+    Ok(SeasonResult {
         file: season.file.clone(),
         condition: here.name.clone(),
         hours: sum(|row| row.hours),
@@ -74,7 +81,7 @@ pub(super) fn season(design: &Design, season: &Season, here: &ConditionResult) -
         efficiency,
         harvest_ratio: if here.efficiency > 0.0 { efficiency / here.efficiency } else { 0.0 },
         rows,
-    }
+    })
 }
 
 /// The lights to work out: for each light, whole degree and fluence, temperatures no more than
