@@ -70,6 +70,7 @@ fn marks(fits: &[Fit]) -> Vec<Mark> {
                 gap_ev: fit.gap.ev,
                 critical: None,
                 junction: None,
+                alike: false,
             })
         })
         .collect();

@@ -118,10 +118,39 @@ pub fn draw(lines: &[DarkLine]) -> Drawing {
         let class = line.junction.map_or_else(|| "mk".into(), |index| format!("mk{}", style_number(index)));
         drawing.dot(&class, (x.of(v), y.of(ma.log10())), 3.2);
     }
+    let crowded = lines.iter().filter(|line| line.junction.is_some()).count() > CROWD;
     for (line, points) in &placed {
+        if crowded && line.junction.is_some() {
+            continue;
+        }
         name(&mut drawing, line, points, &placed);
     }
+    if crowded {
+        key(&mut drawing, &placed);
+    }
     drawing
+}
+
+/// With more junctions than this their names stand in a column, each with a piece of its line.
+const CROWD: usize = 4;
+
+/// Names right of all junctions' curves, where they lie lowest and leave the most room.
+fn key(drawing: &mut Drawing, placed: &[(&DarkLine, Vec<Point>)]) {
+    let junctions = || placed.iter().filter(|(line, _)| line.junction.is_some());
+    let rows = junctions().count() as f64;
+    let top = TOP + HEIGHT - 17.0 * rows - 4.0;
+    let below = junctions().flat_map(|(_, points)| points).filter(|p| p.1 > top - 14.0).map(|p| p.0);
+    let left = below.fold(LEFT, f64::max) + 14.0;
+    for (row, (line, _)) in junctions().enumerate() {
+        let Some(index) = line.junction else { continue };
+        let y = top + 17.0 * row as f64 + 8.0;
+        let words = fit(&line.name, 12.5, true, (WIDTH - left - 40.0).min(120.0));
+        let label = Label::at(left + 30.0, y, &words).bold().junction("i", index).halo();
+        if drawing.text_where_free([label]) {
+            let class = format!("c{}", style_number(index));
+            drawing.line(&class, (left, y - 4.0), (left + 24.0, y - 4.0));
+        }
+    }
 }
 
 /// The name beside its curve: where no curve runs, if there is such a place.

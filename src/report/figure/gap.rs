@@ -31,6 +31,8 @@ pub struct Mark {
     pub critical: Option<f64>,
     /// The junction whose current one of them makes.
     pub junction: Option<usize>,
+    /// Whether layers of materials much like this one are among them.
+    pub alike: bool,
 }
 
 /// Layers with one place, widest gap first.
@@ -61,10 +63,35 @@ pub fn marks(context: &Context<'_>, map: &GapMap) -> Vec<Mark> {
                 gap_ev: layer.gap_ev,
                 critical: layer.critical_mismatch,
                 junction,
+                alike: false,
             }),
         }
     }
     out.sort_by(|a, b| b.gap_ev.total_cmp(&a.gap_ev));
+    if out.len() > LABELLED { merged(out) } else { out }
+}
+
+/// Marks that the eye cannot tell apart become one, of the first material; both widest gap first.
+fn merged(marks: Vec<Mark>) -> Vec<Mark> {
+    let mut out: Vec<Mark> = Vec::new();
+    for mark in marks {
+        let near = |other: &Mark| {
+            (other.gap_ev - mark.gap_ev).abs() < 0.03 && (other.mismatch - mark.mismatch).abs() < 1e-4
+        };
+        match out.iter_mut().find(|other| near(other)) {
+            Some(other) => {
+                other.numbers.extend(&mark.numbers);
+                other.numbers.sort_unstable();
+                other.alike |= other.material != mark.material;
+                other.critical = match (other.critical, mark.critical) {
+                    (Some(a), Some(b)) => Some(a.min(b)),
+                    (a, b) => a.or(b),
+                };
+                other.junction = other.junction.or(mark.junction);
+            }
+            None => out.push(mark),
+        }
+    }
     out
 }
 
@@ -303,6 +330,7 @@ fn labels(drawing: &mut Drawing, marks: &[&Mark], (x, y): (Scale, Scale), two_li
         drawing.text(Label::at(next, first, &values).size(11.5).class("q"));
         if two_lines {
             let whole = Label::material(left, first + 15.0, &mark.material);
+            let whole = if mark.alike { whole.and(" and the like") } else { whole };
             let fits = whole.width() <= room;
             let cut_short = Label::at(left, first + 15.0, &fit(&mark.material, 12.5, false, room));
             drawing.text(if fits { whole } else { cut_short });

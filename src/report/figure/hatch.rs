@@ -26,6 +26,21 @@ pub enum Hatch {
     Dashes(f64),
 }
 
+impl Hatch {
+    /// The same with its strokes so many times as far apart.
+    #[must_use]
+    pub fn wider(self, times: f64) -> Self {
+        match self {
+            Self::Lines(angle, distance) => Self::Lines(angle, distance * times),
+            Self::Cross(distance) => Self::Cross(distance * times),
+            Self::Dots(distance) => Self::Dots(distance * times),
+            Self::Plus(distance) => Self::Plus(distance * times),
+            Self::Zigzag(distance) => Self::Zigzag(distance * times),
+            Self::Dashes(distance) => Self::Dashes(distance * times),
+        }
+    }
+}
+
 /// The strokes of `hatch` inside the polygon `shape`, as path data; empty where nothing fits.
 pub fn strokes(hatch: Hatch, shape: &[Point]) -> String {
     if shape.len() < 3 {

@@ -28,6 +28,8 @@ struct Layout {
     slim: bool,
 }
 
+/// From here on hatches are wider.
+const MANY: usize = 40;
 /// Height of the head line.
 const HEAD: f64 = 30.0;
 /// Height of a row over the stack, for what stands under the fingers only.
@@ -91,7 +93,12 @@ fn draw_in(context: &Context<'_>, layout: Layout) -> Drawing {
     head(context, &mut drawing, &layout, over);
     for (index, row) in rows.iter().enumerate() {
         let (y, h) = (edges[index], edges[index + 1] - edges[index]);
-        area(&mut drawing, &row.style(), (layout.stack.0, y), (layout.stack.1, h));
+        let mut style = row.style();
+        // Very many layers would make a heavy file; what they are reads all the same.
+        if let Some((_, hatch)) = style.hatch.as_mut().filter(|_| rows.len() > MANY) {
+            *hatch = hatch.wider(2.0);
+        }
+        area(&mut drawing, &style, (layout.stack.0, y), (layout.stack.1, h));
         let left = layout.stack.0 + layout.stack.1 + 12.0;
         drawing.line("hair", (left, edges[index + 1]), (layout.width, edges[index + 1]));
         if row.layer.duty == Duty::Wafer && h > 46.0 {

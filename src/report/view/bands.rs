@@ -123,6 +123,7 @@ fn steps(context: &Context<'_>, bands: &BandDiagram) -> Table {
         Text::of("Steps where current is collected; positive is uphill"),
         &["from", "to", "carriers", ">step, meV", "what it does"],
     );
+    table.kind = if bands.steps.len() > 16 { "fold" } else { "" };
     for step in &bands.steps {
         let meaning = Meaning::of(step);
         let does = match meaning {

@@ -128,7 +128,8 @@ pub fn losses(context: &Context<'_>) -> Option<Table> {
         Text::of("Light by layer, as photon current; lost is what it absorbs and gives to no contact"),
         &heads,
     );
-    table.kind = "roomy";
+    // As long as the stack: told on demand where that is very long.
+    table.kind = if rows.len() > 24 { "fold" } else { "roomy" };
     // Under concentrated light another unit suits.
     let scales: Vec<CurrentScale> = (0..conditions.len()).map(|index| context.under(index).scale).collect();
     for (condition, scale) in conditions.iter().zip(&scales) {

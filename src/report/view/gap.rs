@@ -105,7 +105,7 @@ fn table(map: &GapMap, marks: &[Mark]) -> Table {
     for mark in marks {
         table.row(vec![
             Text::of(ranges(&mark.numbers, ", ")),
-            Text::material(&mark.material),
+            Text::material(&mark.material).p(if mark.alike { " and the like" } else { "" }),
             Text::of(fixed(mark.gap_ev, 3)),
             Text::of(signed(mark.mismatch * 100.0, 3)),
             Text::of(mark.critical.map(|critical| fixed(critical * 100.0, 3)).unwrap_or_else(|| "–".into())),
