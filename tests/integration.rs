@@ -17,6 +17,7 @@ mod integration {
     mod house_rules;
     mod materials;
     mod optics;
+    mod optics_language;
     mod optics_limits;
     mod physics;
     mod physics_circuit;
