@@ -25,7 +25,7 @@ fn transport(design: &Design, lit: &Lit) -> Vec<Option<LayerTransport>> {
     let mut rows = vec![None; design.layers.len()];
     let Some(condition) = design.conditions.first() else { return rows };
     let room = Condition { temperature_k: ROOM_K, fluence: None, ..condition.clone() };
-    let is_room = condition.temperature_k == ROOM_K && condition.fluence.is_none();
+    let is_room = (condition.temperature_k - ROOM_K).abs() < 1e-9 && condition.fluence.is_none();
     let known = if is_room { &lit.carrying } else { &carrying(design, &room) };
     for carrying in known {
         let Carrying::Followed(transport) = carrying else { continue };

@@ -139,7 +139,7 @@ fn ends(design: &Design, junction: usize) -> Option<(Polarity, Polarity)> {
         layer.doping.as_ref().filter(|_| inner).map(|doping| doping.polarity)
     });
     let first = signs.next()?;
-    Some((first, signs.last()?))
+    Some((first, signs.next_back()?))
 }
 
 /// Whether `doping.missing` names the layer already.
