@@ -161,20 +161,30 @@ fn eighty_layers() -> String {
     );
     for (junction, al) in [0.44, 0.36, 0.28, 0.18, 0.09, 0.0].into_iter().enumerate() {
         let name = if junction == 2 { "w".repeat(40) } else { format!("j{junction}") };
-        text.push_str(&format!("    junction {name} {{\n        window {} 1 nm n 2e18 /cm3 Si\n", material(al + 0.3)));
+        text.push_str(&format!(
+            "    junction {name} {{\n        window {} 1 nm n 2e18 /cm3 Si\n",
+            material(al + 0.3)
+        ));
         text.push_str(&format!("        emitter {} 50 nm n 2e18 /cm3 Si\n", material(al)));
         for part in 0..5 {
             let own = material(al + 0.002 * f64::from(part));
             text.push_str(&format!("        base {own} 120 nm p 1e17 /cm3 Zn as base{part}_{junction}\n"));
         }
-        text.push_str(&format!("        bsf {} 30 nm p 1e18 /cm3 Zn\n        voltage from ere 1 %\n    }}\n", material(al + 0.2)));
+        text.push_str(&format!(
+            "        bsf {} 30 nm p 1e18 /cm3 Zn\n        voltage from ere 1 %\n    }}\n",
+            material(al + 0.2)
+        ));
         if junction < 5 {
             text.push_str(&format!("    tunnel as t{junction} {{\n        layer {} 15 nm p 8e19 /cm3 C\n        layer GaInP matched 15 nm n 2e19 /cm3 Te\n        peak 20 A/cm2\n        resistance 1 mohm cm2\n    }}\n", material(al + 0.1)));
         }
     }
     for step in 0..20 {
         let al = 0.01 * f64::from(step);
-        text.push_str(&format!("    buffer {} {} nm p 1e18 /cm3 Zn\n", material(al), if step % 2 == 0 { 1 } else { 200 }));
+        text.push_str(&format!(
+            "    buffer {} {} nm p 1e18 /cm3 Zn\n",
+            material(al),
+            if step % 2 == 0 { 1 } else { 200 }
+        ));
     }
     text + "    wafer GaAs 500 um p 1e18 /cm3 Zn\n}\n"
 }
