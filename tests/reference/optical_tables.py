@@ -372,8 +372,8 @@ inganas_table()
 for name in ("GaAs", "InP", "Si"):
     write(name, thinned(f"joined_{name}"))
 for name, source in {
-    "TiO2": "TiO2", "Al2O3": "Al2O3", "Ta2O5": "Ta2O5", "HfO2": "HfO2", "Nb2O5": "Nb2O5", "ITO": "ITO_Konig",
-    "AZO": "AZO", "glass": "glass_lowiron", "EVA": "EVA", "Au": "Au", "Ag": "Ag", "Al": "Al", "Cu": "Cu",
+    "TiO2": "TiO2", "Al2O3": "Al2O3", "Ta2O5": "Ta2O5", "HfO2": "HfO2", "Nb2O5": "Nb2O5",
+    "glass": "glass_lowiron", "EVA": "EVA", "Au": "Au", "Ag": "Ag", "Al": "Al", "Cu": "Cu",
     "Ti": "Ti", "Ni": "Ni", "Pd": "Pd", "Pt": "Pt",
 }.items():
     write(name, thinned(source))
