@@ -21,13 +21,12 @@ use std::time::{Duration, Instant};
 use bandloom::compile::{Options, compile};
 use bandloom::design::VoltageModel;
 use bandloom::evaluate::evaluate;
-use bandloom::materials::library;
 use bandloom::optics::model::LightModel;
 use bandloom::parse::parse;
-use bandloom::resolve::materials::Library;
-use bandloom::resolve::quantities::Scope;
 use bandloom::source::{Source, SourceId};
 use bandloom::world::memory::Memory;
+
+mod reading;
 
 const TOOL: &str = env!("CARGO_BIN_EXE_bandloom");
 const DEMO: &str = concat!(env!("CARGO_MANIFEST_DIR"), "/stacks/kittiwake.stack");
@@ -83,17 +82,7 @@ fn main() {
     });
     table.time("build of the three-junction demo, to files", build, Some(40));
 
-    let all: Vec<&str> = library::FILES.iter().map(|(name, _)| *name).collect();
-    table.time(&format!("library, all {} read", all.len()), time(RUNS, || read(&all)), Some(60));
-    let needed = ["GaAs", "GaInP", "AlInP", "AlGaInP", "AlGaAs", "MgF2", "ZnS", "Au"];
-    table.time("library, what the two-junction demo needs", time(RUNS, || read(&needed)), Some(5));
-    let tables = library::table_names().filter_map(library::table);
-    let embedded: usize = library::FILES.iter().map(|(_, text)| text.len()).chain(tables.map(str::len)).sum();
-    table.row(
-        "library, embedded",
-        &format!("{:.2} MB", embedded as f64 / 1e6),
-        Some(("1.5 MB", embedded < 1_500_000)),
-    );
+    reading::library(&mut table);
 
     let (latency, memory) = watching(folder.path());
     table.time("watch, save to finished sheet", latency, Some(80));
@@ -108,14 +97,6 @@ fn main() {
     let size = std::fs::metadata(TOOL).unwrap().len();
     table.row("binary", &format!("{:.2} MB", size as f64 / 1e6), Some(("8 MB", size < 8_000_000)));
     table.print();
-}
-
-/// Reads definitions of the built-in library, none of them before.
-fn read(names: &[&str]) {
-    let (mut library, mut scope) = (Library::new(), Scope::new());
-    for name in names {
-        assert!(library.find(name, &mut scope).is_some(), "{name}");
-    }
 }
 
 /// Three junctions in twenty lit layers by waves, over the whole grid of AM1.5G, in process on one
