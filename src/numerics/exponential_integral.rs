@@ -7,7 +7,7 @@ const EULER: f64 = 0.577_215_664_901_532_9;
 /// directions of a hemisphere (Lambertian) that gets straight through a layer of depth `x = αd`.
 /// 1 at 0, 0 at infinity. Abramowitz and Stegun (1964), 5.1.11, 5.1.14 and 5.1.22.
 pub fn diffuse_pass(x: f64) -> f64 {
-    if !(x > 0.0) {
+    if x <= 0.0 || x.is_nan() {
         return 1.0;
     }
     if x > 700.0 {

@@ -42,6 +42,9 @@ struct Part {
     passed: Vec<f64>,
 }
 
+/// A number at each wavelength.
+type ByWavelength<'a> = &'a dyn Fn(usize) -> f64;
+
 /// Light that enters the host: its flux, and the cosine of its angle there.
 struct Beam {
     flux: Vec<f64>,
@@ -208,7 +211,7 @@ impl Around<'_> {
             let share = |at: usize| lit(at, tilt) / tilts.iter().map(|tilt| lit(at, *tilt)).sum::<f64>();
             let first = |at: usize| (FACET_RAD - tilt * angle(at)).min(FRAC_PI_2);
             let second = |at: usize| (PI - 3.0 * FACET_RAD + tilt * angle(at)).abs().min(FRAC_PI_2);
-            self.two_facets((films, outside), (&share, &first, &second), &mut facets, &mut beams);
+            self.two_facets((films, outside), [&share, &first, &second], &mut facets, &mut beams);
         }
         if cover.is_empty() {
             return (facets, beams);
@@ -219,7 +222,7 @@ impl Around<'_> {
     fn two_facets(
         &self,
         (films, outside): (&[Slab], &[f64]),
-        (share, first, second): (&dyn Fn(usize) -> f64, &dyn Fn(usize) -> f64, &dyn Fn(usize) -> f64),
+        [share, first, second]: [ByWavelength<'_>; 3],
         facets: &mut Part,
         beams: &mut Vec<Beam>,
     ) {
@@ -279,8 +282,8 @@ impl Around<'_> {
             values.iter().zip(&falls).map(|(value, falls)| value * falls).collect::<Vec<_>>()
         };
         let returned = scaled(&facets.returned);
-        for at in 0..count {
-            front.returned[at] += returned[at] * from_inside.transmitted[at];
+        for (at, back) in returned.iter().enumerate() {
+            front.returned[at] += back * from_inside.transmitted[at];
         }
         for (row, inside) in front.rows.iter_mut().zip(from_inside.absorbed.iter().rev()) {
             row.iter_mut().zip(inside).zip(&returned).for_each(|((sum, inside), back)| *sum += inside * back);

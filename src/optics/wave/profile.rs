@@ -72,7 +72,7 @@ impl Profile {
     /// The same shape with another absorptance in all; evenly spread where it had none.
     pub fn scale_to(&mut self, absorbed: f64) {
         let own = self.between(0.0, self.thickness_m);
-        if !(own > 1e-30) {
+        if own <= 1e-30 || own.is_nan() {
             let even = if self.thickness_m > 0.0 { absorbed / self.thickness_m } else { 0.0 };
             (self.decay_per_m, self.down, self.up, self.cosine, self.sine) = (0.0, even, 0.0, 0.0, 0.0);
             return;
