@@ -48,11 +48,7 @@ pub(super) fn requests<'s>(
     for statement in resolver.items.for_all.clone() {
         resolver.scope.enter(0);
         match statement {
-            Statement::Accept(it) => {
-                if reasoned(resolver, it) {
-                    design.file_accepts.push(it.clone());
-                }
-            }
+            Statement::Accept(it) if reasoned(resolver, it) => design.file_accepts.push(it.clone()),
             Statement::Limit(it) => limit(resolver, design, it),
             _ => {}
         }
