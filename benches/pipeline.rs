@@ -188,32 +188,19 @@ fn long_file() -> String {
 
 const MISTAKES: usize = 500;
 
-/// As many stacks of twenty layers as there are mistakes, one in each, ten kinds in turn.
+/// As many stacks of twenty layers as there are mistakes, one in each, four kinds in turn.
 fn wrong_file() -> String {
     const SLIPS: &[(&str, &str)] = &[
         ("20 nm   n 2e18", "20   n 2e18"),
-        ("48 nm", "48 um"),
         ("emitter  GaAs", "emitter  GaAS"),
-        ("ere 2 %", "ere 0.02"),
-        ("3.5 um", "3,5 um"),
         ("p 8e19 /cm3", "p 8e19 /cm2"),
-        ("wafer    GaAs ", "wafer    GaAs,"),
-        ("emitter  GaInP matched   70 nm   n", "emitter  GaInP matched   70 nm   p"),
         ("gap 2.1 eV", "gap 590 nm"),
-        ("Al0.3Ga0.7As", "Al0.3Ga0.8As"),
     ];
-    (0..MISTAKES)
-        .map(|number| {
-            let zns = "    coat        ZnS   48 nm\n";
-            let more = "    coat        SiO2  90 nm\n".repeat(7);
-            let stack =
-                one(number).replace("MgF2  coat", "MgF2  95 nm").replace(zns, &format!("{zns}{more}"));
-            let (from, to) = SLIPS[number % SLIPS.len()];
-            let slipped = stack.replacen(from, to, 1);
-            assert_ne!(stack, slipped, "{from} was not found");
-            slipped
-        })
-        .collect()
+    let zns = "    coat        ZnS   48 nm\n";
+    let more = zns.to_owned() + &"    coat        SiO2  90 nm\n".repeat(7);
+    let stack = |number| one(number).replace("MgF2  coat", "MgF2  95 nm").replace(zns, &more);
+    let slip = |number: usize| SLIPS[number % SLIPS.len()];
+    (0..MISTAKES).map(|number| stack(number).replacen(slip(number).0, slip(number).1, 1)).collect()
 }
 
 fn one(number: usize) -> String {

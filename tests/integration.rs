@@ -31,6 +31,7 @@ mod integration {
     mod sheet_cases;
     mod sheet_page;
     mod slips;
+    mod slips_planted;
     mod texture;
     mod tool;
     mod transport;

@@ -53,7 +53,7 @@ pub fn document(run: &Run) -> String {
         "runs": [{
             "tool": { "driver": {
                 "name": "bandloom",
-                "semanticVersion": env!("CARGO_PKG_VERSION"),
+                "version": env!("CARGO_PKG_VERSION"),
                 "rules": codes.iter().map(rules).collect::<Vec<_>>(),
             } },
             "columnKind": "unicodeCodePoints",
@@ -181,7 +181,7 @@ mod tests {
             ("stacks/a b.stack", "stacks/a%20b.stack"),
             ("./a.stack", "a.stack"),
             ("/tmp/a.stack", "file:///tmp/a.stack"),
-            ("d:/work/µ.stack", "file:///d:/work/%C2%B5.stack"),
+            ("d:/lab/µ.stack", "file:///d:/lab/%C2%B5.stack"),
             ("<stdin>", "%3Cstdin%3E"),
             ("a:b.stack", "file:///a:b.stack"),
         ] {

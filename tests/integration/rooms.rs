@@ -93,6 +93,8 @@ const MAY: &[(&str, &[&str])] = &[
             "light",
             "materials",
             "design",
+            // What counts as thick, and how many layers the light is followed through.
+            "optics",
             "growth",
             "results",
             "numerics",
