@@ -178,7 +178,8 @@ mod tests {
         let folder = tempfile::tempdir().expect("temporary folder");
         let make = |name: &str, seconds: u64| {
             let file = fs::File::create(folder.path().join(name)).expect("a file");
-            let then = std::time::SystemTime::now() - Duration::from_secs(seconds);
+            let made = file.metadata().and_then(|facts| facts.modified()).expect("a time");
+            let then = made - Duration::from_secs(seconds);
             file.set_modified(then).expect("a time");
         };
         make(".a.txt.4711.part", 3600);

@@ -142,6 +142,9 @@ impl Serialize for Figure {
     }
 }
 
+/// Both ends of a straight line.
+pub type Segment = ((f64, f64), (f64, f64));
+
 /// One drawing.
 #[derive(Clone, Debug, Default)]
 pub struct Drawing {
@@ -211,7 +214,7 @@ impl Drawing {
     }
 
     /// Straight lines of one class in one element.
-    pub fn lines(&mut self, class: &str, segments: &[((f64, f64), (f64, f64))]) {
+    pub fn lines(&mut self, class: &str, segments: &[Segment]) {
         self.path(class, &hatch::path(segments));
     }
 

@@ -102,11 +102,11 @@ pub fn lines(lines: &[ChartLine], axis: &ChartAxisResult, metric: &str) -> Drawi
     }
     let room = ((high - low) * 0.12).max(high.abs() * 0.002).max(1e-9);
     let y = Scale::new(low - room, high + room, (foot, TOP));
-    let (ticks, decimals) = y.ticks(5);
+    let (ticks, decimals) = y.ticks(8);
     let ticks: Vec<(f64, String)> = ticks.into_iter().map(|v| (v, fixed(v, decimals))).collect();
     drawing.text(Label::at(0.0, TOP - 14.0, &fit(metric, 11.5, false, WIDTH)).size(11.5).class("q"));
     axis_left(&mut drawing, y, LEFT, &ticks);
-    let (scale, ticks) = x.ticks(6);
+    let (scale, ticks) = x.ticks(8);
     axis_below(&mut drawing, scale, foot, &ticks);
     let words = fit(&Axis::words(axis), 11.5, false, WIDTH - 60.0);
     drawing.text(Label::at(WIDTH - 14.0, foot + 36.0, &words).size(11.5).class("q").end());

@@ -47,7 +47,7 @@ pub fn draw(overlay: &Overlay) -> Drawing {
     let least = range(&|p| p.1.min(p.2)).0.min(0.0);
     let y = Scale::new(least, most * 1.06, (foot, TOP));
     drawing.text(Label::at(0.0, TOP - 13.0, overlay.value).size(11.5).class("q"));
-    let (ticks, decimals) = y.ticks(5);
+    let (ticks, decimals) = y.ticks(8);
     let ticks: Vec<(f64, String)> = ticks.into_iter().map(|v| (v, fixed(v, decimals))).collect();
     axis_left(&mut drawing, y, LEFT, &ticks);
 
@@ -78,7 +78,7 @@ pub fn draw(overlay: &Overlay) -> Drawing {
     let off = overlay.points.iter().map(|p| (p.1 - p.2).abs()).fold(0.0, f64::max).max(1e-12);
     let difference = Scale::new(-1.15 * off, 1.15 * off, (strip.1, strip.0));
     drawing.text(Label::at(LEFT, strip.0 - 8.0, "measured less predicted").size(11.5).class("q"));
-    let (ticks, decimals) = difference.ticks(3);
+    let (ticks, decimals) = difference.ticks(6);
     let words = |v: f64| if v == 0.0 { "0".to_string() } else { signed(v, decimals) };
     let ticks: Vec<(f64, String)> = ticks.into_iter().map(|v| (v, words(v))).collect();
     axis_left(&mut drawing, difference, LEFT, &ticks);

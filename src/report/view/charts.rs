@@ -96,6 +96,11 @@ fn place_words(axis: &ChartAxisResult, value: f64) -> String {
     with_unit(&short(value), &unit)
 }
 
+/// `, under noon.` where the statement does not say so itself.
+fn under_words(chart: &ChartResult, condition: &str) -> String {
+    if chart.text.contains(" under ") { ".".into() } else { format!(", under {condition}.") }
+}
+
 /// Points of one chart, ascending.
 fn points(chart: &ChartResult, axis: &ChartAxisResult) -> Vec<(f64, f64)> {
     let both = axis.values.iter().zip(&chart.values);
@@ -131,7 +136,7 @@ fn line(
     figure.half = true;
     figure.caption = Text::code(chart.text.clone());
     if let [one] = lines.as_slice() {
-        figure.caption = figure.caption.p(format!(", under {}.", one.name));
+        figure.caption = figure.caption.p(under_words(chart, &one.name));
     } else if lines.len() > LINES {
         let more = counted(lines.len() - LINES, "condition");
         figure.caption = figure.caption.p(format!("; {more} more in the table."));
@@ -199,10 +204,9 @@ fn area(chart: &ChartResult, grid: &Grid, number: usize) -> (Figure, Option<Stri
     let mut figure =
         Figure::new("chart", &visible(&title), desc).counted(number).drawn(map::draw(grid, &metric), None);
     figure.half = true;
-    figure.caption = Text::code(chart.text.clone()).p(format!(
-        ", under {}. The deeper the colour, the more; the dot is the highest point.",
-        visible(&chart.condition)
-    ));
+    figure.caption = Text::code(chart.text.clone())
+        .p(under_words(chart, &visible(&chart.condition)))
+        .p(" The deeper the colour, the more; the dot is the highest point.");
     figure.data = map_table(grid, &metric);
     let sentence = peak.map(|peak| {
         format!("{} under {} is highest, {peak}", chart.metric.replace('_', " "), visible(&chart.condition))

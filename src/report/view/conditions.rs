@@ -192,7 +192,10 @@ fn per_kelvin(context: &Context<'_>) -> Option<Table> {
 }
 
 fn small_current(ma: f64) -> String {
-    with_unit(&signed(ma * 1000.0, 2), "µA/cm²")
+    match ma.abs() {
+        x if x < 0.9995 => with_unit(&signed(ma * 1000.0, 2), "µA/cm²"),
+        _ => with_unit(&signed(ma, 3), "mA/cm²"),
+    }
 }
 
 /// What a fluence leaves, against the same condition without it; `None` where no two conditions
