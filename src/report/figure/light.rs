@@ -126,7 +126,7 @@ fn draw_in(context: &Context<'_>, light: &Light, frame: &Frame) -> Drawing {
     let top = 8.0 + row_height * rows as f64 + 8.0;
     let mut drawing = Drawing::new(frame.width, top + frame.height + 78.0);
     let foot = top + frame.height;
-    paint(&mut drawing, &shapes, top);
+    paint(&mut drawing, &shapes, top, if frame.slim { 2.0 } else { 1.0 });
     let stage = Stage { context, light, frame, x, top };
     let step = grid(&mut drawing, &stage);
     labels_inside(&mut drawing, &stage, &shapes, &inside);
@@ -157,7 +157,7 @@ fn shapes<'a>(light: &'a Light, frame: &Frame, x: Scale) -> Vec<Shape<'a>> {
             .zip(&light.counted_ma)
             .map(|(share, counted)| (x.of(*counted), frame.height * (1.0 - share.min(1.0))))
             .collect();
-        thin(&points, if frame.slim { 0.2 } else { 0.12 })
+        thin(&by_pixel(&points), if frame.slim { 0.6 } else { 0.35 })
     };
     let mut lower = edge(&level);
     light
@@ -173,6 +173,19 @@ fn shapes<'a>(light: &'a Light, frame: &Frame, x: Scale) -> Vec<Shape<'a>> {
             shape
         })
         .collect()
+}
+
+/// Points of one pixel become their mean: fringes finer than that are not seen, and would make a
+/// heavy file. Both ends stay.
+fn by_pixel(points: &[(f64, f64)]) -> Vec<(f64, f64)> {
+    let (Some(first), Some(last)) = (points.first(), points.last()) else { return Vec::new() };
+    let mut out = vec![*first];
+    for run in points.chunk_by(|a, b| a.0.floor() == b.0.floor()) {
+        let n = run.len() as f64;
+        out.push((run.iter().map(|p| p.0).sum::<f64>() / n, run.iter().map(|p| p.1).sum::<f64>() / n));
+    }
+    out.push(*last);
+    out
 }
 
 /// Where a leader reaches a band: thick enough, and clear of the leaders so far.
@@ -242,12 +255,13 @@ fn hang(
     }
 }
 
-fn paint(drawing: &mut Drawing, shapes: &[Shape<'_>], top: f64) {
+/// Hatches are so many times as wide as usual: on a small drawing fringes would cut them to pieces.
+fn paint(drawing: &mut Drawing, shapes: &[Shape<'_>], top: f64, wider: f64) {
     for shape in shapes {
         let polygon: Vec<(f64, f64)> = shape.polygon().iter().map(|p| (p.0, p.1 + top)).collect();
         drawing.polygon(&shape.band.style.class, &polygon);
         if let Some((class, hatch)) = &shape.band.style.hatch {
-            drawing.path(class, &strokes(*hatch, &polygon));
+            drawing.path(class, &strokes(hatch.wider(wider), &polygon));
         }
     }
 }

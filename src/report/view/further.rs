@@ -8,7 +8,7 @@ use crate::report::view::{Beside, Fold, condition_words};
 use crate::results::ConditionResult;
 
 /// Conditions drawn at most, the first among them; all are in the tables and the numbers file.
-pub const DRAWN: usize = 7;
+pub const DRAWN: usize = 5;
 
 /// One fold a further condition, as far as it differs from the first in what `same` compares.
 pub fn folds(
