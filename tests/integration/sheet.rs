@@ -51,9 +51,7 @@ fn markdown_stays_small_and_names_every_figure_file() {
 fn pages_stay_small() {
     for case in every_case() {
         let size = case.text("sheet.html").len();
-        // Twelve conditions with the fringes of wave optics are the largest.
-        let most = if case.name.contains("Twelve") { 800_000 } else { 600_000 };
-        assert!(size < most, "{size} bytes for {}", case.name);
+        assert!(size < 600_000, "{size} bytes for {}", case.name);
     }
 }
 
