@@ -32,9 +32,11 @@ pub fn band_diagram(design: &Design) -> Option<BandDiagram> {
         Some(layers) => ("equilibrium", layers),
         None => ("flat_band", runs.iter().flatten().filter_map(|(_, layer)| flat(layer)).collect()),
     };
-    let steps =
-        runs.iter().flat_map(|run| run.windows(2)).flat_map(|pair| steps(&layers, pair[0].1, pair[1].1));
-    let steps = steps.collect();
+    let steps = runs
+        .iter()
+        .flat_map(|run| (1..run.len()).map(move |at| (run, at)))
+        .flat_map(|(run, at)| steps(&layers, run, at))
+        .collect();
     (!layers.is_empty()).then(|| BandDiagram {
         model: model.to_owned(),
         temperature_k: ROOM_K,
@@ -114,20 +116,28 @@ fn band_layer(layer: &Layer, gap_ev: f64, profile: &[(f64, f64)]) -> BandLayer {
     }
 }
 
-/// What a collecting layer meets at a neighbour that does not collect.
-fn steps(layers: &[BandLayer], above: &Layer, below: &Layer) -> Vec<BandStep> {
+/// What a collecting layer meets at a neighbour that does not collect: the layers `at − 1` and `at`
+/// of a run.
+fn steps(layers: &[BandLayer], run: &[(usize, &Layer)], at: usize) -> Vec<BandStep> {
     let of = |layer: &Layer| layers.iter().find(|known| known.name == layer.path);
+    let (above, below) = (run[at - 1].1, run[at].1);
     let (inner, outer) = match (above.collects(), below.collects()) {
         (true, false) => (above, below),
         (false, true) => (below, above),
         _ => return Vec::new(),
     };
-    let polarity = |layer: &Layer| layer.doping.as_ref().map(|doping| doping.polarity);
-    let outer_polarity = match outer.duty {
+    let sign = |layer: &Layer| match layer.duty {
         Duty::ElectronContact => Some(Polarity::N),
         Duty::HoleContact => Some(Polarity::P),
-        _ => polarity(outer).or(polarity(inner)),
+        _ => layer.doping.as_ref().map(|doping| doping.polarity),
     };
+    // An undoped layer passes on what the next one outwards carries off.
+    let outwards: Vec<&Layer> = match std::ptr::eq(inner, above) {
+        true => run[at..].iter().map(|(_, layer)| *layer).collect(),
+        false => run[..at].iter().rev().map(|(_, layer)| *layer).collect(),
+    };
+    let carried = outwards.into_iter().take_while(|layer| !layer.collects()).find_map(sign);
+    let outer_polarity = carried.or_else(|| sign(inner));
     let (Some(inner_bands), Some(outer_bands), Some(outer_polarity)) = (of(inner), of(outer), outer_polarity)
     else {
         return Vec::new();

@@ -54,7 +54,7 @@ pub fn bands(context: &Context<'_>) -> Section {
         section.tables.push(steps(context, bands));
     }
     section.notes.push(Text::of(format!(
-        "A step below {}, four times the thermal energy, keeps nobody in; one below {} lets more than 10\u{a0}A/cm² leave by thermionic emission.",
+        "A step below {}, four times the thermal energy, keeps nobody in; one below {} lets more than 10\u{a0}A/cm² leave by thermionic emission. Layers thin enough to tunnel through count as steps all the same.",
         with_unit(&fixed(WEAK_EV * 1000.0, 0), "meV"),
         with_unit(&fixed(BLOCKS_EV * 1000.0, 0), "meV")
     )));
