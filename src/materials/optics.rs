@@ -112,9 +112,9 @@ impl IndexTable {
         (n, k0 + share * (k1 - k0))
     }
 
-    /// `k` of [`IndexTable::at`] at many wavelengths, the same to the bit. Fastest where
+    /// [`IndexTable::at`] at many wavelengths, the same to the bit: `n`, then `k`. Fastest where
     /// neighbours lie close to each other: each search starts where the last one ended.
-    fn k_along(&self, wavelength_m: &[f64], shift_ev: f64) -> Vec<f64> {
+    pub fn along(&self, wavelength_m: &[f64], shift_ev: f64) -> (Vec<f64>, Vec<f64>) {
         let grid = &self.wavelength_m;
         let mut above = 0;
         wavelength_m
@@ -127,9 +127,9 @@ impl IndexTable {
                 while above > 0 && grid[above - 1] > own {
                     above -= 1;
                 }
-                self.before(own, above).1
+                self.before(own, above)
             })
-            .collect()
+            .unzip()
     }
 
     /// Drops the points outside `low..=high` m, unless none would be left.
@@ -181,7 +181,7 @@ impl Optics {
     pub fn absorption_along(&self, wavelength_m: &[f64], shift_ev: f64) -> Vec<f64> {
         match self {
             Self::Table(table) => {
-                let k = table.k_along(wavelength_m, shift_ev);
+                let (_, k) = table.along(wavelength_m, shift_ev);
                 let each = k.iter().zip(wavelength_m);
                 each.map(|(k, wavelength)| 4.0 * std::f64::consts::PI * k / wavelength).collect()
             }
@@ -198,6 +198,15 @@ impl Optics {
                 let alpha = edge.absorption(photon_ev(wavelength_m) - shift_ev);
                 edge.index.map(|n| (n, alpha * wavelength_m / (4.0 * std::f64::consts::PI)))
             }
+        }
+    }
+
+    /// [`Optics::index`] at many wavelengths, the same to the bit: `n`, then `k`; `None` without
+    /// data.
+    pub fn index_along(&self, wavelength_m: &[f64], shift_ev: f64) -> Option<(Vec<f64>, Vec<f64>)> {
+        match self {
+            Self::Table(table) => Some(table.along(wavelength_m, shift_ev)),
+            _ => wavelength_m.iter().map(|&wavelength| self.index(wavelength, shift_ev)).collect(),
         }
     }
 

@@ -197,9 +197,8 @@ impl Interference {
         self.media
             .iter()
             .map(|medium| {
-                let optics = &medium.material.optics;
-                let at = |&wavelength: &f64| optics.index(wavelength, medium.edge_shift_ev);
-                wavelength_m.iter().map(|wavelength| at(wavelength).unwrap_or((1.0, 0.0))).unzip()
+                let along = medium.material.optics.index_along(wavelength_m, medium.edge_shift_ev);
+                along.unwrap_or_else(|| (vec![1.0; wavelength_m.len()], vec![0.0; wavelength_m.len()]))
             })
             .collect()
     }
