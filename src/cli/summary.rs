@@ -38,6 +38,7 @@ fn verdict(stack: &Stack, results: &Results) -> String {
         0 => "built".to_owned(),
         1 if met == 1 => "the requirement is met".to_owned(),
         1 => "the requirement fails".to_owned(),
+        2 if met == 2 => "both requirements are met".to_owned(),
         all if met == all => format!("all {all} requirements are met"),
         all if all - met == 1 => format!("1 of {all} requirements fails"),
         all => format!("{} of {all} requirements fail", all - met),
