@@ -50,7 +50,7 @@ impl Stretch {
     /// `∫ g φ dz` over the stretch: what is collected of the light absorbed here.
     ///
     /// `weighted(rate, from, to)` is `∫ g(z) exp(rate·(z − from)) dz` of the absorption per depth
-    /// `g`, with `rate·(to − from)` within ±[`LENGTHS`].
+    /// `g`, with `rate·(to − from)` within ±60.
     pub fn collected(&self, weighted: impl Fn(f64, f64, f64) -> f64) -> f64 {
         let (from, to) = (self.from_m, self.to_m);
         if to <= from {

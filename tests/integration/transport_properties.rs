@@ -5,13 +5,17 @@ use proptest::test_runner::RngSeed;
 
 use super::transport::{compiled, lawful};
 
+/// Material by number, thicknesses of emitter and base in nm, decades of both dopings, of a lifetime
+/// if one is stated, and of the velocity at the rear.
+type Junction = (usize, f64, f64, f64, f64, Option<f64>, f64);
+
 #[derive(Clone, Debug)]
 struct Case {
     flipped: bool,
     waves: bool,
     temperature_k: f64,
     concentration: f64,
-    junctions: Vec<(usize, f64, f64, f64, f64, Option<f64>, f64)>,
+    junctions: Vec<Junction>,
     fluence: f64,
     switches: (bool, bool),
 }

@@ -35,7 +35,7 @@ pub struct EdgeForm {
     pub per_m: f64,
     /// `E′`, eV.
     pub over_ev: f64,
-    /// Where the tables take over again, eV; the law fades over the last [`FADING_EV`].
+    /// Where the tables take over again, eV; the law fades over the last `FADING_EV`.
     pub to_ev: f64,
     /// Share of the law here.
     pub weight: f64,
