@@ -4,10 +4,10 @@
 use crate::finding::Finding;
 use crate::resolve::Resolver;
 use crate::resolve::properties;
-use crate::resolve::quantities::{Expected, Role};
+use crate::resolve::quantities::Role;
 use crate::resolve::table::{Column, Rows, Which};
 use crate::source::{SourceId, Span, Spanned};
-use crate::syntax::{Argument, Property};
+use crate::syntax::Property;
 use crate::units::{Dimension, parse, value_in};
 
 /// A column that is wanted.
@@ -148,25 +148,8 @@ impl<'s> Resolver<'_, 's> {
         if let Some(dimension) = it.dimension {
             return self.column(Some(property), path, (it.word, &[dimension], false));
         }
-        let mut arguments = property.arguments.as_slice();
-        if let [Argument::Word(first), rest @ ..] = arguments
-            && first.value == "column"
-        {
-            arguments = rest;
-        }
-        let which = match arguments.first() {
-            Some(Argument::Text(heading)) => Which::Heading(heading.clone()),
-            Some(other) => {
-                let value = properties::as_value(other)?;
-                let expected = Expected::new("column", Dimension::NONE, Role::Count);
-                Which::Number(self.scope.quantity(&value, expected)? as usize - 1)
-            }
-            None => {
-                properties::missing(&mut self.scope, property, &format!("write `{} column 3`", it.word));
-                return None;
-            }
-        };
-        let taken = property.arguments.len() - arguments.len() + 1;
+        let (which, rest) = self.which(property, &format!("{} column 3", it.word))?;
+        let taken = property.arguments.len() - rest.len();
         properties::no_more(&mut self.scope, property, taken);
         Some(Column { what: it.word.to_owned(), which, unit: parse("%").ok()? })
     }

@@ -36,6 +36,29 @@ pub(super) enum Which {
 const MOST_FAULTS: usize = 5;
 
 impl<'s> Resolver<'_, 's> {
+    /// Which column a property names, by number from 1 or by heading, the word `column` before it or
+    /// not; and what follows. `example` is how it could be written.
+    pub(super) fn which(&mut self, property: &'s Property, example: &str) -> Option<(Which, &'s [Argument])> {
+        let mut arguments = property.arguments.as_slice();
+        if let [Argument::Word(first), rest @ ..] = arguments
+            && first.value == "column"
+        {
+            arguments = rest;
+        }
+        let Some((first, rest)) = arguments.split_first() else {
+            properties::missing(&mut self.scope, property, &format!("write `{example}`"));
+            return None;
+        };
+        let which = if let Argument::Text(heading) = first {
+            Which::Heading(heading.clone())
+        } else {
+            let value = properties::as_value(first)?;
+            let expected = Expected::new("column", Dimension::NONE, Role::Count);
+            Which::Number(self.scope.quantity(&value, expected)? as usize - 1)
+        };
+        Some((which, rest))
+    }
+
     /// `wavelength column 1 in nm`, `irradiance column "E" in W/m2/nm`; `what` is the statement's
     /// word with the dimensions it may have.
     pub(super) fn column(
@@ -76,25 +99,8 @@ impl<'s> Resolver<'_, 's> {
             );
             return None;
         };
-        let mut arguments = property.arguments.as_slice();
-        if let [Argument::Word(first), rest @ ..] = arguments
-            && first.value == "column"
-        {
-            arguments = rest;
-        }
-        let which = match arguments.first() {
-            Some(Argument::Text(heading)) => Which::Heading(heading.clone()),
-            Some(other) => {
-                let value = properties::as_value(other)?;
-                let expected = Expected::new("column", Dimension::NONE, Role::Count);
-                Which::Number(self.scope.quantity(&value, expected)? as usize - 1)
-            }
-            None => {
-                properties::missing(&mut self.scope, property, &format!("write `{example}`"));
-                return None;
-            }
-        };
-        let unit = self.column_unit(property, arguments.get(1..).unwrap_or(&[]), &example)?;
+        let (which, arguments) = self.which(property, &example)?;
+        let unit = self.column_unit(property, arguments, &example)?;
         let (text, unit) = (unit.0, unit.1);
         if !dimensions.contains(&unit.dimension) {
             self.scope.report(

@@ -10,6 +10,7 @@ use crate::materials::alloy::{Composition, Compound, Family, FamilyIndex};
 use crate::materials::optics::{IndexTable, Optics};
 use crate::resolve::materials::blocks::Reader;
 use crate::resolve::materials::values::{Arguments, Kind, quantity, single};
+use crate::source::Spanned;
 use crate::syntax::Property;
 use crate::units::{Dimension, ELEMENTARY_CHARGE};
 
@@ -73,14 +74,11 @@ impl Reader<'_> {
         FamilyIndex::Blend(Blend { samples, tail })
     }
 
-    /// `sample Al 0.198 "AlGaAs_198.csv" { gap 1.7 eV; e1 3.1 eV; e2 4.7 eV }`, or
-    /// `sample Ga 1 GaP` for a material with a table and critical points of its own, or with the
-    /// points of this family: `sample Si 0 Ge { gap 0.66 eV; e1 2.33 eV; e2 4.25 eV }`.
-    fn sample(&mut self, property: &Property, family: &Family) -> Option<Sample> {
-        let mut arguments = Arguments::of(property);
-        let element = arguments.word()?;
-        let fraction = quantity(&mut arguments, "sample", Kind::FRACTION, self.scope)?;
-        let Some((site, at)) = family.position(&element.value).filter(|_| family.freedom() == 1) else {
+    /// Sublattice and place of an element that one fraction of a family mixes with another.
+    pub(super) fn mixed(&mut self, element: &Spanned<String>, family: &Family) -> Option<(usize, usize)> {
+        let position = family.position(&element.value);
+        let position = position.filter(|(site, _)| family.freedom() == 1 && family.sites[*site].len() == 2);
+        if position.is_none() {
             self.scope.report(
                 Finding::error(
                     "material.statement",
@@ -89,8 +87,18 @@ impl Reader<'_> {
                 .at(element.span, "one of the two mixed elements is due")
                 .help(format!("name an element of `{}`", family.name)),
             );
-            return None;
-        };
+        }
+        position
+    }
+
+    /// `sample Al 0.198 "AlGaAs_198.csv" { gap 1.7 eV; e1 3.1 eV; e2 4.7 eV }`, or
+    /// `sample Ga 1 GaP` for a material with a table and critical points of its own, or with the
+    /// points of this family: `sample Si 0 Ge { gap 0.66 eV; e1 2.33 eV; e2 4.25 eV }`.
+    fn sample(&mut self, property: &Property, family: &Family) -> Option<Sample> {
+        let mut arguments = Arguments::of(property);
+        let element = arguments.word()?;
+        let fraction = quantity(&mut arguments, "sample", Kind::FRACTION, self.scope)?;
+        let (site, at) = self.mixed(element, family)?;
         let mut composition = family.corner();
         composition[site] = vec![1.0 - fraction; 2];
         composition[site][at] = fraction;

@@ -106,20 +106,7 @@ impl Reader<'_> {
         let element = arguments.word()?;
         let fraction = quantity(&mut arguments, "sample", Kind::FRACTION, self.scope)?;
         arguments.end(self.scope);
-        let position = family
-            .position(&element.value)
-            .filter(|(site, _)| family.freedom() == 1 && family.sites[*site].len() == 2);
-        let Some((_, at)) = position else {
-            self.scope.report(
-                Finding::error(
-                    "material.statement",
-                    format!("`{}` is not mixed in this alloy", element.value),
-                )
-                .at(element.span, "one of the two mixed elements is due")
-                .help(format!("name an element of `{}`", family.name)),
-            );
-            return None;
-        };
+        let (_, at) = self.mixed(element, family)?;
         let laws = self.per_carrier(property, Self::mobility_law);
         Some((if at == 0 { fraction } else { 1.0 - fraction }, laws))
     }
